@@ -1,0 +1,54 @@
+/**
+ * Every bound of the product, named once. Schemas, columns, forms and messages read them from here,
+ * so that a limit changed here changes everywhere at the same time.
+ */
+export const limits = {
+  /** Resolution of a converter, bits (solver.md section 1). */
+  converterBitsMin: 4,
+  converterBitsMax: 24,
+  /** Resolution of an auxiliary DAC, bits. */
+  sourceBitsMin: 1,
+  sourceBitsMax: 24,
+  channelsMax: 64,
+  channelNameMax: 16,
+  rangesMax: 16,
+  rangeIdMax: 16,
+  labelMax: 120,
+  titleMax: 120,
+  designKeyMax: 32,
+  lotKeyMax: 32,
+  serialMax: 64,
+  stationNameMax: 64,
+  personNameMax: 80,
+  tokenNameMax: 64,
+  budgetLinesMax: 10_000,
+  planPointsMax: 1_000,
+  /** Points of one measurement, and readings of one point. */
+  pointsMax: 4_096,
+  readingsMax: 1_000,
+  noteMax: 500,
+  reasonMin: 10,
+  reasonMax: 500,
+  instrumentIdMax: 32,
+  idempotencyKeyMax: 128,
+  /** A bigger points CSV belongs to `ogee batch`. Bytes. */
+  benchCsvMaxBytes: 10 * 1024 * 1024,
+  /** One JSON request body, and one block of a batch. Bytes. */
+  bodyMaxBytes: 1024 * 1024,
+  batchMaxLines: 1_000,
+  batchMaxBytes: 8 * 1024 * 1024,
+  pageDefault: 50,
+  pageMax: 500,
+  /** A cell with arithmetic. Characters. */
+  expressionMax: 200,
+  passwordMin: 12,
+  passwordMax: 1_024,
+  emailMax: 254,
+  tokenDaysDefault: 90,
+  tokenDaysMax: 366,
+  /** For rotation: the old and the new one (asvs.md). */
+  liveTokensPerStation: 2,
+  sessionIdleMinutes: 60,
+  sessionAbsoluteHours: 12,
+  clockSkewNoticeSeconds: 120,
+} as const
