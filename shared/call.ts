@@ -1,0 +1,96 @@
+import type { Endpoint, InputOf, ReplyOf } from './contract/endpoint.ts'
+import { problem } from './contract/problem.ts'
+import { OgeeError } from './errors.ts'
+
+/** How requests leave: the browser passes its fetch and a same-origin base, the command line a token. */
+export type Caller = {
+  fetch: typeof fetch
+  /** Origin of the server, without a slash at the end; empty in the browser. */
+  baseUrl: string
+  headers?: Readonly<Record<string, string>>
+  signal?: AbortSignal
+}
+
+type AnyInput = {
+  params?: Record<string, unknown>
+  query?: Record<string, unknown>
+  body?: unknown
+  idempotencyKey?: string
+}
+
+/**
+ * Executes an endpoint description and gives its reply, or throws the OgeeError that the server meant.
+ * The reply keeps keys that this version does not know. A server that cannot be reached is `server-unreachable`.
+ */
+export async function call<E extends Endpoint>(
+  caller: Caller,
+  endpoint: E,
+  input: InputOf<E>,
+): Promise<ReplyOf<E>> {
+  const request = input as AnyInput
+  const response = await send(caller, endpoint, request)
+  if (!response.ok) throw await problemOf(response)
+  if (endpoint.reply.status === 204) return null as ReplyOf<E>
+  const reply: unknown =
+    endpoint.reply.mediaType === 'text/plain' ? await response.text() : await response.json()
+  const checked = endpoint.reply.schema.safeParse(reply)
+  if (!checked.success) {
+    const where = checked.error.issues.map((issue) => `/${issue.path.join('/')}`).slice(0, 3)
+    throw new OgeeError(
+      'defect',
+      `The answer of ${endpoint.method} ${endpoint.path} is not as agreed at ${where.join(', ')}.`,
+    )
+  }
+  return reply as ReplyOf<E>
+}
+
+async function send(caller: Caller, endpoint: Endpoint, request: AnyInput): Promise<Response> {
+  const headers: Record<string, string> = { accept: 'application/json', ...caller.headers }
+  if (request.body !== undefined) headers['content-type'] = 'application/json'
+  if (request.idempotencyKey !== undefined) headers['idempotency-key'] = request.idempotencyKey
+  try {
+    return await caller.fetch(`${caller.baseUrl}/api/v1${pathOf(endpoint, request)}`, {
+      method: endpoint.method,
+      headers,
+      ...(request.body === undefined ? {} : { body: JSON.stringify(request.body) }),
+      ...(caller.signal ? { signal: caller.signal } : {}),
+    })
+  } catch (cause) {
+    if (caller.signal?.aborted) throw cause
+    throw new OgeeError('server-unreachable', 'The server does not answer.', { cause })
+  }
+}
+
+/** Fills `:name` parts and appends the query. Values are escaped; absent ones are left out. */
+export function pathOf(endpoint: Endpoint, request: Pick<AnyInput, 'params' | 'query'>): string {
+  const path = endpoint.path.replaceAll(/:(\w+)/g, (_, name: string) =>
+    encodeURIComponent(String(request.params?.[name])),
+  )
+  const query = new URLSearchParams()
+  for (const [name, value] of Object.entries(request.query ?? {})) {
+    if (value !== undefined) query.set(name, String(value))
+  }
+  const text = query.toString()
+  return text === '' ? path : `${path}?${text}`
+}
+
+async function problemOf(response: Response): Promise<OgeeError> {
+  const parsed = problem.safeParse(await response.json().catch(() => null))
+  if (!parsed.success) {
+    const gone = response.status === 502 || response.status === 503 || response.status === 504
+    return new OgeeError(
+      gone ? 'server-unreachable' : 'defect',
+      `The server answered ${response.status} in a form that is not ours.`,
+    )
+  }
+  const { code, detail, errors, facts } = parsed.data
+  return new OgeeError(code, detail, {
+    ...(errors ? { errors } : {}),
+    facts: { ...facts, ...retryAfter(response) },
+  })
+}
+
+function retryAfter(response: Response): { retryAfterSeconds: number } | undefined {
+  const seconds = Number(response.headers.get('retry-after') ?? Number.NaN)
+  return Number.isFinite(seconds) ? { retryAfterSeconds: seconds } : undefined
+}

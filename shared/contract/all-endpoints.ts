@@ -1,0 +1,34 @@
+import { getDesign, getRevision, listDesigns, listLots, postDesign } from './designs.ts'
+import type { Endpoint } from './endpoint.ts'
+import { getCheckpoint, getLedgerKey } from './ledger.ts'
+import { deleteSession, getMe, getSetup, postSession, postSetup } from './session.ts'
+import { listStations, patchStation, postStation } from './stations.ts'
+import { deleteToken, listTokens, postToken } from './tokens.ts'
+import { getTrim, listTrims, postTrim } from './trims.ts'
+import { findUnits } from './units.ts'
+
+/** Every operation that is served. The router, OpenAPI and the tests of access are made from this list. */
+export const allEndpoints: readonly Endpoint[] = [
+  postSession,
+  deleteSession,
+  getMe,
+  getSetup,
+  postSetup,
+  listDesigns,
+  postDesign,
+  getDesign,
+  getRevision,
+  listLots,
+  postTrim,
+  listTrims,
+  getTrim,
+  findUnits,
+  listStations,
+  postStation,
+  patchStation,
+  listTokens,
+  postToken,
+  deleteToken,
+  getCheckpoint,
+  getLedgerKey,
+] as const satisfies readonly Endpoint[]
