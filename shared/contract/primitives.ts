@@ -34,9 +34,7 @@ export const recordId = z.uuid()
 /** True when the text has no control, format or private characters (a joiner inside an emoji is fine) and no space at either end. */
 function isPlainText(text: string): boolean {
   return (
-    text === text.trim() &&
-    text.isWellFormed() &&
-    !/[\p{Cs}\p{Cc}\p{Cf}\p{Co}\p{Zl}\p{Zp}]/u.test(text.replaceAll('\u200d', ''))
+    text === text.trim() && !/[\p{Cs}\p{Cc}\p{Cf}\p{Co}\p{Zl}\p{Zp}]/u.test(text.replaceAll('\u200d', ''))
   )
 }
 
