@@ -118,6 +118,7 @@ async function stop(code) {
 for (const signal of /** @type {const} */ (['SIGINT', 'SIGTERM', 'SIGHUP']))
   process.on(signal, () => void stop(0))
 
+/** @type {NodeJS.ProcessEnv} */
 const env = {
   ...process.env,
   OGEE_DATA_DIR: dir,
