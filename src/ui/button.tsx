@@ -1,0 +1,38 @@
+import type { ComponentProps } from 'react'
+import { Link } from 'react-router-dom'
+
+/** Primary is the one act of the page, in ink; plain has a line round it; quiet is underlined text. */
+export type ButtonLook = 'primary' | 'plain' | 'quiet'
+
+const shared =
+  'inline-flex min-h-7 items-center gap-2 text-body whitespace-nowrap print:hidden disabled:cursor-default'
+const looks: Record<ButtonLook, string> = {
+  primary:
+    'rounded-sm border border-ink bg-ink px-3 font-semibold text-paper disabled:border-ink-3 disabled:bg-ink-3 forced-colors:border-[ButtonBorder] forced-colors:disabled:text-[GrayText]',
+  plain:
+    'rounded-sm border border-rule px-3 font-semibold text-ink disabled:text-ink-3 forced-colors:disabled:text-[GrayText]',
+  quiet:
+    'px-0.5 text-ink underline decoration-rule underline-offset-4 hover:decoration-ink disabled:text-ink-3 disabled:no-underline',
+}
+
+function classes(look: ButtonLook, extra: string | undefined): string {
+  return `${shared} ${looks[look]} ${extra ?? ''}`
+}
+
+export function Button({
+  look = 'plain',
+  className,
+  type = 'button',
+  ...rest
+}: ComponentProps<'button'> & { look?: ButtonLook }) {
+  return <button type={type} className={classes(look, className)} {...rest} />
+}
+
+/** A link within the app that looks like a button; quiet is the plain link of tables and sentences. */
+export function LinkButton({
+  look = 'quiet',
+  className,
+  ...rest
+}: ComponentProps<typeof Link> & { look?: ButtonLook }) {
+  return <Link className={classes(look, className)} {...rest} />
+}

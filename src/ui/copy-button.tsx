@@ -1,0 +1,26 @@
+import { Button, type ButtonLook } from './button.tsx'
+import { copyText } from './clipboard.ts'
+import { KeyHint } from './key-hint.tsx'
+
+/** `what` names the thing for speech: "Copy gain code". */
+export function CopyButton({
+  text,
+  what,
+  look = 'quiet',
+  hint,
+  children = 'copy',
+}: {
+  text: string
+  what: string
+  look?: ButtonLook
+  /** A key that does the same; the screen registers it. */
+  hint?: string
+  children?: string
+}) {
+  return (
+    <Button look={look} aria-label={`Copy ${what}`} onClick={() => void copyText(text, `Copied ${what}.`)}>
+      {children}
+      {hint ? <KeyHint keys={hint} /> : null}
+    </Button>
+  )
+}
