@@ -20,10 +20,15 @@ export const errorTable = {
   'not-finite': badInput('A number is not finite'),
   'uncertainty-not-positive': badInput('A stated uncertainty must be over zero'),
   'implausible-point': badInput('A measured value is far from ideal'),
+  'point-incomplete': badInput('A point needs a code and a measured value'),
+  'too-many-points': badInput('There are too many points'),
+  'uncertainty-unknown': badInput('The guarded rule needs an uncertainty'),
+  'tolerance-missing': badInput('The design states no tolerance'),
   // Adjusters and networks (solver)
   'resistance-not-positive': badInput('A resistance must be over zero'),
   'effect-zero': badInput('The adjuster moves nothing'),
   'tolerance-out-of-bounds': badInput('The effect tolerance must be at least 0 and under 1'),
+  'reference-zero': badInput('The reference voltage is zero'),
   'source-span-zero': badInput('The auxiliary DAC spans nothing'),
   'adjusters-not-independent': badInput('The two adjusters do the same thing'),
   'adjuster-without-effect': badInput('The adjuster has no effect where it must null'),
@@ -107,6 +112,7 @@ export const errorTable = {
   // Outages
   'database-unavailable': { status: 503, title: 'The database does not answer', retry: true, exit: 75 },
   'not-ready': { status: 503, title: 'The server is not ready', retry: true, exit: 75 },
+  'answer-cut': { status: 503, title: 'The answer was cut on its way', retry: true, exit: 75 },
   'server-unreachable': { status: 503, title: 'The server does not answer', retry: true, exit: 69 },
   // Command line
   usage: { status: 400, title: 'The command line is not right', retry: false, exit: 64 },
