@@ -1,0 +1,20 @@
+/** Light values of tokens.css: what leaves the page is drawn light, whatever the theme (a test compares the two). */
+export const lightColours: Readonly<Record<string, string>> = {
+  paper: '#faf7f0',
+  field: '#fffdf8',
+  shade: '#f1ece1',
+  ink: '#211e1a',
+  'ink-2': '#57514a',
+  'ink-3': '#6d665c',
+  hair: '#ddd6c8',
+  rule: '#8a8274',
+  tide: '#0a6c74',
+  copper: '#a64b12',
+  'tide-soft': '#cfe2e1',
+  'copper-soft': '#f1dcc9',
+  good: '#2f5510',
+  caution: '#8a620a',
+  bad: '#ad1f38',
+  suspect: '#383f80',
+  focus: '#1e4fb8',
+}
