@@ -40,6 +40,8 @@ export async function deliver(
           authorization: `Bearer ${token}`,
           'content-type': 'application/json',
           'idempotency-key': key,
+          // A connection for each delivery, so that each has a fate of its own.
+          connection: 'close',
         },
         body,
         signal: AbortSignal.timeout(5000),
