@@ -1,0 +1,81 @@
+import { OgeeError } from '../errors.ts'
+
+/** What JSON can say. Undefined members of objects are left out, as JSON does. */
+export type Json =
+  | null
+  | boolean
+  | number
+  | string
+  | readonly Json[]
+  | { readonly [key: string]: Json | undefined }
+
+const encoder = new TextEncoder()
+const loneSurrogate = /\p{Cs}/u
+
+/**
+ * The one text that a JSON value has under RFC 8785 (JSON Canonicalization Scheme): no spaces, members sorted by the
+ * UTF-16 code units of their names, numbers as ECMAScript writes them (so -0 becomes 0), strings with the shortest escapes.
+ *
+ * @param value any JSON value; an undefined member counts as absent.
+ * @returns the canonical text. Two values have the same text exactly when RFC 8785 calls them the same.
+ * @throws `not-finite` for NaN and infinities, `invalid-document` for a lone surrogate or something that JSON cannot say.
+ * Source: RFC 8785 (2020) sections 3.2.2 and 3.2.3. Numbers keep every bit of a double, except the sign of zero.
+ * @example canonicalText({ b: 1.50, a: [true, 'é'] }) // '{"a":[true,"é"],"b":1.5}'
+ */
+export function canonicalText(value: Json): string {
+  switch (typeof value) {
+    case 'string':
+      return quoted(value)
+    case 'number':
+      return number(value)
+    case 'boolean':
+      return value ? 'true' : 'false'
+    case 'object':
+      if (value === null) return 'null'
+      if (Array.isArray(value)) return `[${value.map(canonicalText).join(',')}]`
+      return object(value as { readonly [key: string]: Json | undefined })
+    default:
+      throw new OgeeError('invalid-document', `JSON cannot say ${typeof value}.`)
+  }
+}
+
+/**
+ * The canonical text as UTF-8 bytes: what is hashed, signed and stored.
+ *
+ * @param value any JSON value.
+ * @returns UTF-8 bytes of `canonicalText(value)`.
+ * @throws as `canonicalText`.
+ * Source: RFC 8785 section 3.2.4.
+ * @example canonicalBytes({}).length // 2
+ */
+export function canonicalBytes(value: Json): Uint8Array {
+  return encoder.encode(canonicalText(value))
+}
+
+function object(value: { readonly [key: string]: Json | undefined }): string {
+  const prototype: unknown = Object.getPrototypeOf(value)
+  if (prototype !== Object.prototype && prototype !== null) {
+    throw new OgeeError('invalid-document', 'Only plain objects have a canonical form.')
+  }
+  let text = ''
+  // The default order of sort() is by UTF-16 code units, which is what RFC 8785 section 3.2.3 asks for.
+  for (const key of Object.keys(value).sort()) {
+    const member = value[key]
+    if (member !== undefined) text += `${text === '' ? '' : ','}${quoted(key)}:${canonicalText(member)}`
+  }
+  return `{${text}}`
+}
+
+function number(value: number): string {
+  if (!Number.isFinite(value)) throw new OgeeError('not-finite', `${value} has no place in a document.`)
+  // String() is the ECMAScript algorithm that RFC 8785 section 3.2.2.3 refers to; it already writes -0 as 0.
+  return String(value)
+}
+
+function quoted(text: string): string {
+  // JSON.stringify would escape a lone surrogate and so give bytes to something that is not text.
+  if (loneSurrogate.test(text)) {
+    throw new OgeeError('invalid-document', 'The text holds half a character (a lone surrogate).')
+  }
+  return JSON.stringify(text)
+}

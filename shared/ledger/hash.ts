@@ -1,0 +1,52 @@
+/**
+ * Hashing and signing are handed in: node:crypto on the server and the command line, a library in the browser.
+ * All functions are pure; bytes handed in are never changed.
+ */
+
+/** SHA-256 (FIPS 180-4): any bytes in, 32 bytes out. */
+export type Sha256 = (bytes: Uint8Array) => Uint8Array
+
+/** Ed25519 (RFC 8032) under a fixed key: any bytes in, 64 bytes out. */
+export type Sign = (bytes: Uint8Array) => Uint8Array
+
+/** True when the 64-byte signature is that of the 32-byte public key over the bytes. */
+export type Verify = (publicKey: Uint8Array, bytes: Uint8Array, signature: Uint8Array) => boolean
+
+/** Joins byte strings. */
+export function joinBytes(...parts: readonly Uint8Array[]): Uint8Array {
+  let length = 0
+  for (const part of parts) length += part.length
+  const joined = new Uint8Array(length)
+  let at = 0
+  for (const part of parts) {
+    joined.set(part, at)
+    at += part.length
+  }
+  return joined
+}
+
+/** True when both hold the same bytes. Not constant in time: hashes of the ledger are no secrets. */
+export function sameBytes(a: Uint8Array, b: Uint8Array): boolean {
+  return a.length === b.length && a.every((byte, i) => byte === b[i])
+}
+
+/** Lower-case hexadecimal digits of bytes. */
+export function toHex(bytes: Uint8Array): string {
+  let text = ''
+  for (const byte of bytes) text += byte.toString(16).padStart(2, '0')
+  return text
+}
+
+/** Standard base64 with padding (RFC 4648 section 4). */
+export function toBase64(bytes: Uint8Array): string {
+  let binary = ''
+  for (const byte of bytes) binary += String.fromCharCode(byte)
+  return btoa(binary)
+}
+
+/** Reads standard base64; null when the text is not the one canonical encoding of its bytes. */
+export function fromBase64(text: string): Uint8Array | null {
+  if (!/^[A-Za-z0-9+/]*={0,2}$/.test(text) || text.length % 4 !== 0) return null
+  const bytes = Uint8Array.from(atob(text), (c) => c.charCodeAt(0))
+  return toBase64(bytes) === text ? bytes : null
+}

@@ -1,0 +1,55 @@
+import { canonicalText } from './canonical.ts'
+import { joinBytes, type Sha256 } from './hash.ts'
+
+/** What a leaf can be about (contract.md, Ledger). */
+export const leafKinds = [
+  'record',
+  'release',
+  'withdrawal',
+  'finding',
+  'answer',
+  'sign-off',
+  'role',
+  'token',
+  'key',
+] as const
+export type LeafKind = (typeof leafKinds)[number]
+
+const encoder = new TextEncoder()
+const leafPrefix = Uint8Array.of(0)
+
+/**
+ * The bytes of a leaf: RFC 8785 of `{ at, body, kind }`, put together from the stored bytes of the body, which are never
+ * parsed and written again.
+ *
+ * @param kind what the leaf is about.
+ * @param at when, ISO 8601 with milliseconds and Z.
+ * @param body canonical bytes (RFC 8785) of the body, as stored.
+ * @returns canonical bytes of the leaf; "at" < "body" < "kind" is the order RFC 8785 sorts into.
+ * @throws `invalid-document` when `at` is not text that JSON can say.
+ * Source: RFC 8785 section 3.2.3.
+ * @example new TextDecoder().decode(leafBytes('key', '2026-01-02T03:04:05.678Z', new TextEncoder().encode('{}')))
+ * // '{"at":"2026-01-02T03:04:05.678Z","body":{},"kind":"key"}'
+ */
+export function leafBytes(kind: LeafKind, at: string, body: Uint8Array): Uint8Array {
+  return joinBytes(
+    encoder.encode(`{"at":${canonicalText(at)},"body":`),
+    body,
+    encoder.encode(`,"kind":${canonicalText(kind)}}`),
+  )
+}
+
+/**
+ * The hash of a leaf: SHA-256 of a zero byte and the leaf's bytes. The zero keeps leaves apart from inner nodes, which
+ * begin with a one, so that no leaf can be passed off as a subtree.
+ *
+ * @param sha256 the hash function.
+ * @param bytes the leaf's bytes, as from `leafBytes`.
+ * @returns 32 bytes.
+ * Throws nothing of its own.
+ * Source: RFC 9162 section 2.1.1.
+ * @example toHex(leafHash(sha256, new Uint8Array())) // '6e340b9c…' as published
+ */
+export function leafHash(sha256: Sha256, bytes: Uint8Array): Uint8Array {
+  return sha256(joinBytes(leafPrefix, bytes))
+}

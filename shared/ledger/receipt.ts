@@ -1,0 +1,65 @@
+import type { Receipt } from '../contract/receipt.ts'
+import { canonicalBytes } from './canonical.ts'
+import { keyName, type LedgerKey } from './checkpoint.ts'
+import { fromBase64, type Sha256, type Sign, toBase64, type Verify } from './hash.ts'
+
+/** Milliseconds after which a receipt's record must be in the ledger. The aim is one second. */
+const promiseMs = 60_000
+
+export type Promised = { record: string; leaf: string; recordedAt: string }
+
+/**
+ * A signed receipt: the server's promise, which somebody else keeps, that a record will be in the ledger.
+ *
+ * @param sha256 the hash function.
+ * @param promised record id, leaf hash in hex, time of recording (ISO 8601 with Z).
+ * @param key whose signature it is.
+ * @param sign Ed25519 under that key.
+ * @returns the receipt; `includedBy` is 60 s after `recordedAt`.
+ * Throws nothing of its own.
+ * Source: contract.md, Ledger; RFC 8785 for the signed bytes; RFC 8032 for the signature.
+ * @example signReceipt(sha256, promised, key, sign).format // 'ogee.receipt/1'
+ */
+export function signReceipt(sha256: Sha256, promised: Promised, key: LedgerKey, sign: Sign): Receipt {
+  const rest = unsigned(promised, keyName(sha256, key))
+  return { ...rest, signature: toBase64(sign(canonicalBytes(rest))) }
+}
+
+/**
+ * Puts a receipt together again from what is stored of it.
+ *
+ * @param promised as it was signed.
+ * @param key short name of the signing key.
+ * @param signature 64 bytes.
+ * @returns the very receipt that was given out.
+ * Throws nothing.
+ * Source: contract.md, Ledger.
+ * @example restoreReceipt(promised, name, bytes).key // name
+ */
+export function restoreReceipt(promised: Promised, key: string, signature: Uint8Array): Receipt {
+  return { ...unsigned(promised, key), signature: toBase64(signature) }
+}
+
+/**
+ * Whether a receipt was signed by a key.
+ *
+ * @param sha256 the hash function.
+ * @param receipt as received.
+ * @param key the verifier key.
+ * @param verify Ed25519.
+ * @returns true when key name and signature fit.
+ * Throws nothing.
+ * Source: RFC 8032.
+ * @example checkReceipt(sha256, { ...receipt, leaf: other }, key, verify) // false
+ */
+export function checkReceipt(sha256: Sha256, receipt: Receipt, key: LedgerKey, verify: Verify): boolean {
+  const { signature, ...rest } = receipt
+  const bytes = fromBase64(signature)
+  if (bytes?.length !== 64 || receipt.key !== keyName(sha256, key)) return false
+  return verify(key.publicKey, canonicalBytes(rest), bytes)
+}
+
+function unsigned({ record, leaf, recordedAt }: Promised, key: string): Omit<Receipt, 'signature'> {
+  const includedBy = new Date(Date.parse(recordedAt) + promiseMs).toISOString()
+  return { format: 'ogee.receipt/1', record, leaf, recordedAt, includedBy, key }
+}
