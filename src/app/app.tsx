@@ -1,0 +1,18 @@
+import { type QueryClient, QueryClientProvider } from '@tanstack/react-query'
+import { BrowserRouter } from 'react-router-dom'
+import { StatusRegion } from '../ui/status.tsx'
+import { AppRoutes } from './app-routes.tsx'
+import { ErrorBoundary } from './error-boundary.tsx'
+
+export function App({ queryClient }: { queryClient: QueryClient }) {
+  return (
+    <ErrorBoundary>
+      <QueryClientProvider client={queryClient}>
+        <BrowserRouter>
+          <AppRoutes />
+        </BrowserRouter>
+        <StatusRegion />
+      </QueryClientProvider>
+    </ErrorBoundary>
+  )
+}

@@ -1,0 +1,96 @@
+import { useQuery } from '@tanstack/react-query'
+import { Suspense, useEffect, useRef, useState } from 'react'
+import { Navigate, Outlet, useLocation, useNavigate } from 'react-router-dom'
+import { isOgeeError } from '../../shared/errors.ts'
+import { meOptions } from '../features/session/queries.ts'
+import { useConnection } from '../lib/connection.ts'
+import { installKeys, useKeys } from '../lib/keys.ts'
+import { paths } from '../lib/paths.ts'
+import { Loading } from '../ui/loading.tsx'
+import { Problem } from '../ui/problem.tsx'
+import { AwayBanner } from './away-banner.tsx'
+import { ErrorBoundary } from './error-boundary.tsx'
+import { KeysDialog } from './keys-dialog.tsx'
+import { Rail } from './rail.tsx'
+import { SessionDialog } from './session-dialog.tsx'
+
+/** The frame round every page: rail, main part, banner of an outage, dialog of an ended session. */
+export function Frame() {
+  const location = useLocation()
+  const me = useQuery(meOptions)
+  if (!me.data) {
+    if (isOgeeError(me.error, 'sign-in-required')) {
+      const to = `${location.pathname}${location.search}${location.hash}`
+      return (
+        <Navigate replace to={to === '/' ? paths.signIn : `${paths.signIn}?to=${encodeURIComponent(to)}`} />
+      )
+    }
+    return (
+      <main className="p-6">
+        <AwayBanner />
+        {me.error ? <Problem error={me.error} /> : <Loading>Reading who is signed in.</Loading>}
+      </main>
+    )
+  }
+  return <SignedInFrame />
+}
+
+function SignedInFrame() {
+  const { pathname } = useLocation()
+  const { sessionEnded } = useConnection()
+  const [keysShown, setKeysShown] = useState(false)
+  const main = useRef<HTMLElement>(null)
+  useFrameKeys(() => setKeysShown(true))
+  useEffect(installKeys, [])
+  useFocusOnNewPage(main, pathname)
+  return (
+    <div className="rail:flex">
+      <a
+        href="#main"
+        className="sr-only focus:not-sr-only focus:absolute focus:top-1 focus:left-1 focus:z-20 focus:bg-paper focus:p-2"
+      >
+        Skip to the page
+      </a>
+      <Rail onShowKeys={() => setKeysShown(true)} />
+      <main
+        id="main"
+        ref={main}
+        tabIndex={-1}
+        className="min-w-0 flex-1 px-4 py-3 rail:px-6 rail:py-4 print:p-0"
+      >
+        <AwayBanner />
+        <ErrorBoundary key={pathname}>
+          <Suspense fallback={<Loading>Reading the page.</Loading>}>
+            <Outlet />
+          </Suspense>
+        </ErrorBoundary>
+      </main>
+      {sessionEnded ? <SessionDialog /> : null}
+      {keysShown ? <KeysDialog onClose={() => setKeysShown(false)} /> : null}
+    </div>
+  )
+}
+
+function useFrameKeys(showKeys: () => void): void {
+  const navigate = useNavigate()
+  const go = (path: string) => () => void navigate(path)
+  useKeys([
+    { keys: 'g d', does: 'to Designs', run: go(paths.designs) },
+    { keys: 'g b', does: 'to Bench', run: go(paths.bench) },
+    { keys: 'g h', does: 'to History', run: go(paths.history) },
+    { keys: 'g g', does: 'to Ledger', run: go(paths.ledger) },
+    { keys: 'g s', does: 'to Settings', run: go(paths.settings) },
+    { keys: '?', does: 'list the keys of the page', run: showKeys },
+  ])
+}
+
+/** Keyboard and speech start in the new page, unless the page has put the focus somewhere already. */
+function useFocusOnNewPage(main: { current: HTMLElement | null }, pathname: string): void {
+  const last = useRef(pathname)
+  useEffect(() => {
+    if (last.current === pathname) return
+    last.current = pathname
+    window.scrollTo(0, 0)
+    if (!main.current?.contains(document.activeElement)) main.current?.focus({ preventScroll: true })
+  }, [main, pathname])
+}

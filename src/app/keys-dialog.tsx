@@ -1,0 +1,32 @@
+import { listBindings } from '../lib/keys.ts'
+import { Button } from '../ui/button.tsx'
+import { Dialog } from '../ui/dialog.tsx'
+
+export function KeysDialog({ onClose }: { onClose: () => void }) {
+  return (
+    <Dialog title="Keys of this page" onClose={onClose}>
+      <table className="w-full text-body">
+        <thead className="sr-only">
+          <tr>
+            <th>keys</th>
+            <th>what they do</th>
+          </tr>
+        </thead>
+        <tbody>
+          {listBindings().map((binding) => (
+            <tr key={`${binding.keys} ${binding.does}`}>
+              <td className="h-6 w-28 border-b border-hair font-mono text-small">{binding.keys}</td>
+              <td className="border-b border-hair">{binding.does}</td>
+            </tr>
+          ))}
+        </tbody>
+      </table>
+      <p className="my-3 text-small text-ink-2">
+        Keys without Ctrl act while the focus is in the page and outside fields. Settings turns them off.
+      </p>
+      <Button autoFocus onClick={onClose}>
+        Close
+      </Button>
+    </Dialog>
+  )
+}
