@@ -1,0 +1,268 @@
+import { type ErrorCode, type FieldError, OgeeError } from '../errors.ts'
+import { limits } from '../limits.ts'
+import { codeOfWordText } from './coding.ts'
+import { type ConverterRange, idealV, nearestCode } from './converter.ts'
+import { type Pooled, pooledReadings } from './readings.ts'
+import type { Design, MeasuredPoint } from './types.ts'
+
+/** Points as the fit reads them: sorted by code, then y, then u. Parallel arrays, volts. */
+export type PointSet = {
+  n: number
+  codes: number[]
+  x: number[]
+  y: number[]
+  /** e = y - x and z = x - x0. */
+  e: number[]
+  z: number[]
+  /** Standard uncertainties of y when every point has one from one source, else null. */
+  u: number[] | null
+  /** Degrees of freedom of u: Infinity when stated. */
+  uDof: number
+  source: 'stated' | 'readings' | 'none'
+  readings: (readonly number[] | null)[]
+  /** Distinct codes. */
+  distinct: number
+  notes: string[]
+}
+
+type Taken = {
+  code: number
+  y: number
+  u: number
+  readings: readonly number[] | null
+  temperatureC: number | undefined
+}
+
+type Refusal = FieldError & { code: ErrorCode }
+
+/** What the plan of measurement says about points. */
+export type PointRules = { plausiblePercent: number; resolutionV: number; minCodes: number }
+
+export function pointRules(measurement: Design['measurement'], minCodes = 2): PointRules {
+  return {
+    plausiblePercent: measurement.plausiblePercent ?? 5,
+    resolutionV: measurement.resolutionV ?? 0,
+    minCodes,
+  }
+}
+
+/**
+ * Checks points, settles their codes and uncertainties and sorts them. Every bad point is named at once.
+ * @throws code-out-of-range, outside-range, code-target-disagree, not-finite, uncertainty-not-positive,
+ *   implausible-point, too-few-codes, point-incomplete; `errors[].path` is `/points/<index as given>/<field>`
+ * Source: solver.md section 2.
+ */
+export function takePoints(
+  points: readonly MeasuredPoint[],
+  range: ConverterRange,
+  rules: PointRules,
+): PointSet {
+  if (points.length > limits.pointsMax) {
+    throw new OgeeError('too-many-points', `${points.length} points: at most ${limits.pointsMax} are taken.`)
+  }
+  const refused: Refusal[] = []
+  const taken: Taken[] = []
+  for (let i = 0; i < points.length; i++) {
+    const point = takePoint(points[i]!, i, range, rules, refused)
+    if (point !== null) taken.push(point)
+  }
+  if (refused.length > 0) {
+    const first = refused[0]!
+    const more = refused.length > 1 ? ` ${refused.length - 1} more are listed.` : ''
+    throw new OgeeError(first.code, `${first.message}${more}`, {
+      errors: refused.map(({ path, message }) => ({ path, message })),
+    })
+  }
+  taken.sort(byCodeThenValue)
+  return assemble(taken, range, rules)
+}
+
+function byCodeThenValue(a: Taken, b: Taken): number {
+  return a.code - b.code || a.y - b.y || a.u - b.u || (a.readings?.length ?? 0) - (b.readings?.length ?? 0)
+}
+
+function takePoint(
+  point: MeasuredPoint,
+  i: number,
+  range: ConverterRange,
+  rules: PointRules,
+  refused: Refusal[],
+): Taken | null {
+  const refuse = (code: ErrorCode, field: string, message: string): null => {
+    refused.push({ code, path: `/points/${i}/${field}`, message })
+    return null
+  }
+  const code = codeOf(point, range, refuse)
+  if (code === null) return null
+  const { readings, uncertainty } = point
+  const field = point.measured === undefined ? 'readings' : 'measured'
+  if (readings !== undefined && readings.some((value) => !Number.isFinite(value))) {
+    return refuse('not-finite', 'readings', `Point ${i + 1}: a reading is not a finite number.`)
+  }
+  const y = point.measured ?? (readings?.length ? mean(readings) : undefined)
+  if (y === undefined) {
+    return refuse(
+      'point-incomplete',
+      'measured',
+      `Point ${i + 1} has no measured value. Give measured or readings.`,
+    )
+  }
+  if (!Number.isFinite(y)) {
+    return refuse('not-finite', field, `Point ${i + 1}: the measured value is not a finite number.`)
+  }
+  if (uncertainty !== undefined && !(uncertainty > 0 && Number.isFinite(uncertainty))) {
+    const code = Number.isFinite(uncertainty) ? 'uncertainty-not-positive' : 'not-finite'
+    return refuse(
+      code,
+      'uncertainty',
+      `Point ${i + 1}: the standard uncertainty is ${uncertainty} V; it must be over 0 V. Leave it out when it is not known.`,
+    )
+  }
+  const away = Math.abs(y - idealV(range, code))
+  if (away > (rules.plausiblePercent / 100) * range.fsrV) {
+    return refuse(
+      'implausible-point',
+      field,
+      `${y} V at code ${code} is ${Number(away.toPrecision(4))} V from ideal; ${rules.plausiblePercent} % of FSR is allowed. Check the unit, the range and the wires.`,
+    )
+  }
+  return { code, y, u: uncertainty ?? 0, readings: readings ?? null, temperatureC: point.temperatureC }
+}
+
+type Refuse = (code: ErrorCode, field: string, message: string) => null
+
+/** Of code, word and target several may be given; they must agree. */
+function codeOf(point: MeasuredPoint, range: ConverterRange, refuse: Refuse): number | null {
+  const { code, word, target } = point
+  let result: number | null = null
+  if (code !== undefined) {
+    if (!Number.isInteger(code) || code < 0 || code >= range.count) {
+      return refuse(
+        'code-out-of-range',
+        'code',
+        `Code ${code} does not exist: the highest is ${range.count - 1}.`,
+      )
+    }
+    result = code
+  }
+  if (word !== undefined) {
+    const fromWord = codeOfWordText(word, range.bits, range.coding)
+    if (fromWord === null) {
+      return refuse(
+        'code-out-of-range',
+        'word',
+        `Word ${word} is not a hexadecimal word of ${range.bits} bits.`,
+      )
+    }
+    if (result !== null && fromWord !== result) {
+      return refuse(
+        'code-target-disagree',
+        'word',
+        `Word ${word} is code ${fromWord}, but code says ${result}.`,
+      )
+    }
+    result = fromWord
+  }
+  if (target !== undefined) {
+    if (!Number.isFinite(target)) return refuse('not-finite', 'target', 'The target is not a finite voltage.')
+    const fromTarget = nearestCode(range, target)
+    if (fromTarget === null) {
+      const ends = `${range.lowV} V to ${range.fullScaleV} V`
+      return refuse('outside-range', 'target', `Target ${target} V lies outside the range, ${ends}.`)
+    }
+    if (result !== null && fromTarget !== result) {
+      return refuse(
+        'code-target-disagree',
+        'target',
+        `Target ${target} V is code ${fromTarget}, not ${result}.`,
+      )
+    }
+    result = fromTarget
+  }
+  if (result === null) return refuse('point-incomplete', 'code', 'A point needs code, word or target.')
+  return result
+}
+
+/** The mean about the first reading, so that equal readings have exactly that mean. */
+export function mean(values: readonly number[]): number {
+  const first = values[0]!
+  let sum = 0
+  for (let i = 1; i < values.length; i++) sum += values[i]! - first
+  return first + sum / values.length
+}
+
+function assemble(taken: readonly Taken[], range: ConverterRange, rules: PointRules): PointSet {
+  const n = taken.length
+  const set: PointSet = {
+    n,
+    codes: new Array(n),
+    x: new Array(n),
+    y: new Array(n),
+    e: new Array(n),
+    z: new Array(n),
+    u: null,
+    uDof: Number.POSITIVE_INFINITY,
+    source: 'none',
+    readings: new Array(n),
+    distinct: 0,
+    notes: [],
+  }
+  let last = -1
+  for (let i = 0; i < n; i++) {
+    const { code, y, readings } = taken[i]!
+    const x = idealV(range, code)
+    set.codes[i] = code
+    set.x[i] = x
+    set.y[i] = y
+    set.e[i] = y - x
+    set.z[i] = x - range.x0
+    set.readings[i] = readings
+    if (code !== last) set.distinct += 1
+    last = code
+  }
+  if (set.distinct < rules.minCodes) {
+    const have = n === 0 ? 'No point' : set.distinct === 1 && n > 1 ? `${n} points at one code` : 'One point'
+    throw new OgeeError(
+      'too-few-codes',
+      `${have}: two different codes are the least that gives a line. Measure another code.`,
+      { errors: [{ path: '/points', message: `${have}; two different codes are needed.` }] },
+    )
+  }
+  settleUncertainty(set, taken, rules.resolutionV)
+  noteTemperatures(set, taken)
+  return set
+}
+
+/** One source of u for all points: stated, or readings. A mixture gives none and says so. */
+function settleUncertainty(set: PointSet, taken: readonly Taken[], resolutionV: number): void {
+  let stated = 0
+  for (const point of taken) if (point.u > 0) stated += 1
+  if (stated === set.n) {
+    set.u = taken.map((point) => point.u)
+    set.source = 'stated'
+    return
+  }
+  const pooled: Pooled = pooledReadings(set.readings)
+  if (stated > 0) {
+    set.notes.push('mixed-uncertainty')
+  } else if (pooled.dof > 0) {
+    if (!pooled.complete) set.notes.push('mixed-uncertainty')
+    else if (pooled.variance > 0 || resolutionV > 0) {
+      const q2 = (resolutionV * resolutionV) / 12
+      set.u = set.readings.map((list) => Math.sqrt(pooled.variance / list!.length + q2))
+      set.uDof = pooled.dof
+      set.source = 'readings'
+    }
+  }
+}
+
+function noteTemperatures(set: PointSet, taken: readonly Taken[]): void {
+  let low = Number.POSITIVE_INFINITY
+  let high = Number.NEGATIVE_INFINITY
+  for (const { temperatureC } of taken) {
+    if (temperatureC === undefined) continue
+    if (temperatureC < low) low = temperatureC
+    if (temperatureC > high) high = temperatureC
+  }
+  if (high - low > 1) set.notes.push('temperature-spread')
+}
