@@ -1,4 +1,4 @@
-import { type ConverterRange, converterRange, limitInVolts } from './converter.ts'
+import { type ConverterRange, converterRange, limitInVolts, rangeOf } from './converter.ts'
 import type { PlannedNoise } from './line.ts'
 import { type PointRules, pointRules } from './points.ts'
 import type { Design, InstrumentLimits, Method } from './types.ts'
@@ -14,6 +14,8 @@ export type Channel = {
   instrument: InstrumentLimits | null
   /** Target of the residual, V. */
   targetV: number
+  /** Other ranges that keep this one's codes. */
+  sharedWith: readonly string[]
 }
 
 /**
@@ -34,5 +36,6 @@ export function prepareChannel(design: Design, rangeId?: string): Channel {
     method: measurement.method ?? 'best-fit',
     instrument: measurement.instrument ?? null,
     targetV: limitInVolts(design.target.residual, range),
+    sharedWith: rangeOf(design, rangeId).sharedWith ?? [],
   }
 }

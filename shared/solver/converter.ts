@@ -97,7 +97,7 @@ function derive(range: Range, bits: number, coding: Coding, inlLsb: number): Con
     x0,
     zLow,
     zFull,
-    zMax: low > full ? low : full,
+    zMax: Math.max(low, full),
     zGain,
     inlLsb,
   }

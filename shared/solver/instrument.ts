@@ -46,7 +46,7 @@ export function errorUncertainty(
   z: number,
 ): Combined {
   const fit2 = variance.offset + z * (2 * variance.cov + z * variance.gain)
-  const safe = fit2 > 0 ? fit2 : 0
+  const safe = Math.max(fit2, 0)
   const common = instr.gain * x * (instr.gain * x) + instr.offset * instr.offset
   return { u: Math.sqrt(safe + common), fit: Math.sqrt(safe) }
 }

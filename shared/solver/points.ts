@@ -16,6 +16,8 @@ export type PointSet = {
   z: number[]
   /** Standard uncertainties of y when every point has one from one source, else null. */
   u: number[] | null
+  /** Stated u of each point, 0 where none is. */
+  stated: number[]
   /** Degrees of freedom of u: Infinity when stated. */
   uDof: number
   source: 'stated' | 'readings' | 'none'
@@ -96,7 +98,7 @@ function takePoint(
   if (code === null) return null
   const { readings, uncertainty } = point
   const field = point.measured === undefined ? 'readings' : 'measured'
-  if (readings !== undefined && readings.some((value) => !Number.isFinite(value))) {
+  if (readings?.some((value) => !Number.isFinite(value))) {
     return refuse('not-finite', 'readings', `Point ${i + 1}: a reading is not a finite number.`)
   }
   const y = point.measured ?? (readings?.length ? mean(readings) : undefined)
@@ -201,6 +203,7 @@ function assemble(taken: readonly Taken[], range: ConverterRange, rules: PointRu
     e: new Array(n),
     z: new Array(n),
     u: null,
+    stated: new Array(n),
     uDof: Number.POSITIVE_INFINITY,
     source: 'none',
     readings: new Array(n),
@@ -217,20 +220,24 @@ function assemble(taken: readonly Taken[], range: ConverterRange, rules: PointRu
     set.e[i] = y - x
     set.z[i] = x - range.x0
     set.readings[i] = readings
+    set.stated[i] = taken[i]!.u
     if (code !== last) set.distinct += 1
     last = code
   }
-  if (set.distinct < rules.minCodes) {
-    const have = n === 0 ? 'No point' : set.distinct === 1 && n > 1 ? `${n} points at one code` : 'One point'
-    throw new OgeeError(
-      'too-few-codes',
-      `${have}: two different codes are the least that gives a line. Measure another code.`,
-      { errors: [{ path: '/points', message: `${have}; two different codes are needed.` }] },
-    )
-  }
+  if (set.distinct < rules.minCodes) tooFew(set, rules.minCodes)
   settleUncertainty(set, taken, rules.resolutionV)
   noteTemperatures(set, taken)
   return set
+}
+
+function tooFew({ n, distinct }: PointSet, minCodes: number): never {
+  const have = n === 0 ? 'No point' : distinct === 1 && n > 1 ? `${n} points at one code` : 'One point'
+  const need =
+    minCodes === 1
+      ? 'one is the least'
+      : 'two different codes are the least that gives a line. Measure another code'
+  const message = `${have}: ${need}.`
+  throw new OgeeError('too-few-codes', message, { errors: [{ path: '/points', message }] })
 }
 
 /** One source of u for all points: stated, or readings. A mixture gives none and says so. */
@@ -238,7 +245,7 @@ function settleUncertainty(set: PointSet, taken: readonly Taken[], resolutionV: 
   let stated = 0
   for (const point of taken) if (point.u > 0) stated += 1
   if (stated === set.n) {
-    set.u = taken.map((point) => point.u)
+    set.u = set.stated
     set.source = 'stated'
     return
   }
