@@ -1,0 +1,97 @@
+import { readStored, writeStored } from '../../lib/storage.ts'
+import { hasReadings, type Row } from './grid-state.ts'
+
+/** Where a measurement stands: being typed, saved here and not yet sent, or recorded. */
+export type DraftStatus =
+  | { is: 'open' }
+  | { is: 'waiting'; key: string; savedAt: string }
+  | { is: 'recorded'; id: string; number: number; recordedAt: string; accepted: boolean }
+
+/** Everything typed for one measurement of one unit. The typed text, not the numbers. */
+export type Draft = {
+  rows: readonly Row[]
+  hasU: boolean
+  temperature: string
+  note: string
+  reason: string
+  /** One idempotency key a filled form: kept for the same body, made anew for another. */
+  attempt: { body: string; key: string } | null
+  status: DraftStatus
+}
+
+export type DraftPlace = {
+  design: string
+  revision: number
+  range: string
+  channel: string
+  unit: string
+  follows: string | null
+}
+
+const prefix = 'bench.draft.'
+
+export const draftName = (place: DraftPlace): string =>
+  prefix +
+  [place.design, place.revision, place.range, place.channel, place.unit, place.follows ?? '']
+    .map((part) => encodeURIComponent(part))
+    .join('/')
+
+export const newDraft = (rows: readonly Row[]): Draft => ({
+  rows,
+  hasU: false,
+  temperature: '',
+  note: '',
+  reason: '',
+  attempt: null,
+  status: { is: 'open' },
+})
+
+export const readDraft = (name: string): Draft | null => draftFrom(readStored(name))
+
+export const writeDraft = (name: string, draft: Draft | null): boolean => writeStored(name, draft)
+
+export const isWorthKeeping = (draft: Draft): boolean =>
+  hasReadings(draft.rows) || draft.note !== '' || draft.reason !== '' || draft.status.is !== 'open'
+
+/** What was stored may be of an older version or cut short: anything else than a draft counts as none. */
+function draftFrom(stored: unknown): Draft | null {
+  if (!isObject(stored) || !Array.isArray(stored.rows) || stored.rows.length === 0) return null
+  const rows = stored.rows.map((row: unknown) => ({
+    code: textOf(row, 'code'),
+    measured: textOf(row, 'measured'),
+    u: textOf(row, 'u'),
+  }))
+  const attempt = isObject(stored.attempt) ? stored.attempt : null
+  return {
+    rows,
+    hasU: stored.hasU === true,
+    temperature: textOf(stored, 'temperature'),
+    note: textOf(stored, 'note'),
+    reason: textOf(stored, 'reason'),
+    attempt: attempt ? { body: textOf(attempt, 'body'), key: textOf(attempt, 'key') } : null,
+    status: statusFrom(stored.status),
+  }
+}
+
+function statusFrom(stored: unknown): DraftStatus {
+  if (!isObject(stored)) return { is: 'open' }
+  if (stored.is === 'waiting') {
+    return { is: 'waiting', key: textOf(stored, 'key'), savedAt: textOf(stored, 'savedAt') }
+  }
+  if (stored.is !== 'recorded' || typeof stored.number !== 'number') return { is: 'open' }
+  return {
+    is: 'recorded',
+    id: textOf(stored, 'id'),
+    number: stored.number,
+    recordedAt: textOf(stored, 'recordedAt'),
+    accepted: stored.accepted === true,
+  }
+}
+
+type Stored = { readonly [name: string]: unknown }
+const isObject = (value: unknown): value is Stored => typeof value === 'object' && value !== null
+
+function textOf(from: unknown, name: string): string {
+  const value = isObject(from) ? from[name] : undefined
+  return typeof value === 'string' ? value : ''
+}
