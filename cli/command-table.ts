@@ -1,0 +1,71 @@
+import type { Entry } from './command.ts'
+
+/** Every subcommand, in the order of the help text. Help, suggestions and completion are made from this table. */
+export const commandTable: readonly Entry[] = [
+  {
+    name: 'codes',
+    summary: 'Trim codes from measured points, offline',
+    load: async () => (await import('./commands/codes.ts')).codesCommand,
+  },
+  {
+    name: 'fit',
+    summary: 'Offset and gain error of measured points, offline',
+    load: async () => (await import('./commands/fit.ts')).fitCommand,
+  },
+  {
+    name: 'verify',
+    summary: 'As-left points against the tolerance, offline',
+    load: async () => (await import('./commands/verify.ts')).verifyCommand,
+  },
+  {
+    name: 'simulate',
+    summary: 'Points of simulated units, repeatable from a seed',
+    load: async () => (await import('./commands/simulate.ts')).simulateCommand,
+  },
+  {
+    name: 'trim',
+    summary: 'Record a measurement and get its trim codes',
+    load: async () => (await import('./commands/trim.ts')).trimCommand,
+  },
+  {
+    name: 'unit',
+    summary: 'Current codes of a unit and the record they come from',
+    load: async () => (await import('./commands/unit.ts')).unitCommand,
+  },
+  {
+    name: 'history',
+    summary: 'Records, newest first',
+    load: async () => (await import('./commands/history.ts')).historyCommand,
+  },
+  {
+    name: 'design',
+    summary: 'Designs that the server keeps',
+    verbs: [
+      {
+        name: 'list',
+        summary: 'Designs by key',
+        load: async () => (await import('./commands/design/list.ts')).designListCommand,
+      },
+      {
+        name: 'show',
+        summary: 'One design and its revisions',
+        load: async () => (await import('./commands/design/show.ts')).designShowCommand,
+      },
+      {
+        name: 'pull',
+        summary: 'The exact document of a revision',
+        load: async () => (await import('./commands/design/pull.ts')).designPullCommand,
+      },
+    ],
+  },
+  {
+    name: 'whoami',
+    summary: 'Who the token stands for, and which server answers',
+    load: async () => (await import('./commands/whoami.ts')).whoamiCommand,
+  },
+  {
+    name: 'completion',
+    summary: 'Completion script for a shell',
+    load: async () => (await import('./commands/completion.ts')).completionCommand,
+  },
+]

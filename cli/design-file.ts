@@ -1,0 +1,49 @@
+import * as z from 'zod'
+import { type Design, designDocument } from '../shared/contract/design.ts'
+import { OgeeError } from '../shared/errors.ts'
+import { limits } from '../shared/limits.ts'
+import { fieldErrors } from './field-errors.ts'
+import { parseJson, readText } from './files.ts'
+import type { Io } from './io.ts'
+
+// One document is read per run: compiling a parser for it would take longer than reading it.
+z.config({ jitless: true })
+
+/** Reads and checks a design document; every bad field is named by its JSON pointer. */
+export async function readDesign(io: Io, path: string): Promise<Design> {
+  const text = await readText(
+    io,
+    path,
+    limits.bodyMaxBytes,
+    () => new OgeeError('invalid-document', `${path} is over 1 MiB. A design document is smaller.`),
+  )
+  return designFrom(parseJson(text.replace(/^\uFEFF/, ''), path), path)
+}
+
+/** The design in a parsed document that came from `name`. */
+export function designFrom(parsed: unknown, name: string): Design {
+  refuseOtherFormats(parsed, name)
+  const checked = designDocument.safeParse(parsed)
+  if (checked.success) return checked.data
+  const errors = checked.error.issues.flatMap(fieldErrors)
+  const first = errors[0]
+  throw new OgeeError(
+    'invalid-document',
+    `${name} is not a design document at ${first?.path}: ${first?.message}`,
+    { errors },
+  )
+}
+
+function refuseOtherFormats(parsed: unknown, name: string): void {
+  const format =
+    typeof parsed === 'object' && parsed !== null && 'format' in parsed ? parsed.format : undefined
+  if (typeof format !== 'string' || format === 'ogee.design/1') return
+  const isNewer = /^ogee\.design\/\d+$/.test(format)
+  throw new OgeeError(
+    'unknown-format',
+    isNewer
+      ? `${name} has format ${format}; this version of ogee reads ogee.design/1. Take a newer ogee.`
+      : `${name} has format ${format}; a design document has ogee.design/1.`,
+    { facts: { format, reads: 'ogee.design/1' } },
+  )
+}

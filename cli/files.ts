@@ -1,0 +1,93 @@
+import { promises as fs } from 'node:fs'
+import { OgeeError } from '../shared/errors.ts'
+import type { Io } from './io.ts'
+
+/** Reads and writes whole files with the exit codes of the contract: 66 missing, 74 unreadable, 73 not creatable. */
+
+const codeOf = (error: unknown) =>
+  error instanceof Error && 'code' in error ? String(error.code) : 'unknown'
+
+export type FileText = { text: string; mode: number }
+
+/** The text of a file, or of standard input for `-`. At most `limit` bytes; more is `tooLarge`. */
+export async function readText(
+  io: Pick<Io, 'stdin' | 'stdinIsTerminal' | 'say'>,
+  path: string,
+  limit: number,
+  tooLarge: () => OgeeError,
+): Promise<string> {
+  if (path !== '-') return (await readFileText(path, limit, tooLarge)).text
+  if (io.stdinIsTerminal) io.say('ogee: reading standard input; end it with Ctrl-D.')
+  const pieces: Uint8Array[] = []
+  let size = 0
+  for await (const piece of io.stdin) {
+    size += piece.length
+    if (size > limit) throw tooLarge()
+    pieces.push(piece)
+  }
+  return decode(Buffer.concat(pieces), 'Standard input')
+}
+
+/** A file's text and mode, both of the same open file. */
+export async function readFileText(
+  path: string,
+  limit: number,
+  tooLarge: () => OgeeError,
+): Promise<FileText> {
+  const file = await fs.open(path, 'r').catch((error: unknown) => {
+    throw unreadable(path, error)
+  })
+  try {
+    const { size, mode } = await file.stat()
+    if (size > limit) throw tooLarge()
+    const bytes = await file.readFile()
+    if (bytes.length > limit) throw tooLarge()
+    return { text: decode(bytes, path), mode }
+  } catch (error) {
+    throw error instanceof OgeeError ? error : unreadable(path, error)
+  } finally {
+    await file.close()
+  }
+}
+
+function unreadable(path: string, error: unknown): OgeeError {
+  const code = codeOf(error)
+  return code === 'ENOENT' || code === 'ENOTDIR'
+    ? new OgeeError('input-missing', `There is no file ${path}.`, { facts: { file: path } })
+    : new OgeeError('read-failed', `${path} cannot be read: ${code}.`, { facts: { file: path } })
+}
+
+function decode(bytes: Uint8Array, name: string): string {
+  try {
+    return new TextDecoder('utf-8', { fatal: true }).decode(bytes)
+  } catch (cause) {
+    throw new OgeeError('invalid-document', `${name} is not UTF-8 text. Save it as UTF-8.`, { cause })
+  }
+}
+
+export async function createFile(path: string, bytes: Uint8Array): Promise<void> {
+  await fs.writeFile(path, bytes).catch((error: unknown) => {
+    const code = codeOf(error)
+    throw code === 'ENOSPC' || code === 'EIO'
+      ? new OgeeError('read-failed', `${path} cannot be written: ${code}.`)
+      : new OgeeError('cannot-create', `${path} cannot be created: ${code}.`)
+  })
+}
+
+/** Parses JSON and names the place where it stops being JSON. */
+export function parseJson(text: string, name: string): unknown {
+  try {
+    return JSON.parse(text)
+  } catch (cause) {
+    const place = placeOf(text, cause)
+    throw new OgeeError('malformed-json', `${name} is not JSON${place ? ` at ${place}` : ''}.`, { cause })
+  }
+}
+
+function placeOf(text: string, error: unknown): string | undefined {
+  const message = error instanceof Error ? error.message : ''
+  const offset = /position (\d+)/.exec(message)?.[1]
+  if (offset === undefined) return /end of JSON/i.test(message) ? 'its end: something is cut off' : undefined
+  const before = text.slice(0, Number(offset)).split('\n')
+  return `line ${before.length}, column ${(before.at(-1) ?? '').length + 1}`
+}

@@ -1,0 +1,26 @@
+import { version } from './version.ts'
+
+/**
+ * The only place that ends the process. Everything else is loaded when it is needed: a question for the version
+ * alone must not pay for the solver.
+ */
+async function main(argv: readonly string[]): Promise<void> {
+  if (argv.length === 1 && (argv[0] === '--version' || argv[0] === '-V')) {
+    process.stdout.write(`${version}\n`)
+    return
+  }
+  const { runCommandLine } = await import('./run.ts')
+  const { processIo, sayNow } = await import('./io.ts')
+  const { interruption } = await import('./trouble.ts')
+  const abort = new AbortController()
+  const io = processIo(abort.signal)
+  process.on('SIGINT', () => {
+    abort.abort()
+    sayNow(interruption(argv, io))
+    // At once: whoever pressed Ctrl-C does not wait for a slow reader, and an interrupted result is no result.
+    process.exit(130)
+  })
+  process.exitCode = await runCommandLine(argv, io)
+}
+
+await main(process.argv.slice(2))
