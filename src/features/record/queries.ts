@@ -1,0 +1,75 @@
+import {
+  keepPreviousData,
+  type QueryClient,
+  queryOptions,
+  useMutation,
+  useQueryClient,
+} from '@tanstack/react-query'
+import { useRef } from 'react'
+import type { Record as TrimRecord } from '../../../shared/contract/record.ts'
+import { getTrim, listTrims, postTrim } from '../../../shared/contract/trims.ts'
+import { isOgeeError } from '../../../shared/errors.ts'
+import { api } from '../../lib/api.ts'
+import type { Filters } from './filters.ts'
+
+export const recordsOptions = (filters: Filters, after: string | undefined) =>
+  queryOptions({
+    queryKey: ['records', 'list', filters, after ?? null],
+    queryFn: ({ signal }) => api(listTrims, { query: { ...filters, after } }, signal),
+    placeholderData: keepPreviousData,
+    staleTime: 5_000,
+  })
+
+/** A record itself never changes; its notices and its place in the ledger may still come. */
+export const recordOptions = (id: string) =>
+  queryOptions({
+    queryKey: ['records', 'one', id],
+    queryFn: ({ signal }) => api(getTrim, { params: { id } }, signal),
+    // The place in the ledger follows within a second or so: look again until it is there.
+    refetchInterval: ({ state }) => (state.data && state.data.ledger === null ? 2_000 : false),
+  })
+
+const chainMost = 20
+
+/** The records that this one follows, oldest first. */
+export const chainOptions = (client: QueryClient, record: TrimRecord) =>
+  queryOptions({
+    queryKey: ['records', 'chain', record.id],
+    queryFn: async () => {
+      const chain: TrimRecord[] = []
+      let id = record.follows
+      while (id !== null && chain.length < chainMost) {
+        const earlier: TrimRecord = await client.fetchQuery({ ...recordOptions(id), staleTime: 60_000 })
+        chain.unshift(earlier)
+        id = earlier.follows
+      }
+      return chain
+    },
+    staleTime: 60_000,
+  })
+
+/**
+ * An override or a withdrawal of a record. The key stays the same while the same act is tried again, so that a lost
+ * answer doubles nothing; another reason is another act.
+ */
+export function useAmend(record: TrimRecord, kind: 'override' | 'withdraw') {
+  const client = useQueryClient()
+  const attempt = useRef<{ reason: string; key: string } | null>(null)
+  return useMutation({
+    mutationFn: (reason: string) => {
+      if (attempt.current?.reason !== reason) attempt.current = { reason, key: crypto.randomUUID() }
+      const { design, revision, unit, channel, range } = record
+      return api(postTrim, {
+        body: { kind, design, revision, unit, channel, range, follows: record.id, reason },
+        idempotencyKey: attempt.current.key,
+      })
+    },
+    onSuccess: () => client.invalidateQueries({ queryKey: ['records'] }),
+    onError: (error) => {
+      // Refused for good: a further try is a new act.
+      if (!isOgeeError(error, 'server-unreachable') && !isOgeeError(error, 'sign-in-required')) {
+        attempt.current = null
+      }
+    },
+  })
+}
