@@ -11,7 +11,7 @@ import { WordMark } from '../../ui/word-mark.tsx'
 
 /** The secret comes behind the # (never sent to a server), and leaves the address bar and the history at once. */
 function takeSecret(): string {
-  const secret = decodeURIComponent(window.location.hash.slice(1))
+  const secret = window.location.hash.slice(1)
   if (secret !== '') {
     window.history.replaceState(window.history.state, '', window.location.pathname + window.location.search)
   }
