@@ -1,0 +1,115 @@
+import type { Trimmer } from '../../../shared/solver/adjuster.ts'
+import type { Applied, TrimResult, Which } from '../../../shared/solver/types.ts'
+import { Caution } from '../../ui/caution.tsx'
+import { CopyButton } from '../../ui/copy-button.tsx'
+import { Verdict } from '../../ui/verdict.tsx'
+import { VerdictShape } from '../../ui/verdict-shape.tsx'
+import { ReachBar } from './reach-bar.tsx'
+
+export const copyKeys = { gain: 'G', offset: 'O' } as const
+const tones = { gain: 'text-copper', offset: 'text-tide' } as const
+
+type CodesPanelProps = {
+  trim: TrimResult
+  trimmers: { gain: Trimmer | null; offset: Trimmer | null }
+  applied: Applied
+  /** What the applied codes are: "pass 1", or null for neutral. */
+  appliedFrom: string | null
+  isStale: boolean
+}
+
+/** The caution stands before the codes, always: copying is the step before loading. */
+export function LoadCaution() {
+  return (
+    <div className="mb-2">
+      <Caution>Loading codes moves a live output. Make safe what it drives first.</Caution>
+    </div>
+  )
+}
+
+/** The largest things on the page: the codes, decimal and hex, with the share of the reach that they use. */
+export function CodesPanel(props: CodesPanelProps) {
+  const present = (['gain', 'offset'] as const).filter((which) => props.trimmers[which] !== null)
+  const { trim, isStale } = props
+  return (
+    <>
+      {trim.codes ? <LoadCaution /> : null}
+      <div className={`grid grid-cols-2 gap-x-6 gap-y-4 wide:grid-cols-1 ${isStale ? 'opacity-60' : ''}`}>
+        {present.map((which) => (
+          <Code key={which} which={which} {...props} />
+        ))}
+      </div>
+      {trim.verdict === 'suspect' && (
+        <p className="mt-3 text-small text-ink-2">
+          Marked, not hidden. They can be recorded only with a reason.
+        </p>
+      )}
+    </>
+  )
+}
+
+function Code({ which, trim, trimmers, applied, appliedFrom, isStale }: CodesPanelProps & { which: Which }) {
+  const code = trim.codes?.[which]
+  const word = trim.words?.[which]
+  const trimmer = trimmers[which]
+  const before = applied === 'neutral' ? undefined : applied[which]
+  const isSuspect = trim.reasons.includes('suspect')
+  return (
+    <div className="min-w-0">
+      <div className="flex items-baseline justify-between gap-2 text-small">
+        <h3 className={`font-medium ${tones[which]}`}>{which}</h3>
+        {code !== undefined && isSuspect ? (
+          <Verdict verdict="suspect" />
+        ) : before !== undefined && appliedFrom ? (
+          <span className="text-ink-2">
+            {appliedFrom}: {before}
+          </span>
+        ) : null}
+      </div>
+      {code === undefined || word === undefined ? (
+        <NoCode which={which} trim={trim} />
+      ) : (
+        <>
+          <output
+            aria-label={`${which} code`}
+            className={`block text-code-narrow font-medium narrow:text-code ${isSuspect || isStale ? 'text-ink-2' : ''}`}
+          >
+            {code}
+          </output>
+          <div className="flex flex-wrap items-baseline gap-x-3 print:hidden">
+            <span className="font-mono text-head">{word}</span>
+            <CopyButton text={String(code)} what={`${which} code ${code}`} hint={copyKeys[which]} />
+            <CopyButton text={word} what={`${which} code as ${word}`}>
+              copy hex
+            </CopyButton>
+          </div>
+          <span className="hidden font-mono print:inline">{word}</span>
+          {trimmer && trim.nodeV?.[which] !== undefined && (
+            <ReachBar trimmer={trimmer} nodeV={trim.nodeV[which]} used={trim.reachUsed[which] ?? null} />
+          )}
+        </>
+      )}
+    </div>
+  )
+}
+
+function NoCode({ which, trim }: { which: Which; trim: TrimResult }) {
+  if (trim.shortfall?.[which] === undefined) {
+    const other = which === 'gain' ? 'offset' : 'gain'
+    return <p className="text-title text-ink-2">withheld until {other} is in reach</p>
+  }
+  return (
+    <>
+      <p className="flex items-center gap-2 text-title font-semibold text-bad">
+        <VerdictShape shape="pressed-triangle" />
+        out of reach
+      </p>
+      <p className="mt-1 text-body">No code is given. A clipped code is not a trim.</p>
+    </>
+  )
+}
+
+/** The three steps before there are codes, each with what is missing. */
+export function CodesMissing({ children }: { children: string }) {
+  return <p className="text-body text-ink-2">{children}</p>
+}

@@ -1,0 +1,58 @@
+import type { ConverterRange } from '../../../shared/solver/converter.ts'
+import { idealV } from '../../../shared/solver/converter.ts'
+import { codeOf, measuredOf } from './build-views.ts'
+import type { Row } from './grid-state.ts'
+import type { CellProblem } from './problems.ts'
+import type { ReadRow } from './read-cells.ts'
+
+export type RereadUnit = 'mV' | 'µV'
+const factors = { mV: 1e-3, µV: 1e-6 } as const
+const number = /^\s*[-+\u2212]?[\d.]+(?:[eE][-+]?\d+)?\s*V?\s*$/
+
+/**
+ * A unit under which every far-off bare reading would be plausible: millivolts typed as volts. Null when there is
+ * none, or when some far-off reading says its own unit.
+ */
+export function rereadUnit(
+  far: readonly CellProblem[],
+  rows: readonly Row[],
+  read: readonly ReadRow[],
+  range: ConverterRange,
+  plausiblePercent: number,
+): RereadUnit | null {
+  if (far.length === 0) return null
+  const allowed = (plausiblePercent / 100) * range.fsrV
+  for (const unit of ['mV', 'µV'] as const) {
+    const fits = far.every(({ row }) => {
+      const one = read[row]
+      const code = one ? codeOf(one, range) : null
+      const y = one ? measuredOf(one) : null
+      if (code === null || y === null || !partsOf(rows[row]).every((part) => number.test(part))) return false
+      return Math.abs(y * factors[unit] - idealV(range, code)) <= allowed
+    })
+    if (fits) return unit
+  }
+  return null
+}
+
+const partsOf = (row: Row | undefined): string[] =>
+  (row?.measured ?? '').split(';').filter((part) => part.trim() !== '')
+
+/** The far-off cells with the unit written out; the digits stay as typed. */
+export function rereadRows(
+  rows: readonly Row[],
+  far: readonly CellProblem[],
+  unit: RereadUnit,
+): readonly Row[] {
+  const places = new Set(far.map((problem) => problem.row))
+  return rows.map((row, index) =>
+    places.has(index)
+      ? {
+          ...row,
+          measured: partsOf(row)
+            .map((part) => `${part.replace(/\s*V?\s*$/, '').trim()} ${unit}`)
+            .join('; '),
+        }
+      : row,
+  )
+}
