@@ -28,6 +28,24 @@ export async function print(rendering: Rendering, { io, format }: Context): Prom
   await io.write(render(rendering, format, wantsColour(io)))
 }
 
+const marks: Readonly<Record<string, { mark: string; colour: number }>> = {
+  ok: { mark: '✓', colour: 32 },
+  pass: { mark: '✓', colour: 32 },
+  'too-coarse': { mark: '△', colour: 33 },
+  'conditional-pass': { mark: '△', colour: 33 },
+  'conditional-fail': { mark: '△', colour: 33 },
+  suspect: { mark: '?', colour: 33 },
+  'out-of-reach': { mark: '✕', colour: 31 },
+  fail: { mark: '✕', colour: 31 },
+}
+
+/** A verdict is shape and word; colour comes on top where it is welcome. */
+export function verdictText(verdict: string, colour: boolean): string {
+  const { mark, colour: number } = marks[verdict] ?? { mark: '·', colour: 39 }
+  const words = `${mark} ${verdict.replaceAll('-', ' ')}`
+  return colour ? `\u001b[${number}m${words}\u001b[39m` : words
+}
+
 export const caution = 'Loading codes moves a live output. Make safe what it drives first.'
 
 /** Shown to people with every set of codes; programs have their own procedures. */

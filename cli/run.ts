@@ -8,7 +8,7 @@ import { formatAskedFor, sayTrouble, toTrouble } from './trouble.ts'
 
 /** Runs one command line and gives its exit code. Never throws: trouble becomes words and a code here. */
 export async function runCommandLine(argv: readonly string[], io: Io): Promise<number> {
-  let format = formatAskedFor(argv, io.stdoutIsTerminal)
+  const asked = formatAskedFor(argv, io.stdoutIsTerminal)
   try {
     const parsed = await parse(commandTable, argv)
     if ('text' in parsed) {
@@ -16,12 +16,12 @@ export async function runCommandLine(argv: readonly string[], io: Io): Promise<n
       return 0
     }
     const { command, args, options } = parsed
-    format = formatOf(command, options.format, io.stdoutIsTerminal)
+    const format = formatOf(command, options.format, io.stdoutIsTerminal)
     const read = command.read({ args, options })
     return await command.run(read, { io, format, tree: commandTable })
   } catch (thrown) {
     const trouble = toTrouble(thrown)
-    sayTrouble(trouble, io, format)
+    sayTrouble(trouble, io, asked)
     return trouble.exit
   }
 }
@@ -59,7 +59,8 @@ function refuseMissing({ command, options }: Chosen): void {
   for (const { flags, required } of command.options) {
     const name = /--([a-z-]+)/.exec(flags)?.[1] ?? flags
     const key = name.replaceAll(/-([a-z])/g, (_, letter: string) => letter.toUpperCase())
-    if (required && options[key] === undefined) throw new OgeeError('usage', `The option '${flags}' is missing.`)
+    if (required && options[key] === undefined)
+      throw new OgeeError('usage', `The option '${flags}' is missing.`)
   }
 }
 

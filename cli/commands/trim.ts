@@ -1,0 +1,79 @@
+import { listLots } from '../../shared/contract/designs.ts'
+import { verdictExit } from '../../shared/contract/exit.ts'
+import { postTrim } from '../../shared/contract/trims.ts'
+import { OgeeError } from '../../shared/errors.ts'
+import type { Client } from '../client.ts'
+import { type Command, type Context, everyFormat, type Given } from '../command.ts'
+import type { ConnectionOptions } from '../config.ts'
+import { dryRun } from '../dry-run.ts'
+import { readMeasurement } from '../measurement.ts'
+import { pointsAbout, pointsOption } from '../measurement-options.ts'
+import { print, sayCaution } from '../output.ts'
+import { celsius } from '../quantities.ts'
+import { type AnyRecord, recordRendering } from '../record-rendering.ts'
+import { defaultKey, requestBody } from '../request.ts'
+import { connect, readConnection, serverAbout, serverOptions, text } from '../server-options.ts'
+import { readUnitOptions, type UnitOptions, unitOptions } from '../unit-options.ts'
+
+type Options = UnitOptions & ConnectionOptions & { points: string }
+
+export const trimCommand: Command<Options> = {
+  about:
+    'The same command again doubles nothing: the answer then carries the notice replayed. To record\n' +
+    `an identical measurement once more give --measured-at or --key.\n${pointsAbout}\n\n${serverAbout}`,
+  options: [...unitOptions, pointsOption, ...serverOptions],
+  formats: everyFormat,
+  examples: [
+    {
+      run: 'ogee trim --design DBS-A --unit 031 --channel 1 --applied neutral --points points.csv',
+      says: 'Records the points of unit 031 and prints the record with its codes.',
+    },
+    {
+      run: 'ogee trim --design DBS-A --unit 031 --channel 1 --applied neutral --points points.csv --dry-run',
+      says: 'The same numbers; nothing is recorded.',
+    },
+  ],
+  read: (given: Given) => ({
+    ...readUnitOptions(given),
+    ...readConnection(given),
+    points: text(given.options.points) ?? '',
+  }),
+  run: trim,
+}
+
+async function trim(options: Options, context: Context): Promise<number> {
+  const measured = await readMeasurement(context.io, options.points, options)
+  const temperatureC = options.temperature === undefined ? undefined : await celsius(options.temperature)
+  const client = await connect(options, context)
+  const design = options.design ?? (await designOfLot(client, options.lot ?? ''))
+  const body = requestBody(options, design, measured, temperatureC)
+  if (options.dryRun) return await finish(await dryRun(client, body), context)
+  const idempotencyKey = options.key ?? measured.key ?? (await defaultKey(body))
+  return await finish(await client.call(postTrim, { body, idempotencyKey }), context)
+}
+
+async function finish(record: AnyRecord, context: Context): Promise<number> {
+  await print(recordRendering(record), context)
+  for (const { message } of record.notices) context.io.say(`ogee: ${message}`)
+  if (record.result?.format === 'ogee.codes/1' && record.result.trim.codes) sayCaution(context)
+  return record.verdict === null ? 0 : verdictExit[record.verdict]
+}
+
+/** A lot belongs to one design; where two designs have a lot of that name, --design says which. */
+async function designOfLot(client: Client, lot: string): Promise<string> {
+  const designs = new Set<string>()
+  let after: string | undefined
+  do {
+    const page = await client.call(listLots, { query: after === undefined ? {} : { after } })
+    for (const { key, design } of page.items) if (key === lot) designs.add(design)
+    after = page.next ?? undefined
+  } while (after !== undefined)
+  const [first, ...others] = designs
+  if (first === undefined)
+    throw new OgeeError('lot-unknown', `There is no lot ${lot}, or it is not open to this token.`)
+  if (others.length === 0) return first
+  throw new OgeeError(
+    'lot-unknown',
+    `Lot ${lot} stands under ${[...designs].join(', ')}: name one with --design.`,
+  )
+}

@@ -1,0 +1,134 @@
+import type { Design } from '../shared/contract/design.ts'
+import { listLots } from '../shared/contract/designs.ts'
+import { getTrim } from '../shared/contract/trims.ts'
+import { findUnits, type Unit } from '../shared/contract/units.ts'
+import { OgeeError } from '../shared/errors.ts'
+import { computeCodes } from '../shared/solver/codes.ts'
+import type { PreviousPass } from '../shared/solver/learn.ts'
+import type { Client } from './client.ts'
+import { designFrom } from './design-file.ts'
+import { parseJson } from './files.ts'
+import { previousFrom } from './previous.ts'
+import type { AnyRecord } from './record-rendering.ts'
+import type { RequestBody } from './request.ts'
+import { fetchRevision } from './revision.ts'
+
+type Current = Unit['current'][number]
+type Chain = { follows: string | null; pass: number; learned: PreviousPass | undefined }
+
+/**
+ * What recording would give, computed here under the same revision and by the same rules; nothing is sent but questions.
+ * The record that comes back has no id.
+ */
+export async function dryRun(client: Client, body: RequestBody): Promise<AnyRecord> {
+  if (body.conditions?.instrument !== undefined) {
+    throw new OgeeError(
+      'usage',
+      '--dry-run cannot know the limits of an instrument. Leave --instrument out of it.',
+    )
+  }
+  const number = await revisionAsked(client, body)
+  const { revision, bytes } = await fetchRevision(client, body.design, number)
+  const design = designFrom(parseJson(bytes.toString('utf8'), body.design), body.design)
+  const channel = theOne('channel', body.channel, design.channels)
+  const range = theOne(
+    'range',
+    body.range,
+    design.ranges.map(({ id }) => id),
+  )
+  const current = await currentOf(client, body, channel, range)
+  const applied = appliedBy(body, current)
+  const chain = await chainOf(client, body, current)
+  const result = computeCodes(design, body.points ?? [], { rangeId: range, applied, learned: chain.learned })
+  return {
+    format: 'ogee.record/1',
+    id: null,
+    dryRun: true,
+    number: null,
+    kind: 'trim',
+    unit: body.unit,
+    channel,
+    range,
+    lot: body.lot ?? null,
+    design: body.design,
+    revision: revision.number,
+    designHash: revision.hash,
+    pass: chain.pass,
+    follows: chain.follows,
+    applied,
+    conditions: body.conditions ?? {},
+    result,
+    verdict: result.trim.verdict,
+    accepted: result.trim.verdict === 'ok' || result.trim.verdict === 'too-coarse',
+    notices: [],
+    station: null,
+    measuredAt: body.measuredAt ?? null,
+    recordedAt: null,
+  }
+}
+
+async function revisionAsked(
+  client: Client,
+  { design, lot, revision }: RequestBody,
+): Promise<number | 'released'> {
+  if (lot === undefined) return revision ?? 'released'
+  let after: string | undefined
+  do {
+    const page = await client.call(listLots, { query: { design, ...(after ? { after } : {}) } })
+    const found = page.items.find(({ key }) => key === lot)
+    if (found) return found.revision
+    after = page.next ?? undefined
+  } while (after !== undefined)
+  throw new OgeeError('lot-unknown', `Design ${design} has no lot ${lot}.`)
+}
+
+function theOne(what: 'channel' | 'range', asked: string | undefined, known: Design['channels']): string {
+  const [only, ...others] = known
+  if (asked === undefined && only !== undefined && others.length === 0) return only
+  const list = known.join(', ')
+  if (asked === undefined) {
+    throw new OgeeError(
+      `${what}-required`,
+      `The design has several ${what}s: name one with --${what}: ${list}.`,
+    )
+  }
+  if (known.includes(asked)) return asked
+  throw new OgeeError(`${what}-unknown`, `The design has no ${what} ${asked}; it has ${list}.`)
+}
+
+async function currentOf(
+  client: Client,
+  { unit, design }: RequestBody,
+  channel: string,
+  range: string,
+): Promise<Current | undefined> {
+  const { items } = await client.call(findUnits, { query: { serial: unit, design } })
+  return items[0]?.current.find((at) => at.channel === channel && at.range === range)
+}
+
+/** Left out it means neutral, but only while no codes are loaded: what is loaded would be corrected twice. */
+function appliedBy(
+  { applied, unit }: RequestBody,
+  current: Current | undefined,
+): NonNullable<RequestBody['applied']> {
+  if (applied !== undefined) return applied
+  if (!current?.codes) return 'neutral'
+  throw new OgeeError(
+    'applied-required',
+    `Unit ${unit} has codes. Say with --applied which were loaded while measuring, or neutral.`,
+  )
+}
+
+async function chainOf(
+  client: Client,
+  { follows, effects }: RequestBody,
+  current: Current | undefined,
+): Promise<Chain> {
+  if (follows === undefined) return { follows: null, pass: 1, learned: undefined }
+  const id = follows === 'last' ? current?.lastRecord : follows
+  if (id === undefined)
+    throw new OgeeError('follows-unknown', 'There is no record of this unit, channel and range to follow.')
+  const before = await client.call(getTrim, { params: { id } })
+  const learned = effects === 'learned' ? previousFrom(before, `Record ${before.number}`) : undefined
+  return { follows: id, pass: before.pass + 1, learned }
+}

@@ -1,0 +1,63 @@
+import type { Record as StoredRecord } from '../shared/contract/record.ts'
+import type { CodesResult } from '../shared/solver/types.ts'
+import { codesCsv, codesTable } from './codes-rendering.ts'
+import type { Rendering } from './output.ts'
+import type { Cell } from './table.ts'
+
+type Known = Pick<
+  StoredRecord,
+  | 'format'
+  | 'kind'
+  | 'unit'
+  | 'channel'
+  | 'range'
+  | 'lot'
+  | 'design'
+  | 'revision'
+  | 'designHash'
+  | 'pass'
+  | 'follows'
+  | 'applied'
+  | 'conditions'
+  | 'verdict'
+  | 'accepted'
+  | 'notices'
+  | 'station'
+  | 'measuredAt'
+>
+
+/** A record as the server stored it, or one of the same shape that stands nowhere yet: its id is null. */
+export type AnyRecord =
+  | StoredRecord
+  | (Known & { id: null; dryRun: true; number: null; result: CodesResult; recordedAt: null })
+
+const heads = ['unit', 'channel', 'range', 'pass', 'verdict', 'accepted', ...codesCsv.heads, 'record']
+
+export function recordRendering(record: AnyRecord): Rendering {
+  const codes = record.result?.format === 'ogee.codes/1' ? record.result : undefined
+  const { unit, channel, range, pass, verdict, accepted, id } = record
+  const row: Cell[] = [
+    unit,
+    channel,
+    range,
+    pass,
+    verdict,
+    String(accepted),
+    ...(codes ? codesCsv.row(codes) : codesCsv.heads.map(() => null)),
+    id,
+  ]
+  return {
+    json: record,
+    table: (colour) => `${headLines(record)}\n${codes ? `\n${codesTable(codes, colour)}` : ''}`,
+    csv: { heads, rows: [row] },
+  }
+}
+
+function headLines({ unit, channel, range, design, revision, pass, number, recordedAt }: AnyRecord): string {
+  const where = `Unit ${unit}, channel ${channel}, range ${range}, design ${design} revision ${revision}, pass ${pass}.`
+  if (number === null || recordedAt === null) return `${where}\nNot recorded: a dry run.`
+  return `${where}\nRecorded as ${grouped(number)} at ${recordedAt.replace(/\.\d+/, '')}.`
+}
+
+/** 1004317 as 1 004 317. */
+const grouped = (number: number) => String(number).replaceAll(/\B(?=(\d{3})+$)/g, ' ')
