@@ -1,0 +1,357 @@
+import type { CodesDocument } from '../../shared/contract/codes.ts'
+import { designDocument } from '../../shared/contract/design.ts'
+import type { DesignLine, Revision } from '../../shared/contract/designs.ts'
+import type { Role } from '../../shared/contract/primitives.ts'
+import type { RecordLine, Record as TrimRecord } from '../../shared/contract/record.ts'
+import type { Me } from '../../shared/contract/session.ts'
+import type { Station } from '../../shared/contract/stations.ts'
+import type { Token } from '../../shared/contract/tokens.ts'
+import type { VerifyDocument } from '../../shared/contract/verify.ts'
+
+/** Answers of the server for tests of pages. `web-fixtures.test.ts` checks each against its schema. */
+
+export const hash = 'a3'.repeat(32)
+const adjusterSource = { bits: 12, coding: 'offset-binary', lowV: -2.5, highV: 2.5 }
+
+export const design = designDocument.parse({
+  format: 'ogee.design/1',
+  title: 'Detector bias source, output A',
+  converter: { bits: 18, coding: 'straight-binary', inlLsb: 1 },
+  channels: ['1', '2'],
+  ranges: [{ id: 'u10', label: '0 V to 10 V', lowV: 0, highV: 10, offsetAt: 'zero-volts' }],
+  adjusters: {
+    gain: {
+      effect: { kind: 'measured', slopePerV: 0.00208, offsetPerV: 0 },
+      effectTolerance: 0.2,
+      node: { nominalV: 0, minV: -5, maxV: 5, inputOhm: 250000 },
+      source: { ...adjusterSource, inlLsb: 1, driftPpmPerK: 5 },
+      network: { kind: 'divider', topOhm: 8660, bottomOhm: 1500 },
+    },
+    offset: {
+      effect: { kind: 'output-summing', feedbackOhm: 10000, adjustOhm: 1000000, inverting: true },
+      effectTolerance: 0.2,
+      node: { nominalV: 0, minV: -5, maxV: 5 },
+      source: adjusterSource,
+      network: { kind: 'direct' },
+    },
+  },
+  budget: {
+    gain: [
+      { name: 'Converter gain error', limitPpm: 120, distribution: 'rectangular', when: 'initial' },
+      { name: 'Reference drift', limitPpm: 20, distribution: 'rectangular', when: 'drift' },
+    ],
+    offset: [{ name: 'Amplifier offset', limitV: 0.00003, distribution: 'normal', k: 2, when: 'initial' }],
+  },
+  sizing: { combine: 'worst-case', margin: 0.25, temperatureSpanK: 20 },
+  target: { residual: { value: 0.5, unit: 'LSB' } },
+  measurement: {
+    method: 'best-fit',
+    points: [0, 65536, 131072, 196608, 262143],
+    readings: 4,
+    noiseV: 0.0000015,
+    instrument: { gainPpm: 3, offsetV: 0.000002 },
+  },
+  decision: { rule: 'guarded', tolerance: { value: 1, unit: 'LSB' } },
+})
+
+const revisionLines: DesignLine['revisions'] = [
+  {
+    number: 1,
+    state: 'released',
+    title: design.title,
+    author: 'M. Okafor',
+    createdAt: '2026-02-20T09:00:00Z',
+    releasedBy: 'S. Brandt',
+    releasedAt: '2026-03-02T10:00:00Z',
+    hash,
+  },
+  {
+    number: 2,
+    state: 'draft',
+    title: design.title,
+    author: 'M. Okafor',
+    createdAt: '2026-05-20T09:00:00Z',
+    releasedBy: null,
+    releasedAt: null,
+    hash,
+  },
+]
+export const designLine: DesignLine = {
+  key: 'DBS-A',
+  title: design.title,
+  released: 1,
+  revisions: revisionLines,
+}
+export function revision(number: 1 | 2): Revision {
+  const line = revisionLines[number - 1]
+  if (!line) throw new Error('no such revision')
+  return { ...line, key: 'DBS-A', document: design, bytes: btoa(JSON.stringify(design)) }
+}
+
+export function me(role: Role = 'engineer'): Me {
+  const names = { administrator: 'S. Brandt', engineer: 'M. Okafor', operator: 'T. Ruiz', auditor: 'A. Hale' }
+  return {
+    who: { kind: 'person', id: `person-${role}`, name: names[role], email: `${role}@example.org`, role },
+    server: { version: '0.1.0', solver: '1.0.0', ledger: 'ogee.example', serverTime: '2026-11-25T14:10:00Z' },
+  }
+}
+
+const measured: readonly [number, number, number, number][] = [
+  [0, 0, 0.0000013, -0.02],
+  [65536, 2.5, 2.4994998, 0.17],
+  [131072, 5, 4.9989783, -0.17],
+  [196608, 7.5, 7.4984718, -0.11],
+  [262143, 9.999961853, 9.9979342, 0.13],
+]
+const lsbV = 10 / 2 ** 18
+
+const fit: CodesDocument['fit'] = {
+  method: 'best-fit',
+  n: 5,
+  dof: 3,
+  dofWhy: null,
+  offsetErrorV: 0.00000189,
+  gainErrorPpm: -203.44,
+  fullScaleErrorV: -0.0020325,
+  standardUncertainty: { offsetV: 5e-6, gainPpm: 0.82, covarianceVPpm: -1e-6 },
+  expandedUncertainty: { offsetV: 0.0000159, gainPpm: 2.76, kOffset: 3.18, kGain: 3.18 },
+  residuals: measured.map(([code, idealV, measuredV, residualLsb]) => ({
+    code,
+    idealV,
+    measuredV,
+    errorV: measuredV - idealV,
+    residualV: residualLsb * lsbV,
+    residualLsb,
+  })),
+  linearity: { maxV: 0.17 * lsbV, maxLsb: 0.17, maxPpm: 0.65, atCode: 65536 },
+  chiSquared: null,
+  instrument: { id: null, gainPpm: 3, offsetV: 0.000002 },
+  flags: [],
+  notes: [],
+}
+
+export const codesResult: CodesDocument = {
+  format: 'ogee.codes/1',
+  solver: '1.0.0',
+  range: 'u10',
+  fit,
+  trim: {
+    verdict: 'ok',
+    reasons: [],
+    codes: { gain: 2593, offset: 2048 },
+    words: { gain: '0xA21', offset: '0x800' },
+    nodeV: { gain: 0.0978, offset: 0 },
+    exactNodeV: { gain: 0.0978, offset: 0.000189 },
+    appliedNodeV: { gain: 0, offset: 0 },
+    effects: {
+      gain: { slopePerV: 0.00208, offsetPerV: 0, tolerance: 0.2, source: 'design', factor: 1, why: null },
+      offset: { slopePerV: 0, offsetPerV: -0.01, tolerance: 0.2, source: 'design', factor: 1, why: null },
+    },
+    reachUsed: { gain: 0.263, offset: 0 },
+    shortfall: null,
+    predicted: {
+      offsetErrorV: 0.00000189,
+      gainErrorPpm: -0.18,
+      worstV: 0.0000019,
+      worstLsb: 0.05,
+      worstPpm: 0.19,
+      atV: 0,
+      expandedUncertaintyV: 0.000016,
+    },
+    notes: [],
+  },
+}
+
+export const suspectResult: CodesDocument = {
+  ...codesResult,
+  fit: {
+    ...fit,
+    flags: [{ flag: 'unsettled', code: 196608, value: 6.4, limit: 0.25, unit: 'LSB' }],
+  },
+  trim: {
+    ...codesResult.trim,
+    verdict: 'suspect',
+    reasons: ['One point was not settled when it was read. Wait and read it again.'],
+  },
+}
+
+export const outOfReachResult: CodesDocument = {
+  ...codesResult,
+  trim: {
+    ...codesResult.trim,
+    verdict: 'out-of-reach',
+    reasons: ['Gain wants 410 mV at the node; its DAC ends at 369 mV.'],
+    codes: null,
+    words: null,
+    nodeV: null,
+    exactNodeV: { gain: 0.41, offset: 0.000189 },
+    reachUsed: { gain: 1.11, offset: 0 },
+    shortfall: {
+      gain: { wantedV: 0.41, limitV: 0.369, by: 'codes', nearestCode: 4095 },
+      remainingWorstV: 0.0008,
+    },
+    predicted: null,
+  },
+}
+
+export const verifyResult: VerifyDocument = {
+  format: 'ogee.verify/1',
+  solver: '1.0.0',
+  range: 'u10',
+  rule: 'guarded',
+  toleranceV: lsbV,
+  tur: 4.1,
+  outcome: 'conditional-pass',
+  points: measured.map(([code, idealV, , residualLsb]) => ({
+    code,
+    idealV,
+    measuredV: idealV + residualLsb * lsbV,
+    errorV: residualLsb * lsbV,
+    errorLsb: residualLsb,
+    expandedUncertaintyV: 0.0000031,
+    outcome: code === 262143 ? 'conditional-pass' : 'pass',
+    conformanceProbability: 0.998,
+  })),
+  worst: { code: 262143, errorV: 0.76 * lsbV, errorLsb: 0.76 },
+  fit: null,
+}
+
+export function recordId(n: number): string {
+  return `00000000-0000-4000-8000-${String(n).padStart(12, '0')}`
+}
+
+export function record(n: number, change: Partial<TrimRecord> = {}): TrimRecord {
+  const recordedAt = '2026-11-25T14:09:40Z'
+  return {
+    format: 'ogee.record/1',
+    id: recordId(n),
+    number: 1_004_000 + n,
+    kind: 'trim',
+    unit: 'DBS-24170-031',
+    channel: '1',
+    range: 'u10',
+    lot: '2417',
+    design: 'DBS-A',
+    revision: 1,
+    designHash: hash,
+    pass: 1,
+    follows: null,
+    applied: 'neutral',
+    effects: 'design',
+    points: measured.map(([code, , value]) => ({ code, measured: value })),
+    conditions: { temperatureC: 23.4, instrument: 'DMM-07', note: 'lid closed, 30 min warm' },
+    reason: null,
+    claimed: null,
+    result: codesResult,
+    verdict: 'ok',
+    accepted: true,
+    by: { kind: 'person', id: 'person-operator', name: 'T. Ruiz', role: 'operator' },
+    station: 'station A',
+    measuredAt: '2026-11-25T14:09:38Z',
+    recordedAt,
+    notices: [],
+    receipt: {
+      format: 'ogee.receipt/1',
+      record: recordId(n),
+      leaf: '9f'.repeat(32),
+      recordedAt,
+      includedBy: '2026-11-25T14:10:40Z',
+      key: 'ogee.example+2c70e12b',
+      signature: btoa('s'.repeat(64)),
+    },
+    ledger: { index: 1_004_000 + n },
+    ...change,
+  }
+}
+
+const verdicts = [
+  'ok',
+  'ok',
+  'pass',
+  'conditional-pass',
+  'out-of-reach',
+  'suspect',
+  'too-coarse',
+  'fail',
+] as const
+
+export function recordLine(n: number): RecordLine {
+  const verdict = verdicts[n % verdicts.length] ?? 'ok'
+  const trims = verdict !== 'pass' && verdict !== 'conditional-pass' && verdict !== 'fail'
+  const none = verdict === 'out-of-reach'
+  return {
+    id: recordId(n),
+    number: 1_004_000 + n,
+    kind: trims ? 'trim' : 'verify',
+    unit: `DBS-24170-${String(n % 97).padStart(3, '0')}`,
+    channel: '1',
+    range: 'u10',
+    lot: '2417',
+    design: 'DBS-A',
+    revision: 1,
+    pass: 1 + (n % 3 === 0 ? 1 : 0),
+    verdict,
+    accepted: verdict === 'ok' || verdict === 'too-coarse',
+    gainErrorPpm: ((n * 37) % 400) - 203.44,
+    offsetErrorV: (((n * 13) % 40) - 20) * 1e-6,
+    gainCode: none ? null : 2000 + n,
+    offsetCode: none ? null : 2048,
+    worstLsb: none ? null : 0.05 + (n % 7) / 10,
+    by: n % 2 === 0 ? 'T. Ruiz' : 'station B',
+    station: n % 2 === 0 ? 'station A' : 'station B',
+    measuredAt: null,
+    recordedAt: new Date(Date.UTC(2026, 10, 25, 14, 0, 0) + n * 19_000).toISOString(),
+  }
+}
+
+export const stations: Station[] = [
+  {
+    id: '11111111-1111-4111-8111-111111111111',
+    name: 'station A',
+    createdAt: '2026-01-10T08:00:00Z',
+    retiredAt: null,
+  },
+  {
+    id: '22222222-2222-4222-8222-222222222222',
+    name: 'station B',
+    createdAt: '2026-01-10T08:00:00Z',
+    retiredAt: null,
+  },
+  {
+    id: '33333333-3333-4333-8333-333333333333',
+    name: 'station old',
+    createdAt: '2025-01-10T08:00:00Z',
+    retiredAt: '2026-02-01T08:00:00Z',
+  },
+]
+
+export const tokens: Token[] = [
+  {
+    id: 'aB3dE5gH',
+    name: 'line 2 script',
+    station: 'station A',
+    scopes: ['trims:write', 'trims:read'],
+    designs: null,
+    createdBy: 'S. Brandt',
+    createdAt: '2026-10-01T08:00:00Z',
+    expiresAt: '2099-01-01T08:00:00Z',
+    lastUsedAt: '2026-11-25T13:00:00Z',
+    revokedAt: null,
+  },
+  {
+    id: 'zZ9yY8xX',
+    name: 'old script',
+    station: 'station B',
+    scopes: ['trims:write'],
+    designs: ['DBS-A'],
+    createdBy: 'S. Brandt',
+    createdAt: '2026-01-01T08:00:00Z',
+    expiresAt: '2099-01-01T08:00:00Z',
+    lastUsedAt: null,
+    revokedAt: '2026-05-01T08:00:00Z',
+  },
+]
+export const tokenText = `ogee_aB3dE5gH_${'x'.repeat(36)}`
+
+export const checkpointText = `ogee.example\n1004317\n${btoa('r'.repeat(32))}\n\n\u2014 ogee.example ${btoa('s'.repeat(68))}\n`
+export const verifierKey = `ogee.example+2c70e12b+${btoa(`\u0001${'k'.repeat(32)}`)}\n`
