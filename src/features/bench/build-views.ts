@@ -43,6 +43,13 @@ export function buildViews(
       decision: judge?.outcome ?? null,
       isFlagged: code !== null && y !== null && flagged.has(code),
       measuredAs: measuredAs(row, decimals + 1),
+      numbers: {
+        ideal,
+        error,
+        residual: residual?.residualLsb ?? null,
+        errorLsb: error === null ? null : error / range.lsbV,
+        expanded: U === null || U === undefined ? null : U / range.lsbV,
+      },
       problems: Object.fromEntries(own.map((problem) => [problem.column, problem.message])),
     }
   })

@@ -1,5 +1,5 @@
 import { readStored, writeStored } from '../../lib/storage.ts'
-import { hasReadings, type Row } from './grid-state.ts'
+import { hasReadings, type Row, type RowExtra } from './grid-state.ts'
 
 /** Where a measurement stands: being typed, saved here and not yet sent, or recorded. */
 export type DraftStatus =
@@ -60,6 +60,7 @@ function draftFrom(stored: unknown): Draft | null {
     code: textOf(row, 'code'),
     measured: textOf(row, 'measured'),
     u: textOf(row, 'u'),
+    ...extraOf(row),
   }))
   const attempt = isObject(stored.attempt) ? stored.attempt : null
   return {
@@ -70,6 +71,18 @@ function draftFrom(stored: unknown): Draft | null {
     reason: textOf(stored, 'reason'),
     attempt: attempt ? { body: textOf(attempt, 'body'), key: textOf(attempt, 'key') } : null,
     status: statusFrom(stored.status),
+  }
+}
+
+function extraOf(row: unknown): { extra?: RowExtra } {
+  const extra = isObject(row) && isObject(row.extra) ? row.extra : null
+  if (extra === null) return {}
+  const { readAt, temperatureC } = extra
+  return {
+    extra: {
+      ...(typeof readAt === 'string' ? { readAt } : {}),
+      ...(typeof temperatureC === 'number' ? { temperatureC } : {}),
+    },
   }
 }
 

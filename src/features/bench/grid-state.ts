@@ -15,8 +15,10 @@ export type Column =
 /** As found: residuals from the line. As left: each point against the tolerance. */
 export type GridKind = 'found' | 'left'
 
+/** What a file said of a point beside its value; kept as long as the value is. */
+export type RowExtra = { readAt?: string; temperatureC?: number }
 /** Text exactly as typed: "1.10" stays "1.10". */
-export type Row = Record<InputColumn, string>
+export type Row = Record<InputColumn, string> & { extra?: RowExtra }
 export type Place = { row: number; column: Column }
 
 /** `replace` began by typing over the cell (arrows leave it); `edit` by F2 (arrows move the caret). */
@@ -80,7 +82,13 @@ export function withCell(
   text: string,
 ): readonly Row[] {
   if (rows[row]?.[column] === text) return rows
-  return rows.map((one, index) => (index === row ? { ...one, [column]: text } : one))
+  return rows.map((one, index) => (index === row ? changedRow(one, column, text) : one))
+}
+
+/** Another reading was read at another time: what the file said of the old one goes with it. */
+function changedRow({ extra, ...row }: Row, column: InputColumn, text: string): Row {
+  const kept = extra !== undefined && column !== 'measured' ? { extra } : {}
+  return { ...row, ...kept, [column]: text }
 }
 
 export type Area = { top: number; bottom: number; columns: readonly Column[] }

@@ -104,7 +104,7 @@ export function readRows(rows: readonly Row[], arithmetic: Arithmetic): ReadRows
     if (measured !== null && row.code.trim() === '') {
       problems.push({ row: index, column: 'code', message: `Row ${index + 1} has a reading and no code.` })
     }
-    const point = code && measured ? pointOf(code, measured, u) : null
+    const point = code && measured ? { ...pointOf(code, measured, u), ...row.extra } : null
     result.rows.push({ code, measured, point })
     if (point) {
       result.points.push(point)

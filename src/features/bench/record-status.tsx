@@ -1,4 +1,5 @@
 import { useQuery } from '@tanstack/react-query'
+import { useRef } from 'react'
 import type { Notice } from '../../../shared/contract/record.ts'
 import { paths } from '../../lib/paths.ts'
 import { LinkButton } from '../../ui/button.tsx'
@@ -10,10 +11,17 @@ import { placedRecordOptions } from './queries.ts'
 
 const clock = (instant: string): string => utcText(instant).slice(11)
 
-type RecordStatusProps = { status: DraftStatus; ledgerSince: string | null }
+/** The time is the one at which this page saw it there; a record opened later was there before. */
+function placeOf(recordedAt: string, seenAt: number | null): string {
+  if (seenAt === null) return 'Place in the ledger follows within a minute.'
+  const isFresh = seenAt - new Date(recordedAt).getTime() < 60_000
+  return isFresh ? `In the ledger since ${clock(new Date(seenAt).toISOString())}.` : 'In the ledger.'
+}
+
+type RecordStatusProps = { status: DraftStatus; ledger: string }
 
 /** Where the record is: saved here, or recorded and in the ledger. Times are UTC, as everywhere. */
-export function RecordStatus({ status, ledgerSince }: RecordStatusProps) {
+export function RecordStatus({ status, ledger }: RecordStatusProps) {
   if (status.is === 'open') return null
   if (status.is === 'waiting') {
     return (
@@ -32,10 +40,7 @@ export function RecordStatus({ status, ledgerSince }: RecordStatusProps) {
         <LinkButton to={paths.record(status.id)}>
           <Whole value={status.number} />
         </LinkButton>{' '}
-        at {clock(status.recordedAt)}.{' '}
-        {ledgerSince
-          ? `In the ledger since ${clock(ledgerSince)}.`
-          : 'Place in the ledger follows within a minute.'}
+        at {clock(status.recordedAt)}. {ledger}
         {status.accepted ? null : ' Its codes are not accepted.'}
       </Caution>
     </div>
@@ -45,10 +50,11 @@ export function RecordStatus({ status, ledgerSince }: RecordStatusProps) {
 /** Asks for the record until it has its place; notices of the server come with it. */
 export function RecordedStatus({ status }: { status: Extract<DraftStatus, { is: 'recorded' }> }) {
   const { data, dataUpdatedAt } = useQuery(placedRecordOptions(status.id))
-  const since = data?.ledger ? new Date(dataUpdatedAt).toISOString() : null
+  const seenFirst = useRef<number | null>(null)
+  if (data?.ledger && seenFirst.current === null) seenFirst.current = dataUpdatedAt
   return (
     <>
-      <RecordStatus status={status} ledgerSince={since} />
+      <RecordStatus status={status} ledger={placeOf(status.recordedAt, seenFirst.current)} />
       <Notices notices={data?.notices ?? []} />
     </>
   )

@@ -9,6 +9,23 @@ export type RereadUnit = 'mV' | 'µV'
 const factors = { mV: 1e-3, µV: 1e-6 } as const
 const number = /^\s*[-+\u2212]?[\d.]+(?:[eE][-+]?\d+)?\s*V?\s*$/
 
+/** Problems of readings that lie further from ideal than the plan allows. */
+export function farProblems(
+  problems: readonly CellProblem[],
+  read: readonly ReadRow[],
+  range: ConverterRange,
+  allowedV: number,
+): CellProblem[] {
+  return problems.filter(({ row, column }) => {
+    const one = read[row]
+    const code = one ? codeOf(one, range) : null
+    const y = one ? measuredOf(one) : null
+    return (
+      column === 'measured' && code !== null && y !== null && Math.abs(y - idealV(range, code)) > allowedV
+    )
+  })
+}
+
 /**
  * A unit under which every far-off bare reading would be plausible: millivolts typed as volts. Null when there is
  * none, or when some far-off reading says its own unit.
@@ -18,17 +35,16 @@ export function rereadUnit(
   rows: readonly Row[],
   read: readonly ReadRow[],
   range: ConverterRange,
-  plausiblePercent: number,
+  allowedV: number,
 ): RereadUnit | null {
   if (far.length === 0) return null
-  const allowed = (plausiblePercent / 100) * range.fsrV
   for (const unit of ['mV', 'µV'] as const) {
     const fits = far.every(({ row }) => {
       const one = read[row]
       const code = one ? codeOf(one, range) : null
       const y = one ? measuredOf(one) : null
       if (code === null || y === null || !partsOf(rows[row]).every((part) => number.test(part))) return false
-      return Math.abs(y * factors[unit] - idealV(range, code)) <= allowed
+      return Math.abs(y * factors[unit] - idealV(range, code)) <= allowedV
     })
     if (fits) return unit
   }

@@ -14,6 +14,14 @@ export type RowView = {
   isFlagged: boolean
   /** Mean and count of several readings, or what arithmetic came to: shown in place of the typed text. */
   measuredAs: string | null
+  /** The same as doubles, for copying: volts and LSB. */
+  numbers: {
+    ideal: number | null
+    error: number | null
+    residual: number | null
+    errorLsb: number | null
+    expanded: number | null
+  }
   /** Sentences, by the cell they belong to. */
   problems: Partial<Record<InputColumn, string>>
 }

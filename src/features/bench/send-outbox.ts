@@ -18,10 +18,14 @@ export type Sent =
   | { is: 'waiting'; error: unknown }
   | { is: 'refused'; error: OgeeError }
 
+/** Keys that a form of this page is sending itself. */
+const underWay = new Set<string>()
+
 /** Keeps the record here, then sends it. The one way in which Bench records. */
 export async function recordOrKeep(item: Waiting): Promise<Sent> {
   const isKept = putInOutbox(item)
-  const sent = await sendOne(item)
+  underWay.add(item.key)
+  const sent = await sendOne(item).finally(() => underWay.delete(item.key))
   if (sent.is === 'waiting' && !isKept) {
     takeFromOutbox(item.key)
     const message = 'The server does not answer and this browser keeps nothing. The record is not saved.'
@@ -40,7 +44,7 @@ export async function sendWaiting(
   const locks = typeof navigator === 'undefined' ? undefined : navigator.locks
   const send = async () => {
     for (const item of readOutbox()) {
-      if (item.person !== person || item.refused !== null) continue
+      if (item.person !== person || item.refused !== null || underWay.has(item.key)) continue
       const sent = await sendOne(item)
       settle(item, sent)
       onSent(item, sent)

@@ -10,6 +10,7 @@ const load = () => import('../../../shared/quantity/arithmetic.ts')
 export function useArithmetic(): Arithmetic {
   const results = useRef(new Map<string, number | OgeeError | 'pending'>())
   const [turn, setTurn] = useState(0)
+  // biome-ignore lint/correctness/useExhaustiveDependencies: a new result is a new function, so that cells are read again
   return useCallback(
     (text: string, field: Field) => {
       const name = `${field.unit}|${text}`
@@ -29,7 +30,6 @@ export function useArithmetic(): Arithmetic {
       )
       return 'pending'
     },
-    // biome-ignore lint/correctness/useExhaustiveDependencies: a new result is a new function, so that cells are read again
     [turn],
   )
 }

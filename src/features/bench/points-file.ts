@@ -1,0 +1,49 @@
+import type { Design } from '../../../shared/contract/design.ts'
+import type { PointGroup } from '../../../shared/points/group.ts'
+import { type PointsCsv, parsePointsCsvAsync } from '../../../shared/points/parse-csv.ts'
+import { refuseLargeCsv } from '../../../shared/points/split-csv.ts'
+import { toCsv } from '../../../shared/points/to-csv.ts'
+import { codeOfWordText } from '../../../shared/solver/coding.ts'
+import { emptyRow, type Row } from './grid-state.ts'
+
+const arithmetic = () => import('../../../shared/quantity/arithmetic.ts')
+
+/** Reads a points CSV that a person chose or dropped. Nothing on the page changes by it. */
+export async function readPointsFile(file: File, design: Design): Promise<PointsCsv> {
+  refuseLargeCsv(file.size)
+  return parsePointsCsvAsync(await file.text(), arithmetic, {
+    channels: design.channels,
+    ranges: design.ranges.map((range) => range.id),
+  })
+}
+
+/** Points of a file as rows of the grid, written so that every double stays the same. */
+export function rowsOf(group: PointGroup, design: Design): Row[] {
+  const { bits, coding } = design.converter
+  return group.points.map((point) => {
+    const fromWord = point.word === undefined ? null : codeOfWordText(point.word, bits, coding)
+    const code = point.code ?? fromWord
+    const { readAt, temperatureC } = point
+    const extra = {
+      ...(readAt === undefined ? {} : { readAt }),
+      ...(temperatureC === undefined ? {} : { temperatureC }),
+    }
+    return {
+      ...emptyRow(code === null || code === undefined ? `${point.target} V` : String(code)),
+      measured: point.readings ? point.readings.join('; ') : String(point.measured),
+      u: point.uncertainty === undefined ? '' : String(point.uncertainty),
+      ...(Object.keys(extra).length === 0 ? {} : { extra }),
+    }
+  })
+}
+
+/** Hands a file to the browser to save. */
+export function savePoints(group: Omit<PointGroup, 'firstLine' | 'lastLine'>, name: string): void {
+  const text = toCsv([{ ...group, firstLine: 2, lastLine: group.points.length + 1 }])
+  const url = URL.createObjectURL(new Blob([text], { type: 'text/csv;charset=utf-8' }))
+  const link = document.createElement('a')
+  link.href = url
+  link.download = `${name.replaceAll(/[^\p{L}\p{N}._-]+/gu, '-')}.csv`
+  link.click()
+  setTimeout(() => URL.revokeObjectURL(url), 10_000)
+}

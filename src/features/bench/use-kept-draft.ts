@@ -1,0 +1,67 @@
+import { useCallback, useEffect, useReducer, useRef, useState } from 'react'
+import { type Draft, isWorthKeeping, newDraft, readDraft, writeDraft } from './draft.ts'
+import { gridReducer } from './grid-reducer.ts'
+import { type GridKind, newGrid, type Row, rowsNow } from './grid-state.ts'
+
+const writeAfterMs = 300
+
+export type DraftFields = Omit<Draft, 'rows' | 'hasU'>
+
+/**
+ * Everything typed for one measurement, kept on this computer at most a third of a second later, and at once when
+ * the page goes away. One of these lives as long as its measurement is on the page: the caller keys it by name.
+ */
+export function useKeptDraft(name: string, kind: GridKind, planned: readonly Row[]) {
+  const [first] = useState(() => readDraft(name))
+  const start = first ?? newDraft(planned)
+  const [grid, dispatch] = useReducer(gridReducer, start, ({ rows, hasU }) => newGrid(rows, kind, hasU))
+  const [fields, setFields] = useState<DraftFields>(() => {
+    const { rows: _, hasU: __, ...rest } = start
+    return rest
+  })
+  const draft: Draft = { ...fields, rows: rowsNow(grid), hasU: grid.hasU }
+  const discardAll = useCallback(() => {
+    writeDraft(name, null)
+    const { rows, hasU, ...rest } = newDraft(planned)
+    dispatch({ do: 'load', state: newGrid(rows, kind, hasU) })
+    setFields(rest)
+  }, [name, kind, planned])
+  const setField = useCallback(
+    <K extends keyof DraftFields>(field: K, value: DraftFields[K]) =>
+      setFields((before) => ({ ...before, [field]: value })),
+    [],
+  )
+  useWriting(name, draft)
+  return { grid, dispatch, fields, setField, discardAll, wasRestored: first !== null, draft }
+}
+
+/** Writes a while after the first change, not after the last: steady typing is kept too. */
+function useWriting(name: string, draft: Draft): void {
+  const latest = useRef(draft)
+  const timer = useRef<ReturnType<typeof setTimeout> | undefined>(undefined)
+  const text = JSON.stringify(draft)
+  const written = useRef(text)
+  const flush = useCallback(() => {
+    clearTimeout(timer.current)
+    timer.current = undefined
+    const now = latest.current
+    const nowText = JSON.stringify(now)
+    if (nowText === written.current) return
+    written.current = nowText
+    writeDraft(name, isWorthKeeping(now) ? now : null)
+  }, [name])
+  useEffect(() => {
+    latest.current = draft
+    if (text !== written.current && timer.current === undefined)
+      timer.current = setTimeout(flush, writeAfterMs)
+  })
+  useEffect(() => {
+    window.addEventListener('pagehide', flush)
+    document.addEventListener('visibilitychange', flush)
+    return () => {
+      window.removeEventListener('pagehide', flush)
+      document.removeEventListener('visibilitychange', flush)
+      flush()
+    }
+  }, [flush])
+}
