@@ -1,10 +1,11 @@
 import { lazy, Suspense } from 'react'
 import { Route, Routes } from 'react-router-dom'
 import { Loading } from '../ui/loading.tsx'
-import { Frame } from './frame.tsx'
-import { HomePage } from './home-page.tsx'
-import { NotFoundPage } from './not-found-page.tsx'
 
+// Sign-in is the first page of many visits: the frame and all else load after it.
+const Frame = lazy(() => import('./frame.tsx'))
+const HomePage = lazy(() => import('./home-page.tsx'))
+const NotFoundPage = lazy(() => import('./not-found-page.tsx'))
 const SignIn = lazy(() => import('../screens/sign-in/sign-in-screen.tsx'))
 const Setup = lazy(() => import('../screens/setup/setup-screen.tsx'))
 const Bench = lazy(() => import('../screens/bench/bench-screen.tsx'))

@@ -15,7 +15,7 @@ import { Rail } from './rail.tsx'
 import { SessionDialog } from './session-dialog.tsx'
 
 /** The frame round every page: rail, main part, banner of an outage, dialog of an ended session. */
-export function Frame() {
+export default function Frame() {
   const location = useLocation()
   const me = useQuery(meOptions)
   if (!me.data) {

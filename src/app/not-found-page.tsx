@@ -4,7 +4,7 @@ import { LinkButton } from '../ui/button.tsx'
 import { Empty } from '../ui/empty.tsx'
 import { PageHead } from '../ui/page-head.tsx'
 
-export function NotFoundPage() {
+export default function NotFoundPage() {
   const { pathname } = useLocation()
   return (
     <>
