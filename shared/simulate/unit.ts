@@ -1,6 +1,6 @@
 import type { Design } from '../contract/design.ts'
-import { draw, either, normal } from './draw.ts'
-import { type Random, randomStream } from './random.ts'
+import { draw, either, normal } from '../solver/random/draw.ts'
+import { type Random, randomStream } from '../solver/random/generator.ts'
 
 export type SimulatedPoint = { code: number; readings: number[] }
 /** One measurement as a station would hand it in. */

@@ -1,7 +1,10 @@
-import { ln } from '../solver/distribution/elementary.ts'
-import type { Random } from './random.ts'
+import { ln } from '../distribution/elementary.ts'
+import type { Random } from './generator.ts'
 
 export type Distribution = 'rectangular' | 'triangular' | 'arcsine' | 'normal'
+
+/** Said in results of simulations: a change of either is a new solver version. */
+export const NORMAL_METHOD = 'polar (Marsaglia and Bray), second value dropped'
 
 /** Uniform in [-1, 1). */
 export const either = (random: Random): number => 2 * random() - 1
