@@ -61,7 +61,7 @@ function readCell(text: string, column: GridColumn | undefined, options: CellOpt
     return cell
   }
   try {
-    cell.value = valueOf(text, column, options)
+    cell.value = readValue(text, column, options)
   } catch (error) {
     if (error instanceof ArithmeticNeeded) {
       cell.message = `${text.trim()}: arithmetic, not read yet.`
@@ -74,7 +74,7 @@ function readCell(text: string, column: GridColumn | undefined, options: CellOpt
   return cell
 }
 
-function valueOf(text: string, column: GridColumn, options: CellOptions): number | number[] {
+function readValue(text: string, column: GridColumn, options: CellOptions): number | number[] {
   if (column === 'code') return parseCode(text, 'code')
   if (column === 'readings') return readingsOf(text, options)
   const field: Field = pointFields[column]
@@ -84,7 +84,7 @@ function valueOf(text: string, column: GridColumn, options: CellOptions): number
 function readsWithComma(text: string, column: GridColumn, options: CellOptions): boolean {
   if (column === 'code' || !text.includes(',')) return false
   try {
-    valueOf(text, column, { ...options, decimalComma: true })
+    readValue(text, column, { ...options, decimalComma: true })
     return true
   } catch {
     return false
@@ -123,6 +123,7 @@ function delimiterOf(clean: string, columns: readonly GridColumn[], decimalComma
   }
   if (columns[0] !== 'readings' && per(';') > 0) return ';'
   const commas = per(',')
+  if (columns[0] === 'code' && commas > 0 && columns.length > 1) return ','
   const decimal = lines.some((line) => /^\s*[+-]?\d+,\d+(\D|$)/.test(line) && !/[.]/.test(line))
   return commas > 0 && columns.length > 1 && !decimalComma && !(commas === 1 && decimal) ? ',' : '\t'
 }

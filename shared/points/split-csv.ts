@@ -56,7 +56,7 @@ function delimiterOf(text: string): Delimiter {
  * Refuses a CSV that is too large for a page; the command line streams such files.
  * @param bytes size of the file
  * @throws csv-too-large
- * @example refuseLargeCsv(1000) // nothing
+ * @example refuseLargeCsv(1000) // undefined
  */
 export function refuseLargeCsv(bytes: number): void {
   if (bytes <= limits.benchCsvMaxBytes) return

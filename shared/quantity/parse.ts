@@ -29,7 +29,7 @@ const NUMBER = new RegExp(
  * @param field its label, the unit of a bare number, other units it takes
  * @returns the value in the field's unit and the text as typed; or `needsArithmetic`
  * @throws quantity-unreadable, quantity-wrong-kind; the sentence says what to write
- * @example parseQuantity('96 mV', { label: 'Span', unit: 'V' }) // { value: 0.096, unit: 'V', ... }
+ * @example parseQuantity('96 mV', { label: 'Span', unit: 'V' }).value // 0.096
  */
 export function parseQuantity(
   text: string,
@@ -118,7 +118,7 @@ function unreadable(sentence: string): never {
  * As `parseQuantity`, arithmetic included: `10/4096 V`, `3*12 uV + 5 uV`.
  * @param load brings the arithmetic on first use
  * @throws as `parseQuantity`; arithmetic-unavailable when it cannot be loaded
- * @example await parseQuantityAsync('3*12 uV + 5 uV', { label: 'Offset', unit: 'V' }, load) // value 41e-6
+ * @example (await parseQuantityAsync('3*12 uV + 5 uV', { label: 'Offset', unit: 'V' }, load)).value // 41e-6
  */
 export async function parseQuantityAsync(
   text: string,

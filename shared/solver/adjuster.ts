@@ -37,7 +37,7 @@ export type Trimmers = { gain: Trimmer | null; offset: Trimmer | null }
  * @param learned replaces the design's effect
  * @throws effect-zero, tolerance-out-of-bounds, resistance-not-positive, source-span-zero, bits-out-of-bounds, not-finite
  * Source: solver.md sections 4 and 7.
- * @example prepareTrimmer(prepareChannel(design), 'gain')?.stepV
+ * @example prepareTrimmer(channel, 'gain').count // 4096
  */
 export function prepareTrimmer(channel: Channel, which: Which, learned?: UsedEffect): Trimmer | null {
   const adjuster = channel.design.adjusters[which]

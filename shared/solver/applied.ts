@@ -12,7 +12,7 @@ export type AppliedV = { gain: number; offset: number; assumed: boolean }
  * @returns volts at each node (0 for an absent adjuster)
  * @throws applied-unknown: a code that the DAC does not have, or an adjuster that the design does not have
  * Source: solver.md section 5.
- * @example appliedVoltages(trimmers, 'neutral').gain // nominalV of the gain node
+ * @example appliedVoltages(trimmers, 'neutral') // { gain: 0, offset: 0, assumed: false }
  */
 export function appliedVoltages(trimmers: Trimmers, applied: Applied | undefined): AppliedV {
   const pair: PerAdjuster<number> = applied === undefined || applied === 'neutral' ? {} : applied

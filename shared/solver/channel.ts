@@ -22,7 +22,7 @@ export type Channel = {
  * Checks a design's range once, so that many units can be fitted without doing it again.
  * @param rangeId may be left out where the design has one range
  * @throws as `converterRange`
- * @example prepareChannel(design).range.id // 'u10'
+ * @example prepareChannel(unipolar18).range.id // 'u10'
  */
 export function prepareChannel(design: Design, rangeId?: string): Channel {
   const { measurement } = design

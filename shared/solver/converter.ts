@@ -29,7 +29,7 @@ export type ConverterRange = {
 /**
  * The range of a design by its id, checked; without an id the only one.
  * @throws range-required, range-unknown
- * @example rangeOf(design, 'u10').id // 'u10'
+ * @example rangeOf(unipolar18, 'u10').id // 'u10'
  */
 export function rangeOf(design: Design, rangeId?: string): Range {
   if (rangeId === undefined) {
@@ -48,7 +48,7 @@ export function rangeOf(design: Design, rangeId?: string): Range {
  * @param design its converter: bits N, 4 to 24; lowV L < highV H, volts
  * @throws bits-out-of-bounds, range-reversed, not-finite, range-required, range-unknown
  * Source: solver.md section 1; LSB = FSR/2^N, W. Kester (ed.), Data Conversion Handbook (2005), chapter 2.
- * @example converterRange(design, 'u10').lsbV // 10/2^18
+ * @example converterRange(unipolar18, 'u10').lsbV // 10 / 262144
  */
 export function converterRange(design: Design, rangeId?: string): ConverterRange {
   const { bits, coding, inlLsb } = design.converter
@@ -105,7 +105,7 @@ function derive(range: Range, bits: number, coding: Coding, inlLsb: number): Con
 
 /**
  * The ideal output x(c) = L + c·LSB of a code index, volts.
- * @example idealV(unipolar10V18bit, 131072) // 5
+ * @example idealV(range, 131072) // 5
  */
 export function idealV(range: ConverterRange, code: number): number {
   return range.lowV + code * range.lsbV
@@ -113,7 +113,7 @@ export function idealV(range: ConverterRange, code: number): number {
 
 /**
  * The code nearest to a wanted voltage, halves upward; null outside [L - LSB/2, x_FS + LSB/2). Never a silent clamp.
- * @example nearestCode(unipolar10V18bit, 5) // 131072
+ * @example nearestCode(range, 5) // 131072
  */
 export function nearestCode(range: ConverterRange, targetV: number): number | null {
   const steps = (targetV - range.lowV) / range.lsbV
@@ -124,7 +124,7 @@ export function nearestCode(range: ConverterRange, targetV: number): number | nu
 
 /**
  * A limit with its unit in volts: LSB, ppm of FSR or V.
- * @example limitInVolts({ value: 0.5, unit: 'LSB' }, range) // range.lsbV/2
+ * @example limitInVolts({ value: 0.5, unit: 'LSB' }, range) // range.lsbV / 2
  */
 export function limitInVolts(limit: LimitWithUnit, range: ConverterRange): number {
   if (limit.unit === 'LSB') return limit.value * range.lsbV

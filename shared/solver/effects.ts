@@ -9,7 +9,7 @@ export type Slopes = { offsetPerV: number; slopePerV: number }
  * The effect of an adjuster on a range: measured, or from the circuit; a range's own effect goes before the adjuster's.
  * @throws effect-zero, resistance-not-positive, reference-zero, not-finite
  * Source: solver.md section 4; first-order circuit theory of an inverting summing amplifier.
- * @example effectOf(adjuster, undefined, range, 'offset').offsetPerV // -R_f/R_a for output-summing, inverting
+ * @example effectOf(unipolar18.adjusters.offset, undefined, range, 'offset').offsetPerV // -10000 / 1000000
  */
 export function effectOf(
   adjuster: Adjuster,

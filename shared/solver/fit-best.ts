@@ -9,7 +9,7 @@ import type { PointSet } from './points.ts'
  * @param ls the least-squares line of these points, when it is at hand
  * @returns offset in V, gain as a ratio, variances with the external-consistency rule, degrees of freedom
  * Source: solver.md section 3; JCGM 100:2008 H.3; line names of IEEE Std 1658.
- * @example fitBest(points, { noiseV: null, readings: 1 }).gain
+ * @example fitBest(set, { noiseV: null, readings: 1 }).dof // 3
  */
 export function fitBest(points: PointSet, noise: PlannedNoise, ls?: LeastSquares): Line {
   const line = ls ?? leastSquares(points.z, points.e, points.u)

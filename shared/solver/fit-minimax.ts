@@ -9,7 +9,7 @@ type Triple = { i: number; j: number; k: number; deviation: number }
  * @returns offset in V, gain as a ratio; no variances
  * Source: solver.md section 3; de la Vallée Poussin: the best line is that of the triple with the largest equal
  * deviation, and such a triple stands on an edge of the convex hull.
- * @example fitMinimax(points).gain
+ * @example fitMinimax(set).variance // null
  */
 export function fitMinimax(points: PointSet): Line {
   const spots = averaged(points)

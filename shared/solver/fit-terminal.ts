@@ -5,7 +5,7 @@ import type { PointSet } from './points.ts'
  * The terminal-based (end-point) line: through the means at the lowest and the highest code.
  * @returns offset in V, gain as a ratio; variances from the u's of those two means (u² = Σu²/m²), no χ²
  * Source: solver.md section 3; line names of IEEE Std 1658.
- * @example fitTerminal(points, { noiseV: null, readings: 1 }).offset
+ * @example fitTerminal(set, { noiseV: null, readings: 1 }).offset // set.e[0]
  */
 export function fitTerminal(points: PointSet, noise: PlannedNoise): Line {
   const u = points.u ?? plannedUncertainty(noise, points.readings)

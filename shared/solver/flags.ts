@@ -16,7 +16,7 @@ const LEAST_LSB = 0.25
  * studentised residuals and χ² belong to it. Flags, never silent repairs.
  * Source: solver.md section 3; externally studentised residuals as in R. D. Cook and S. Weisberg, Residuals and
  * Influence in Regression (1982), chapter 2.
- * @example flagsOf(points, leastSquares(points.z, points.e, points.u), range, 0.25)
+ * @example flagsOf(set, leastSquares(set.z, set.e, set.u), range, 0.25) // []
  */
 export function flagsOf(
   points: PointSet,

@@ -14,7 +14,7 @@ export type Pair = { gain: number; offset: number }
 /**
  * The code nearest to an exact node voltage, ties to the smaller code, among the allowed ones within two codes of it;
  * null when there is none.
- * @example nearestTrimCode(trimmer, trimmer.v0) // 0
+ * @example nearestTrimCode(gain, gain.v0) // 0
  */
 export function nearestTrimCode(trimmer: Trimmer, exactV: number): number | null {
   const k = (exactV - trimmer.v0) / trimmer.stepV

@@ -21,7 +21,7 @@ type Row = { o: number; g: number }
  *   `not-moved`, `too-uncertain`, `effect-off`); the flag `effect-off` for a factor outside its tolerance
  * @throws adjusters-not-independent
  * Source: solver.md section 5, effects learned.
- * @example learnEffects(channel, trimmers, line, { gain: 0.1, offset: 0 }, previous).effects.gain?.factor
+ * @example learnEffects(channel, trimmers, line, { gain: 0, offset: 0 }, result).effects.gain.why // 'not-moved'
  */
 export function learnEffects(
   channel: Channel,

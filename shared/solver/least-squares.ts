@@ -18,7 +18,7 @@ export type LeastSquares = {
  * @returns offset at z = 0 in the unit of e, gain in unit of e per unit of z
  * Source: solver.md section 3; JCGM 100:2008 H.3.2. The unweighted slope is ml-regression-simple-linear's.
  * Limits: relative error about 1e-12 for conditioned data (NIST StRD Norris: over 11 digits).
- * @example leastSquares([0, 1, 2], [1, 3, 5], null) // offset 1, gain 2
+ * @example leastSquares([0, 1, 2], [1, 3, 5], null).gain // 2
  */
 export function leastSquares(
   z: readonly number[],

@@ -21,7 +21,7 @@ export type NodeMap = {
  * @param which for the place in messages
  * @throws resistance-not-positive, source-span-zero, bits-out-of-bounds, not-finite; `errors[].path` points into the design
  * Source: solver.md section 7; Millman's theorem, V = Σ(V_j/R_j)/Σ(1/R_j).
- * @example nodeMap(adjuster, 'gain').stepV
+ * @example nodeMap(unipolar18.adjusters.offset, 'offset').stepV // 5 / 4096
  */
 export function nodeMap(adjuster: Adjuster, which: Which): NodeMap {
   const { source, network, node } = adjuster
@@ -98,7 +98,7 @@ export function refuse(code: ErrorCode, which: Which, field: string, sentence: s
 
 /**
  * The node voltage of an auxiliary code.
- * @example nodeV(map, 0) // map.v0
+ * @example nodeV(gain, 0) // gain.v0
  */
 export function nodeV(map: { v0: number; stepV: number }, code: number): number {
   return map.v0 + code * map.stepV

@@ -6,7 +6,7 @@ import type { Missing } from './types.ts'
  * What is missing when an exact node voltage cannot be reached; null when it lies in reach: within half a step of the
  * codes' voltages and within the node's limits.
  * Source: solver.md section 5.
- * @example missingReach(trimmer, trimmer.nominalV) // null
+ * @example missingReach(gain, gain.nominalV) // null
  */
 export function missingReach(trimmer: Trimmer, exactV: number): Missing | null {
   const k = (exactV - trimmer.v0) / trimmer.stepV
@@ -57,7 +57,7 @@ export function cutToReach(trimmer: Trimmer, v: number): number {
 
 /**
  * The share of the reach on its side that a node voltage uses: 0 at nominal, null where there is no reach.
- * @example reachUsed(trimmer, trimmer.nominalV) // 0
+ * @example reachUsed(gain, gain.nominalV) // 0
  */
 export function reachUsed(trimmer: Trimmer, v: number): number | null {
   if (v === trimmer.nominalV) return 0

@@ -11,7 +11,7 @@ export type Moves = { gain: number | null; offset: number | null }
  * @param offset O in V, gain G as a ratio
  * @throws adjusters-not-independent, adjuster-without-effect
  * Source: solver.md section 5; Cramer's rule on M·[ΔV_o; ΔV_g] = -[O; G].
- * @example exactMoves(gain, null, range, 0, -1e-4).gain // 1e-4/β for α = 0
+ * @example exactMoves(gain, null, range, 0, -1e-4).gain // 1e-4 / gain.beta
  */
 export function exactMoves(
   gain: Trimmer | null,

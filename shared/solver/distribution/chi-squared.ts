@@ -9,7 +9,7 @@ import { remember } from './remember.ts'
  * @param dof degrees of freedom, real, > 0, finite
  * @returns χ², relative error about 1e-13
  * Source: NIST DLMF 8.2 (χ² is twice a gamma variable of shape dof/2); start by Wilson and Hilferty (1931).
- * @example chiSquaredUpper(0.5, 2) // 2 ln 2
+ * @example chiSquaredUpper(0.5, 2) // 2 * Math.LN2
  */
 export const chiSquaredUpper: (tail: number, dof: number) => number = remember((tail, dof) => {
   const a = dof / 2
