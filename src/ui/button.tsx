@@ -5,14 +5,15 @@ import { Link } from 'react-router-dom'
 export type ButtonLook = 'primary' | 'plain' | 'quiet'
 
 const shared =
-  'inline-flex min-h-7 items-center gap-2 text-body whitespace-nowrap print:hidden disabled:cursor-default'
+  'inline-flex items-center gap-2 text-body whitespace-nowrap print:hidden disabled:cursor-default'
 const looks: Record<ButtonLook, string> = {
   primary:
-    'rounded-sm border border-ink bg-ink px-3 font-semibold text-paper disabled:border-ink-3 disabled:bg-ink-3 forced-colors:border-[ButtonBorder] forced-colors:disabled:text-[GrayText]',
+    'min-h-7 rounded-sm border border-ink bg-ink px-3 font-semibold text-paper disabled:border-ink-3 disabled:bg-ink-3 forced-colors:border-[ButtonBorder] forced-colors:disabled:text-[GrayText]',
   plain:
-    'rounded-sm border border-rule px-3 font-semibold text-ink disabled:text-ink-3 forced-colors:disabled:text-[GrayText]',
+    'min-h-7 rounded-sm border border-rule px-3 font-semibold text-ink disabled:text-ink-3 forced-colors:disabled:text-[GrayText]',
   quiet:
-    'px-0.5 text-ink underline decoration-rule underline-offset-4 hover:decoration-ink disabled:text-ink-3 disabled:no-underline',
+    // A target of 24 px that makes no table row taller than it is.
+    'min-h-6 px-0.5 text-ink [dd_&]:-my-[3px] [td_&]:-my-[3px] [th_&]:-my-[3px] underline decoration-rule underline-offset-4 hover:decoration-ink disabled:text-ink-3 disabled:no-underline',
 }
 
 function classes(look: ButtonLook, extra: string | undefined): string {

@@ -10,7 +10,7 @@ export function useFieldIds(): FieldIds | null {
 
 const layouts = {
   /** Label above: narrow columns. */
-  stack: { box: 'block', label: 'block text-small text-ink-2', body: 'block' },
+  stack: { box: 'block', label: 'mb-0.5 block text-small text-ink-2', body: 'block' },
   /** Label left (112 px), field right: forms. */
   row: {
     box: 'grid grid-cols-1 narrow:grid-cols-[7rem_1fr] gap-x-2 items-baseline',

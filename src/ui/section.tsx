@@ -41,7 +41,7 @@ export function Section({
 /** Names and values in two columns; a value may be anything. */
 export function Facts({ children }: { children: ReactNode }) {
   return (
-    <dl className="grid grid-cols-[minmax(5rem,7.5rem)_1fr] gap-x-3 gap-y-0.5 text-body [&>dd]:min-h-6 [&>dd]:min-w-0 [&>dd]:[overflow-wrap:anywhere] [&>dt]:text-ink-2">
+    <dl className="grid grid-cols-[minmax(5rem,7.5rem)_1fr] items-baseline gap-x-3 gap-y-0.5 text-body leading-5 [&>dd]:min-w-0 [&>dd]:[overflow-wrap:anywhere] [&>dt]:text-ink-2">
       {children}
     </dl>
   )

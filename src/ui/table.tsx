@@ -55,7 +55,9 @@ export function Td({
   className = '',
   ...rest
 }: Omit<ComponentProps<'td'>, 'align'> & { align?: Side }) {
-  return <td className={`h-6 border-b border-hair px-1.5 py-[3px] ${sides[align]} ${className}`} {...rest} />
+  return (
+    <td className={`h-6 border-b border-hair px-1.5 py-[2.5px] ${sides[align]} ${className}`} {...rest} />
+  )
 }
 
 /** A row whose first cell names it. */
@@ -63,7 +65,7 @@ export function RowHead({ className = '', ...rest }: ComponentProps<'th'>) {
   return (
     <th
       scope="row"
-      className={`h-6 border-b border-hair px-1.5 py-[3px] text-left font-medium ${className}`}
+      className={`h-6 border-b border-hair px-1.5 py-[2.5px] text-left font-medium ${className}`}
       {...rest}
     />
   )

@@ -62,7 +62,7 @@ export function VerdictShape({ shape, label }: { shape: Shape; label?: string })
     viewBox: `0 0 ${width} 12`,
     width,
     height: 12,
-    className: 'inline-block shrink-0 forced-colors:text-[CanvasText]',
+    className: 'inline-block shrink-0 align-[-1px] forced-colors:text-[CanvasText]',
   }
   if (label === undefined) {
     return (

@@ -29,9 +29,9 @@ export function verdictTone(verdict: VerdictName): string {
 export function Verdict({ verdict, word }: { verdict: VerdictName; word?: string }) {
   const { shape, word: own, tone } = verdicts[verdict]
   return (
-    <span className={`inline-flex items-center gap-1.5 font-semibold whitespace-nowrap ${tone}`}>
+    <span className={`font-semibold whitespace-nowrap ${tone}`}>
       <VerdictShape shape={shape} />
-      {word ?? own}
+      <span className="ml-1.5">{word ?? own}</span>
     </span>
   )
 }

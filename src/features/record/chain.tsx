@@ -24,7 +24,7 @@ export function Chain({ record }: { record: TrimRecord }) {
       {chain.error ? <Problem error={chain.error} /> : null}
       <ol className="flex overflow-x-auto pb-1">
         {records.map((one, i) => (
-          <li key={one.id} className="min-w-48 flex-1 pr-4 last:flex-none">
+          <li key={one.id} className="min-w-48 max-w-80 flex-1 pr-4">
             <p className="mb-1 font-semibold">{linkName(one)}</p>
             <p className="flex h-4 items-center gap-1">
               {one.verdict ? <VerdictMark verdict={one.verdict} /> : <span className="size-2 bg-ink-3" />}
@@ -38,7 +38,9 @@ export function Chain({ record }: { record: TrimRecord }) {
                 </strong>
               ) : (
                 <LinkButton className="min-h-6 text-small" to={paths.record(one.id)}>
-                  record <Whole value={one.number} />
+                  <span>
+                    record <Whole value={one.number} />
+                  </span>
                 </LinkButton>
               )}
             </p>

@@ -3,6 +3,7 @@ import { limits } from '../../../shared/limits.ts'
 import { Button } from '../../ui/button.tsx'
 import { Field } from '../../ui/field.tsx'
 import { Select, TextInput } from '../../ui/input.tsx'
+import { KeyHint } from '../../ui/key-hint.tsx'
 import { verdictWord } from '../../ui/verdict.tsx'
 import { type Filters, kindChoices, verdictChoices } from './filters.ts'
 import { kindWord } from './words.ts'
@@ -52,7 +53,24 @@ export function FilterRow({
           {count === 1 ? 'clear the filter' : `clear ${count} filters`}
         </Button>
       ) : null}
+      <FilterKeys />
     </search>
+  )
+}
+
+function FilterKeys() {
+  return (
+    <span aria-hidden="true" className="ml-auto hidden gap-3 text-small text-ink-2 wide:flex">
+      <span>
+        <KeyHint keys="/" /> filter
+      </span>
+      <span>
+        <KeyHint keys="j k" /> move
+      </span>
+      <span>
+        <KeyHint keys="Enter" /> open
+      </span>
+    </span>
   )
 }
 

@@ -61,6 +61,6 @@ function conditionsText({ temperatureC, humidityPercent }: TrimRecord['condition
 function instrumentText({ conditions, result }: TrimRecord): string {
   const limits = result?.fit?.instrument
   const name = conditions.instrument ?? limits?.id ?? null
-  const text = limits ? `${limits.gainPpm} ppm and ${exact(limits.offsetV, 'V')}` : 'no limits stated'
-  return name === null ? text : `${name}, ${text}`
+  const text = limits ? `${limits.gainPpm} ppm and ${exact(limits.offsetV, 'V')}` : null
+  return [name, text].filter(Boolean).join(', ') || 'not stated'
 }

@@ -15,16 +15,19 @@ export function SignInForm({ email: known = '', onDone }: { email?: string; onDo
   const wait = slowedFor(signIn.error)
   const left = useCountdown(wait, signIn.submittedAt)
   const slowed = wait > 0 && left > 0
+  const [tried, setTried] = useState(false)
+  const missing = (value: string, what: string) => (tried && value === '' ? `${what} is missing.` : undefined)
 
   const submit = (event: FormEvent) => {
     event.preventDefault()
-    if (slowed || signIn.isPending) return
+    setTried(true)
+    if (slowed || signIn.isPending || email === '' || password === '') return
     signIn.mutate({ email, password }, { onSuccess: () => onDone?.(), onError: () => setPassword('') })
   }
 
   return (
     <form onSubmit={submit} className="space-y-3" noValidate>
-      <Field label="E-mail">
+      <Field label="E-mail" error={missing(email, 'E-mail')}>
         <TextInput
           type="email"
           autoComplete="username"
@@ -34,7 +37,7 @@ export function SignInForm({ email: known = '', onDone }: { email?: string; onDo
           onChange={(event) => setEmail(event.target.value)}
         />
       </Field>
-      <Field label="Password">
+      <Field label="Password" error={signIn.error ? undefined : missing(password, 'Password')}>
         <TextInput
           type="password"
           autoComplete="current-password"
@@ -45,11 +48,7 @@ export function SignInForm({ email: known = '', onDone }: { email?: string; onDo
         />
       </Field>
       <SignInTrouble error={signIn.error} slowed={slowed} left={left} />
-      <Button
-        look="primary"
-        type="submit"
-        disabled={slowed || signIn.isPending || email === '' || password === ''}
-      >
+      <Button look="primary" type="submit" disabled={slowed || signIn.isPending}>
         {signIn.isPending ? 'Signing in' : 'Sign in'}
       </Button>
     </form>

@@ -1,6 +1,8 @@
 import { useQuery } from '@tanstack/react-query'
+import { lazy, Suspense } from 'react'
 import { useParams } from 'react-router-dom'
 import type { Record as TrimRecord } from '../../../shared/contract/record.ts'
+import { revisionOptions } from '../../features/design/queries.ts'
 import { Chain } from '../../features/record/chain.tsx'
 import { LedgerPlace } from '../../features/record/ledger-place.tsx'
 import { Notices } from '../../features/record/notices.tsx'
@@ -11,6 +13,7 @@ import { Loading } from '../../ui/loading.tsx'
 import { Whole } from '../../ui/number-text.tsx'
 import { PageHead } from '../../ui/page-head.tsx'
 import { PageProblem } from '../../ui/page-problem.tsx'
+import { Problem } from '../../ui/problem.tsx'
 import { Section } from '../../ui/section.tsx'
 import { TimeText } from '../../ui/time-text.tsx'
 import { Verdict } from '../../ui/verdict.tsx'
@@ -18,6 +21,8 @@ import { RecordActs } from './record-acts.tsx'
 import { RecordResult } from './record-result.tsx'
 
 const place = 'History'
+// Plot and solver come after the numbers, which are what one opens a record for.
+const RecordDrawn = lazy(() => import('./record-drawn.tsx'))
 
 export default function RecordScreen() {
   const { id = '' } = useParams()
@@ -59,6 +64,7 @@ function RecordPage({ record }: { record: TrimRecord }) {
         <Notices notices={record.notices} />
         <Chain record={record} />
         <RecordResult record={record} />
+        <Drawn record={record} />
         <div className="grid gap-x-7 gap-y-3.5 wide:grid-cols-2">
           <Section title="Made under">
             <RecordFacts record={record} />
@@ -67,5 +73,20 @@ function RecordPage({ record }: { record: TrimRecord }) {
         </div>
       </div>
     </>
+  )
+}
+
+function Drawn({ record }: { record: TrimRecord }) {
+  const revision = useQuery({
+    ...revisionOptions(record.design, record.revision),
+    enabled: record.result !== null,
+  })
+  if (record.result === null) return null
+  if (revision.error) return <Problem error={revision.error} />
+  if (!revision.data) return <Loading>Reading the revision.</Loading>
+  return (
+    <Suspense fallback={<Loading>Reading the plot.</Loading>}>
+      <RecordDrawn record={record} design={revision.data.document} />
+    </Suspense>
   )
 }
