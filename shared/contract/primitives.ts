@@ -10,7 +10,10 @@ export const code = z
   .int()
   .nonnegative()
   .max(2 ** limits.converterBitsMax - 1)
-export const instant = z.iso.datetime({ offset: true })
+/** Bounded, so that every database and language can hold it whatever its offset. */
+export const instant = z.iso
+  .datetime({ offset: true })
+  .refine((text) => text >= '1970' && text < '2200', 'Use a time between 1970 and 2200.')
 export const sha256Hex = z.string().regex(/^[0-9a-f]{64}$/)
 export const coding = z.enum(['straight-binary', 'offset-binary', 'twos-complement'])
 export const method = z.enum(['best-fit', 'minimax', 'terminal'])
