@@ -1,0 +1,52 @@
+import express, { type Express, type RequestHandler, Router } from 'express'
+import { OgeeError } from '../shared/errors.ts'
+import type { Deps } from './http/deps.ts'
+import { tokenFinder } from './http/find-token.ts'
+import { healthz, readyz } from './http/health.ts'
+import { identify } from './http/identify.ts'
+import { problemPage } from './http/problem-page.ts'
+import { problemHandler } from './http/problems.ts'
+import { requestLog } from './http/request-log.ts'
+import { securityHeaders } from './http/security-headers.ts'
+import { createServe } from './http/serve.ts'
+import { createSessions } from './http/session.ts'
+import { throttleSignIn, throttleToken } from './http/throttles.ts'
+import { webApp } from './http/web-app.ts'
+import { registerRoutes } from './routes/register.ts'
+
+export type App = { express: Express; stop: () => void }
+
+/** Builds the app from what it depends on. Nothing here knows where a dependency comes from. */
+export function createApp(deps: Deps): App {
+  const app = express()
+  app.disable('x-powered-by')
+  app.set('etag', false)
+  app.set('query parser', 'simple')
+  app.set('trust proxy', deps.config.trustedHops)
+  app.use(...requestLog(deps.logger), securityHeaders(deps.config))
+  app.get('/healthz', healthz)
+  app.get('/readyz', readyz(deps.database))
+  app.get('/problems/:code', problemPage)
+  const sessions = createSessions(deps)
+  const tokens = tokenFinder(deps.database, deps.now)
+  const api = Router({ caseSensitive: true, strict: true })
+  const serve = createServe(api, deps, {
+    identify: identify(deps.database, sessions, tokens),
+    throttleToken: throttleToken(deps.quotas),
+    throttleSignIn: throttleSignIn(deps.quotas),
+  })
+  registerRoutes(serve, api, { ...deps, sessions, tokens })
+  api.use(nothingHere)
+  app.use('/api/v1', api)
+  app.use('/api', nothingHere)
+  app.use(webApp(deps))
+  app.use(nothingHere, problemHandler)
+  return { express: app, stop: sessions.stop }
+}
+
+const nothingHere: RequestHandler = (request) => {
+  throw new OgeeError(
+    'not-found',
+    `There is nothing at ${request.method} ${request.baseUrl}${request.path}.`.slice(0, 300),
+  )
+}

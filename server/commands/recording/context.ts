@@ -1,0 +1,87 @@
+import type { RecordBody } from '../../../shared/contract/record.ts'
+import { canonicalText } from '../../../shared/ledger/canonical.ts'
+import type { RevisionInPlay } from './catalogue.ts'
+import type { Known } from './followed.ts'
+import type { Job } from './job.ts'
+import type { CurrentCodes, Place, PlaceState } from './place.ts'
+
+/** What is known when one request is decided; decisions read it and change nothing. */
+export type Context = {
+  job: Job
+  id: string
+  number: number
+  recordedAt: string
+  revision: RevisionInPlay
+  unit: { id: number; fresh: boolean }
+  place: Place
+  state: PlaceState
+  known: Known
+}
+
+/** A record to be, and how its place stands after it. */
+export type Decision = { body: RecordBody; notices: NoticeList; state: PlaceState; context: Context }
+export type NoticeList = { code: NoticeCode; message: string; record?: string }[]
+type NoticeCode =
+  | 'newer-record'
+  | 'revision-withdrawn'
+  | 'clock-skew'
+  | 'claimed-codes-differ'
+  | 'overridden'
+  | 'withdrawn'
+  | 'replayed'
+
+/** The fields that every record has, whatever its kind. */
+export function commonBody(context: Context) {
+  const { job, id, number, recordedAt, revision, place } = context
+  const { request, recorder } = job
+  return {
+    format: 'ogee.record/1',
+    id,
+    number,
+    kind: request.kind,
+    unit: request.unit,
+    channel: place.channel,
+    range: place.range,
+    lot: request.lot ?? null,
+    design: revision.design,
+    revision: revision.number,
+    designHash: revision.hash,
+    conditions: request.conditions ?? {},
+    reason: request.reason ?? null,
+    claimed: request.claimed ?? null,
+    by: recorder.by,
+    station: recorder.station?.name ?? null,
+    measuredAt: measuredAt(request),
+    recordedAt,
+  } as const
+}
+
+/** The station's clock: as said, else when the last point was read. */
+function measuredAt(request: Job['request']): string | null {
+  if (request.measuredAt !== undefined) return request.measuredAt
+  const read = (request.points ?? []).flatMap((point) => point.readAt ?? [])
+  return read.reduce<string | null>(
+    (latest, at) => (latest === null || Date.parse(at) > Date.parse(latest) ? at : latest),
+    null,
+  )
+}
+
+export function lastOf({ id, recordedAt, job }: Context): PlaceState['last'] {
+  return { record: id, recordedAt, station: job.recorder.station?.id ?? null }
+}
+
+export function currentFrom(body: RecordBody): CurrentCodes | null {
+  const { result } = body
+  if (result?.format !== 'ogee.codes/1' || result.trim.codes === null) return null
+  return {
+    record: body.id,
+    number: body.number,
+    revision: body.revision,
+    recordedAt: body.recordedAt,
+    codes: result.trim.codes,
+    words: result.trim.words ?? {},
+  }
+}
+
+export const sameJson = (a: object | null, b: object | null) =>
+  canonicalText(a as never) === canonicalText(b as never)

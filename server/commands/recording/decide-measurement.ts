@@ -1,0 +1,92 @@
+import type { CodesDocument } from '../../../shared/contract/codes.ts'
+import type { Point } from '../../../shared/contract/point.ts'
+import type { RecordBody } from '../../../shared/contract/record.ts'
+import type { VerifyDocument } from '../../../shared/contract/verify.ts'
+import { OgeeError } from '../../../shared/errors.ts'
+import { appliedVoltages } from '../../../shared/solver/applied.ts'
+import { codesOn } from '../../../shared/solver/codes.ts'
+import type { PreviousPass } from '../../../shared/solver/learn.ts'
+import { verifyPoints } from '../../../shared/solver/verify.ts'
+import { channelOf, designOf } from './catalogue.ts'
+import { type Context, commonBody, currentFrom, type Decision, lastOf } from './context.ts'
+import { type Followed, measurementBefore } from './followed.ts'
+import { measurementNotices } from './notices.ts'
+
+type Applied = NonNullable<RecordBody['applied']>
+type Judged = Pick<RecordBody, 'result' | 'verdict' | 'accepted'>
+
+/** Computes a trim or a verification. Every computed unit becomes a record, out of reach and suspect included. */
+export function decideMeasurement(context: Context): Decision {
+  const { job, state, known, place } = context
+  const { request } = job
+  const isTrim = request.kind === 'trim'
+  const follows = request.follows ?? (!isTrim && state.measurement !== null ? 'last' : undefined)
+  const before = follows === undefined ? null : measurementBefore(follows, known, state, place)
+  const applied = appliedWhileMeasuring(context, before)
+  const points = request.points ?? []
+  const judged = isTrim ? trim(context, points, applied, before) : verify(context, points, applied)
+  const pass = (before?.body.pass ?? 0) + (isTrim ? 1 : 0)
+  const body: RecordBody = {
+    ...commonBody(context),
+    ...judged,
+    pass,
+    follows: before?.body.id ?? null,
+    applied,
+    effects: isTrim ? request.effects : null,
+    points,
+  }
+  const current = isTrim && body.accepted ? (currentFrom(body) ?? state.current) : state.current
+  return {
+    body,
+    notices: measurementNotices(context, body),
+    state: { current, last: lastOf(context), measurement: body.id, pass },
+    context,
+  }
+}
+
+function trim(context: Context, points: Point[], applied: Applied, before: Followed | null): Judged {
+  const { revision, place, job } = context
+  const learned = job.request.effects === 'learned' ? previousPass(context, before) : undefined
+  const result = codesOn(channelOf(revision.hash, place.range), points, { applied, learned }) as CodesDocument
+  const { verdict } = result.trim
+  return { result, verdict, accepted: verdict === 'ok' || verdict === 'too-coarse' }
+}
+
+function verify({ revision, place }: Context, points: Point[], applied: Applied): Judged {
+  const design = designOf(revision.hash)
+  // Codes that the design cannot have are refused here too, although judging does not use them.
+  if (applied !== 'neutral') appliedVoltages(channelOf(revision.hash, place.range).trimmers, applied)
+  const result = verifyPoints(design, points, { rangeId: place.range }) as VerifyDocument
+  const { outcome } = result
+  return { result, verdict: outcome, accepted: outcome === 'pass' || outcome === 'conditional-pass' }
+}
+
+/** Codes loaded but not said would be corrected twice, so only what is certain is filled in (contract.md). */
+function appliedWhileMeasuring({ job, state }: Context, before: Followed | null): Applied {
+  const { applied, kind } = job.request
+  if (applied !== undefined) return applied
+  if (kind === 'verify' && before) return codesAfter(before.body)
+  if (state.current === null) return 'neutral'
+  throw new OgeeError(
+    'applied-required',
+    `This unit has codes from record ${state.current.number}. Say which codes were loaded while measuring, or "neutral".`,
+    { errors: [{ path: '/applied', message: 'Needed, because the unit has current codes.' }] },
+  )
+}
+
+function codesAfter(body: RecordBody): Applied {
+  const given = body.result?.format === 'ogee.codes/1' ? body.result.trim.codes : null
+  return given ?? body.applied ?? 'neutral'
+}
+
+function previousPass({ revision, place }: Context, before: Followed | null): PreviousPass {
+  const result = before?.body.result
+  if (result?.format === 'ogee.codes/1') return result
+  if (before && result?.format === 'ogee.verify/1' && result.fit !== null) {
+    const { trimmers } = channelOf(revision.hash, place.range)
+    const { gain, offset } = appliedVoltages(trimmers, before.body.applied ?? 'neutral')
+    return { fit: result.fit, trim: { appliedNodeV: { gain, offset } } }
+  }
+  const message = 'Effects are learned from the measurement before: follow one that has a fit.'
+  throw new OgeeError('follows-unknown', message, { errors: [{ path: '/follows', message }] })
+}

@@ -1,0 +1,68 @@
+import type { Notice } from '../../../shared/contract/record.ts'
+import { restoreReceipt } from '../../../shared/ledger/receipt.ts'
+import type { Sql } from '../../db/sql.ts'
+import type { StoredRecord } from './job.ts'
+
+type Row = {
+  id: string
+  recordedAt: Date
+  receiptKey: string
+  receiptSignature: Buffer
+  notices: string
+  leaf: Buffer
+  body: Buffer
+  idx: number | null
+}
+
+/** Records as they were stored, by id, with what was said about them since. */
+export async function readStored(sql: Sql, ids: readonly string[]): Promise<Map<string, StoredRecord>> {
+  if (ids.length === 0) return new Map()
+  const rows = await sql.rows<Row>(
+    `SELECT r.id, r.recorded_at AS recordedAt, r.receipt_key AS receiptKey, r.receipt_signature AS receiptSignature,
+      r.notices, l.hash AS leaf, l.body, e.idx
+      FROM records r JOIN ledger_leaves l ON l.id = r.leaf_id LEFT JOIN ledger_entries e ON e.leaf_id = r.leaf_id
+      WHERE r.id IN (?)`,
+    [ids],
+  )
+  const later = await sql.rows<Said>(
+    `SELECT id, follows, kind, number FROM records WHERE follows IN (?) AND kind IN ('override', 'withdraw')
+      ORDER BY recorded_at, id`,
+    [ids],
+  )
+  return new Map(rows.map((row) => [row.id, storedOf(row, later)]))
+}
+
+type Said = { id: string; follows: string; kind: string; number: number }
+
+function storedOf(row: Row, later: readonly Said[]): StoredRecord {
+  const promised = {
+    record: row.id,
+    leaf: row.leaf.toString('hex'),
+    recordedAt: row.recordedAt.toISOString(),
+  }
+  const said = later.filter((one) => one.follows === row.id).map(noticeOf)
+  return {
+    text: row.body.toString('utf8'),
+    notices: [...(JSON.parse(row.notices) as Notice[]), ...said],
+    receipt: restoreReceipt(promised, row.receiptKey, row.receiptSignature),
+    index: row.idx,
+  }
+}
+
+function noticeOf({ id, kind, number }: Said): Notice {
+  return kind === 'override'
+    ? { code: 'overridden', message: `Its codes were accepted by record ${number}.`, record: id }
+    : { code: 'withdrawn', message: `It was withdrawn by record ${number} and no longer counts.`, record: id }
+}
+
+/** The reply: the canonical bytes as they are, and what may change around them. */
+export function recordJson(record: StoredRecord, replayed = false): string {
+  const notices = replayed ? [...record.notices, replayNotice] : record.notices
+  const ledger = record.index === null ? null : { index: record.index }
+  return `${record.text.slice(0, -1)},"ledger":${JSON.stringify(ledger)},"notices":${JSON.stringify(notices)},"receipt":${JSON.stringify(record.receipt)}}`
+}
+
+const replayNotice: Notice = {
+  code: 'replayed',
+  message: 'This request was recorded before; this is that record. To measure again, use another key.',
+}

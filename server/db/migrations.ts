@@ -1,0 +1,22 @@
+import type { Sequelize } from 'sequelize'
+import type { RunnableMigration } from 'umzug'
+import { guards } from './migrations/001-guards.ts'
+import { mutableTables } from './migrations/001-mutable.ts'
+import { recordedTables } from './migrations/001-recorded.ts'
+
+/**
+ * Every step there is, in order, by static import: a built file and a source file run the same names. Statements can run
+ * again, because MariaDB commits each by itself and a process can be killed between two.
+ */
+export const migrations: RunnableMigration<Sequelize>[] = [
+  step('001-tables', [...mutableTables, ...recordedTables, ...guards]),
+]
+
+function step(name: string, statements: readonly string[]): RunnableMigration<Sequelize> {
+  return {
+    name,
+    up: async ({ context }) => {
+      for (const statement of statements) await context.query(statement)
+    },
+  }
+}

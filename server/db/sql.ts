@@ -1,0 +1,58 @@
+import { QueryTypes, type Sequelize, type Transaction } from 'sequelize'
+
+export type SqlValue = string | number | bigint | boolean | null | Date | Uint8Array
+/** An array stands for a list (`IN (?)`), an array of arrays for rows (`VALUES ?`). */
+export type SqlParameter = SqlValue | readonly SqlValue[] | readonly (readonly SqlValue[])[]
+
+/**
+ * The one way to SQL that no model covers. Values never become part of the text here: each `?` is handed to the
+ * connector as a bound value, and only its number of places is written into the statement.
+ */
+export type Sql = {
+  /** For models: the transaction that this belongs to, if any. */
+  within: { transaction?: Transaction }
+  rows<Row extends object>(statement: string, values?: readonly SqlParameter[]): Promise<Row[]>
+  run(statement: string, values?: readonly SqlParameter[]): Promise<void>
+}
+
+export function sqlOver(sequelize: Sequelize, transaction?: Transaction): Sql {
+  const within = transaction ? { transaction } : {}
+  return {
+    within,
+    rows: async <Row extends object>(statement: string, values: readonly SqlParameter[] = []) => {
+      const { text, bind } = spread(statement, values)
+      return sequelize.query<Row>(text, { bind, type: QueryTypes.SELECT, ...within })
+    },
+    run: async (statement, values = []) => {
+      const { text, bind } = spread(statement, values)
+      await sequelize.query(text, { bind, type: QueryTypes.RAW, ...within })
+    },
+  }
+}
+
+function spread(statement: string, values: readonly SqlParameter[]): { text: string; bind: SqlValue[] } {
+  const bind: SqlValue[] = []
+  let used = 0
+  const place = (value: SqlValue): string => {
+    bind.push(value instanceof Uint8Array && !Buffer.isBuffer(value) ? Buffer.from(value) : value)
+    return `$${bind.length}`
+  }
+  const text = statement.replaceAll('?', () => {
+    const value = values[used++]
+    if (value === undefined) throw new RangeError(`A value is missing for: ${statement}`)
+    if (!isList(value)) return place(value)
+    return value.map((entry) => (isList(entry) ? `(${entry.map(place).join(',')})` : place(entry))).join(',')
+  })
+  if (used !== values.length) throw new RangeError(`${values.length} values for ${used} places: ${statement}`)
+  return { text, bind }
+}
+
+function isList(value: SqlParameter): value is readonly SqlValue[] | readonly (readonly SqlValue[])[] {
+  return Array.isArray(value)
+}
+
+/** A DATETIME(3) value in UTC, written by us so that no time zone of process or connector has a say. */
+export function sqlTime(instant: string | Date): string {
+  const iso = typeof instant === 'string' ? new Date(instant).toISOString() : instant.toISOString()
+  return iso.slice(0, 23).replace('T', ' ')
+}

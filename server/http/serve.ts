@@ -1,0 +1,143 @@
+import type { Request, RequestHandler, Response, Router } from 'express'
+import type * as z from 'zod'
+import type { Endpoint } from '../../shared/contract/endpoint.ts'
+import { OgeeError } from '../../shared/errors.ts'
+import { limits } from '../../shared/limits.ts'
+import { requireAccess } from '../policies/access.ts'
+import { requireSameSite } from './cross-site.ts'
+import { within } from './deadline.ts'
+import type { Deps } from './deps.ts'
+import { jsonBody } from './json-body.ts'
+import { localsOf } from './locals.ts'
+import type { Principal } from './principal.ts'
+import { validate } from './validate.ts'
+
+type Output<Schema> = [Exclude<Schema, undefined>] extends [never]
+  ? undefined
+  : Exclude<Schema, undefined> extends z.ZodType
+    ? z.output<Exclude<Schema, undefined>>
+    : undefined
+
+/** What a handler gets: everything checked. */
+export type Input<E extends Endpoint> = {
+  /** Asking for it where nobody need be signed in is a defect. */
+  readonly principal: Principal
+  params: Output<E['params']>
+  query: Output<E['query']>
+  body: Output<E['body']>
+  /** The body as it was sent, before defaults: what hashes and exact bytes are made from. */
+  rawBody: unknown
+  idempotencyKey: string
+  request: Request
+  response: Response
+}
+
+/** A reply whose JSON text exists already. */
+export class ReadyJson {
+  readonly text: string
+  constructor(text: string) {
+    this.text = text
+  }
+}
+
+export type Handler<E extends Endpoint> = (
+  input: Input<E>,
+) => Promise<z.input<E['reply']['schema']> | ReadyJson>
+
+/** Registers routes from their descriptions; there is no other way to register one. */
+export type Serve = <E extends Endpoint>(endpoint: E, handler: Handler<E>) => void
+
+export type Gates = {
+  identify: RequestHandler
+  throttleToken: RequestHandler
+  throttleSignIn: RequestHandler
+}
+
+export function createServe(router: Router, deps: Deps, gates: Gates): Serve {
+  return (endpoint, handler) => {
+    const verb = endpoint.method.toLowerCase() as 'get' | 'post' | 'put' | 'patch' | 'delete'
+    router[verb](
+      endpoint.path,
+      ...(needsIdentity(endpoint) ? [gates.identify, gates.throttleToken] : []),
+      guard(endpoint, deps),
+      ...(endpoint.body ? [jsonBody] : []),
+      ...(endpoint.id === 'signIn' ? [gates.throttleSignIn] : []),
+      async (request, response) => {
+        const reply = await within(handler(inputOf(endpoint, request, response)))
+        send(response, endpoint, reply, deps.checkReplies ?? false)
+      },
+    )
+  }
+}
+
+/** Open reads answer whoever asks, whatever they send along; open writes deal with the session. */
+const needsIdentity = (endpoint: Endpoint) => endpoint.access !== 'open' || isUnsafe(endpoint)
+const isUnsafe = (endpoint: Endpoint) => endpoint.method !== 'GET'
+
+function guard(endpoint: Endpoint, deps: Deps): RequestHandler {
+  return (request, response, next) => {
+    const { principal } = localsOf(response)
+    // Access first: who is not signed in hears that, and not how to prove where the request came from.
+    requireAccess(endpoint.access, principal)
+    if (isUnsafe(endpoint) && principal?.kind !== 'token') requireSameSite(request, deps.config.baseUrl)
+    next()
+  }
+}
+
+function inputOf<E extends Endpoint>(endpoint: E, request: Request, response: Response): Input<E> {
+  const { params, query, body } = endpoint
+  const rawBody: unknown = request.body
+  return {
+    get principal() {
+      const { principal } = localsOf(response)
+      if (!principal) throw new Error(`${endpoint.id} asks who calls, but lets everybody in.`)
+      return principal
+    },
+    params: (params ? validate(params, request.params, 'path') : undefined) as Output<E['params']>,
+    query: (query ? validate(query, request.query, 'query') : undefined) as Output<E['query']>,
+    body: (body ? validate(body, rawBody, 'body') : undefined) as Output<E['body']>,
+    rawBody,
+    idempotencyKey: endpoint.idempotent ? idempotencyKeyOf(request) : '',
+    request,
+    response,
+  }
+}
+
+function idempotencyKeyOf(request: Request): string {
+  const key = request.get('idempotency-key')
+  if (key === undefined || key === '') {
+    throw new OgeeError(
+      'idempotency-key-missing',
+      'Send a header Idempotency-Key, so that a retry doubles nothing.',
+    )
+  }
+  if (key.length > limits.idempotencyKeyMax || !/^[\x21-\x7e]+$/.test(key)) {
+    throw new OgeeError(
+      'invalid-request',
+      `The Idempotency-Key must have 1 to ${limits.idempotencyKeyMax} printable ASCII characters without spaces.`,
+      { errors: [{ path: 'Idempotency-Key', message: 'Use printable ASCII without spaces.' }] },
+    )
+  }
+  return key
+}
+
+function send(response: Response, endpoint: Endpoint, reply: unknown, check: boolean): void {
+  const { status, schema, mediaType } = endpoint.reply
+  if (check) {
+    const breach = schema.safeParse(reply instanceof ReadyJson ? JSON.parse(reply.text) : reply)
+    if (!breach.success)
+      throw new Error(`The reply of ${endpoint.id} breaks its schema: ${breach.error.message}`)
+  }
+  response.status(status).set('Cache-Control', 'no-store')
+  if (status === 204) {
+    response.end()
+    return
+  }
+  if (mediaType === 'text/plain') {
+    response.type('text/plain; charset=utf-8').send(String(reply))
+    return
+  }
+  response
+    .type('application/json; charset=utf-8')
+    .send(reply instanceof ReadyJson ? reply.text : JSON.stringify(reply))
+}

@@ -1,0 +1,45 @@
+import { createPrivateKey, generateKeyPairSync, hkdfSync, type KeyObject } from 'node:crypto'
+import { mkdir, open, readFile } from 'node:fs/promises'
+import { dirname } from 'node:path'
+import { OgeeError } from '../../shared/errors.ts'
+
+/** Reads the private key (PKCS 8, PEM); null when there is no file. */
+export async function readKeyFile(path: string): Promise<KeyObject | null> {
+  let text: string
+  try {
+    text = await readFile(path, 'utf8')
+  } catch (cause) {
+    if ((cause as NodeJS.ErrnoException).code === 'ENOENT') return null
+    throw new OgeeError('configuration', `The ledger key ${path} cannot be read.`, { cause })
+  }
+  try {
+    const key = createPrivateKey(text)
+    if (key.asymmetricKeyType === 'ed25519') return key
+  } catch {
+    // Falls through: the text is no key at all, which the same sentence says.
+  }
+  throw new OgeeError('configuration', `The ledger key ${path} is not an Ed25519 private key in PEM form.`)
+}
+
+/** Makes a key and keeps it, readable by the owner alone and on disk before anybody relies on it. */
+export async function writeKeyFile(path: string): Promise<KeyObject> {
+  const { privateKey } = generateKeyPairSync('ed25519')
+  await mkdir(dirname(path), { recursive: true })
+  const file = await open(path, 'wx', 0o600)
+  try {
+    await file.writeFile(privateKey.export({ type: 'pkcs8', format: 'pem' }))
+    await file.sync()
+  } finally {
+    await file.close()
+  }
+  return privateKey
+}
+
+/**
+ * A secret for another purpose, from the same file: so that it stands in no database dump and all servers that share the
+ * ledger key share it too.
+ */
+export function derivedSecret(privateKey: KeyObject, purpose: string): string {
+  const seed = privateKey.export({ type: 'pkcs8', format: 'der' })
+  return Buffer.from(hkdfSync('sha256', seed, 'ogee', purpose, 32)).toString('base64url')
+}

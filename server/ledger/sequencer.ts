@@ -1,0 +1,66 @@
+import type { Logger } from 'pino'
+import type { Database } from '../db/connection.ts'
+import { type PassResult, sequencePass } from './sequence.ts'
+import type { Signer } from './signer.ts'
+
+/** Leaves of other servers, and of those that died, are found by looking. Milliseconds. */
+const pollMs = 250
+/** Records that arrive together share a pass. Milliseconds. */
+const gatherMs = 20
+const afterFailureMs = 1_000
+
+export type Sequencer = {
+  /** Something was recorded: a pass follows soon. */
+  notify: () => void
+  /** Runs passes until nothing is pending. */
+  drain: () => Promise<void>
+  stop: () => Promise<void>
+}
+
+/** Runs passes one after another: soon after each notice, and now and then without one. */
+export function startSequencer(
+  database: Database,
+  signer: Signer,
+  now: () => Date,
+  logger: Logger,
+): Sequencer {
+  let timer: NodeJS.Timeout | undefined
+  let dueAt = Number.POSITIVE_INFINITY
+  let running: Promise<unknown> = Promise.resolve()
+  let stopped = false
+
+  const schedule = (ms: number) => {
+    const at = Date.now() + ms
+    if (stopped || at >= dueAt) return
+    clearTimeout(timer)
+    dueAt = at
+    timer = setTimeout(() => {
+      dueAt = Number.POSITIVE_INFINITY
+      running = onePass()
+    }, ms)
+  }
+  const onePass = async () => {
+    try {
+      const { more } = await sequencePass(database, signer, now)
+      schedule(more ? 0 : pollMs)
+    } catch (error) {
+      logger.warn({ err: error }, 'A pass of the ledger failed; the next follows.')
+      schedule(afterFailureMs)
+    }
+  }
+  schedule(0)
+  return {
+    notify: () => schedule(gatherMs),
+    drain: async () => {
+      await running
+      let pass: PassResult
+      do pass = await sequencePass(database, signer, now)
+      while (pass.more)
+    },
+    stop: async () => {
+      stopped = true
+      clearTimeout(timer)
+      await running
+    },
+  }
+}

@@ -1,0 +1,94 @@
+import type { Sequelize } from 'sequelize'
+import type { Kind, RecordLine } from '../../shared/contract/record.ts'
+import { bytes, flag, longText, real, type Table, table, text, time, whole } from './table.ts'
+
+/** Written once, by record-trims; read here. */
+export type RecordRow = {
+  id: string
+  number: number
+  kind: Kind
+  unitId: number
+  unit: string
+  channel: string
+  rangeId: string
+  lot: string | null
+  design: string
+  revision: number
+  pass: number
+  follows: string | null
+  verdict: RecordLine['verdict']
+  accepted: boolean
+  gainErrorPpm: number | null
+  offsetErrorV: number | null
+  gainCode: number | null
+  offsetCode: number | null
+  worstLsb: number | null
+  byName: string
+  stationId: string | null
+  station: string | null
+  measuredAt: Date | null
+  recordedAt: Date
+  leafId: number
+  receiptKey: string
+  receiptSignature: Buffer
+  /** JSON: notices given when it was recorded. */
+  notices: string
+}
+
+export const records = (sequelize: Sequelize): Table<RecordRow> =>
+  table<RecordRow>(sequelize, 'records', {
+    id: { type: text, primaryKey: true },
+    number: whole,
+    kind: text,
+    unitId: whole,
+    unit: text,
+    channel: text,
+    rangeId: text,
+    lot: text,
+    design: text,
+    revision: whole,
+    pass: whole,
+    follows: text,
+    verdict: text,
+    accepted: flag,
+    gainErrorPpm: real,
+    offsetErrorV: real,
+    gainCode: whole,
+    offsetCode: whole,
+    worstLsb: real,
+    byName: text,
+    stationId: text,
+    station: text,
+    measuredAt: time,
+    recordedAt: time,
+    leafId: whole,
+    receiptKey: text,
+    receiptSignature: bytes,
+    notices: longText,
+  })
+
+export function recordLineReply(row: RecordRow): RecordLine {
+  return {
+    id: row.id,
+    number: row.number,
+    kind: row.kind,
+    unit: row.unit,
+    channel: row.channel,
+    range: row.rangeId,
+    lot: row.lot,
+    design: row.design,
+    revision: row.revision,
+    pass: row.pass,
+    verdict: row.verdict,
+    accepted: Boolean(row.accepted),
+    gainErrorPpm: row.gainErrorPpm,
+    offsetErrorV: row.offsetErrorV,
+    gainCode: row.gainCode,
+    offsetCode: row.offsetCode,
+    worstLsb: row.worstLsb,
+    by: row.byName,
+    station: row.station,
+    measuredAt: row.measuredAt?.toISOString() ?? null,
+    recordedAt: row.recordedAt.toISOString(),
+  }
+}

@@ -1,0 +1,23 @@
+import type { Principal } from '../http/principal.ts'
+
+/** What a principal may see of records: everything, or one station's; of every design, or of some. */
+export type Sight = { station: 'all' | string | null; designs: readonly string[] | null }
+
+export function sightOf(principal: Principal): Sight {
+  if (principal.kind === 'person') return { station: 'all', designs: null }
+  const all = principal.scopes.includes('trims:read-all')
+  return { station: all ? 'all' : (principal.station?.id ?? null), designs: principal.designs }
+}
+
+export function maySeeRecord(
+  principal: Principal,
+  record: { stationId: string | null; design: string },
+): boolean {
+  const sight = sightOf(principal)
+  const station = sight.station === 'all' || (sight.station !== null && sight.station === record.stationId)
+  return station && maySeeDesign(principal, record.design)
+}
+
+export function maySeeDesign(principal: Principal, design: string): boolean {
+  return principal.kind === 'person' || principal.designs === null || principal.designs.includes(design)
+}

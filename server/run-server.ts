@@ -1,0 +1,98 @@
+import type { AddressInfo } from 'node:net'
+import type { RequestHandler } from 'express'
+import { OgeeError } from '../shared/errors.ts'
+import { createApp } from './app.ts'
+import { isSetupOpen } from './commands/create-first-administrator.ts'
+import { type Config, servedOverTls } from './config.ts'
+import { type Database, openDatabase } from './db/connection.ts'
+import { migrate, missingSteps } from './db/migrate.ts'
+import { loadDemo } from './demo/load-demo.ts'
+import { type Deps, defaultQuotas } from './http/deps.ts'
+import { createServer } from './http/http-server.ts'
+import { openLedger } from './ledger/open-ledger.ts'
+import { startSequencer } from './ledger/sequencer.ts'
+import { createLogger } from './log.ts'
+import { newSetupSecret, type SetupSecret } from './policies/setup-secret.ts'
+
+export type RunningServer = { address: string; stop: () => Promise<void> }
+
+/** Starts everything in order and gives back how to stop it: accept no more, finish what is under way, close the pool. */
+export async function runServer(config: Config, say: (line: string) => void): Promise<RunningServer> {
+  const logger = createLogger(config.log)
+  if (config.adminUrl !== null) await migrate(config.adminUrl, config.databaseUrl)
+  const database = openDatabase(config.databaseUrl)
+  await requireSchema(database)
+  const now = () => new Date()
+  const { signer, sessionSecret } = await openLedger(database, { ...config, now })
+  const sequencer = startSequencer(database, signer, now, logger)
+  const setup = newSetupSecret()
+  const deps: Deps = {
+    database,
+    signer,
+    sessionSecret,
+    notifyLedger: sequencer.notify,
+    now,
+    logger,
+    config,
+    setup,
+    quotas: defaultQuotas,
+  }
+  if (config.demo) await loadDemo(deps, config.dataDir, say)
+  const vite = config.dev ? await developmentPage() : null
+  const app = createApp(vite ? { ...deps, devPage: vite.middleware } : deps)
+  const server = createServer(app.express, config.tls)
+  await new Promise<void>((resolve, reject) => {
+    server.once('error', (cause: NodeJS.ErrnoException) => reject(cannotListen(config, cause)))
+    server.listen(config.port, config.host, resolve)
+  })
+  const address = addressOf(config, server.address() as AddressInfo)
+  if (await isSetupOpen(database.sql)) sayHowToSetUp(say, address, setup)
+  say(`Ogee is ready at ${address}`)
+  return {
+    address,
+    stop: async () => {
+      const closed = new Promise((resolve) => server.close(resolve))
+      server.closeIdleConnections()
+      await Promise.race([closed, new Promise((resolve) => setTimeout(resolve, 5_000).unref())])
+      server.closeAllConnections()
+      app.stop()
+      await vite?.close()
+      await sequencer.stop()
+      await database.close()
+    },
+  }
+}
+
+async function requireSchema(database: Database): Promise<void> {
+  const missing = await missingSteps(database)
+  if (missing.length === 0) return
+  throw new OgeeError(
+    'configuration',
+    `The database lacks ${missing.join(', ')}: set DATABASE_ADMIN_URL for one start, so that it can be brought up to date.`,
+  )
+}
+
+/** In a fragment, which no browser sends and no log sees. */
+function sayHowToSetUp(say: (line: string) => void, address: string, setup: SetupSecret): void {
+  say(`There are no people yet. Make the first administrator at ${address}/setup#${setup.text}`)
+}
+
+function addressOf(config: Config, bound: AddressInfo): string {
+  if (config.baseUrl !== null) return config.baseUrl
+  const host = bound.family === 'IPv6' ? `[${bound.address}]` : bound.address
+  return `${servedOverTls(config) ? 'https' : 'http'}://${host}:${bound.port}`
+}
+
+function cannotListen(config: Config, cause: NodeJS.ErrnoException): Error {
+  const taken = cause.code === 'EADDRINUSE' ? 'it is in use. Set PORT to another' : cause.message
+  return new OgeeError('configuration', `Cannot listen on ${config.host}:${config.port}: ${taken}.`, {
+    cause,
+  })
+}
+
+/** Vite inside our own server, so that page and interface share an origin while developing. */
+async function developmentPage(): Promise<{ middleware: RequestHandler; close: () => Promise<void> }> {
+  const { createServer: createVite } = await import('vite')
+  const vite = await createVite({ server: { middlewareMode: true }, appType: 'spa' })
+  return { middleware: vite.middlewares as unknown as RequestHandler, close: () => vite.close() }
+}
