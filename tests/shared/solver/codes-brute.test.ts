@@ -1,0 +1,180 @@
+import fc from 'fast-check'
+import { describe, expect, test } from 'vitest'
+import { computeCodes } from '../../../shared/solver/codes.ts'
+import type { Adjuster, Design } from '../../../shared/solver/types.ts'
+import { plainDesign, pointsOnLine } from '../../support/solver-fixtures.ts'
+
+/** The search for codes against trying every pair. */
+type Drawn = {
+  lowV: number
+  offsetLsb: number
+  gainPpm: number
+  gain: { slope: number; cross: number; bits: number; low: number; high: number }
+  offset: { perV: number; cross: number; bits: number; low: number; high: number }
+  target: number
+}
+
+const end = fc.integer({ min: 3, max: 20 }).map((v) => v / 10)
+const drawn: fc.Arbitrary<Drawn> = fc.record({
+  lowV: fc.constantFrom(-10, 0),
+  offsetLsb: fc.integer({ min: -300, max: 300 }).map((v) => v / 10),
+  gainPpm: fc.integer({ min: -4000, max: 4000 }).map((v) => v / 10),
+  gain: fc.record({
+    slope: fc.constantFrom(0.002, -0.0011, 0.0007),
+    cross: fc.constantFrom(0, 0, 0.004, -0.003),
+    bits: fc.integer({ min: 2, max: 6 }),
+    low: end.map((v) => -v),
+    high: end,
+  }),
+  offset: fc.record({
+    perV: fc.constantFrom(0.01, -0.02),
+    cross: fc.constantFrom(0, 0, 0.0004, -0.0003),
+    bits: fc.integer({ min: 2, max: 6 }),
+    low: end,
+    high: end.map((v) => -v),
+  }),
+  target: fc.constantFrom(0.5, 50),
+})
+
+function adjuster(
+  slopePerV: number,
+  offsetPerV: number,
+  bits: number,
+  lowV: number,
+  highV: number,
+): Adjuster {
+  return {
+    effect: { kind: 'measured', slopePerV, offsetPerV },
+    effectTolerance: 0.1,
+    node: { nominalV: 0 },
+    source: { bits, coding: 'straight-binary', lowV, highV },
+    network: { kind: 'direct' },
+  }
+}
+
+function designOf(d: Drawn): Design {
+  return plainDesign({
+    lowV: d.lowV,
+    highV: 10,
+    targetLsb: d.target,
+    adjusters: {
+      gain: adjuster(d.gain.slope, d.gain.cross, d.gain.bits, d.gain.low, d.gain.high),
+      offset: adjuster(d.offset.cross, d.offset.perV, d.offset.bits, d.offset.low, d.offset.high),
+    },
+  })
+}
+
+/** Errors at both ends for a pair of codes, larger first. */
+function endsOf(
+  design: Design,
+  o: number,
+  g: number,
+  codes: { gain: number; offset: number },
+): [number, number] {
+  const { lowV, highV } = design.ranges[0]!
+  const lsb = (highV - lowV) / 2 ** design.converter.bits
+  const sizes = [lowV, highV - lsb].map((x) => {
+    let e = o + g * x
+    for (const which of ['gain', 'offset'] as const) {
+      const { effect, source } = design.adjusters[which]!
+      if (effect.kind !== 'measured') throw new Error('measured effects only')
+      const v = source.lowV + (codes[which] * (source.highV - source.lowV)) / 2 ** source.bits
+      e += v * (effect.offsetPerV + effect.slopePerV * x)
+    }
+    return Math.abs(e)
+  })
+  return [Math.max(...sizes), Math.min(...sizes)]
+}
+
+function solve(d: Drawn) {
+  const design = designOf(d)
+  const lsb = (10 - d.lowV) / 65536
+  const o = d.offsetLsb * lsb
+  const g = d.gainPpm / 1e6
+  // pointsOnLine counts from the low end; offset is read at 0 V here.
+  const points = pointsOnLine(design, [0, 65535], o + g * d.lowV, g)
+  const result = computeCodes(design, points, { applied: 'neutral' })
+  const { offsetErrorV, gainErrorPpm } = result.fit
+  return { design, trim: result.trim, o: offsetErrorV, g: gainErrorPpm / 1e6 }
+}
+
+describe('joint codes', () => {
+  test('no pair at all is better, and of equal pairs none comes first, over the whole of small DACs', () => {
+    let given = 0
+    fc.assert(
+      fc.property(drawn, (d) => {
+        const { design, trim, o, g } = solve(d)
+        if (trim.codes === null) return
+        given += 1
+        const codes = { gain: trim.codes.gain!, offset: trim.codes.offset! }
+        const [larger] = endsOf(design, o, g, codes)
+        const lsb = (10 - d.lowV) / 65536
+        for (let gain = 0; gain < 2 ** d.gain.bits; gain++)
+          for (let offset = 0; offset < 2 ** d.offset.bits; offset++) {
+            const [other] = endsOf(design, o, g, { gain, offset })
+            // A billionth of an LSB for the different order of the sums.
+            expect(other).toBeGreaterThan(larger - 1e-9 * lsb)
+          }
+        expect(trim.predicted!.worstV).toBeCloseTo(larger, 12)
+      }),
+      { numRuns: 500 },
+    )
+    expect(given).toBeGreaterThan(200)
+  })
+
+  test('with 12-bit DACs no pair in a window of ±12 codes is better', () => {
+    fc.assert(
+      fc.property(drawn, (small) => {
+        const d = { ...small, gain: { ...small.gain, bits: 12 }, offset: { ...small.offset, bits: 12 } }
+        const { design, trim, o, g } = solve(d)
+        if (trim.codes === null) return
+        const at = { gain: trim.codes.gain!, offset: trim.codes.offset! }
+        const [larger, smaller] = endsOf(design, o, g, at)
+        const slack = (1e-9 * (10 - d.lowV)) / 65536
+        for (let dg = -12; dg <= 12; dg++)
+          for (let dk = -12; dk <= 12; dk++) {
+            const [a, b] = endsOf(design, o, g, { gain: at.gain + dg, offset: at.offset + dk })
+            expect(a > larger - slack).toBe(true)
+            if (Math.abs(a - larger) < slack / 1e3) expect(b > smaller - slack).toBe(true)
+          }
+      }),
+      { numRuns: 200 },
+    )
+  })
+
+  test('out of reach exactly when an exact voltage lies over half a step outside the codes', () => {
+    fc.assert(
+      fc.property(drawn, (d) => {
+        const { design, trim } = solve(d)
+        const outside = (['gain', 'offset'] as const).filter((which) => {
+          const { source } = design.adjusters[which]!
+          const k =
+            (trim.exactNodeV[which]! - source.lowV) / ((source.highV - source.lowV) / 2 ** source.bits)
+          return k < -0.5 || k > 2 ** source.bits - 0.5
+        })
+        expect(trim.verdict === 'out-of-reach').toBe(outside.length > 0)
+        expect(Object.keys(trim.shortfall ?? {}).filter((key) => key !== 'remainingWorstV')).toEqual(outside)
+      }),
+    )
+  })
+
+  test('applying the codes and measuring again gives the predicted line, and the same codes', () => {
+    fc.assert(
+      fc.property(drawn, (d) => {
+        const { design, trim } = solve(d)
+        if (trim.codes === null) return
+        const { offsetErrorV, gainErrorPpm } = trim.predicted!
+        const points = pointsOnLine(
+          design,
+          [0, 65535],
+          offsetErrorV + (gainErrorPpm / 1e6) * d.lowV,
+          gainErrorPpm / 1e6,
+        )
+        const again = computeCodes(design, points, { applied: trim.codes }).trim
+        // Neutral stands for a code within half a step of nominal, so such a code is not told apart from nominal.
+        const moved = Object.values(again.appliedNodeV).every((v, i) => v === Object.values(trim.nodeV!)[i])
+        if (moved) expect(again.predicted!.worstV).toBeCloseTo(trim.predicted!.worstV, 9)
+      }),
+    )
+  })
+})
