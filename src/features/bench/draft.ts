@@ -1,10 +1,9 @@
 import { readStored, writeStored } from '../../lib/storage.ts'
 import { hasReadings, type Row, type RowExtra } from './grid-state.ts'
 
-/** Where a measurement stands: being typed, saved here and not yet sent, or recorded. */
+/** Where a measurement stands. That it is on its way to the server is known to the outbox and not written twice. */
 export type DraftStatus =
   | { is: 'open' }
-  | { is: 'waiting'; key: string; savedAt: string }
   | { is: 'recorded'; id: string; number: number; recordedAt: string; accepted: boolean }
 
 /** Everything typed for one measurement of one unit. The typed text, not the numbers. */
@@ -18,6 +17,9 @@ export type Draft = {
   attempt: { body: string; key: string } | null
   status: DraftStatus
 }
+
+/** All but the grid, which has its own state. */
+export type DraftFields = Omit<Draft, 'rows' | 'hasU'>
 
 export type DraftPlace = {
   design: string
@@ -88,9 +90,6 @@ function extraOf(row: unknown): { extra?: RowExtra } {
 
 function statusFrom(stored: unknown): DraftStatus {
   if (!isObject(stored)) return { is: 'open' }
-  if (stored.is === 'waiting') {
-    return { is: 'waiting', key: textOf(stored, 'key'), savedAt: textOf(stored, 'savedAt') }
-  }
   if (stored.is !== 'recorded' || typeof stored.number !== 'number') return { is: 'open' }
   return {
     is: 'recorded',

@@ -18,30 +18,13 @@ function placeOf(recordedAt: string, seenAt: number | null): string {
   return isFresh ? `In the ledger since ${clock(new Date(seenAt).toISOString())}.` : 'In the ledger.'
 }
 
-type RecordStatusProps = { status: DraftStatus; ledger: string }
-
-/** Where the record is: saved here, or recorded and in the ledger. Times are UTC, as everywhere. */
-export function RecordStatus({ status, ledger }: RecordStatusProps) {
-  if (status.is === 'open') return null
-  if (status.is === 'waiting') {
-    return (
-      <div role="status" className="mt-2">
-        <Caution>
-          Saved on this computer at {clock(status.savedAt)}. Not yet sent. It is sent by itself, once, when
-          the server answers.
-        </Caution>
-      </div>
-    )
-  }
+/** Kept here until the server answers. Times are UTC, as everywhere. */
+export function SavedStatus({ savedAt }: { savedAt: string }) {
   return (
     <div role="status" className="mt-2">
-      <Caution tone="plain">
-        Recorded as{' '}
-        <LinkButton to={paths.record(status.id)}>
-          <Whole value={status.number} />
-        </LinkButton>{' '}
-        at {clock(status.recordedAt)}. {ledger}
-        {status.accepted ? null : ' Its codes are not accepted.'}
+      <Caution>
+        Saved on this computer at {clock(savedAt)}. Not yet sent. It is sent by itself, once, when the server
+        answers.
       </Caution>
     </div>
   )
@@ -54,7 +37,16 @@ export function RecordedStatus({ status }: { status: Extract<DraftStatus, { is: 
   if (data?.ledger && seenFirst.current === null) seenFirst.current = dataUpdatedAt
   return (
     <>
-      <RecordStatus status={status} ledger={placeOf(status.recordedAt, seenFirst.current)} />
+      <div role="status" className="mt-2">
+        <Caution tone="plain">
+          Recorded as{' '}
+          <LinkButton to={paths.record(status.id)}>
+            <Whole value={status.number} />
+          </LinkButton>{' '}
+          at {clock(status.recordedAt)}. {placeOf(status.recordedAt, seenFirst.current)}
+          {status.accepted ? null : ' Its codes are not accepted.'}
+        </Caution>
+      </div>
       <Notices notices={data?.notices ?? []} />
     </>
   )

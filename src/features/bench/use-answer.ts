@@ -1,11 +1,11 @@
 import { useMemo, useState } from 'react'
 import type { Design } from '../../../shared/contract/design.ts'
-import { type FieldError, isOgeeError } from '../../../shared/errors.ts'
+import type { FieldError } from '../../../shared/errors.ts'
 import type { PreviousPass } from '../../../shared/solver/learn.ts'
-import type { Applied, VerifyResult } from '../../../shared/solver/types.ts'
-import { verifyPoints } from '../../../shared/solver/verify.ts'
+import type { Applied } from '../../../shared/solver/types.ts'
 import { buildViews } from './build-views.ts'
 import type { Row } from './grid-state.ts'
+import { barsOf, judge } from './judge.ts'
 import { cellProblems } from './problems.ts'
 import { readRows } from './read-cells.ts'
 import { farProblems, rereadUnit } from './reread.ts'
@@ -85,35 +85,5 @@ function useLastGood(answer: Answer | null, { isEmpty }: { isEmpty: boolean }) {
   return {
     good: answer && good?.answer !== answer ? { answer, at: new Date() } : good,
     isStale: answer === null && good !== null,
-  }
-}
-
-/** The decision per point, where the design states a tolerance; null where it cannot be judged. */
-function judge(
-  design: Design,
-  bench: Bench,
-  points: Parameters<typeof verifyPoints>[1],
-): VerifyResult | null {
-  if (points.length === 0 || !design.decision) return null
-  return quietly(() => verifyPoints(design, points, { rangeId: bench.channel.range.id }))
-}
-
-/** U of each point for the plots, whether or not the design judges: the simple rule asks for nothing. */
-function barsOf(
-  design: Design,
-  bench: Bench,
-  points: Parameters<typeof verifyPoints>[1],
-): VerifyResult | null {
-  if (points.length === 0) return null
-  const judged: Design = { ...design, decision: { rule: 'simple', tolerance: design.target.residual } }
-  return quietly(() => verifyPoints(judged, points, { rangeId: bench.channel.range.id }))
-}
-
-function quietly<T>(run: () => T): T | null {
-  try {
-    return run()
-  } catch (error) {
-    if (isOgeeError(error)) return null
-    throw error
   }
 }

@@ -1,11 +1,9 @@
 import { useCallback, useEffect, useReducer, useRef, useState } from 'react'
-import { type Draft, isWorthKeeping, newDraft, readDraft, writeDraft } from './draft.ts'
+import { type Draft, type DraftFields, isWorthKeeping, newDraft, readDraft, writeDraft } from './draft.ts'
 import { gridReducer } from './grid-reducer.ts'
 import { type GridKind, newGrid, type Row, rowsNow } from './grid-state.ts'
 
 const writeAfterMs = 300
-
-export type DraftFields = Omit<Draft, 'rows' | 'hasU'>
 
 /**
  * Everything typed for one measurement, kept on this computer at most a third of a second later, and at once when
@@ -20,23 +18,23 @@ export function useKeptDraft(name: string, kind: GridKind, planned: readonly Row
     return rest
   })
   const draft: Draft = { ...fields, rows: rowsNow(grid), hasU: grid.hasU }
-  const discardAll = useCallback(() => {
-    writeDraft(name, null)
-    const { rows, hasU, ...rest } = newDraft(planned)
-    dispatch({ do: 'load', state: newGrid(rows, kind, hasU) })
+  /** The grid as planned again, in one step that can be undone; the other fields empty. */
+  const startAnew = useCallback(() => {
+    dispatch({ do: 'rows', rows: planned, hasU: false })
+    const { rows: _, hasU: __, ...rest } = newDraft(planned)
     setFields(rest)
-  }, [name, kind, planned])
+  }, [planned])
   const setField = useCallback(
     <K extends keyof DraftFields>(field: K, value: DraftFields[K]) =>
       setFields((before) => ({ ...before, [field]: value })),
     [],
   )
-  useWriting(name, draft)
-  return { grid, dispatch, fields, setField, discardAll, wasRestored: first !== null, draft }
+  const flush = useWriting(name, draft)
+  return { grid, dispatch, fields, setField, startAnew, wasRestored: first !== null, draft, flush }
 }
 
 /** Writes a while after the first change, not after the last: steady typing is kept too. */
-function useWriting(name: string, draft: Draft): void {
+function useWriting(name: string, draft: Draft): () => void {
   const latest = useRef(draft)
   const timer = useRef<ReturnType<typeof setTimeout> | undefined>(undefined)
   const text = JSON.stringify(draft)
@@ -64,4 +62,5 @@ function useWriting(name: string, draft: Draft): void {
       flush()
     }
   }, [flush])
+  return flush
 }

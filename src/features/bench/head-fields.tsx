@@ -1,0 +1,133 @@
+import { type ReactNode, useEffect, useState } from 'react'
+import type { DesignLine, Revision } from '../../../shared/contract/designs.ts'
+import { Field } from '../../ui/field.tsx'
+import { Select, TextInput } from '../../ui/input.tsx'
+import type { BenchSearch } from './search.ts'
+
+type Change = (part: Partial<BenchSearch>) => void
+
+/** Which design, revision, range and channel. Another design or revision begins anew: ranges and codes are its own. */
+export function DesignFields(props: {
+  designs: readonly DesignLine[]
+  revision: Revision
+  range: string
+  channel: string
+  change: Change
+}) {
+  const { designs, revision, range, channel, change } = props
+  const line = designs.find((design) => design.key === revision.key)
+  const { ranges, channels } = revision.document
+  const fresh = { range: null, channel: null, applied: null, follows: null, lot: null }
+  return (
+    <>
+      <Choice
+        label="design"
+        value={revision.key}
+        onChange={(design) => change({ ...fresh, design, revision: null })}
+        options={designs.map((design) => [
+          design.key,
+          design.released === null
+            ? `${design.key}, none released`
+            : `${design.key}, released ${design.released}`,
+        ])}
+      />
+      {line && (line.revisions.length > 1 || revision.number !== line.released) ? (
+        <Choice
+          label="revision"
+          value={String(revision.number)}
+          onChange={(number) =>
+            change({ ...fresh, revision: Number(number) === line.released ? null : Number(number) })
+          }
+          options={line.revisions.map((one) => [
+            String(one.number),
+            `${one.number}, ${one.state.replace('-', ' ')}`,
+          ])}
+        />
+      ) : null}
+      {ranges.length > 1 ? (
+        <Choice
+          label="range"
+          value={range}
+          onChange={(id) => change({ range: id, applied: null, follows: null })}
+          options={ranges.map((one) => [one.id, one.label ?? one.id])}
+        />
+      ) : null}
+      {channels.length > 1 ? (
+        <Choice
+          label="channel"
+          value={channel}
+          onChange={(name) => change({ channel: name, applied: null, follows: null })}
+          options={channels.map((name) => [name, name])}
+        />
+      ) : null}
+    </>
+  )
+}
+
+type ChoiceProps = {
+  label: string
+  value: string
+  options: readonly (readonly [string, string])[]
+  onChange: (value: string) => void
+  error?: ReactNode
+}
+
+export function Choice({ label, value, options, onChange, error }: ChoiceProps) {
+  return (
+    <Field label={label} layout="inline" error={error}>
+      <Select value={value} onChange={(event) => onChange(event.target.value)}>
+        {options.map(([name, text]) => (
+          <option key={name} value={name}>
+            {text}
+          </option>
+        ))}
+      </Select>
+    </Field>
+  )
+}
+
+type LineFieldProps = {
+  label: string
+  value: string
+  /** Called when the field is left or Enter is pressed. */
+  onCommit: (value: string, byEnter: boolean) => void
+  error?: ReactNode
+  chars: number
+  /** A sentence when the text cannot be taken; then it is not committed and stays as typed. */
+  check?: (text: string) => string | null
+  id?: string
+  placeholder?: string
+}
+
+/** A line of text that counts only when it is finished: a half-typed serial is no unit. */
+export function LineField(props: LineFieldProps) {
+  const { label, value, onCommit, error, chars, check, id, placeholder } = props
+  const [text, setText] = useState(value)
+  const [wrong, setWrong] = useState<string | null>(null)
+  useEffect(() => setText(value), [value])
+  const commit = (byEnter: boolean) => {
+    const sentence = check?.(text) ?? null
+    setWrong(sentence)
+    if (sentence !== null) return
+    if (text !== value || byEnter) onCommit(text, byEnter)
+  }
+  return (
+    <Field label={label} layout="inline" error={wrong ?? error}>
+      <TextInput
+        value={text}
+        size={chars}
+        data-field={id}
+        placeholder={placeholder}
+        onChange={(event) => setText(event.target.value)}
+        onBlur={() => commit(false)}
+        onKeyDown={(event) => {
+          if (event.key === 'Escape') setText(value)
+          if (event.key !== 'Enter' || event.ctrlKey) return
+          event.preventDefault()
+          commit(true)
+        }}
+        className="!w-auto"
+      />
+    </Field>
+  )
+}

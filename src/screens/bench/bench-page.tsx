@@ -1,0 +1,127 @@
+import { useEffect, useRef, useState } from 'react'
+import type { PointGroup } from '../../../shared/points/group.ts'
+import type { PointsCsv } from '../../../shared/points/parse-csv.ts'
+import { voltDecimals } from '../../features/bench/build-views.ts'
+import { IdealDialog } from '../../features/bench/ideal-dialog.tsx'
+import { pasteAction } from '../../features/bench/paste.ts'
+import { readPointsFile, rowsOf } from '../../features/bench/points-file.ts'
+import { ChooseMeasurement, FileTrouble } from '../../features/bench/points-file-dialog.tsx'
+import { dropHandlers, useLoosePaste } from '../../features/bench/use-loose-paste.ts'
+import { BenchFields } from './bench-fields.tsx'
+import { BenchHead } from './bench-head.tsx'
+import { BenchNotices } from './bench-notices.tsx'
+import { BenchPlots } from './bench-plots.tsx'
+import type { BenchPageProps, Incoming } from './bench-props.ts'
+import { StepCodes } from './step-codes.tsx'
+import { StepFound } from './step-found.tsx'
+import { StepNext } from './step-next.tsx'
+import { useBenchActs } from './use-bench-acts.ts'
+import { useBenchPage } from './use-bench-page.ts'
+
+/** One measurement: three steps from left to right as the hand works, plots below. */
+export function BenchPage(props: BenchPageProps) {
+  const page = useBenchPage(props)
+  const [asTable, setTable] = useState(false)
+  const [idealShown, setIdealShown] = useState(false)
+  const file = usePointsFile(props, page)
+  const acts = useBenchActs(props, page, {
+    toggleTable: () => setTable((shown) => !shown),
+    showIdeal: () => setIdealShown(true),
+  })
+  useLoosePaste((text) => {
+    const action = page.isFixed ? null : pasteAction(page.grid, text)
+    if (action) page.dispatch(action)
+  })
+  const { bench, revision, range } = props
+  const { answer } = page
+  return (
+    <div {...dropHandlers(file.open)}>
+      <BenchHead {...props} page={page} acts={acts} onOpenFile={file.open} />
+      <BenchFields {...props} page={page} acts={acts} />
+      <BenchNotices {...props} page={page} />
+      {file.trouble ? <FileTrouble error={file.trouble} onDismiss={file.dismiss} /> : null}
+      <div className="mt-3 grid grid-cols-1 gap-x-7 gap-y-4 wide:grid-cols-[1.2fr_0.49fr_1fr] print:gap-y-2">
+        <StepFound {...props} page={page} acts={acts} />
+        <StepCodes {...props} page={page} />
+        <StepNext {...props} page={page} acts={acts} />
+      </div>
+      <BenchPlots
+        design={page.document}
+        bench={bench}
+        points={answer.read.points}
+        answer={answer.answer}
+        bars={answer.bars}
+        chain={page.chain}
+        asTable={asTable}
+        onTable={setTable}
+      />
+      {idealShown ? (
+        <IdealDialog
+          design={revision.document}
+          rangeId={range}
+          decimals={voltDecimals(bench.channel.range.lsbV)}
+          codes={answer.views.flatMap((view) => view.code ?? [])}
+          onClose={() => setIdealShown(false)}
+        />
+      ) : null}
+      {file.chosen ? (
+        <ChooseMeasurement
+          file={file.chosen.csv}
+          name={file.chosen.name}
+          onChoose={file.take}
+          onClose={file.dismiss}
+        />
+      ) : null}
+    </div>
+  )
+}
+
+type ReadFile = { csv: PointsCsv; name: string }
+
+/** Opening a points file: into this grid, or on to the page of the unit that the file names. */
+function usePointsFile(props: BenchPageProps, page: ReturnType<typeof useBenchPage>) {
+  const { revision, nameFor, name, change, incoming, onIncoming } = props
+  const [trouble, setTrouble] = useState<unknown>(null)
+  const [chosen, setChosen] = useState<ReadFile | null>(null)
+  const dismiss = () => {
+    setTrouble(null)
+    setChosen(null)
+  }
+  const take = (group: PointGroup) => {
+    dismiss()
+    const rows = rowsOf(group, revision.document)
+    const hasU = rows.some((row) => row.u !== '')
+    const place = {
+      ...(group.unit === undefined ? {} : { unit: group.unit }),
+      ...(group.channel === undefined ? {} : { channel: group.channel }),
+      ...(group.range === undefined ? {} : { range: group.range }),
+    }
+    const isSame = group.unit === undefined || group.unit === props.search.unit
+    const target = nameFor(isSame ? place : { ...place, follows: null })
+    if (target === name && !page.isFixed) page.dispatch({ do: 'rows', rows, hasU })
+    else {
+      page.flush()
+      onIncoming({ name: target, rows, hasU })
+    }
+    const lot = group.lot === undefined ? {} : { lot: group.lot }
+    const applied = group.applied === undefined ? {} : { applied: group.applied }
+    change({ ...place, ...lot, ...applied, ...(isSame ? {} : { follows: null }) })
+  }
+  const open = (file: File) => {
+    dismiss()
+    readPointsFile(file, revision.document).then((csv) => {
+      const [first, second] = csv.groups
+      if (first && !second && csv.problems.length === 0) take(first)
+      else setChosen({ csv, name: file.name })
+    }, setTrouble)
+  }
+  const { dispatch } = page
+  const arrived = useRef<Incoming | null>(null)
+  useEffect(() => {
+    if (!incoming || arrived.current === incoming) return
+    arrived.current = incoming
+    dispatch({ do: 'rows', rows: incoming.rows, hasU: incoming.hasU })
+    onIncoming(null)
+  }, [incoming, dispatch, onIncoming])
+  return { open, take, dismiss, trouble, chosen }
+}
