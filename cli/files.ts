@@ -1,6 +1,7 @@
 import { promises as fs } from 'node:fs'
 import { OgeeError } from '../shared/errors.ts'
 import type { Io } from './io.ts'
+import { placeInJson } from './json-place.ts'
 
 /** Reads and writes whole files with the exit codes of the contract: 66 missing, 74 unreadable, 73 not creatable. */
 
@@ -79,15 +80,6 @@ export function parseJson(text: string, name: string): unknown {
   try {
     return JSON.parse(text)
   } catch (cause) {
-    const place = placeOf(text, cause)
-    throw new OgeeError('malformed-json', `${name} is not JSON${place ? ` at ${place}` : ''}.`, { cause })
+    throw new OgeeError('malformed-json', `${name} is not JSON at ${placeInJson(text)}.`, { cause })
   }
-}
-
-function placeOf(text: string, error: unknown): string | undefined {
-  const message = error instanceof Error ? error.message : ''
-  const offset = /position (\d+)/.exec(message)?.[1]
-  if (offset === undefined) return /end of JSON/i.test(message) ? 'its end: something is cut off' : undefined
-  const before = text.slice(0, Number(offset)).split('\n')
-  return `line ${before.length}, column ${(before.at(-1) ?? '').length + 1}`
 }

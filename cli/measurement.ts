@@ -1,7 +1,7 @@
 import { OgeeError } from '../shared/errors.ts'
 import { limits } from '../shared/limits.ts'
+import type { PointGroup } from '../shared/points/group.ts'
 import { onlyGroup, parsePointsCsvAsync } from '../shared/points/parse-csv.ts'
-import type { PointGroup } from '../shared/points/reader.ts'
 import type { MeasuredPoint } from '../shared/solver/types.ts'
 import type { Applied } from './applied.ts'
 import { loadArithmetic } from './arithmetic.ts'

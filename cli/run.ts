@@ -46,13 +46,18 @@ export async function parse(
     },
   )
   try {
-    await program.parseAsync([...argv], { from: 'user' })
+    await program.parseAsync(helpAsFlag(argv), { from: 'user' })
   } catch (error) {
     if (!(error instanceof CommanderError)) throw error
     if (error.exitCode !== 0) throw usage(error, argv)
   }
   if (chosen) refuseMissing(chosen)
   return chosen ?? { text }
+}
+
+/** `help design pull` as `design pull --help`: commander's own help command knows one word only. */
+function helpAsFlag(argv: readonly string[]): string[] {
+  return argv[0] === 'help' && argv.length > 1 ? [...argv.slice(1), '--help'] : [...argv]
 }
 
 function refuseMissing({ command, options }: Chosen): void {

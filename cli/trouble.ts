@@ -52,18 +52,19 @@ const nextSteps: Partial<Record<ErrorCode, string>> = {
 
 /** Says what went wrong on standard error; with json or ndjson the last line is the problem document. */
 export function sayTrouble(trouble: OgeeError, io: Pick<Io, 'say' | 'env'>, format: Format): void {
-  io.say(`ogee: ${trouble.message}`)
-  for (const { path, message } of trouble.errors) io.say(`  ${path}: ${message}`)
+  const say = (line: string) => io.say(withoutTokens(line))
+  say(`ogee: ${trouble.message}`)
+  for (const { path, message } of trouble.errors) say(`  ${path}: ${message}`)
   const next = nextSteps[trouble.code]
-  if (next) io.say(`  ${next}`)
-  if (trouble.code === 'defect' && io.env.OGEE_LOG === 'debug') io.say(stackOf(trouble))
-  if (isForPrograms(format)) io.say(JSON.stringify(problemDocument(trouble)))
+  if (next) say(`  ${next}`)
+  if (trouble.code === 'defect' && io.env.OGEE_LOG === 'debug') say(stackOf(trouble))
+  if (isForPrograms(format)) say(JSON.stringify(problemDocument(trouble)))
 }
 
-function stackOf({ cause, stack }: OgeeError): string {
-  const text = cause instanceof Error ? cause.stack : stack
-  return (text ?? '').replaceAll(/ogee_[0-9A-Za-z]{8}_[0-9A-Za-z]+/g, 'ogee_…')
-}
+/** Somebody may have typed a token where none belongs, and the words of the trouble repeat what was typed. */
+const withoutTokens = (line: string) => line.replaceAll(/ogee_[0-9A-Za-z]{8}_[0-9A-Za-z]+/g, 'ogee_…')
+
+const stackOf = ({ cause, stack }: OgeeError) => (cause instanceof Error ? cause.stack : stack) ?? ''
 
 const isForPrograms = (format: Format) => format === 'json' || format === 'ndjson'
 
