@@ -34,6 +34,11 @@ export const errorTable = {
   'adjuster-without-effect': badInput('The adjuster has no effect where it must null'),
   'no-adjuster': badInput('The design has no adjuster'),
   'applied-unknown': badInput('The applied codes do not fit the design'),
+  // Sizing, networks, yield (solver)
+  'budget-empty': badInput('The error budget has nothing in it'),
+  'budget-line': badInput('A line of the error budget cannot be taken'),
+  'too-few-units': badInput('Two units are the least that show a spread'),
+  'network-request': badInput('The network cannot be asked for that'),
   // Quantities, CSV, documents
   'quantity-unreadable': badInput('The quantity cannot be read'),
   'quantity-wrong-kind': badInput('The unit is of the wrong kind'),
