@@ -11,7 +11,7 @@ import { insertLeaves, newLeaf } from '../ledger/leaves.ts'
 import type { Models } from '../models/define-models.ts'
 import type { StationRow } from '../models/station.ts'
 import { type TokenRow, tokenReply } from '../models/token.ts'
-import { newTokenParts, tokenText } from '../policies/token-text.ts'
+import { newTokenParts, type TokenParts, tokenText } from '../policies/token-text.ts'
 
 type Asked = z.output<NonNullable<typeof postToken.body>>
 
@@ -24,12 +24,12 @@ export async function createToken(
   { database, now, notifyLedger }: Pick<Deps, 'database' | 'now' | 'notifyLedger'>,
   asked: Asked,
   by: string,
+  parts: TokenParts = newTokenParts(),
 ): Promise<Token & { token: string }> {
   if (asked.station === null && asked.scopes.includes('trims:write')) {
     const message = 'A token that records trims acts for a station: name one.'
     throw new OgeeError('invalid-request', message, { errors: [{ path: '/station', message }] })
   }
-  const parts = newTokenParts()
   const at = now()
   const row: TokenRow = {
     id: parts.id,

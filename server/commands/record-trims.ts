@@ -76,7 +76,7 @@ async function attempt(
   const fresh = jobs.filter((job) => !used.has(keyOf(job)))
   if (fresh.length === 0) return outcomes
   const at = deps.now()
-  const ids = fresh.map((_, i) => uuid({ msecs: at.getTime(), seq: sequence(i) }))
+  const ids = fresh.map((job, i) => uuid({ msecs: (job.at ?? at).getTime(), seq: sequence(i) }))
   await takeKeys(sql, fresh, ids)
   const { decisions, refusals, places } = await decideAll(sql, fresh, { ids, numbers, at })
   if (refusals.size > 0) throw new Refused(refusals)

@@ -92,7 +92,7 @@ async function decide(sql: Sql, { job, revision, i }: Resolved, world: World): P
     job,
     id: world.assigned.ids[i]!,
     number: world.assigned.numbers[i]!,
-    recordedAt: world.assigned.at.toISOString(),
+    recordedAt: (job.at ?? world.assigned.at).toISOString(),
     revision,
     unit,
     place,

@@ -16,7 +16,14 @@ export type Recorder = {
 }
 
 /** One request to record, checked as far as it can be without the database. */
-export type Job = { request: RecordRequest; recorder: Recorder; key: string; bodyHash: Buffer }
+export type Job = {
+  request: RecordRequest
+  recorder: Recorder
+  key: string
+  bodyHash: Buffer
+  /** When it counts as recorded, where that is not now: demo data tell of two years. */
+  at?: Date
+}
 
 /** A record as it stands in the database. */
 export type StoredRecord = {

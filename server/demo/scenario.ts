@@ -1,0 +1,43 @@
+import { DemoRandom } from './random.ts'
+
+/** When and what the demo's maker built: forty lots over two years. Everything follows from the seed and the end date. */
+
+export type DemoLot = {
+  design: 'DBS-A' | 'DBC-16'
+  key: string
+  startedAt: Date
+  station: 'A' | 'B'
+  units: number
+  /** A resistor of the wrong value: the gain lies beyond what the adjuster reaches. */
+  wrongResistor: boolean
+  /** 0 at the beginning of the two years, 1 at their end. */
+  age: number
+}
+
+const seed = 20_260_411
+const lotCount = 40
+const days = 720
+const dayMs = 86_400_000
+const wrongLot = 27
+
+export function demoLots(end: Date): DemoLot[] {
+  const random = new DemoRandom(seed)
+  return Array.from({ length: lotCount }, (_, i) => {
+    const age = i / (lotCount - 1)
+    const day = Math.round(age * days + random.within(4))
+    const startedAt = new Date(end.getTime() - (days + 6 - day) * dayMs)
+    startedAt.setUTCHours(7 + random.below(3), random.below(60), random.below(60), random.below(1_000))
+    const design = i % 3 === 2 ? 'DBC-16' : 'DBS-A'
+    return {
+      design,
+      key: `L${String(i + 1).padStart(3, '0')}`,
+      startedAt,
+      station: i % 5 < 3 ? 'A' : 'B',
+      units: 2,
+      wrongResistor: i === wrongLot,
+      age,
+    }
+  })
+}
+
+export const randomOfLot = (lot: DemoLot) => new DemoRandom(seed ^ (Number(lot.key.slice(1)) * 7_919))
