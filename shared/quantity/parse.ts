@@ -43,6 +43,13 @@ export function parseQuantity(
   const digits = match && `${match[2] ?? ''}${match[3] ?? ''}`
   const unitText = match?.[5]?.trim() ?? ''
   if (!match || !digits) return orArithmetic(clean, text, field)
+  // "0.012 1/V" with a thin gap could be 0.0121 /V or 0.012 1/V: refused, not guessed.
+  if (
+    /[\u00a0\u2009\u202f]1$/.test(number.slice(0, number.length - match[5]!.length)) &&
+    /^\//.test(unitText)
+  ) {
+    unreadable(`${text.trim()} can be read in two ways. Write the unit as /V.`)
+  }
   const units = fieldUnits(field)
   const barePrefix = units.some(({ kind }) => kind === 'resistance')
   const unit = unitText === '' ? null : unitOf(unitText, barePrefix)
