@@ -1,4 +1,5 @@
 import { Component, type ReactNode } from 'react'
+import { leave } from '../lib/leave.ts'
 import { Button } from '../ui/button.tsx'
 import { Caution } from '../ui/caution.tsx'
 
@@ -30,7 +31,7 @@ export class ErrorBoundary extends Component<{ children: ReactNode }, { error: u
           <Button look="primary" onClick={() => window.location.reload()}>
             Load again
           </Button>
-          <Button onClick={() => window.location.assign('/')}>To the start</Button>
+          <Button onClick={() => leave.to('/')}>To the start</Button>
         </p>
       </div>
     )

@@ -18,7 +18,12 @@ export function CopyButton({
   children?: string
 }) {
   return (
-    <Button look={look} aria-label={`Copy ${what}`} onClick={() => void copyText(text, `Copied ${what}.`)}>
+    <Button
+      look={look}
+      // What is seen is part of what is spoken (WCAG 2.5.3).
+      aria-label={children === 'copy' ? `copy ${what}` : undefined}
+      onClick={() => void copyText(text, `Copied ${what}.`)}
+    >
       {children}
       {hint ? <KeyHint keys={hint} /> : null}
     </Button>

@@ -3,7 +3,7 @@ import { useFieldIds } from './field.tsx'
 
 /** Field ground, one rule below, no box; in error a 2 px rule in bad. */
 const look =
-  'min-h-7 w-full rounded-none border-0 border-b border-rule bg-field px-1 text-text text-ink aria-invalid:border-b-2 aria-invalid:border-bad disabled:text-ink-3 placeholder:text-ink-3 forced-colors:border print:border-0'
+  'min-h-7 rounded-none border-0 border-b border-rule bg-field px-1 text-text text-ink aria-invalid:border-b-2 aria-invalid:border-bad disabled:text-ink-3 placeholder:text-ink-3 forced-colors:border print:border-0'
 
 /** One line of text. Never `type=number`: the wheel would change it unseen and units would be impossible. */
 export function TextInput({ className = '', type = 'text', ...rest }: ComponentProps<'input'>) {
@@ -16,7 +16,7 @@ export function TextInput({ className = '', type = 'text', ...rest }: ComponentP
       aria-invalid={field?.invalid || undefined}
       autoComplete="off"
       spellCheck={false}
-      className={`${look} ${className}`}
+      className={`${look} w-full ${className}`}
       {...rest}
     />
   )
@@ -30,7 +30,7 @@ export function TextArea({ className = '', ...rest }: ComponentProps<'textarea'>
       aria-describedby={field?.describedBy}
       aria-invalid={field?.invalid || undefined}
       rows={2}
-      className={`${look} py-1 ${className}`}
+      className={`${look} w-full py-1 ${className}`}
       {...rest}
     />
   )
@@ -44,7 +44,7 @@ export function Select({ className = '', children, ...rest }: ComponentProps<'se
       id={field?.id}
       aria-describedby={field?.describedBy}
       aria-invalid={field?.invalid || undefined}
-      className={`${look} field-sizing-content w-auto max-w-full pr-1 ${className}`}
+      className={`${look} field-sizing-content max-w-full pr-1 ${className}`}
       {...rest}
     >
       {children}

@@ -171,7 +171,7 @@ export const suspectResult: CodesDocument = {
   trim: {
     ...codesResult.trim,
     verdict: 'suspect',
-    reasons: ['One point was not settled when it was read. Wait and read it again.'],
+    reasons: ['suspect'],
   },
 }
 
@@ -180,7 +180,7 @@ export const outOfReachResult: CodesDocument = {
   trim: {
     ...codesResult.trim,
     verdict: 'out-of-reach',
-    reasons: ['Gain wants 410 mV at the node; its DAC ends at 369 mV.'],
+    reasons: ['out-of-reach'],
     codes: null,
     words: null,
     nodeV: null,

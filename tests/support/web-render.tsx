@@ -1,4 +1,4 @@
-import { type RenderResult, render } from '@testing-library/react'
+import { configure, type RenderResult, render } from '@testing-library/react'
 import { type UserEvent, userEvent } from '@testing-library/user-event'
 import { vi } from 'vitest'
 import { App } from '../../src/app/app.tsx'
@@ -6,12 +6,25 @@ import { setConnection } from '../../src/lib/connection.ts'
 import { makeQueryClient } from '../../src/lib/query-client.ts'
 import { type FakeServer, fakeServer } from './web-server.ts'
 
+// Looking for roles in a page of fifty rows is slow in jsdom; this is a deadline and no wait.
+configure({ asyncUtilTimeout: 8000, getElementError: (message) => new Error(message?.slice(0, 300)) })
+
+// jsdom has the dialog element and not its modal: what the platform does about focus is seen in Chromium.
+HTMLDialogElement.prototype.showModal = function () {
+  this.open = true
+}
+HTMLDialogElement.prototype.close = function () {
+  this.open = false
+}
+
 export type Opened = RenderResult & { user: UserEvent; server: FakeServer }
 
 /** Opens an address of the app against the fake server, as a browser would. */
 export function open(address: string, server: FakeServer = fakeServer()): Opened {
   setConnection({ sessionEnded: false, outage: null })
   vi.stubGlobal('fetch', server.fetch)
+  // Not known to jsdom.
+  vi.stubGlobal('scrollTo', () => undefined)
   window.history.replaceState(null, '', address)
   const user = userEvent.setup()
   const shown = render(<App queryClient={makeQueryClient()} />)

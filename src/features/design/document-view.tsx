@@ -1,5 +1,5 @@
 import type { Design } from '../../../shared/contract/design.ts'
-import { engineering, exact } from '../../ui/number-format.ts'
+import { engineering, exact, minus } from '../../ui/number-format.ts'
 import { NumberText } from '../../ui/number-text.tsx'
 import { Fact, Facts, Section } from '../../ui/section.tsx'
 import { AdjusterTable } from './adjuster-table.tsx'
@@ -9,7 +9,7 @@ import { codings, effectFacts, effectKind, limitInVolts, limitText, percent, spa
 /** Every field of a design document as text, in the order of the signal path. */
 export function DocumentView({ design }: { design: Design }) {
   return (
-    <div className="grid gap-x-7 gap-y-3.5 wide:grid-cols-[minmax(0,24rem)_minmax(0,1fr)]">
+    <div className="grid grid-cols-1 gap-x-7 gap-y-3.5 wide:grid-cols-[minmax(0,24rem)_minmax(0,1fr)]">
       <div className="space-y-3.5">
         <ChannelSection design={design} />
         <SizingSection design={design} />
@@ -61,7 +61,9 @@ function RangeFacts({ range, bits }: { range: Design['ranges'][number]; bits: nu
   return (
     <Fact name={`range ${range.id}`}>
       <NumberText>{span(range.lowV, range.highV)}</NumberText>
-      {range.label ? <span className="text-ink-2"> ({range.label})</span> : null}
+      {range.label && range.label.replace('-', minus) !== span(range.lowV, range.highV) ? (
+        <span className="text-ink-2"> ({range.label})</span>
+      ) : null}
       <span className="block text-ink-2">
         FSR {exact(spanV, 'V')}, LSB {engineering(spanV / 2 ** bits, 'V', 5)}; offset read at{' '}
         {range.offsetAt === 'zero-volts' ? '0 V' : 'the low end'}

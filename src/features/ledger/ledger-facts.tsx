@@ -8,7 +8,7 @@ export function LedgerFacts({ checkpoint, verifierKey }: { checkpoint: string; v
   const head = readCheckpoint(checkpoint)
   const key = verifierKey === null ? null : readVerifierKey(verifierKey)
   return (
-    <div className="mt-3 grid gap-x-7 gap-y-3.5 wide:grid-cols-2">
+    <div className="mt-3 grid grid-cols-1 gap-x-7 gap-y-3.5 wide:grid-cols-2">
       <Section
         title="Checkpoint"
         note="signed note"

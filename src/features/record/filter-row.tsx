@@ -28,7 +28,11 @@ export function FilterRow({
   // A design of the address that is not in the list (not loaded, or not open to this person) stays choosable.
   const choices = filters.design && !designs.includes(filters.design) ? [filters.design, ...designs] : designs
   return (
-    <search className="flex flex-wrap items-baseline gap-x-5 gap-y-1.5 py-2 print:hidden">
+    <form
+      aria-label="Filters"
+      onSubmit={(event) => event.preventDefault()}
+      className="flex flex-wrap items-baseline gap-x-5 gap-y-1.5 py-2 print:hidden"
+    >
       <UnitFilter value={filters.unit ?? ''} onChange={(unit) => onChange('unit', unit)} inputRef={unitRef} />
       <Choice
         label="design"
@@ -54,7 +58,7 @@ export function FilterRow({
         </Button>
       ) : null}
       <FilterKeys />
-    </search>
+    </form>
   )
 }
 

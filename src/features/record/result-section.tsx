@@ -3,7 +3,6 @@ import { CopyButton } from '../../ui/copy-button.tsx'
 import { engineering, fixed } from '../../ui/number-format.ts'
 import { NumberText, Whole } from '../../ui/number-text.tsx'
 import { None, RowHead, Table, Td, Th } from '../../ui/table.tsx'
-import { Verdict } from '../../ui/verdict.tsx'
 
 /** The fitted line: offset by tide, gain by copper, with the expanded uncertainty where there is one. */
 export function LineTable({ fit }: { fit: CodesDocument['fit'] }) {
@@ -88,7 +87,6 @@ function CodeRow({ which, trim }: { which: 'gain' | 'offset'; trim: CodesDocumen
   const nodeV = trim.nodeV?.[which] ?? trim.exactNodeV[which] ?? 0
   const reach = trim.reachUsed[which]
   const effect = trim.effects[which]
-  const short = trim.shortfall?.[which]
   return (
     <tr>
       <RowHead className={`font-semibold ${tones[which]}`}>{which}</RowHead>
@@ -107,13 +105,32 @@ function CodeRow({ which, trim }: { which: 'gain' | 'offset'; trim: CodesDocumen
         {effect
           ? `${effect.source === 'learned' ? 'learned' : 'as designed'}, known to ${fixed(effect.tolerance * 100, 1)} %`
           : ''}
-        {short ? (
-          <span className="block text-ink">
-            <Verdict verdict="out-of-reach" /> wanted {engineering(short.wantedV, 'V', 4, 'always')}, limit{' '}
-            {engineering(short.limitV, 'V', 4, 'always')} ({short.by})
-          </span>
-        ) : null}
       </Td>
     </tr>
+  )
+}
+
+/** What an adjuster out of reach wanted and what it has; nothing when all are in reach. */
+export function Shortfall({ trim }: { trim: CodesDocument['trim'] }) {
+  const { shortfall } = trim
+  if (shortfall === null) return null
+  return (
+    <ul>
+      {(['gain', 'offset'] as const).map((which) => {
+        const short = shortfall[which]
+        return short ? (
+          <li key={which}>
+            <span className={tones[which]}>{which}</span> wants{' '}
+            <NumberText>{engineering(short.wantedV, 'V', 4, 'always')}</NumberText> at the node; its{' '}
+            {short.by === 'codes' ? 'codes end' : 'node ends'} at{' '}
+            <NumberText>{engineering(short.limitV, 'V', 4, 'always')}</NumberText>.
+          </li>
+        ) : null
+      })}
+      <li>
+        {'At best the worst error would remain '}
+        <NumberText>{engineering(shortfall.remainingWorstV, 'V')}</NumberText>.
+      </li>
+    </ul>
   )
 }

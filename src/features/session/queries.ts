@@ -9,6 +9,8 @@ import {
 } from '../../../shared/contract/session.ts'
 import { api } from '../../lib/api.ts'
 import { setConnection } from '../../lib/connection.ts'
+import { leave } from '../../lib/leave.ts'
+import { paths } from '../../lib/paths.ts'
 
 export const meOptions = queryOptions({
   queryKey: ['me'],
@@ -45,8 +47,7 @@ export function useSignOut() {
     mutationFn: () => api(deleteSession, {}),
     onSuccess: () => {
       client.clear()
-      // A full load: nothing of the last person stays in memory.
-      window.location.assign('/sign-in')
+      leave.to(paths.signIn)
     },
   })
 }

@@ -1,4 +1,4 @@
-import type { Scope } from '../../../shared/contract/primitives.ts'
+import { type Scope, scope } from '../../../shared/contract/primitives.ts'
 import { limits } from '../../../shared/limits.ts'
 import type { TokenOrder } from './queries.ts'
 
@@ -49,7 +49,7 @@ export function orderOf(form: OrderForm): TokenOrder {
   return {
     name: form.name.trim(),
     station: form.station === '' ? null : form.station,
-    scopes: [...form.scopes],
+    scopes: scope.options.filter((one) => form.scopes.includes(one)),
     days: Number(form.days),
     designs: form.designs.length === 0 ? null : [...form.designs],
   }

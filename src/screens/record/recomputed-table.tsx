@@ -1,5 +1,5 @@
 import { Caution } from '../../ui/caution.tsx'
-import { fixed } from '../../ui/number-format.ts'
+import { fixed, minus } from '../../ui/number-format.ts'
 import { NumberText } from '../../ui/number-text.tsx'
 import { None, RowHead, Table, Td, Th } from '../../ui/table.tsx'
 import { Verdict } from '../../ui/verdict.tsx'
@@ -67,12 +67,12 @@ function shown(row: Row, value: number | null) {
 function difference(row: Row): string {
   if (row.stored === row.now) return row.unit === '' ? 'none' : 'none, bit for bit'
   if (row.stored === null || row.now === null) return 'one does not exist'
-  return (row.now - row.stored).toExponential(1)
+  return (row.now - row.stored).toExponential(1).replaceAll('-', minus)
 }
 
 function sentence(again: Done, row: Row | undefined): string {
   if (!row)
     return `Solver ${again.solver} gives ${again.verdict}, stored is ${again.storedVerdict}. See the changelog.`
-  const text = (value: number | null) => (value === null ? 'none' : fixed(value, row.decimals))
+  const text = (value: number | null) => (value === null ? 'none' : String(value).replace('-', minus))
   return `Solver ${again.solver} gives ${row.name.toLowerCase()} ${text(row.now)}, stored is ${text(row.stored)}. See the changelog.`
 }

@@ -11,7 +11,7 @@ export default function RecordDrawn({ record, design }: { record: TrimRecord; de
   if (result === null) return null
   const again = recompute(record, design)
   return (
-    <div className="grid gap-x-7 gap-y-3.5 wide:grid-cols-2">
+    <div className="grid grid-cols-1 gap-x-7 gap-y-3.5 wide:grid-cols-2">
       {result.format === 'ogee.codes/1' ? (
         <FoundPlot design={design} result={result} />
       ) : (

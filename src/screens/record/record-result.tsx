@@ -3,7 +3,8 @@ import type { Record as TrimRecord } from '../../../shared/contract/record.ts'
 import type { VerifyDocument } from '../../../shared/contract/verify.ts'
 import { FlagSentences } from '../../features/record/flag-sentences.tsx'
 import { FoundTable, LeftTable } from '../../features/record/measured-table.tsx'
-import { CodesTable, LineTable } from '../../features/record/result-section.tsx'
+import { noteSentences } from '../../features/record/note-words.ts'
+import { CodesTable, LineTable, Shortfall } from '../../features/record/result-section.tsx'
 import { lsbOf } from '../../features/record/volt-decimals.ts'
 import { engineering, fixed } from '../../ui/number-format.ts'
 import { Section } from '../../ui/section.tsx'
@@ -19,7 +20,7 @@ function TrimResult({ result }: { result: CodesDocument }) {
   const { fit, trim } = result
   const lsbV = lsbOf(fit.residuals) ?? 1e-6
   return (
-    <div className="grid gap-x-7 gap-y-3.5 wide:grid-cols-2">
+    <div className="grid grid-cols-1 gap-x-7 gap-y-3.5 wide:grid-cols-2">
       <Section title="As found, as measured" note={`${fit.n} points`}>
         <FoundTable fit={fit} lsbV={lsbV} />
         <div className="mt-2">
@@ -37,8 +38,9 @@ function TrimResult({ result }: { result: CodesDocument }) {
             ? `Predicted worst ${fixed(trim.predicted.worstLsb, 2)} LSB, ${engineering(trim.predicted.worstV, 'V')}, at ${engineering(trim.predicted.atV, 'V', 4)}.`
             : 'No code is given. A clipped code is not a trim.'}
         </p>
+        <Shortfall trim={trim} />
         <ul className="text-ink-2">
-          {[...trim.reasons, ...trim.notes, ...fit.notes].map((sentence) => (
+          {noteSentences([...trim.reasons, ...trim.notes, ...fit.notes]).map((sentence) => (
             <li key={sentence}>{sentence}</li>
           ))}
         </ul>
@@ -50,7 +52,7 @@ function TrimResult({ result }: { result: CodesDocument }) {
 function VerifyResult({ result }: { result: VerifyDocument }) {
   const lsbV = lsbOf(result.points) ?? 1e-6
   return (
-    <div className="grid gap-x-7 gap-y-3.5 wide:grid-cols-2">
+    <div className="grid grid-cols-1 gap-x-7 gap-y-3.5 wide:grid-cols-2">
       <Section title="As left, as measured" note={`${result.points.length} points`}>
         <LeftTable verify={result} lsbV={lsbV} />
       </Section>

@@ -65,7 +65,7 @@ function RecordPage({ record }: { record: TrimRecord }) {
         <Chain record={record} />
         <RecordResult record={record} />
         <Drawn record={record} />
-        <div className="grid gap-x-7 gap-y-3.5 wide:grid-cols-2">
+        <div className="grid grid-cols-1 gap-x-7 gap-y-3.5 wide:grid-cols-2">
           <Section title="Made under">
             <RecordFacts record={record} />
           </Section>

@@ -7,6 +7,7 @@ import { SignInForm } from '../../features/session/sign-in-form.tsx'
 import { useConnection } from '../../lib/connection.ts'
 import { Caution } from '../../ui/caution.tsx'
 import { WordMark } from '../../ui/word-mark.tsx'
+import { wanted } from './wanted.ts'
 
 /** Sign-in outside the frame; afterwards the page that was wanted. */
 export default function SignInScreen() {
@@ -37,9 +38,4 @@ export default function SignInScreen() {
       </div>
     </main>
   )
-}
-
-/** Only a path of this app: an address of another site must not be reachable by way of signing in. */
-export function wanted(to: string | null): string {
-  return to?.startsWith('/') && !/^\/[/\\]/.test(to) && !to.startsWith('/sign-in') ? to : '/'
 }
