@@ -34,7 +34,7 @@ export function CodesPanel(props: CodesPanelProps) {
   return (
     <>
       {trim.codes ? <LoadCaution /> : null}
-      <div className={`grid grid-cols-2 gap-x-6 gap-y-4 wide:grid-cols-1 ${isStale ? 'opacity-60' : ''}`}>
+      <div className={`grid grid-cols-2 gap-x-6 gap-y-4 wide:grid-cols-1 ${isStale ? 'text-ink-3' : ''}`}>
         {present.map((which) => (
           <Code key={which} which={which} {...props} />
         ))}
@@ -57,7 +57,7 @@ function Code({ which, trim, trimmers, applied, appliedFrom, isStale }: CodesPan
   return (
     <div className="min-w-0">
       <div className="flex items-baseline justify-between gap-2 text-small">
-        <h3 className={`font-medium ${tones[which]}`}>{which}</h3>
+        <h3 className={`font-medium ${isStale ? '' : tones[which]}`}>{which}</h3>
         {code !== undefined && isSuspect ? (
           <Verdict verdict="suspect" />
         ) : before !== undefined && appliedFrom ? (
@@ -72,16 +72,20 @@ function Code({ which, trim, trimmers, applied, appliedFrom, isStale }: CodesPan
         <>
           <output
             aria-label={`${which} code`}
-            className={`block text-code-narrow font-medium narrow:text-code ${isSuspect || isStale ? 'text-ink-2' : ''}`}
+            className={`block text-code-narrow font-medium narrow:text-code ${isStale ? '' : isSuspect ? 'text-ink-2' : 'text-ink'}`}
           >
             {code}
           </output>
           <div className="flex flex-wrap items-baseline gap-x-3 print:hidden">
             <span className="font-mono text-head">{word}</span>
-            <CopyButton text={String(code)} what={`${which} code ${code}`} hint={copyKeys[which]} />
-            <CopyButton text={word} what={`${which} code as ${word}`}>
-              copy hex
-            </CopyButton>
+            {isStale ? null : (
+              <>
+                <CopyButton text={String(code)} what={`${which} code ${code}`} hint={copyKeys[which]} />
+                <CopyButton text={word} what={`${which} code as ${word}`}>
+                  copy hex
+                </CopyButton>
+              </>
+            )}
           </div>
           <span className="hidden font-mono print:inline">{word}</span>
           {trimmer && trim.nodeV?.[which] !== undefined && (

@@ -91,10 +91,10 @@ function FitRow({ name, tone, value, U, note }: FitRowProps) {
   )
 }
 
-/** As many decimals as the uncertainty allows: two digits of it. */
+/** As many decimals as the uncertainty allows: three digits of it. */
 function decimalsFor(size: number | undefined): number {
   if (size === undefined || !(size > 0)) return 2
-  return Math.max(0, Math.min(4, 1 - Math.floor(Math.log10(size))))
+  return Math.max(0, Math.min(4, 2 - Math.floor(Math.log10(size))))
 }
 const microDecimals = (volts: number | undefined) =>
   decimalsFor(volts === undefined ? undefined : volts * 1e6)

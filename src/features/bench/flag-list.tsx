@@ -29,7 +29,7 @@ export function FlagList({ flags, notes }: { flags: readonly FlagSentence[]; not
 
 /** Groups the digits of codes within a sentence; other numbers are left as written. */
 export function Digits({ children }: { children: string }) {
-  return children.split(/(\d{5,})/).map((part, index) =>
+  return children.split(/(?<![\d.])(\d{5,})(?![\d.])/).map((part, index) =>
     // biome-ignore lint/suspicious/noArrayIndexKey: pieces of one sentence
     index % 2 === 1 ? <NumberText key={index}>{part}</NumberText> : part,
   )

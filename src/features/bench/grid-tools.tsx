@@ -27,7 +27,7 @@ export function GridTools({
   return (
     <div className="mt-1 flex flex-wrap gap-x-3 print:hidden">
       <Button look="quiet" className={small} onClick={() => dispatch({ do: 'add-row' })}>
-        Add a row
+        Add row
       </Button>
       <Button look="quiet" className={small} onClick={() => dispatch({ do: 'remove-rows' })}>
         Remove row {state.focus.row + 1}
@@ -41,16 +41,16 @@ export function GridTools({
         aria-pressed={state.hasU}
         onClick={() => dispatch({ do: 'show-u', show: !state.hasU })}
       >
-        {state.hasU ? 'Without uncertainties' : 'With uncertainties'}
+        {state.hasU ? 'Without u' : 'With u'}
       </Button>
       {canSave ? (
         <Button look="quiet" className={small} onClick={onSave}>
-          Save as CSV
+          Save CSV
         </Button>
       ) : null}
       {canDiscard ? (
         <Button look="quiet" className={small} onClick={onDiscard}>
-          Discard the draft
+          Discard draft
         </Button>
       ) : null}
     </div>

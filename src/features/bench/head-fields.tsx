@@ -15,35 +15,31 @@ export function DesignFields(props: {
   change: Change
 }) {
   const { designs, revision, range, channel, change } = props
-  const line = designs.find((design) => design.key === revision.key)
   const { ranges, channels } = revision.document
   const fresh = { range: null, channel: null, applied: null, follows: null, lot: null }
+  const choose = (value: string) => {
+    const [design = '', number = ''] = value.split(' ')
+    const isReleased = designs.find((one) => one.key === design)?.released === Number(number)
+    change({ ...fresh, design, revision: isReleased || number === '' ? null : Number(number) })
+  }
   return (
     <>
       <Choice
         label="design"
-        value={revision.key}
-        onChange={(design) => change({ ...fresh, design, revision: null })}
-        options={designs.map((design) => [
-          design.key,
-          design.released === null
-            ? `${design.key}, none released`
-            : `${design.key}, released ${design.released}`,
-        ])}
+        value={`${revision.key} ${revision.number}`}
+        onChange={choose}
+        options={designs.flatMap((design) =>
+          design.revisions.map(
+            (one) =>
+              [
+                `${design.key} ${one.number}`,
+                one.state === 'released'
+                  ? `${design.key}, released ${one.number}`
+                  : `${design.key}, ${one.state.replace('-', ' ')} ${one.number}`,
+              ] as const,
+          ),
+        )}
       />
-      {line && (line.revisions.length > 1 || revision.number !== line.released) ? (
-        <Choice
-          label="revision"
-          value={String(revision.number)}
-          onChange={(number) =>
-            change({ ...fresh, revision: Number(number) === line.released ? null : Number(number) })
-          }
-          options={line.revisions.map((one) => [
-            String(one.number),
-            `${one.number}, ${one.state.replace('-', ' ')}`,
-          ])}
-        />
-      ) : null}
       {ranges.length > 1 ? (
         <Choice
           label="range"

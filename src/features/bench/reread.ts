@@ -9,6 +9,8 @@ export type RereadUnit = 'mV' | 'µV'
 const factors = { mV: 1e-3, µV: 1e-6 } as const
 const number = /^\s*[-+\u2212]?[\d.]+(?:[eE][-+]?\d+)?\s*V?\s*$/
 
+const bare = /^\s*[-+\u2212]?[\d.]+(?:[eE][-+]?\d+)?\s*$/
+
 /** Problems of readings that lie further from ideal than the plan allows. */
 export function farProblems(
   problems: readonly CellProblem[],
@@ -54,21 +56,31 @@ export function rereadUnit(
 const partsOf = (row: Row | undefined): string[] =>
   (row?.measured ?? '').split(';').filter((part) => part.trim() !== '')
 
-/** The far-off cells with the unit written out; the digits stay as typed. */
+/**
+ * The column with the unit written out, the digits as typed. Bare readings that were not far off are taken along when
+ * they stay plausible: whoever types millivolts types them down the whole column.
+ */
 export function rereadRows(
   rows: readonly Row[],
+  read: readonly ReadRow[],
   far: readonly CellProblem[],
   unit: RereadUnit,
+  range: ConverterRange,
+  allowedV: number,
 ): readonly Row[] {
   const places = new Set(far.map((problem) => problem.row))
-  return rows.map((row, index) =>
-    places.has(index)
-      ? {
-          ...row,
-          measured: partsOf(row)
-            .map((part) => `${part.replace(/\s*V?\s*$/, '').trim()} ${unit}`)
-            .join('; '),
-        }
-      : row,
-  )
+  const fits = (index: number): boolean => {
+    const one = read[index]
+    const code = one ? codeOf(one, range) : null
+    const y = one ? measuredOf(one) : null
+    const parts = partsOf(rows[index])
+    if (code === null || y === null || parts.length === 0 || !parts.every((part) => bare.test(part)))
+      return false
+    return Math.abs(y * factors[unit] - idealV(range, code)) <= allowedV
+  }
+  return rows.map((row, index) => {
+    if (!places.has(index) && !fits(index)) return row
+    const parts = partsOf(row).map((part) => `${part.replace(/\s*V?\s*$/, '').trim()} ${unit}`)
+    return { ...row, measured: parts.join('; ') }
+  })
 }

@@ -1,14 +1,15 @@
 import { useMemo, useState } from 'react'
 import type { Design } from '../../../shared/contract/design.ts'
+import type { Point } from '../../../shared/contract/point.ts'
 import type { FieldError } from '../../../shared/errors.ts'
 import type { PreviousPass } from '../../../shared/solver/learn.ts'
-import type { Applied } from '../../../shared/solver/types.ts'
+import type { Applied, VerifyResult } from '../../../shared/solver/types.ts'
 import { buildViews } from './build-views.ts'
 import type { Row } from './grid-state.ts'
 import { barsOf, judge } from './judge.ts'
 import { cellProblems } from './problems.ts'
 import { readRows } from './read-cells.ts'
-import { farProblems, rereadUnit } from './reread.ts'
+import { farProblems, type RereadUnit, rereadRows, rereadUnit } from './reread.ts'
 import { type Answer, type Bench, solve } from './solve.ts'
 import { useArithmetic } from './use-arithmetic.ts'
 
@@ -37,18 +38,16 @@ export function useAnswer(asked: Asked) {
   }, [read, solved, refused])
   const isWrong = problems.length > 0 || solved.is === 'refused'
   const isBusy = read.isPending
-  const { good, isStale } = useLastGood(
-    solved.is === 'answer' && !isWrong && !isBusy ? solved.answer : null,
-    {
-      isEmpty: solved.is === 'waiting' && !isWrong && !isBusy,
-    },
+  const now = useMemo(
+    () =>
+      solved.is === 'answer' && !isWrong && !isBusy
+        ? { answer: solved.answer, points: read.points, bars: barsOf(design, bench, read.points) }
+        : null,
+    [solved, isWrong, isBusy, read.points, design, bench],
   )
+  const { good, isStale } = useLastGood(now, solved.is === 'waiting' && !isWrong && !isBusy)
   const verify = useMemo(
     () => (isWrong ? null : judge(design, bench, read.points)),
-    [isWrong, design, bench, read],
-  )
-  const bars = useMemo(
-    () => (isWrong ? null : barsOf(design, bench, read.points)),
     [isWrong, design, bench, read],
   )
   const views = useMemo(
@@ -71,19 +70,22 @@ export function useAnswer(asked: Asked) {
     isStale,
     isReady: good !== null && !isStale,
     verify,
-    bars,
+    /** Of the last good answer, as the plots draw it. */
+    plotted: good,
     far,
+    reread: (unit: RereadUnit) => rereadRows(rows, read.rows, far, unit, bench.channel.range, allowedV),
     rereadAs: rereadUnit(far, rows, read.rows, bench.channel.range, allowedV),
   }
 }
 
-/** `null` for a moment without an answer; `isEmpty` when there is nothing to answer at all. */
-function useLastGood(answer: Answer | null, { isEmpty }: { isEmpty: boolean }) {
-  const [good, setGood] = useState<{ answer: Answer; at: Date } | null>(null)
-  if (answer && good?.answer !== answer) setGood({ answer, at: new Date() })
-  if (isEmpty && good) setGood(null)
-  return {
-    good: answer && good?.answer !== answer ? { answer, at: new Date() } : good,
-    isStale: answer === null && good !== null,
-  }
+type Good = { answer: Answer; points: readonly Point[]; bars: VerifyResult | null }
+
+/** Null is a moment without an answer: the last one stays. With nothing to answer at all there is none. */
+function useLastGood(now: Good | null, isEmpty: boolean) {
+  const [last, setLast] = useState<(Good & { at: Date }) | null>(null)
+  const isNew = now !== null && last?.answer !== now.answer
+  const current = isNew ? { ...now, at: new Date() } : last
+  if (isNew) setLast(current)
+  if (isEmpty && last) setLast(null)
+  return { good: isEmpty ? null : current, isStale: now === null && last !== null && !isEmpty }
 }

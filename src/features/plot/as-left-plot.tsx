@@ -2,6 +2,7 @@ import { scaleLinear } from 'd3-scale'
 import { useId, useState } from 'react'
 import { type Box, ErrorBar, Hatch, PlotText, type Scale, XAxis, YAxis } from './axes.tsx'
 import { barsSentence, pointLabel, pointTable } from './describe-points.ts'
+import { type EndLabel, EndLabels } from './end-labels.tsx'
 import { GuardBand } from './guard-band.tsx'
 import {
   fullScaleV,
@@ -119,19 +120,40 @@ function Drawing(props: AsLeftPlotProps & { unit: PlotUnit; width: number }) {
           not measured yet
         </PlotText>
       )}
-      {predicted && (
-        <Line line={predicted} range={range} x={x} at={at} dash="6 4" label="predicted" box={box} />
-      )}
-      {earlier && <Pass pass={earlier} isOpen range={range} x={x} at={at} box={box} />}
-      {latest && <Pass pass={latest} isOpen={false} range={range} x={x} at={at} box={box} />}
+      {predicted && <Line line={predicted} range={range} x={x} at={at} dash="6 4" />}
+      {earlier && <Pass pass={earlier} isOpen range={range} x={x} at={at} />}
+      {latest && <Pass pass={latest} isOpen={false} range={range} x={x} at={at} />}
+      <EndLabels x={box.right + 10} labels={labelsOf(props, at)} />
     </PlotSvg>
   )
 }
 
-type OnPlot = { range: PlotRange; x: Scale; at: (volts: number) => number; box: Box }
+/** What stands at the right end of the lines. */
+function labelsOf(props: AsLeftPlotProps, at: (volts: number) => number): EndLabel[] {
+  const { latest, earlier, predicted, toleranceV, isGuarded, range } = props
+  const end = fullScaleV(range)
+  const labels: EndLabel[] = []
+  const ofLine = (line: PlotLine | null | undefined, text: string, colour = 'var(--ink)') => {
+    if (line) labels.push({ y: at(lineAt(line, end)), text, colour })
+  }
+  if (toleranceV !== null) {
+    labels.push({ y: at(toleranceV), text: 'tolerance', colour: 'var(--ink)' })
+    labels.push({ y: at(-toleranceV), text: 'tolerance', colour: 'var(--ink)' })
+    const bar = latest?.points.at(-1)?.barV ?? null
+    if (isGuarded && bar !== null) {
+      labels.push({ y: at(bar - toleranceV), text: 'less U', colour: 'var(--ink-2)' })
+    }
+  }
+  ofLine(earlier?.line, earlier?.label ?? '', 'var(--ink-3)')
+  ofLine(latest?.line, latest?.label ?? '')
+  ofLine(predicted, 'predicted')
+  return labels
+}
 
-function Line(props: OnPlot & { line: PlotLine; dash?: string; label: string; colour?: string }) {
-  const { line, range, x, at, box } = props
+type OnPlot = { range: PlotRange; x: Scale; at: (volts: number) => number }
+
+function Line(props: OnPlot & { line: PlotLine; dash?: string; colour?: string }) {
+  const { line, range, x, at } = props
   const end = fullScaleV(range)
   const colour = props.colour ?? 'var(--ink)'
   return (
@@ -145,15 +167,12 @@ function Line(props: OnPlot & { line: PlotLine; dash?: string; label: string; co
         strokeWidth={1.5}
         {...(props.dash ? { strokeDasharray: props.dash } : {})}
       />
-      <PlotText x={box.right + 6} y={at(lineAt(line, end)) + 4} colour={colour}>
-        {props.label}
-      </PlotText>
     </g>
   )
 }
 
 /** Points of a pass, set apart sideways from the other pass so that their bars do not hide one another. */
-function Pass({ pass, isOpen, range, x, at, box }: OnPlot & { pass: PlotPass; isOpen: boolean }) {
+function Pass({ pass, isOpen, range, x, at }: OnPlot & { pass: PlotPass; isOpen: boolean }) {
   const stop = useWalk(pass.points.length)
   const colour = isOpen ? 'var(--ink-3)' : 'var(--ink)'
   return (
@@ -164,8 +183,6 @@ function Pass({ pass, isOpen, range, x, at, box }: OnPlot & { pass: PlotPass; is
           range={range}
           x={x}
           at={at}
-          box={box}
-          label={pass.label}
           colour={colour}
           {...(isOpen ? { dash: '2 3' } : {})}
         />

@@ -14,11 +14,19 @@ export function ticksOf(scale: Scale, least: number): number[] {
   return scale.ticks(Math.max(2, Math.floor(Math.abs(b - a) / least)))
 }
 
+/** Quarters of a range, where points usually stand, when they are short numbers; else round steps. */
+function quarters(x: Scale): number[] {
+  const [low = 0, high = 1] = x.domain()
+  const step = (high - low) / 4
+  const isShort = decimalsFor(step) <= 3 && decimalsFor(low) <= 3
+  return isShort ? [0, 1, 2, 3, 4].map((k) => low + k * step) : ticksOf(x, 90)
+}
+
 type XAxisProps = { x: Scale; box: Box; label: string; whole?: boolean }
 
 export function XAxis({ x, box, label, whole = false }: XAxisProps) {
-  const ticks = ticksOf(x, whole ? 30 : 90).filter((tick) => !whole || Number.isInteger(tick))
-  const decimals = whole ? 0 : Math.max(1, decimalsFor(stepOf(ticks)))
+  const ticks = whole ? ticksOf(x, 30).filter(Number.isInteger) : quarters(x)
+  const decimals = whole ? 0 : Math.max(1, decimalsFor(stepOf(ticks)), decimalsFor(ticks[0] ?? 0))
   return (
     <g {...text} fill="var(--ink-2)">
       {ticks.map((tick) => (

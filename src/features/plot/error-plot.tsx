@@ -86,8 +86,8 @@ function Drawing(props: ErrorPlotProps & { unit: PlotUnit; width: number }) {
   const { range, points, line, predicted, reach, width, unit } = props
   const hatch = useId()
   const narrow = width < 480
-  const box: Box = { left: 55, right: width - (narrow ? 60 : 88), top: 30, bottom: 250 }
   const isEmpty = points.length === 0
+  const box: Box = { left: 55, right: width - (narrow ? 60 : 88), top: 30, bottom: isEmpty ? 180 : 250 }
   const shown = shownUnit(unit, range, largestOf(props))
   const x = scaleLinear([range.lowV, range.highV], [box.left, box.right])
   const y = errorScale(props, shown.perVolt, box)
@@ -100,17 +100,12 @@ function Drawing(props: ErrorPlotProps & { unit: PlotUnit; width: number }) {
         <Hatch id={hatch} />
       </defs>
       {reach && <Reach lines={reach} range={range} x={x} at={at} fill={`url(#${hatch})`} />}
-      <YAxis y={y} box={box} unit={shown.name} side="left" grid={!isEmpty} />
+      {isEmpty ? <EmptyFrame box={box} /> : <YAxis y={y} box={box} unit={shown.name} side="left" grid />}
       {unit === 'V' && !isEmpty && (
         <YAxis y={inLsb(y, shown.perVolt, range)} box={box} unit="LSB" side="right" />
       )}
       <XAxis x={x} box={box} label="ideal output, V" />
-      <line x1={box.left} x2={box.right} y1={at(0)} y2={at(0)} stroke="var(--rule)" />
-      {isEmpty && (
-        <PlotText x={(box.left + box.right) / 2} y={at(0) - 14} anchor="middle">
-          no points yet
-        </PlotText>
-      )}
+      {!isEmpty && <line x1={box.left} x2={box.right} y1={at(0)} y2={at(0)} stroke="var(--rule)" />}
       {predicted && <Predicted line={predicted} range={range} x={x} at={at} box={box} />}
       {line && <LineTakenApart line={line} range={range} x={x} at={at} />}
       <Marks points={points} range={range} x={x} at={at} />
@@ -140,6 +135,29 @@ function inLsb(y: Scale, perVolt: number, range: PlotRange): Scale {
   return scaleLinear(
     y.domain().map((value) => value * toLsb),
     y.range(),
+  )
+}
+
+function EmptyFrame({ box }: { box: Box }) {
+  const middle = (box.top + box.bottom) / 2
+  return (
+    <g>
+      <rect
+        x={box.left}
+        y={box.top}
+        width={box.right - box.left}
+        height={box.bottom - box.top}
+        fill="none"
+        stroke="var(--hair)"
+      />
+      <line x1={box.left} x2={box.right} y1={middle} y2={middle} stroke="var(--rule)" />
+      <PlotText x={box.left - 8} y={middle + 4} anchor="end" colour="var(--ink-2)">
+        0
+      </PlotText>
+      <PlotText x={(box.left + box.right) / 2} y={middle - 14} anchor="middle">
+        no points yet
+      </PlotText>
+    </g>
   )
 }
 

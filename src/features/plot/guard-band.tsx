@@ -1,4 +1,4 @@
-import { type Box, PlotText, type Scale } from './axes.tsx'
+import type { Box, Scale } from './axes.tsx'
 import type { PlotPoint } from './plot-data.ts'
 
 type GuardBandProps = {
@@ -15,7 +15,6 @@ type GuardBandProps = {
 export function GuardBand({ toleranceV, points, x, at, box, fill }: GuardBandProps) {
   const withBars = points.filter((point) => point.barV !== null).sort((a, b) => a.idealV - b.idealV)
   const last = withBars.at(-1)
-  const room = Math.abs(at(0) - at(toleranceV))
   return (
     <g>
       {[1, -1].map((side) => {
@@ -30,17 +29,9 @@ export function GuardBand({ toleranceV, points, x, at, box, fill }: GuardBandPro
               />
             )}
             <line x1={box.left} x2={box.right} y1={outer} y2={outer} stroke="var(--ink)" strokeWidth={1.5} />
-            <PlotText x={box.right + 6} y={outer + 4}>
-              tolerance
-            </PlotText>
           </g>
         )
       })}
-      {last?.barV && (last.barV / toleranceV) * room > 14 ? (
-        <PlotText x={box.right + 6} y={at(-(toleranceV - last.barV)) + 4} colour="var(--ink-2)">
-          less U
-        </PlotText>
-      ) : null}
     </g>
   )
 }

@@ -12,9 +12,9 @@ type FieldsProps = BenchPageProps & { page: BenchPageState; acts: BenchActs }
 
 /** The line under the head: what is measured, under what, with which codes loaded. */
 export function BenchFields(props: FieldsProps) {
-  const { page, search, change, designs, revision, range, channel } = props
+  const { page, change, designs, revision, range, channel } = props
   return (
-    <div className="flex flex-wrap items-baseline gap-x-5 gap-y-1.5 py-2.5">
+    <div className="flex flex-wrap items-baseline gap-x-4 gap-y-1 py-1.5">
       <DesignFields designs={designs} revision={revision} range={range} channel={channel} change={change} />
       <UnitField {...props} />
       <LotField {...props} />
@@ -44,7 +44,7 @@ export function BenchFields(props: FieldsProps) {
       ) : null}
       <LineField
         label="temperature"
-        chars={7}
+        chars={6}
         value={page.fields.temperature}
         placeholder="°C"
         error={page.temperatureTrouble ?? refusedAt(page.recording.refusal, '/conditions/temperatureC')}
@@ -52,7 +52,7 @@ export function BenchFields(props: FieldsProps) {
       />
       <LineField
         label="note"
-        chars={search.unit === null ? 12 : 18}
+        chars={10}
         value={page.fields.note}
         error={page.fields.note.length > limits.noteMax ? `At most ${limits.noteMax} characters.` : null}
         onCommit={(text) => page.setField('note', text)}
@@ -67,7 +67,7 @@ function UnitField({ page, acts, search }: FieldsProps) {
     <LineField
       label="unit"
       id="unit"
-      chars={16}
+      chars={15}
       value={own}
       error={acts.unitTrouble ?? refusedAt(page.recording.refusal, '/unit')}
       check={(text) => (text === '' ? null : sentenceOf(serial.safeParse(text)))}
@@ -84,7 +84,7 @@ function LotField({ page, search, change }: FieldsProps) {
   return (
     <LineField
       label="lot"
-      chars={8}
+      chars={5}
       value={search.lot ?? ''}
       error={refusedAt(page.recording.refusal, '/lot')}
       check={(text) => (text === '' ? null : sentenceOf(lotKey.safeParse(text)))}

@@ -9,7 +9,6 @@ import { PasteReport } from '../../features/bench/paste-report.tsx'
 import { savePoints } from '../../features/bench/points-file.ts'
 import { PointsGrid } from '../../features/bench/points-grid.tsx'
 import { ReadingsDialog } from '../../features/bench/readings-dialog.tsx'
-import { rereadRows } from '../../features/bench/reread.ts'
 import { NumberText } from '../../ui/number-text.tsx'
 import type { StepProps } from './step-props.ts'
 
@@ -23,7 +22,7 @@ export function GridWithTools(props: StepProps) {
     if (action) dispatch(action)
   }
   const reread = () => {
-    if (answer.rereadAs) dispatch({ do: 'rows', rows: rereadRows(grid.rows, answer.far, answer.rereadAs) })
+    if (answer.rereadAs) dispatch({ do: 'rows', rows: answer.reread(answer.rereadAs) })
   }
   const save = () =>
     savePoints(
@@ -130,16 +129,11 @@ function Guidance({ page }: StepProps) {
 function PageFlags({ page }: StepProps) {
   const { answer } = page
   if (!answer.answer || answer.isStale) return null
-  const { fit, trim } = answer.answer
+  const { fit } = answer.answer
   const readingsAt = (code: number) => {
     const row = answer.views.findIndex((view) => view.code === code)
     const measured = answer.read.rows[row]?.measured
     return measured && 'readings' in measured ? measured.readings.length : 1
   }
-  return (
-    <FlagList
-      flags={flagSentences(fit, readingsAt)}
-      notes={noteSentences([...fit.notes, ...(trim?.notes ?? [])])}
-    />
-  )
+  return <FlagList flags={flagSentences(fit, readingsAt)} notes={noteSentences(fit.notes)} />
 }

@@ -1,3 +1,4 @@
+import { noteSentences } from '../../features/bench/flag-sentences.ts'
 import { ShortfallTable } from '../../features/bench/shortfall-table.tsx'
 import { SuspectPanel } from '../../features/bench/suspect-panel.tsx'
 import { refusedAt } from '../../features/bench/use-recording.ts'
@@ -70,15 +71,22 @@ function Prediction({ page, bench }: StepProps) {
   const sentence = predictionSentence(trim, bench.trim.trimmers, range, targetV)
   if (!sentence) return null
   return (
-    <p className="mb-2 text-text">
-      <Verdict verdict={trim.verdict} /> {sentence}
-    </p>
+    <div className="mb-2">
+      <p className="text-text">
+        <Verdict verdict={trim.verdict} /> {sentence}
+      </p>
+      {noteSentences(trim.notes).map((note) => (
+        <p key={note} className="mt-0.5 text-body text-ink-2">
+          {note}
+        </p>
+      ))}
+    </div>
   )
 }
 
 /** What the hand does next. */
 function GoOn({ page, acts }: StepProps) {
-  const count = page.answer.read.points.length || page.planned.length
+  const count = page.answer.answer?.fit.n ?? page.planned.length
   const { recorded } = page.recording
   if (recorded && acts.next) {
     return (

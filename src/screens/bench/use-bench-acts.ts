@@ -29,6 +29,8 @@ export function useBenchActs(props: BenchPageProps, page: BenchPageState, shown:
       return
     }
     page.flush()
+    // Said in the address from here on: once recorded the unit has codes, and nothing said would mean something else.
+    if (search.applied === null) change({ applied: page.applied })
     void recording.record(body, reason)
   }
   /** The pass after this one: measured with the codes that were just recorded, or with those that the unit has. */
