@@ -3,8 +3,6 @@ import { ln, powerOfTwo } from '../distribution/elementary.ts'
 /** Forgives the rounding of a span that is a whole number of steps (solver.md section 6). */
 export const SLACK = 1e-9
 
-const LN2 = 0.6931471805599453
-
 /**
  * Bits that a span needs: the smallest n >= 1 with span <= step·(2^n - 1), found by doubling; null over 1000.
  * @param spanV at least 0; @param stepV over 0
@@ -37,5 +35,5 @@ export function floorLog2(ratio: number): number {
  */
 export function log2(ratio: number): number {
   const whole = floorLog2(ratio)
-  return whole + ln(ratio / powerOfTwo(whole)) / LN2
+  return whole + ln(ratio / powerOfTwo(whole)) / Math.LN2
 }
