@@ -1,7 +1,7 @@
 import { type ErrorCode, type FieldError, OgeeError } from '../errors.ts'
 import { limits } from '../limits.ts'
 import { type ConverterRange, idealV } from './converter.ts'
-import { codeOf } from './point-code.ts'
+import { codeOf, type Refuse } from './point-code.ts'
 import { type Pooled, pooledReadings } from './readings.ts'
 import type { Design, MeasuredPoint } from './types.ts'
 
@@ -64,9 +64,18 @@ export function takePoints(
   }
   const refused: Refusal[] = []
   const taken: Taken[] = []
-  for (let i = 0; i < points.length; i++) {
-    const point = takePoint(points[i]!, i, range, rules, refused)
-    if (point !== null) taken.push(point)
+  let at = 0
+  const refuse: Refuse = (code, field, message) => {
+    refused.push({ code, path: `/points/${at}/${field}`, message })
+    return null
+  }
+  let sorted = true
+  for (; at < points.length; at++) {
+    const point = takePoint(points[at]!, at, range, rules, refuse)
+    if (point === null) continue
+    const before = taken[taken.length - 1]
+    if (before !== undefined && byCodeThenValue(before, point) > 0) sorted = false
+    taken.push(point)
   }
   if (refused.length > 0) {
     const first = refused[0]!
@@ -75,7 +84,7 @@ export function takePoints(
       errors: refused.map(({ path, message }) => ({ path, message })),
     })
   }
-  taken.sort(byCodeThenValue)
+  if (!sorted) taken.sort(byCodeThenValue)
   return assemble(taken, range, rules)
 }
 
@@ -88,12 +97,8 @@ function takePoint(
   i: number,
   range: ConverterRange,
   rules: PointRules,
-  refused: Refusal[],
+  refuse: Refuse,
 ): Taken | null {
-  const refuse = (code: ErrorCode, field: string, message: string): null => {
-    refused.push({ code, path: `/points/${i}/${field}`, message })
-    return null
-  }
   const code = codeOf(point, range, refuse)
   if (code === null) return null
   const { readings, uncertainty } = point
