@@ -21,7 +21,7 @@ const Tokens = lazy(() => import('../screens/settings/tokens-screen.tsx'))
 /** Every page has an address that restores it. Sign-in and set-up stand outside the frame. */
 export function AppRoutes() {
   return (
-    <Suspense fallback={<Loading>Reading the page.</Loading>}>
+    <Suspense fallback={<Loading page>Reading the page.</Loading>}>
       <Routes>
         <Route path="/sign-in" element={<SignIn />} />
         <Route path="/setup" element={<Setup />} />

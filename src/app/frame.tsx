@@ -28,7 +28,7 @@ export default function Frame() {
     return (
       <main className="p-6">
         <AwayBanner />
-        {me.error ? <Problem error={me.error} /> : <Loading>Reading who is signed in.</Loading>}
+        {me.error ? <Problem error={me.error} /> : <Loading page>Reading who is signed in.</Loading>}
       </main>
     )
   }
@@ -60,7 +60,7 @@ function SignedInFrame() {
       >
         <AwayBanner />
         <ErrorBoundary key={pathname}>
-          <Suspense fallback={<Loading>Reading the page.</Loading>}>
+          <Suspense fallback={<Loading page>Reading the page.</Loading>}>
             <Outlet />
           </Suspense>
         </ErrorBoundary>

@@ -13,7 +13,7 @@ const places = [
 ] as const
 
 const placeLook =
-  'flex min-h-8 items-center justify-between border-b-3 border-transparent px-2 text-text text-ink-2 hover:text-ink aria-[current=page]:border-ink aria-[current=page]:font-semibold aria-[current=page]:text-ink rail:min-h-[30px] rail:border-b-0 rail:border-l-3 rail:px-[13px]'
+  'flex min-h-8 items-center justify-between border-b-3 border-transparent px-2 text-text text-ink-2 hover:text-ink aria-[current=page]:border-ink aria-[current=page]:font-semibold aria-[current=page]:text-ink forced-colors:border-[Canvas] forced-colors:aria-[current=page]:border-[Highlight] rail:min-h-[30px] rail:border-b-0 rail:border-l-3 rail:px-[13px]'
 
 /** 116 px at the left of wide screens; under 960 px a bar at the top, under 480 px with the rest behind "More". */
 export function Rail({ onShowKeys }: { onShowKeys: () => void }) {

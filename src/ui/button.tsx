@@ -4,8 +4,7 @@ import { Link } from 'react-router-dom'
 /** Primary is the one act of the page, in ink; plain has a line round it; quiet is underlined text. */
 export type ButtonLook = 'primary' | 'plain' | 'quiet'
 
-const shared =
-  'inline-flex items-center gap-2 text-body whitespace-nowrap print:hidden disabled:cursor-default'
+const shared = 'inline-flex items-center gap-2 text-body whitespace-nowrap disabled:cursor-default'
 const looks: Record<ButtonLook, string> = {
   primary:
     'min-h-7 rounded-sm border border-ink bg-ink px-3 font-semibold text-paper disabled:border-ink-3 disabled:bg-ink-3 forced-colors:border-[ButtonBorder] forced-colors:disabled:text-[GrayText]',
@@ -26,7 +25,7 @@ export function Button({
   type = 'button',
   ...rest
 }: ComponentProps<'button'> & { look?: ButtonLook }) {
-  return <button type={type} className={classes(look, className)} {...rest} />
+  return <button type={type} className={`print:hidden ${classes(look, className)}`} {...rest} />
 }
 
 /** A link within the app that looks like a button; quiet is the plain link of tables and sentences. */
@@ -35,5 +34,7 @@ export function LinkButton({
   className,
   ...rest
 }: ComponentProps<typeof Link> & { look?: ButtonLook }) {
-  return <Link className={classes(look, className)} {...rest} />
+  // Links print as text; one that looks like a button is an act and does not print.
+  const printed = look === 'quiet' ? 'print:no-underline' : 'print:hidden'
+  return <Link className={`${printed} ${classes(look, className)}`} {...rest} />
 }

@@ -56,7 +56,7 @@ export function Select({ className = '', children, ...rest }: ComponentProps<'se
 export function Checkbox({ children, className = '', ...rest }: ComponentProps<'input'>) {
   return (
     <label className={`inline-flex min-h-6 items-center gap-2 ${className}`}>
-      <input type="checkbox" className="size-4 accent-ink" {...rest} />
+      <input type="checkbox" className="size-4 shrink-0 accent-ink" {...rest} />
       <span>{children}</span>
     </label>
   )

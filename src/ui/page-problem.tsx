@@ -32,6 +32,15 @@ export function PageProblem({
       </>
     )
   }
+  if (isOgeeError(error, 'server-unreachable') || isOgeeError(error, 'database-unavailable')) {
+    // The banner says what is wrong, counts down, and reads this again.
+    return (
+      <>
+        <PageHead place={place} title={what} />
+        <Empty>This is read as soon as the server answers.</Empty>
+      </>
+    )
+  }
   return (
     <>
       <PageHead place={place} title={what} />

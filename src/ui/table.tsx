@@ -16,8 +16,9 @@ export function Table({
   return (
     <div
       ref={box}
-      className="overflow-x-auto"
-      {...(scrolls ? { tabIndex: 0, role: 'region', 'aria-label': caption } : {})}
+      // What is only spoken is placed in here, so that it cannot widen the page.
+      className="relative overflow-x-auto"
+      {...(scrolls ? { tabIndex: 0, role: 'region', 'aria-label': `${caption}, scrolls sideways` } : {})}
     >
       <table className={`w-full border-collapse text-body ${className}`}>
         <caption className="sr-only">{caption}</caption>

@@ -100,8 +100,8 @@ export function RecordList({ records, row }: { records: readonly RecordLine[]; r
       {records.map((record, i) => (
         <li key={record.id} className={`border-b border-hair ${i === row ? 'bg-shade' : ''}`}>
           <LinkButton
-            look="plain"
-            className="block! w-full border-0! px-1! py-1.5 font-normal!"
+            look="quiet"
+            className="block! w-full px-1! py-1.5 no-underline! whitespace-normal"
             to={paths.record(record.id)}
             data-row={i}
           >

@@ -29,7 +29,7 @@ export default function DesignScreen() {
       />
     )
   }
-  if (!design.data) return <Loading>{`Reading design ${key}.`}</Loading>
+  if (!design.data) return <Loading page>{`Reading design ${key}.`}</Loading>
   const shown = whichRevision(design.data, number)
   if (shown === null) {
     return (

@@ -32,7 +32,7 @@ export default function RecordScreen() {
       <PageProblem place={place} what="Record" error={record.error} onRetry={() => void record.refetch()} />
     )
   }
-  if (!record.data) return <Loading>Reading the record.</Loading>
+  if (!record.data) return <Loading page>Reading the record.</Loading>
   return <RecordPage key={id} record={record.data} />
 }
 

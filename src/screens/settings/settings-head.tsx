@@ -4,7 +4,7 @@ import { paths } from '../../lib/paths.ts'
 import { PageHead } from '../../ui/page-head.tsx'
 
 const look =
-  'inline-flex min-h-7 items-center border-b-2 border-transparent text-ink-2 hover:text-ink aria-[current=page]:border-ink aria-[current=page]:font-semibold aria-[current=page]:text-ink'
+  'inline-flex min-h-7 items-center border-b-2 border-transparent text-ink-2 hover:text-ink aria-[current=page]:border-ink aria-[current=page]:font-semibold aria-[current=page]:text-ink forced-colors:border-[Canvas] forced-colors:aria-[current=page]:border-[Highlight]'
 
 export function SettingsHead({ title }: { title: string }) {
   const { role } = usePerson()
