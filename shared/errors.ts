@@ -19,6 +19,8 @@ export const errorTable = {
   'too-few-codes': badInput('Two different codes are the least that gives a line'),
   'not-finite': badInput('A number is not finite'),
   'uncertainty-not-positive': badInput('A stated uncertainty must be over zero'),
+  'implausible-uncertainty': badInput('A stated uncertainty is far from what can be measured'),
+  'range-out-of-bounds': badInput('The range is too small or too large'),
   'implausible-point': badInput('A measured value is far from ideal'),
   'point-incomplete': badInput('A point needs a code and a measured value'),
   'too-many-points': badInput('There are too many points'),

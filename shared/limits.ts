@@ -6,6 +6,9 @@ export const limits = {
   /** Resolution of a converter, bits (solver.md section 1). */
   converterBitsMin: 4,
   converterBitsMax: 24,
+  /** Span and ends of a range, V: inside them no square of a voltage leaves the doubles. */
+  rangeSpanMinV: 1e-9,
+  rangeEndMaxV: 1e6,
   /** Resolution of an auxiliary DAC, bits. */
   sourceBitsMin: 1,
   sourceBitsMax: 24,

@@ -46,7 +46,7 @@ export function rangeOf(design: Design, rangeId?: string): Range {
 /**
  * What follows from resolution and range: LSB, full-scale output, offset point, gain point.
  * @param design its converter: bits N, 4 to 24; lowV L < highV H, volts
- * @throws bits-out-of-bounds, range-reversed, not-finite, range-required, range-unknown
+ * @throws bits-out-of-bounds, range-reversed, range-out-of-bounds, not-finite, range-required, range-unknown
  * Source: solver.md section 1; LSB = FSR/2^N, W. Kester (ed.), Data Conversion Handbook (2005), chapter 2.
  * @example converterRange(unipolar18, 'u10').lsbV // 10 / 262144
  */
@@ -68,6 +68,13 @@ export function converterRange(design: Design, rangeId?: string): ConverterRange
   if (!(lowV < highV)) {
     const detail = `Range ${range.id}: ${highV} V is not above ${lowV} V. Channels that fall with code are not served.`
     throw new OgeeError('range-reversed', detail, { errors: [{ path: `${path}/highV`, message: detail }] })
+  }
+  const span = highV - lowV
+  if (span < limits.rangeSpanMinV || Math.max(-lowV, highV) > limits.rangeEndMaxV) {
+    const detail = `Range ${range.id}: ${lowV} V to ${highV} V is not between ${limits.rangeSpanMinV} V wide and ${limits.rangeEndMaxV} V high.`
+    throw new OgeeError('range-out-of-bounds', detail, {
+      errors: [{ path: `${path}/highV`, message: detail }],
+    })
   }
   return derive(range, bits, coding, inlLsb ?? 0)
 }

@@ -51,7 +51,7 @@ export function pointRules(measurement: Design['measurement'], minCodes = 2): Po
 /**
  * Checks points, settles their codes and uncertainties and sorts them. Every bad point is named at once.
  * @throws code-out-of-range, outside-range, code-target-disagree, not-finite, uncertainty-not-positive,
- *   implausible-point, too-few-codes, point-incomplete; `errors[].path` is `/points/<index as given>/<field>`
+ *   implausible-point, implausible-uncertainty, too-few-codes, point-incomplete; `errors[].path` is `/points/<index as given>/<field>`
  * Source: solver.md section 2.
  */
 export function takePoints(
@@ -125,6 +125,13 @@ function takePoint(
       `Point ${i + 1}: the standard uncertainty is ${uncertainty} V; it must be over 0 V. Leave it out when it is not known.`,
     )
   }
+  if (uncertainty !== undefined && (uncertainty < leastU(range) || uncertainty > range.fsrV)) {
+    return refuse(
+      'implausible-uncertainty',
+      'uncertainty',
+      `Point ${i + 1}: a standard uncertainty of ${uncertainty} V cannot be for a range of ${range.fsrV} V. Check its unit.`,
+    )
+  }
   const away = Math.abs(y - idealV(range, code))
   if (away > (rules.plausiblePercent / 100) * range.fsrV) {
     return refuse(
@@ -176,7 +183,7 @@ function assemble(taken: readonly Taken[], range: ConverterRange, rules: PointRu
     last = code
   }
   if (set.distinct < rules.minCodes) tooFew(set, rules.minCodes)
-  settleUncertainty(set, taken, rules.resolutionV)
+  settleUncertainty(set, taken, rules.resolutionV, leastU(range))
   noteTemperatures(set, taken)
   return set
 }
@@ -191,8 +198,13 @@ function tooFew({ n, distinct }: PointSet, minCodes: number): never {
   throw new OgeeError('too-few-codes', message, { errors: [{ path: '/points', message }] })
 }
 
+/** Nothing is known better than a billionth of a billionth of the range; weights stay inside the doubles. */
+function leastU(range: ConverterRange): number {
+  return range.fsrV * 1e-18
+}
+
 /** One source of u for all points: stated, or readings. A mixture gives none and says so. */
-function settleUncertainty(set: PointSet, taken: readonly Taken[], resolutionV: number): void {
+function settleUncertainty(set: PointSet, taken: readonly Taken[], resolutionV: number, least: number): void {
   let stated = 0
   for (const point of taken) if (point.u > 0) stated += 1
   if (stated === set.n) {
@@ -205,7 +217,7 @@ function settleUncertainty(set: PointSet, taken: readonly Taken[], resolutionV: 
     set.notes.push('mixed-uncertainty')
   } else if (pooled.dof > 0) {
     if (!pooled.complete) set.notes.push('mixed-uncertainty')
-    else if (pooled.variance > 0 || resolutionV > 0) {
+    else if (Math.sqrt(pooled.variance) + resolutionV > least * limits.readingsMax) {
       const q2 = (resolutionV * resolutionV) / 12
       set.u = set.readings.map((list) => Math.sqrt(pooled.variance / list!.length + q2))
       set.uDof = pooled.dof

@@ -4,7 +4,7 @@ import { wordText } from './coding.ts'
 import type { Fitted } from './fit.ts'
 import { jointCodes, nearestTrimCode } from './joint-codes.ts'
 import type { Line } from './line.ts'
-import { nodeV } from './network.ts'
+import { nodeV, refuse } from './network.ts'
 import { type Move, moveLine, predict, worstEnd } from './predict.ts'
 import { missingCode, missingReach, reachUsed } from './reach.ts'
 import { shortfallOf } from './shortfall.ts'
@@ -24,6 +24,10 @@ export function trimOf(channel: Channel, trimmers: Trimmers, fitted: Fitted, now
   const exact: Move = {
     gain: nowV.gain + (moves.gain ?? 0),
     offset: nowV.offset + (moves.offset ?? 0),
+  }
+  for (const which of ['gain', 'offset'] as const) {
+    if (!Number.isFinite(exact[which]))
+      refuse('not-finite', which, 'effect', 'its effect asks for no finite voltage.')
   }
   const base = {
     exactNodeV: each(trimmers, (t) => exact[t.which]),

@@ -96,6 +96,20 @@ describe('points that are refused', () => {
       /NaN/,
     ],
     [
+      'u in the wrong unit, wider than the range',
+      pointsWith({ code: 32768, measured: 5, uncertainty: 20 }),
+      'implausible-uncertainty',
+      '/points/1/uncertainty',
+      /Check its unit/,
+    ],
+    [
+      'u smaller than any meter',
+      pointsWith({ code: 32768, measured: 5, uncertainty: 1e-160 }),
+      'implausible-uncertainty',
+      '/points/1/uncertainty',
+      /1e-160 V/,
+    ],
+    [
       'a value that is not finite',
       pointsWith({ code: 32768, measured: Number.POSITIVE_INFINITY }),
       'not-finite',
@@ -167,6 +181,13 @@ describe('designs that are refused', () => {
       'not-finite',
       '/ranges/0/highV',
     ],
+    [
+      'a range that squares out of the doubles',
+      plainDesign({ lowV: 0, highV: 1e200 }),
+      'range-out-of-bounds',
+      '/ranges/0/highV',
+    ],
+    ['a range of nothing', plainDesign({ lowV: 0, highV: 1e-12 }), 'range-out-of-bounds', '/ranges/0/highV'],
     ['no adjuster', plainDesign({ adjusters: {} }), 'no-adjuster', '/adjusters'],
     [
       'an effect of nothing',
