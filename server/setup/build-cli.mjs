@@ -19,17 +19,20 @@ const arithmeticApart = {
 }
 
 /**
- * commander can run subcommands as programs of their own; ours are functions. Loading what it would need for that takes
- * longer than everything else in it.
+ * Node's own modules are taken from the process instead of imported. An import lists every export, and listing those of
+ * node:fs alone loads all of its streams. commander's one for running programs as subcommands is left out: ours are functions.
  * @type {import('esbuild').Plugin}
  */
-const noSubprocesses = {
-  name: 'no-subprocesses',
+const builtinsOnUse = {
+  name: 'builtins-on-use',
   setup(build) {
-    build.onResolve({ filter: /^node:child_process$/ }, ({ importer }) =>
-      /[/\\]commander[/\\]/.test(importer) ? { path: 'none', namespace: 'no-subprocesses' } : undefined,
-    )
-    build.onLoad({ filter: /.*/, namespace: 'no-subprocesses' }, () => ({ contents: 'module.exports = {}' }))
+    build.onResolve({ filter: /^node:/ }, ({ path }) => ({ path, namespace: 'builtin' }))
+    build.onLoad({ filter: /.*/, namespace: 'builtin' }, ({ path }) => ({
+      contents:
+        path === 'node:child_process'
+          ? 'module.exports = {}'
+          : `module.exports = process.getBuiltinModule(${JSON.stringify(path)})`,
+    }))
   },
 }
 
@@ -59,9 +62,8 @@ export async function buildCli(root, folder = join(root, 'dist/cli')) {
       entryPoints: ['cli/main.ts'],
       outfile,
       define: { OGEE_VERSION: JSON.stringify(version) },
-      // commander is CommonJS and asks for Node's own modules, and for nothing else, by require.
-      banner: { js: '#!/usr/bin/env node\nconst require = process.getBuiltinModule' },
-      plugins: [arithmeticApart, noSubprocesses],
+      banner: { js: '#!/usr/bin/env node' },
+      plugins: [arithmeticApart, builtinsOnUse],
     }),
     bundle({
       ...common,

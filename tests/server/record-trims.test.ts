@@ -413,12 +413,8 @@ describe('the list', () => {
     } while (after !== null)
     const [count] = await harness.database.sql.rows<{ n: number }>('SELECT COUNT(*) AS n FROM records')
     expect(new Set(seen.map((line) => line.id)).size).toBe(count!.n)
-    expect(seen.map((line) => line.recordedAt)).toEqual(
-      seen
-        .map((line) => line.recordedAt)
-        .toSorted()
-        .reverse(),
-    )
+    const times = seen.map((line) => Date.parse(line.recordedAt))
+    expect(times).toEqual(times.toSorted((a, b) => b - a))
     const verifies = await api(url, 'get', '/trims?kind=verify&unit=V-1', engineer)
     expect(verifies.body.items.map((line: { verdict: string }) => line.verdict)).toEqual(['fail', 'pass'])
     const wrong = await api(url, 'get', '/trims?after=x', engineer)
