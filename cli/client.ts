@@ -25,7 +25,7 @@ export function makeClient({ url, token }: Connection, io: Io, patience = usualP
     const seen: Seen = { reached: false, status: undefined, retryAfterMs: undefined }
     let waitedMs = 0
     for (let attempt = 1; ; attempt += 1) {
-      const trouble = await once(endpoint, input, seen).catch((error: unknown) => troubleOf(error, seen, io))
+      const trouble = await once(endpoint, input, seen).catch((error: unknown) => troubleOf(error, seen))
       if (!(trouble instanceof OgeeError)) return trouble
       const waitMs = seen.retryAfterMs ?? backoff(patience.firstWaitMs, attempt)
       const again =
@@ -47,7 +47,7 @@ export function makeClient({ url, token }: Connection, io: Io, patience = usualP
       baseUrl: url,
       headers: { authorization: `Bearer ${token}`, 'user-agent': `ogee/${version}` },
       fetch: (target: string | URL | Request, init?: RequestInit) =>
-        watched(target, { ...init, signal: AbortSignal.any([io.signal, limit]) }, seen, io),
+        watched(target, { ...init, signal: limit }, seen, io),
     }
     return await call(caller, endpoint, input)
   }
@@ -85,8 +85,7 @@ const backoff = (firstMs: number, attempt: number) =>
   firstMs * 2 ** (attempt - 1) * (0.75 + Math.random() / 2)
 
 /** What went wrong in one try, told apart by whether the server was there. */
-function troubleOf(error: unknown, seen: Seen, io: Io): OgeeError {
-  if (io.signal.aborted) return new OgeeError('interrupted', 'Interrupted.')
+function troubleOf(error: unknown, seen: Seen): OgeeError {
   if (error instanceof OgeeError) {
     if (error.cause instanceof OgeeError) return error.cause
     if (seen.status === 429 && error.code === 'defect')

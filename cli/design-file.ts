@@ -1,13 +1,9 @@
-import * as z from 'zod'
 import { type Design, designDocument } from '../shared/contract/design.ts'
 import { OgeeError } from '../shared/errors.ts'
 import { limits } from '../shared/limits.ts'
 import { fieldErrors } from './field-errors.ts'
 import { parseJson, readText } from './files.ts'
 import type { Io } from './io.ts'
-
-// One document is read per run: compiling a parser for it would take longer than reading it.
-z.config({ jitless: true })
 
 /** Reads and checks a design document; every bad field is named by its JSON pointer. */
 export async function readDesign(io: Io, path: string): Promise<Design> {

@@ -1,4 +1,4 @@
-import { promises as fs } from 'node:fs'
+import fs from 'node:fs'
 import { OgeeError } from '../shared/errors.ts'
 import type { Io } from './io.ts'
 import { placeInJson } from './json-place.ts'
@@ -19,14 +19,26 @@ export async function readText(
 ): Promise<string> {
   if (path !== '-') return (await readFileText(path, limit, tooLarge)).text
   if (io.stdinIsTerminal) io.say('ogee: reading standard input; end it with Ctrl-D.')
+  try {
+    return decode(await gathered(io.stdin, limit, tooLarge), 'Standard input')
+  } catch (error) {
+    throw error instanceof OgeeError ? error : unreadable('Standard input', error)
+  }
+}
+
+async function gathered(
+  stream: AsyncIterable<Uint8Array>,
+  limit: number,
+  tooLarge: () => OgeeError,
+): Promise<Uint8Array> {
   const pieces: Uint8Array[] = []
   let size = 0
-  for await (const piece of io.stdin) {
+  for await (const piece of stream) {
     size += piece.length
     if (size > limit) throw tooLarge()
     pieces.push(piece)
   }
-  return decode(Buffer.concat(pieces), 'Standard input')
+  return Buffer.concat(pieces)
 }
 
 /** A file's text and mode, both of the same open file. */
@@ -35,17 +47,39 @@ export async function readFileText(
   limit: number,
   tooLarge: () => OgeeError,
 ): Promise<FileText> {
-  const file = await fs.open(path, 'r').catch((error: unknown) => {
-    throw unreadable(path, error)
-  })
   try {
-    const { size, mode } = await file.stat()
-    if (size > limit) throw tooLarge()
-    const bytes = await file.readFile()
-    if (bytes.length > limit) throw tooLarge()
+    const { bytes, mode } = isPlainFile(path)
+      ? readNow(path, limit, tooLarge)
+      : await readWaiting(path, limit, tooLarge)
     return { text: decode(bytes, path), mode }
   } catch (error) {
     throw error instanceof OgeeError ? error : unreadable(path, error)
+  }
+}
+
+type FileBytes = { bytes: Uint8Array; mode: number }
+
+const isPlainFile = (path: string) => fs.statSync(path, { throwIfNoEntry: false })?.isFile() === true
+
+/** A file on a disk, at once: starting Node's threads for it would take longer than reading it. */
+function readNow(path: string, limit: number, tooLarge: () => OgeeError): FileBytes {
+  const file = fs.openSync(path, 'r')
+  try {
+    const { size, mode } = fs.fstatSync(file)
+    if (size > limit) throw tooLarge()
+    return { bytes: fs.readFileSync(file), mode }
+  } finally {
+    fs.closeSync(file)
+  }
+}
+
+/** A pipe or the like, which may keep us waiting: Ctrl-C must get through. */
+async function readWaiting(path: string, limit: number, tooLarge: () => OgeeError): Promise<FileBytes> {
+  const file = await fs.promises.open(path, 'r')
+  try {
+    const { mode } = await file.stat()
+    const stream = file.createReadStream({ autoClose: false }) as AsyncIterable<Uint8Array>
+    return { bytes: await gathered(stream, limit, tooLarge), mode }
   } finally {
     await file.close()
   }
@@ -67,7 +101,7 @@ function decode(bytes: Uint8Array, name: string): string {
 }
 
 export async function createFile(path: string, bytes: Uint8Array): Promise<void> {
-  await fs.writeFile(path, bytes).catch((error: unknown) => {
+  await fs.promises.writeFile(path, bytes).catch((error: unknown) => {
     const code = codeOf(error)
     throw code === 'ENOSPC' || code === 'EIO'
       ? new OgeeError('read-failed', `${path} cannot be written: ${code}.`)

@@ -1,4 +1,4 @@
-import { fstatSync, writeSync } from 'node:fs'
+import { writeSync } from 'node:fs'
 import { OgeeError } from '../shared/errors.ts'
 
 /** Everything a command touches of the world outside, so that tests can stand in for it. */
@@ -8,8 +8,6 @@ export type Io = {
   stdinIsTerminal: boolean
   stdoutIsTerminal: boolean
   stderrIsTerminal: boolean
-  /** Aborted by Ctrl-C. */
-  signal: AbortSignal
   /** Writes to standard output and waits for a slow reader. False once the reader has gone: stop producing. */
   write: (text: string) => Promise<boolean>
   /** Writes a line to standard error. */
@@ -19,7 +17,7 @@ export type Io = {
 }
 
 /** The Io of this process. */
-export function processIo(signal: AbortSignal): Io {
+export function processIo(): Io {
   let readerGone = false
   let failure: OgeeError | undefined
   // A reader such as `head` leaves when it has enough. That is its right and no trouble of ours.
@@ -38,7 +36,6 @@ export function processIo(signal: AbortSignal): Io {
     stdinIsTerminal: process.stdin.isTTY === true,
     stdoutIsTerminal: process.stdout.isTTY === true,
     stderrIsTerminal: process.stderr.isTTY === true,
-    signal,
     write: async (text) => {
       if (!readerGone) await written(text)
       if (failure) throw failure
@@ -54,7 +51,7 @@ export function processIo(signal: AbortSignal): Io {
 /** Last words on standard error when the process ends at once: nothing may wait in a buffer. */
 export function sayNow(text: string): void {
   try {
-    if (fstatSync(2)) writeSync(2, text)
+    writeSync(2, text)
   } catch {
     // Nobody can be told any more.
   }

@@ -12,10 +12,8 @@ async function main(argv: readonly string[]): Promise<void> {
   const { runCommandLine } = await import('./run.ts')
   const { processIo, sayNow } = await import('./io.ts')
   const { interruption } = await import('./trouble.ts')
-  const abort = new AbortController()
-  const io = processIo(abort.signal)
+  const io = processIo()
   process.on('SIGINT', () => {
-    abort.abort()
     sayNow(interruption(argv, io))
     // At once: whoever pressed Ctrl-C does not wait for a slow reader, and an interrupted result is no result.
     process.exit(130)

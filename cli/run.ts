@@ -32,7 +32,9 @@ export async function parse(
   argv: readonly string[],
 ): Promise<Chosen | { text: string }> {
   const loaded = new Map<Leaf, Command>()
-  for (const leaf of namedLeaves(tree, argv)) loaded.set(leaf, await leaf.load())
+  const leaves = namedLeaves(tree, argv)
+  if (leaves.length > 0) await import('./zod-config.ts')
+  for (const leaf of leaves) loaded.set(leaf, await leaf.load())
   let chosen: Chosen | undefined
   let text = ''
   const program = buildProgram(

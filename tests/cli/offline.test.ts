@@ -1,3 +1,4 @@
+import { spawn } from 'node:child_process'
 import { copyFileSync, mkdirSync, readFileSync, renameSync, writeFileSync } from 'node:fs'
 import { join } from 'node:path'
 import { beforeAll, describe, expect, test } from 'vitest'
@@ -5,7 +6,7 @@ import type * as z from 'zod'
 import { codesDocument, fitDocument } from '../../shared/contract/codes.ts'
 import { problem } from '../../shared/contract/problem.ts'
 import { verifyDocument } from '../../shared/contract/verify.ts'
-import { builtCli, examples, problemOf } from './support/built-cli.ts'
+import { builtCli, ended, examples, problemOf } from './support/built-cli.ts'
 
 const cli = builtCli()
 const read = (name: string) => readFileSync(join(examples, name), 'utf8')
@@ -369,6 +370,13 @@ describe('results', () => {
     expect(table?.stdout).toMatch(/^Code +2593 +2048$/m)
     expect(table?.stderr).toBe('Loading codes moves a live output. Make safe what it drives first.\n')
     expect(json?.stderr).toBe('')
+  })
+
+  test('points from a pipe that is named as a file, as a shell hands it over', async () => {
+    const command = `'${process.execPath}' '${cli.path}' codes --design unipolar-18.design.json --points <(cat unipolar-18.points.csv)`
+    const ran = await ended(spawn('bash', ['-c', command], { cwd: cli.folder }))
+    expect(ran.code).toBe(0)
+    expect(parsed(codesDocument, ran.stdout).trim.codes).toEqual({ gain: 2593, offset: 2048 })
   })
 
   test('effects are learned from the pass before', async () => {

@@ -2,6 +2,8 @@ import { describe, expect, test } from 'vitest'
 import { commandTable } from '../../cli/command-table.ts'
 import { parse, runCommandLine } from '../../cli/run.ts'
 import { formatAskedFor } from '../../cli/trouble.ts'
+import { verdictExit } from '../../shared/contract/exit.ts'
+import { errorTable } from '../../shared/errors.ts'
 import { memoryIo } from './support/memory-io.ts'
 
 const usage = async (line: string) => {
@@ -121,4 +123,13 @@ test('the format asked for is known even when nothing else is understood', () =>
   expect(formatAskedFor(['x', '--format=ndjson'], true)).toBe('ndjson')
   expect(formatAskedFor(['x', '--format'], true)).toBe('table')
   expect(formatAskedFor(['x'], false)).toBe('json')
+})
+
+test('L1: no exit code is undocumented', () => {
+  const documented = new Set([0, 10, 11, 12, 13, 14, 15, 16, 20, 64, 65, 66, 69, 70, 73, 74, 75, 77, 78, 130])
+  const used = [...Object.values(verdictExit), ...Object.values(errorTable).map(({ exit }) => exit)]
+  expect(used.filter((exit) => !documented.has(exit))).toEqual([])
+  // A bad unit is never mixed up with a broken tool.
+  expect(Object.values(verdictExit).every((exit) => exit < 64)).toBe(true)
+  expect(Object.values(errorTable).every(({ exit }) => exit >= 64)).toBe(true)
 })

@@ -205,6 +205,14 @@ describe('trim', () => {
     expect(server.seen).toHaveLength(0)
   })
 
+  test('busy for longer than we wait: 75', async () => {
+    server.willAnswer(problem('too-many-requests', { 'retry-after': '3600' }))
+    const ran = await run(trim)
+    expect([ran.code, ran.stdout]).toEqual([75, ''])
+    expect(problemOf(ran)).toMatchObject({ code: 'too-many-requests', exit: 75 })
+    expect(server.seen).toHaveLength(1)
+  })
+
   test('nobody there: 69, after all tries', async () => {
     const ran = await run(trim, { env: { OGEE_URL: 'http://127.0.0.1:9' } })
     expect(ran.code).toBe(69)

@@ -18,7 +18,6 @@ export function memoryIo(
     stdin: (async function* () {
       yield new TextEncoder().encode(input)
     })(),
-    signal: new AbortController().signal,
     write: async (text) => {
       out += text
       return true
