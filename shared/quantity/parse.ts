@@ -16,11 +16,10 @@ export type ParseOptions = {
 }
 
 /** Gaps that group digits in print: no-break, thin and narrow no-break space. */
-const GAP = '[\\u00a0\\u2009\\u202f]'
-const NUMBER = new RegExp(
-  `^([+-]?)\\s*(\\d{1,3}(?:${GAP}\\d{3})+(?!\\d)|\\d+)?(?:\\.((?:\\d{3}${GAP})+\\d{1,3}(?!\\d)|\\d*))?(?:[eE]([+-]?\\d{1,5}))?(.*)$`,
-  's',
-)
+const GAPS = /[\u00a0\u2009\u202f]/g
+/** Sign, whole part, decimals (both may be in groups of three), exponent, and the rest, which is the unit. */
+const NUMBER =
+  /^([+-]?)\s*(\d{1,3}(?:[\u00a0\u2009\u202f]\d{3})+(?!\d)|\d+)?(?:\.((?:\d{3}[\u00a0\u2009\u202f])+\d{1,3}(?!\d)|\d*))?(?:[eE]([+-]?\d{1,5}))?(.*)$/s
 
 /**
  * A quantity as people type it: a number with an optional unit, read exactly. The decimal exponent is moved in the
@@ -74,9 +73,8 @@ function withPoint(clean: string, text: string, options: ParseOptions): string {
 }
 
 function exactValue(match: RegExpExecArray, shift: number, text: string): number {
-  const gaps = new RegExp(GAP, 'g')
-  const whole = (match[2] ?? '').replace(gaps, '')
-  const part = (match[3] ?? '').replace(gaps, '')
+  const whole = (match[2] ?? '').replace(GAPS, '')
+  const part = (match[3] ?? '').replace(GAPS, '')
   const exponent = Number(match[4] ?? '0') + shift
   const value = Number(`${match[1] === '-' ? '-' : ''}${whole || '0'}.${part || '0'}e${exponent}`)
   if (!Number.isFinite(value)) unreadable(`${text.trim()} is too large.`)
