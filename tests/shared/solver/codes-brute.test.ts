@@ -1,4 +1,5 @@
 import fc from 'fast-check'
+import { lusolve, type Matrix, matrix } from 'mathjs'
 import { describe, expect, test } from 'vitest'
 import { computeCodes } from '../../../shared/solver/codes.ts'
 import type { Adjuster, Design } from '../../../shared/solver/types.ts'
@@ -174,6 +175,22 @@ describe('joint codes', () => {
         // Neutral stands for a code within half a step of nominal, so such a code is not told apart from nominal.
         const moved = Object.values(again.appliedNodeV).every((v, i) => v === Object.values(trim.nodeV!)[i])
         if (moved) expect(again.predicted!.worstV).toBeCloseTo(trim.predicted!.worstV, 9)
+      }),
+    )
+  })
+
+  test('exact node voltages are what mathjs solves M·ΔV = -[O; G] for', () => {
+    fc.assert(
+      fc.property(drawn, (d) => {
+        const { trim, o, g } = solve(d)
+        // Scaled rows, so that volts and ratios weigh alike in mathjs's pivoting.
+        const m = matrix([
+          [d.offset.perV, d.gain.cross],
+          [d.offset.cross * 10, d.gain.slope * 10],
+        ])
+        const moves = lusolve(m, matrix([[-o], [-g * 10]])) as Matrix
+        expect(trim.exactNodeV.offset).toBeCloseTo(moves.get([0, 0]) as number, 9)
+        expect(trim.exactNodeV.gain).toBeCloseTo(moves.get([1, 0]) as number, 9)
       }),
     )
   })
