@@ -1,6 +1,8 @@
 import type { Trimmer } from '../../../shared/solver/adjuster.ts'
 import type { Applied, TrimResult, Which } from '../../../shared/solver/types.ts'
+import { Button } from '../../ui/button.tsx'
 import { Caution } from '../../ui/caution.tsx'
+import { copyText } from '../../ui/clipboard.ts'
 import { CopyButton } from '../../ui/copy-button.tsx'
 import { Verdict } from '../../ui/verdict.tsx'
 import { VerdictShape } from '../../ui/verdict-shape.tsx'
@@ -76,18 +78,21 @@ function Code({ which, trim, trimmers, applied, appliedFrom, isStale }: CodesPan
           >
             {code}
           </output>
-          <div className="flex flex-wrap items-baseline gap-x-3 print:hidden">
+          <div className="flex flex-wrap items-baseline gap-x-3">
             <span className="font-mono text-head">{word}</span>
             {isStale ? null : (
               <>
                 <CopyButton text={String(code)} what={`${which} code ${code}`} hint={copyKeys[which]} />
-                <CopyButton text={word} what={`${which} code as ${word}`}>
+                <Button
+                  look="quiet"
+                  aria-label={`copy hex of the ${which} code, ${word}`}
+                  onClick={() => void copyText(word, `Copied ${word}.`)}
+                >
                   copy hex
-                </CopyButton>
+                </Button>
               </>
             )}
           </div>
-          <span className="hidden font-mono print:inline">{word}</span>
           {trimmer && trim.nodeV?.[which] !== undefined && (
             <ReachBar trimmer={trimmer} nodeV={trim.nodeV[which]} used={trim.reachUsed[which] ?? null} />
           )}

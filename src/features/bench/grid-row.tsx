@@ -67,7 +67,7 @@ function GridCell(props: GridCellProps) {
         // A finger has no F2: a tap opens the cell with the keyboard of the device.
         if (event.pointerType === 'touch') edit()
       }}
-      className={`relative h-6 px-1 last:pr-0 ${look(column, isMarked, problem !== undefined)} ${narrowHidden(column)}`}
+      className={`relative h-6 px-1 last:pr-0 focus:outline-2 focus:-outline-offset-1 focus:outline-focus ${look(column, isMarked, problem !== undefined)} ${narrowHidden(column)}`}
     >
       {isOpen ? <CellField {...props} problem={problem} /> : <Content {...props} />}
     </td>

@@ -11,10 +11,26 @@ const arithmetic = () => import('../../../shared/quantity/arithmetic.ts')
 /** Reads a points CSV that a person chose or dropped. Nothing on the page changes by it. */
 export async function readPointsFile(file: File, design: Design): Promise<PointsCsv> {
   refuseLargeCsv(file.size)
-  return parsePointsCsvAsync(await file.text(), arithmetic, {
-    channels: design.channels,
-    ranges: design.ranges.map((range) => range.id),
-  })
+  // A file that names no channel or range is of the one that is on the page.
+  return onlyKnown(await parsePointsCsvAsync(await file.text(), arithmetic), design)
+}
+
+/** A channel or range that the design does not have costs its measurement, and is named. */
+function onlyKnown({ groups, problems }: PointsCsv, design: Design): PointsCsv {
+  const known = { channel: design.channels, range: design.ranges.map((range) => range.id) }
+  const result: PointsCsv = { groups: [], problems: [...problems] }
+  for (const group of groups) {
+    const wrong = (['channel', 'range'] as const).find(
+      (column) => group[column] !== undefined && !known[column].includes(group[column]),
+    )
+    if (wrong === undefined) {
+      result.groups.push(group)
+      continue
+    }
+    const message = `Line ${group.firstLine}, ${wrong}: the design has no ${wrong} ${group[wrong]}. It has ${known[wrong].join(', ')}.`
+    result.problems.push({ code: `${wrong}-unknown`, line: group.firstLine, column: wrong, message })
+  }
+  return result
 }
 
 /** Points of a file as rows of the grid, written so that every double stays the same. */

@@ -74,35 +74,37 @@ export function PointsGrid(props: PointsGridProps) {
         A spreadsheet: arrows move, typing replaces, F2 edits, Enter goes down, Tab right, Control V takes a
         block, Control Z undoes.
       </p>
-      <table
-        ref={table}
-        {...grid}
-        data-own-keys
-        onKeyDown={onKeyDown}
-        onCopy={onCopy}
-        onCut={onCopy}
-        onPaste={onPaste}
-        className="points-grid w-full border-collapse text-body"
-      >
-        <GridHead columns={columns} />
-        <tbody>
-          {state.rows.map((row, index) => (
-            <GridRow
-              // biome-ignore lint/suspicious/noArrayIndexKey: a row of a spreadsheet is its place
-              key={index}
-              index={index}
-              row={row}
-              view={views[index]}
-              columns={columns}
-              area={area}
-              focusColumn={state.focus.row === index ? state.focus.column : null}
-              editing={state.focus.row === index ? state.editing : null}
-              isFixed={isFixed}
-              dispatch={dispatch}
-            />
-          ))}
-        </tbody>
-      </table>
+      <div className="-m-0.5 overflow-x-auto p-0.5">
+        <table
+          ref={table}
+          {...grid}
+          data-own-keys
+          onKeyDown={onKeyDown}
+          onCopy={onCopy}
+          onCut={onCopy}
+          onPaste={onPaste}
+          className="points-grid w-full border-collapse text-body"
+        >
+          <GridHead columns={columns} />
+          <tbody>
+            {state.rows.map((row, index) => (
+              <GridRow
+                // biome-ignore lint/suspicious/noArrayIndexKey: a row of a spreadsheet is its place
+                key={index}
+                index={index}
+                row={row}
+                view={views[index]}
+                columns={columns}
+                area={area}
+                focusColumn={state.focus.row === index ? state.focus.column : null}
+                editing={state.focus.row === index ? state.editing : null}
+                isFixed={isFixed}
+                dispatch={dispatch}
+              />
+            ))}
+          </tbody>
+        </table>
+      </div>
     </>
   )
 }

@@ -1,4 +1,4 @@
-import { useCallback, useEffect, useReducer, useRef, useState } from 'react'
+import { useCallback, useEffect, useMemo, useReducer, useRef, useState } from 'react'
 import { type Draft, type DraftFields, isWorthKeeping, newDraft, readDraft, writeDraft } from './draft.ts'
 import { gridReducer } from './grid-reducer.ts'
 import { type GridKind, newGrid, type Row, rowsNow } from './grid-state.ts'
@@ -17,7 +17,9 @@ export function useKeptDraft(name: string, kind: GridKind, planned: readonly Row
     const { rows: _, hasU: __, ...rest } = start
     return rest
   })
-  const draft: Draft = { ...fields, rows: rowsNow(grid), hasU: grid.hasU }
+  // The same array as long as the grid is the same: what is computed from it is computed once.
+  const rows = useMemo(() => rowsNow(grid), [grid])
+  const draft: Draft = { ...fields, rows, hasU: grid.hasU }
   /** The grid as planned again, in one step that can be undone; the other fields empty. */
   const startAnew = useCallback(() => {
     dispatch({ do: 'rows', rows: planned, hasU: false })

@@ -14,6 +14,7 @@ export function Reach({
 }: OnPlot & { lines: readonly [PlotLine, PlotLine]; fill: string }) {
   const end = fullScaleV(range)
   const [a, b] = lines
+  const upper = Math.max(lineAt(a, end), lineAt(b, end))
   const corner = (line: PlotLine, volts: number) => `${x(volts)} ${at(lineAt(line, volts))}`
   return (
     <g>
@@ -22,7 +23,7 @@ export function Reach({
         fill={fill}
         stroke="var(--rule)"
       />
-      <PlotText x={x(end) - 8} y={at(lineAt(b, end) * 0.12) + 4} anchor="end">
+      <PlotText x={x(end) - 8} y={at(upper / 2) + 4} anchor="end">
         within reach
       </PlotText>
     </g>
