@@ -1,13 +1,9 @@
-import { useQuery } from '@tanstack/react-query'
 import { Suspense, useEffect, useRef, useState } from 'react'
-import { Navigate, Outlet, useLocation, useNavigate } from 'react-router-dom'
-import { isOgeeError } from '../../shared/errors.ts'
-import { meOptions } from '../features/session/queries.ts'
+import { Outlet, useLocation, useNavigate } from 'react-router-dom'
 import { useConnection } from '../lib/connection.ts'
 import { installKeys, useKeys } from '../lib/keys.ts'
 import { paths } from '../lib/paths.ts'
 import { Loading } from '../ui/loading.tsx'
-import { Problem } from '../ui/problem.tsx'
 import { AwayBanner } from './away-banner.tsx'
 import { ErrorBoundary } from './error-boundary.tsx'
 import { KeysDialog } from './keys-dialog.tsx'
@@ -16,26 +12,6 @@ import { SessionDialog } from './session-dialog.tsx'
 
 /** The frame round every page: rail, main part, banner of an outage, dialog of an ended session. */
 export default function Frame() {
-  const location = useLocation()
-  const me = useQuery(meOptions)
-  if (!me.data) {
-    if (isOgeeError(me.error, 'sign-in-required')) {
-      const to = `${location.pathname}${location.search}${location.hash}`
-      return (
-        <Navigate replace to={to === '/' ? paths.signIn : `${paths.signIn}?to=${encodeURIComponent(to)}`} />
-      )
-    }
-    return (
-      <main className="p-6">
-        <AwayBanner />
-        {me.error ? <Problem error={me.error} /> : <Loading page>Reading who is signed in.</Loading>}
-      </main>
-    )
-  }
-  return <SignedInFrame />
-}
-
-function SignedInFrame() {
   const { pathname } = useLocation()
   const { sessionEnded } = useConnection()
   const [keysShown, setKeysShown] = useState(false)

@@ -112,6 +112,11 @@ function later(event: KeyboardEvent): void {
   }, burstGapMs)
 }
 
+/** Escape leaves a field. Parts with keys of their own (`data-own-keys`) decide for themselves. */
+function leaveField({ key, target }: KeyboardEvent): void {
+  if (key === 'Escape' && target instanceof HTMLElement && !target.closest('[data-own-keys]')) target.blur()
+}
+
 function onKeyDown(event: KeyboardEvent): void {
   if (event.defaultPrevented || event.isComposing || event.altKey || event.metaKey) return
   if (event.key === 'Shift' || event.key === 'CapsLock') return
@@ -124,7 +129,11 @@ function onKeyDown(event: KeyboardEvent): void {
     }
     return
   }
-  if (inField(event.target) || !inMain(event.target)) return
+  if (inField(event.target)) {
+    leaveField(event)
+    return
+  }
+  if (!inMain(event.target)) return
   // Enter and Space belong to the focused control.
   const onControl = event.target instanceof HTMLElement && event.target.closest('a, button, summary, label')
   if (onControl && (event.key === 'Enter' || event.key === ' ')) return

@@ -21,14 +21,3 @@ export function writeStored(name: string, value: unknown): boolean {
     return false
   }
 }
-
-/** Names of everything kept under a prefix, such as all drafts of Bench. */
-export function storedNames(start: string): string[] {
-  try {
-    return Object.keys(localStorage)
-      .filter((key) => key.startsWith(prefix + start))
-      .map((key) => key.slice(prefix.length))
-  } catch {
-    return []
-  }
-}

@@ -1,4 +1,4 @@
-import { isOgeeError } from '../../shared/errors.ts'
+import { isOgeeError, type OgeeError } from '../../shared/errors.ts'
 import { Caution } from './caution.tsx'
 
 /** A refusal or an outage as people read it: the sentence, the places, and which request it was. */
@@ -9,7 +9,7 @@ export function Problem({ error }: { error: unknown }) {
   return (
     <div role="alert">
       <Caution tone="bad">
-        <p>{known ? error.message : 'Something is broken in this page. What you typed is kept.'}</p>
+        <p>{known ? sentence(error) : 'Something is broken in this page. What you typed is kept.'}</p>
         {known && error.errors.length > 0 ? (
           <ul className="mt-1">
             {error.errors.map((place) => (
@@ -24,6 +24,12 @@ export function Problem({ error }: { error: unknown }) {
       </Caution>
     </div>
   )
+}
+
+function sentence(error: OgeeError): string {
+  if (error.code !== 'sign-in-required') return error.message
+  // Seen once the dialog over the page has been answered; nothing is sent again by itself.
+  return 'Your session had ended when this was sent. It is kept here: send it again.'
 }
 
 /** The message for one field of a form, by its JSON pointer (`/email`). */

@@ -22,7 +22,7 @@ export function Segmented<Value extends string>({
       {segments.map((segment) => (
         <label
           key={segment.value}
-          className="relative inline-flex min-h-6 min-w-6 cursor-pointer items-center justify-center px-2.5 text-small text-ink-2 not-first:border-l not-first:border-rule has-checked:bg-ink has-checked:font-semibold has-checked:text-paper has-focus-visible:outline-2 has-focus-visible:outline-offset-1 has-focus-visible:outline-focus forced-colors:has-checked:bg-[Highlight] forced-colors:has-checked:text-[HighlightText] forced-colors:has-checked:forced-color-adjust-none"
+          className="relative inline-flex min-h-6 min-w-6 cursor-pointer items-center justify-center px-2.5 text-small text-ink-2 border-l border-rule [legend+&]:border-l-0 has-checked:bg-ink has-checked:font-semibold has-checked:text-paper has-focus-visible:outline-2 has-focus-visible:outline-offset-1 has-focus-visible:outline-focus forced-colors:has-checked:bg-[Highlight] forced-colors:has-checked:text-[HighlightText] forced-colors:has-checked:forced-color-adjust-none"
         >
           <input
             type="radio"

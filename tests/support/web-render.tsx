@@ -25,6 +25,8 @@ export function open(address: string, server: FakeServer = fakeServer()): Opened
   vi.stubGlobal('fetch', server.fetch)
   // Not known to jsdom.
   vi.stubGlobal('scrollTo', () => undefined)
+  // As in index.html.
+  document.documentElement.lang = 'en'
   window.history.replaceState(null, '', address)
   const user = userEvent.setup()
   const shown = render(<App queryClient={makeQueryClient()} />)

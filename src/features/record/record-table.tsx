@@ -81,7 +81,9 @@ function RecordRow({ record, index, current }: { record: RecordLine; index: numb
       <Td align="right" className={onlyWide}>
         {record.offsetCode ?? <None />}
       </Td>
-      <Td align="right">{numberOr(record.worstLsb, 2, 1, false)}</Td>
+      <Td align="right">
+        {numberOr(record.worstLsb === null ? null : Math.abs(record.worstLsb), 2, 1, false)}
+      </Td>
       <Td>{record.verdict ? <Verdict verdict={record.verdict} /> : <None />}</Td>
       <Td className={onlyWide}>{byText(record.by, record.station)}</Td>
     </tr>

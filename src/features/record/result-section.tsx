@@ -2,6 +2,7 @@ import type { CodesDocument } from '../../../shared/contract/codes.ts'
 import { CopyButton } from '../../ui/copy-button.tsx'
 import { engineering, fixed } from '../../ui/number-format.ts'
 import { NumberText, Whole } from '../../ui/number-text.tsx'
+import { Quantity } from '../../ui/quantity.tsx'
 import { None, RowHead, Table, Td, Th } from '../../ui/table.tsx'
 
 /** The fitted line: offset by tide, gain by copper, with the expanded uncertainty where there is one. */
@@ -23,7 +24,7 @@ export function LineTable({ fit }: { fit: CodesDocument['fit'] }) {
         <tr>
           <RowHead className="font-semibold text-tide">offset error</RowHead>
           <Td align="right">
-            <NumberText>{engineering(fit.offsetErrorV, 'V', 4, 'always')}</NumberText>
+            <Quantity value={fit.offsetErrorV} unit="V" digits={4} sign="always" />
           </Td>
           <Td align="right">{u ? engineering(u.offsetV, 'V', 3) : <None />}</Td>
           <Td className="text-ink-2" />
@@ -36,7 +37,7 @@ export function LineTable({ fit }: { fit: CodesDocument['fit'] }) {
           <Td align="right">{u ? `${fixed(u.gainPpm, 2)} ppm` : <None />}</Td>
           <Td className="text-ink-2">
             {'full scale '}
-            <NumberText>{engineering(fit.fullScaleErrorV, 'V', 4, 'always')}</NumberText>
+            <Quantity value={fit.fullScaleErrorV} unit="V" digits={4} sign="always" />
           </Td>
         </tr>
         <tr>
@@ -98,7 +99,7 @@ function CodeRow({ which, trim }: { which: 'gain' | 'offset'; trim: CodesDocumen
         {code === undefined ? null : <CopyButton text={String(code)} what={`${which} code`} />}
       </Td>
       <Td align="right">
-        <NumberText>{engineering(nodeV, 'V', 4, 'always')}</NumberText>
+        <Quantity value={nodeV} unit="V" digits={4} sign="always" />
       </Td>
       <Td align="right">{reach === undefined || reach === null ? <None /> : fixed(reach * 100, 1)}</Td>
       <Td className="text-ink-2">
@@ -121,15 +122,15 @@ export function Shortfall({ trim }: { trim: CodesDocument['trim'] }) {
         return short ? (
           <li key={which}>
             <span className={tones[which]}>{which}</span> wants{' '}
-            <NumberText>{engineering(short.wantedV, 'V', 4, 'always')}</NumberText> at the node; its{' '}
+            <Quantity value={short.wantedV} unit="V" digits={4} sign="always" /> at the node; its{' '}
             {short.by === 'codes' ? 'codes end' : 'node ends'} at{' '}
-            <NumberText>{engineering(short.limitV, 'V', 4, 'always')}</NumberText>.
+            <Quantity value={short.limitV} unit="V" digits={4} sign="always" />.
           </li>
         ) : null
       })}
       <li>
         {'At best the worst error would remain '}
-        <NumberText>{engineering(shortfall.remainingWorstV, 'V')}</NumberText>.
+        <Quantity value={shortfall.remainingWorstV} unit="V" />.
       </li>
     </ul>
   )

@@ -13,6 +13,6 @@ export function kindSentence(record: Pick<RecordLine, 'kind' | 'pass'>): string 
 }
 
 export function byText(by: string, station: string | null): string {
-  if (!station) return by
-  return by === station ? station : `${by}, ${station}`
+  // A token is often named for its station, which then need not be said twice.
+  return station === null || by.includes(station) ? by : `${by}, ${station}`
 }
