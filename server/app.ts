@@ -23,7 +23,7 @@ export function createApp(deps: Deps): App {
   app.set('etag', false)
   app.set('query parser', 'simple')
   app.set('trust proxy', deps.config.trustedHops)
-  app.use(...requestLog(deps.logger), securityHeaders(deps.config))
+  app.use(...requestLog(deps.logger), securityHeaders(deps.config), oneHost)
   app.get('/healthz', healthz)
   app.get('/readyz', readyz(deps.database))
   app.get('/problems/:code', problemPage)
@@ -49,4 +49,14 @@ const nothingHere: RequestHandler = (request) => {
     'not-found',
     `There is nothing at ${request.method} ${request.baseUrl}${request.path}.`.slice(0, 300),
   )
+}
+
+/** Node joins or drops doubled headers; two hosts are a sign that somebody before us read the request differently. */
+const oneHost: RequestHandler = (request, response, next) => {
+  if ((request.headersDistinct.host?.length ?? 0) <= 1) {
+    next()
+    return
+  }
+  response.set('Connection', 'close')
+  throw new OgeeError('bad-framing', 'The request names more than one host.')
 }

@@ -1,0 +1,134 @@
+import { type AddressInfo, connect, createServer, type Socket } from 'node:net'
+import request from 'supertest'
+import { afterAll, beforeAll, beforeEach, describe, expect, it, vi } from 'vitest'
+import { openDatabase } from '../../server/db/connection.ts'
+import { api, newKey } from '../support/server-client.ts'
+import { trimBody } from '../support/server-factories.ts'
+import {
+  addDesign,
+  addStation,
+  addToken,
+  type Harness,
+  listen,
+  serverHarness,
+} from '../support/server-harness.ts'
+
+/** A switch between server and database: through, refusing, cutting, or swallowing everything. */
+type Mode = 'through' | 'refuse' | 'swallow'
+let mode: Mode = 'through'
+const sockets = new Set<Socket>()
+const proxy = createServer((client) => {
+  if (mode === 'refuse') return void client.destroy()
+  const { hostname, port } = new URL(harness.test.url)
+  const upstream = connect(Number(port), hostname)
+  for (const socket of [client, upstream]) {
+    sockets.add(socket)
+    socket.on('error', () => undefined)
+    socket.on('close', () => {
+      client.destroy()
+      upstream.destroy()
+    })
+  }
+  client.on('data', (chunk) => {
+    if (mode !== 'swallow') upstream.write(chunk)
+  })
+  upstream.on('data', (chunk) => {
+    if (mode !== 'swallow') client.write(chunk)
+  })
+})
+const cutAll = () => {
+  for (const socket of sockets) socket.destroy()
+  sockets.clear()
+}
+
+let harness: Harness
+let served: Awaited<ReturnType<typeof listen>>
+let database: ReturnType<typeof openDatabase>
+let station: { token: string }
+
+beforeAll(async () => {
+  harness = await serverHarness()
+  await addDesign(harness, 'U18')
+  station = await addToken(
+    harness,
+    ['trims:write', 'trims:read'],
+    (await addStation(harness, 'Station A')).id,
+  )
+  await new Promise<void>((resolve) => proxy.listen(0, '127.0.0.1', resolve))
+  const through = new URL(harness.test.url)
+  through.port = String((proxy.address() as AddressInfo).port)
+  database = openDatabase(through.toString())
+  served = await listen({ ...harness.deps, database })
+})
+afterAll(async () => {
+  mode = 'through'
+  await served.stop()
+  await database.close()
+  cutAll()
+  await new Promise((resolve) => proxy.close(resolve))
+  await harness.close()
+})
+
+// Sequelize tells of transactions that it could not end; here they all are meant.
+beforeEach(() => {
+  vi.spyOn(console, 'warn').mockImplementation(() => undefined)
+})
+
+const trim = (unit: string, key = newKey()) =>
+  api(served.url, 'post', '/trims', { ...station, key }).send(trimBody({ unit }))
+
+async function expectOutage(send: () => PromiseLike<request.Response>) {
+  const start = performance.now()
+  const reply = await send()
+  // A guard against hanging, ten times the aim of three seconds.
+  expect(performance.now() - start).toBeLessThan(30_000)
+  expect([reply.status, reply.body.code, reply.headers['retry-after']]).toEqual([
+    503,
+    'database-unavailable',
+    '1',
+  ])
+}
+
+describe('while the database is down', () => {
+  it('every route answers 503 with Retry-After, and heals by itself', async () => {
+    expect((await trim('X-1')).status).toBe(201)
+    mode = 'refuse'
+    cutAll()
+    await new Promise((resolve) => setTimeout(resolve, 700))
+    await expectOutage(() => trim('X-2'))
+    await expectOutage(() => api(served.url, 'get', '/trims', station))
+    await expectOutage(() => api(served.url, 'get', '/ledger/checkpoint'))
+    await expectOutage(() =>
+      api(served.url, 'post', '/session').send({ email: 'a@example.org', password: 'b' }),
+    )
+    expect((await request(served.url).get('/readyz')).status).toBe(503)
+    expect((await request(served.url).get('/healthz')).status).toBe(200)
+    mode = 'through'
+    await expect.poll(async () => (await trim('X-3')).status, { timeout: 20_000 }).not.toBe(503)
+  })
+
+  it('a database that swallows everything is an outage too, in bounded time', async () => {
+    await trim('X-4')
+    mode = 'swallow'
+    await expectOutage(() => trim('X-5'))
+    mode = 'through'
+    cutAll()
+    await expect.poll(async () => (await trim(`X-6-${newKey()}`)).status, { timeout: 20_000 }).toBe(201)
+  })
+})
+
+describe('a connection that is cut under a recording', () => {
+  it('doubles nothing: the same key again gives one record, whatever the first answer was', async () => {
+    for (let round = 0; round < 12; round++) {
+      const key = newKey()
+      const unit = `Cut-${round}`
+      const first = trim(unit, key).then((reply) => reply.status)
+      await new Promise((resolve) => setTimeout(resolve, round * 2))
+      cutAll()
+      expect([201, 409, 503]).toContain(await first)
+      await expect.poll(async () => (await trim(unit, key)).status, { timeout: 20_000 }).toBe(201)
+      const rows = await harness.database.sql.rows('SELECT id FROM records WHERE unit = ?', [unit])
+      expect(rows).toHaveLength(1)
+    }
+  })
+})
