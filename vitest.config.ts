@@ -14,8 +14,18 @@ export default defineConfig({
           ...common,
           name: 'shared',
           environment: 'node',
-          include: ['tests/shared/**/*.test.ts', 'tests/setup/**/*.test.ts', 'tests/*.test.ts'],
+          include: ['tests/shared/**/*.test.ts', 'tests/*.test.ts'],
           testTimeout: 60_000,
+        },
+      },
+      {
+        test: {
+          ...common,
+          name: 'setup',
+          environment: 'node',
+          include: ['tests/setup/**/*.test.ts'],
+          testTimeout: 600_000,
+          hookTimeout: 120_000,
         },
       },
       {
@@ -38,7 +48,6 @@ export default defineConfig({
         },
       },
       {
-        esbuild: { jsx: 'automatic' },
         test: {
           ...common,
           name: 'web',
