@@ -123,12 +123,12 @@ describe('habits', () => {
     const pattern = new RegExp(
       `\\b(${words.slice(0, 3).join('|')})\\b|${words.slice(3).join('|')}|: any\\b|\\.(only|skip)\\(`,
     )
-    expect(
-      hits(
-        code.filter((file) => file !== 'tests/source.test.ts'),
-        pattern,
-      ),
-    ).toEqual([])
+    const found = hits(
+      code.filter((file) => file !== 'tests/source.test.ts'),
+      pattern,
+    )
+    // Prose may say "takes: any number" in a comment.
+    expect(found.filter((hit) => !/:\d+: (\/\*\*|\*|\/\/).*: any\b/.test(hit))).toEqual([])
   })
 
   test('the solver uses only operations that every engine rounds alike', () => {
