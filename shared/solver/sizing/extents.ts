@@ -30,7 +30,7 @@ export function extentsFromBudget(terms: Terms, combine: 'worst-case' | 'rss'): 
  * @param units at least two, measured with nothing loaded
  * @throws too-few-units, not-finite
  * Source: solver.md section 6; NIST/SEMATECH e-Handbook of Statistical Methods, 7.2.6.3.
- * @example extentsFromUnits(terms, 'worst-case', range, units).extents.toleranceFactor
+ * @example extentsFromUnits(terms, 'worst-case', range, units).extents.units // 3
  */
 export function extentsFromUnits(
   terms: Terms,

@@ -99,7 +99,7 @@ export type LadderAxis = {
 /**
  * An axis that holds every rung, bracket and rail end with room for half an octave at both ends; without a ladder one
  * from a sixteenth of an LSB to 1024 LSB.
- * @example ladderAxis([ladder], 10/2^18, 10).volts[0]
+ * @example ladderAxis([], 1, 16).bottomV // 0.0625
  */
 export function ladderAxis(ladders: readonly Ladder[], lsbV: number, fsrV: number): LadderAxis {
   let low = Number.POSITIVE_INFINITY

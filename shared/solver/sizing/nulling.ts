@@ -11,7 +11,7 @@ export type Row = { o: number; g: number }
  * the solver's own exact moves, so that sizing and trimming can never part.
  * @throws adjusters-not-independent, adjuster-without-effect
  * Source: solver.md sections 5 and 6.
- * @example nullingRow(trimmers, range, 'gain')
+ * @example nullingRow(trimmers, range, 'gain').g // 1/0.00208
  */
 export function nullingRow(trimmers: Trimmers, range: ConverterRange, which: Which): Row {
   const { gain, offset } = trimmers

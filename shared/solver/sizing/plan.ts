@@ -7,7 +7,7 @@ import type { Line } from '../line.ts'
  * point, by the plan's method. Null when the plan states no noise or has fewer than two codes.
  * A best straight line in the minimax sense rests on its outermost codes; it is taken like the terminal line.
  * Source: solver.md sections 3 and 6.
- * @example planVariance(prepareChannel(design), design.measurement.points)
+ * @example planVariance(channel, unipolar18.measurement.points) // null
  */
 export function planVariance(channel: Channel, codes: readonly number[]): Line['variance'] {
   const { noiseV, readings } = channel.noise

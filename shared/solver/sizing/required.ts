@@ -68,7 +68,7 @@ function rootSum(terms: Terms, ofGain: (term: Term) => number, o: number): numbe
  * voltage that code 2^bits would give. Null over 20 bits, and where nothing is to be reached.
  * @param stepV the step that the target allows
  * Source: solver.md section 6.
- * @example recommend(-0.3, 0.3, 10, 0.001) // { bits: 10, lowV: -0.300587..., highV: 0.300587... }
+ * @example recommend(-0.3, 0.3, 10, 0.001)?.highV // 0.3 * 1024/1022
  */
 export function recommend(lowV: number, highV: number, bits: number | null, stepV: number): Span | null {
   const spanV = highV - lowV
