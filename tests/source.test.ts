@@ -118,7 +118,7 @@ describe('habits', () => {
       'X' + 'XX',
       '@ts-' + 'ignore',
       '@ts-' + 'expect-error',
-      'as ' + 'any',
+      'as ' + 'any\\b',
     ]
     const pattern = new RegExp(
       `\\b(${words.slice(0, 3).join('|')})\\b|${words.slice(3).join('|')}|: any\\b|\\.(only|skip)\\(`,
