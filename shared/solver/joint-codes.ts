@@ -9,6 +9,9 @@ export type Start = {
   offsetV: number
 }
 
+/** Within two codes of the exact value; the billionth keeps a code at exactly two whatever the division rounds to. */
+const NEAR = 2 + 1e-9
+
 export type Pair = { gain: number; offset: number }
 
 /**
@@ -23,7 +26,7 @@ export function nearestTrimCode(trimmer: Trimmer, exactV: number): number | null
   if (code < trimmer.firstCode) code = trimmer.firstCode
   if (code > trimmer.lastCode) code = trimmer.lastCode
   const allowed = trimmer.firstCode <= trimmer.lastCode
-  return allowed && code - k <= 2 && k - code <= 2 ? code : null
+  return allowed && code - k <= NEAR && k - code <= NEAR ? code : null
 }
 
 /** Best pair so far; a plain object that the search writes to, so that nothing is allocated in the loop. */
@@ -48,10 +51,10 @@ export function jointCodes(
   const kg = (gainExact - gain.v0) / gain.stepV
   const ko = (offsetExact - offset.v0) / offset.stepV
   const best: Best = { found: false, larger: 0, smaller: 0, gain: 0, offset: 0 }
-  for (let g = Math.ceil(kg - 2); g <= kg + 2; g++) {
+  for (let g = Math.ceil(kg - NEAR); g <= kg + NEAR; g++) {
     if (g >= gain.firstCode && g <= gain.lastCode) alongOffset(gain, offset, start, g, ko, best)
   }
-  for (let o = Math.ceil(ko - 2); o <= ko + 2; o++) {
+  for (let o = Math.ceil(ko - NEAR); o <= ko + NEAR; o++) {
     if (o >= offset.firstCode && o <= offset.lastCode) alongGain(gain, offset, start, o, kg, best)
   }
   return best.found ? { gain: best.gain, offset: best.offset } : null
@@ -78,38 +81,46 @@ function consider(gain: Trimmer, offset: Trimmer, start: Start, g: number, o: nu
 }
 
 function alongOffset(gain: Trimmer, offset: Trimmer, start: Start, g: number, ko: number, best: Best): void {
-  for (let o = Math.ceil(ko - 2); o <= ko + 2; o++) consider(gain, offset, start, g, o, best)
+  for (let o = Math.ceil(ko - NEAR); o <= ko + NEAR; o++) consider(gain, offset, start, g, o, best)
   const dg = nodeV(gain, g) - start.gainV
   const low = start.errorLow + gain.endLow * dg
   const full = start.errorFull + gain.endFull * dg
   for (let i = 0; i < 4; i++) {
     const o = turningCode(offset, start.offsetV, low, full, i)
-    consider(gain, offset, start, g, o, best)
-    consider(gain, offset, start, g, o + 1, best)
+    consider(gain, offset, start, g, inside(offset, o), best)
+    consider(gain, offset, start, g, inside(offset, o + 1), best)
   }
 }
 
 function alongGain(gain: Trimmer, offset: Trimmer, start: Start, o: number, kg: number, best: Best): void {
-  for (let g = Math.ceil(kg - 2); g <= kg + 2; g++) consider(gain, offset, start, g, o, best)
+  for (let g = Math.ceil(kg - NEAR); g <= kg + NEAR; g++) consider(gain, offset, start, g, o, best)
   const d = nodeV(offset, o) - start.offsetV
   const low = start.errorLow + offset.endLow * d
   const full = start.errorFull + offset.endFull * d
   for (let i = 0; i < 4; i++) {
     const g = turningCode(gain, start.gainV, low, full, i)
-    consider(gain, offset, start, g, o, best)
-    consider(gain, offset, start, g + 1, o, best)
+    consider(gain, offset, start, inside(gain, g), o, best)
+    consider(gain, offset, start, inside(gain, g + 1), o, best)
   }
 }
 
 /**
+ * The allowed code nearest to a turning point. The larger end falls towards its turning point, so where that lies beyond
+ * the last code, the last code is the best on its line: leaving it out would give a pair with a better neighbour.
+ */
+function inside(trimmer: Trimmer, code: number): number {
+  return code < trimmer.firstCode ? trimmer.firstCode : code > trimmer.lastCode ? trimmer.lastCode : code
+}
+
+/**
  * The code just below the voltage that nulls the low end (0), nulls full scale (1), makes the ends opposite (2) or
- * equal (3); -2, which is no code, where this adjuster cannot.
+ * equal (3); the first code where this adjuster cannot.
  */
 function turningCode(trimmer: Trimmer, nowV: number, low: number, full: number, which: number): number {
   const { endLow, endFull } = trimmer
   const error = which === 0 ? low : which === 1 ? full : which === 2 ? low + full : low - full
   const lever =
     which === 0 ? endLow : which === 1 ? endFull : which === 2 ? endLow + endFull : endLow - endFull
-  if (lever === 0) return -2
+  if (lever === 0) return trimmer.firstCode
   return Math.floor((nowV - error / lever - trimmer.v0) / trimmer.stepV)
 }

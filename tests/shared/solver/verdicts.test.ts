@@ -1,5 +1,8 @@
 import { describe, expect, test } from 'vitest'
 import { computeCodes } from '../../../shared/solver/codes.ts'
+import { studentUpper } from '../../../shared/solver/distribution/student.ts'
+import { errorLine } from '../../../shared/solver/error-line.ts'
+import { fitPoints } from '../../../shared/solver/fit.ts'
 import type { Adjuster, Design, MeasuredPoint } from '../../../shared/solver/types.ts'
 import { exampleDesign, examplePoints, plainDesign, pointsOnLine } from '../../support/solver-fixtures.ts'
 
@@ -169,8 +172,14 @@ describe('applied codes and notes', () => {
     const full = 0.2 * Math.abs(gain! * 0.002 * (10 - LSB)) + 0.2 * Math.abs(offset! * 0.01)
     expect(trim.predicted!.effectV).toBeCloseTo(full, 12)
     expect(trim.notes).toEqual(['verify-after-loading'])
-    const u2 = (trim.predicted!.expandedUncertaintyV ?? 0) ** 2
-    expect(u2).toBeGreaterThan(0)
+    // u² = u²(e at x) + Σ(τ·|ΔV|·|α + βz|)²/3, k by Welch-Satterthwaite with the fit's three degrees of freedom.
+    const points = line(2e-3, -3e-4)
+    const result = fitPoints(base, points)
+    const { atV, expandedUncertaintyV } = trim.predicted!
+    const own = errorLine(base, result).standardUncertaintyAt(atV)!
+    const added = [0.2 * offset! * 0.01, 0.2 * gain! * 0.002 * atV].reduce((sum, v) => sum + v ** 2 / 3, 0)
+    const u = Math.sqrt(own ** 2 + added)
+    expect(expandedUncertaintyV).toBeCloseTo(u * studentUpper(0.025, 3 * (u / own) ** 4), 12)
     const exact = plainDesign({
       adjusters: {
         gain: { ...base.adjusters.gain!, effectTolerance: 0 },
