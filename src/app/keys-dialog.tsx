@@ -24,7 +24,7 @@ export function KeysDialog({ onClose }: { onClose: () => void }) {
       <p className="my-3 text-small text-ink-2">
         Keys without Ctrl act while the focus is in the page and outside fields. Settings turns them off.
       </p>
-      <Button autoFocus onClick={onClose}>
+      <Button data-first onClick={onClose}>
         Close
       </Button>
     </Dialog>

@@ -1,6 +1,9 @@
 import { type ReactNode, useEffect, useId, useRef } from 'react'
 
-/** The native modal dialog: the platform keeps the focus inside, gives it back, and closes on Escape. */
+/**
+ * The native modal dialog: the platform keeps the focus inside, gives it back, and closes on Escape. The focus starts at
+ * `data-first` where something has it (React's autoFocus acts before the dialog is shown, on what cannot be focused yet).
+ */
 export function Dialog({
   title,
   onClose,
@@ -16,6 +19,7 @@ export function Dialog({
   useEffect(() => {
     const dialog = ref.current
     if (dialog && !dialog.open) dialog.showModal()
+    dialog?.querySelector<HTMLElement>('[data-first]')?.focus()
     return () => dialog?.close()
   }, [])
   return (

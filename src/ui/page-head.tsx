@@ -33,7 +33,9 @@ export function PageHead({
           </h1>
           {state ? <div className="text-body text-ink-2">{state}</div> : null}
         </div>
-        {acts ? <div className="ml-auto flex flex-wrap items-center gap-x-3 gap-y-2">{acts}</div> : null}
+        {acts ? (
+          <div className="ml-auto flex flex-wrap items-center gap-x-3 gap-y-2 print:hidden">{acts}</div>
+        ) : null}
       </div>
     </header>
   )

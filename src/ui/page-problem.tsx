@@ -32,6 +32,15 @@ export function PageProblem({
       </>
     )
   }
+  if (isOgeeError(error, 'sign-in-required')) {
+    // The dialog of the ended session stands over it.
+    return (
+      <>
+        <PageHead place={place} title={what} />
+        <Empty>This is read as soon as you have signed in.</Empty>
+      </>
+    )
+  }
   if (isOgeeError(error, 'server-unreachable') || isOgeeError(error, 'database-unavailable')) {
     // The banner says what is wrong, counts down, and reads this again.
     return (

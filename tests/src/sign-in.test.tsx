@@ -66,6 +66,7 @@ test('an ended session asks over the page; what was typed stays and the same per
   await user.click(screen.getByRole('button', { name: 'Add the station' }))
   await screen.findByText('Your session has ended. Sign in here; nothing typed is lost.')
   expect(screen.getByLabelText('E-mail')).toHaveValue('administrator@example.org')
+  expect(document.activeElement).toBe(screen.getByLabelText('Password'))
   server.on('POST /session', () => {
     server.state.role = 'administrator'
     return json(fixtures.me('administrator'))

@@ -65,7 +65,7 @@ export function AmendDialog({
           hint="Kept in the record with your name. At least ten characters."
         >
           <TextArea
-            autoFocus
+            data-first
             maxLength={limits.reasonMax}
             value={reason}
             onChange={(event) => setReason(event.target.value)}

@@ -42,7 +42,7 @@ export function SignInForm({ email: known = '', onDone }: { email?: string; onDo
           type="password"
           autoComplete="current-password"
           required
-          autoFocus={known !== ''}
+          data-first={known !== '' || undefined}
           value={password}
           onChange={(event) => setPassword(event.target.value)}
         />

@@ -38,7 +38,7 @@ export function RenameStation({ station, onClose }: { station: Station; onClose:
           hint="Records keep the name that the station had when they were made."
         >
           <TextInput
-            autoFocus
+            data-first
             value={name}
             maxLength={limits.stationNameMax}
             onChange={(event) => setName(event.target.value)}

@@ -29,7 +29,7 @@ export function RetireStation({ station, onClose }: { station: Station; onClose:
           <Button look="primary" disabled={change.isPending} onClick={retire}>
             Retire {station.name}
           </Button>
-          <Button autoFocus onClick={onClose}>
+          <Button data-first onClick={onClose}>
             Cancel
           </Button>
         </div>

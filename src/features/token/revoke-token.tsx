@@ -26,7 +26,7 @@ export function RevokeToken({ token, onClose }: { token: Token; onClose: () => v
           <Button look="primary" disabled={revoke.isPending} onClick={act}>
             Revoke {token.name}
           </Button>
-          <Button autoFocus onClick={onClose}>
+          <Button data-first onClick={onClose}>
             Cancel
           </Button>
         </div>
