@@ -7,7 +7,7 @@ import type { Applied, PerAdjuster, Which } from '../../../shared/solver/types.t
 import { Field } from '../../ui/field.tsx'
 import { Select } from '../../ui/input.tsx'
 import type { CurrentCodes } from './current.ts'
-import { LineField } from './head-fields.tsx'
+import { LineField, narrowSelect } from './head-fields.tsx'
 import { isSameApplied } from './search.ts'
 import { codesText, neutralText } from './words.ts'
 
@@ -45,7 +45,12 @@ export function AppliedField(props: AppliedFieldProps) {
   return (
     <>
       <Field label="codes applied" layout="inline" error={error}>
-        <Select value={chosen} disabled={isFixed} onChange={(event) => choose(event.target.value)}>
+        <Select
+          className={narrowSelect}
+          value={chosen}
+          disabled={isFixed}
+          onChange={(event) => choose(event.target.value)}
+        >
           {applied === null && !isTyped ? <option value="">say which</option> : null}
           <option value="neutral">{neutralText(trimmers)}</option>
           {current?.codes ? (

@@ -4,6 +4,7 @@ import { Button } from '../../ui/button.tsx'
 import { Caution } from '../../ui/caution.tsx'
 import { copyText } from '../../ui/clipboard.ts'
 import { CopyButton } from '../../ui/copy-button.tsx'
+import { KeyHint } from '../../ui/key-hint.tsx'
 import { Verdict } from '../../ui/verdict.tsx'
 import { VerdictShape } from '../../ui/verdict-shape.tsx'
 import { ReachBar } from './reach-bar.tsx'
@@ -74,7 +75,7 @@ function Code({ which, trim, trimmers, applied, appliedFrom, isStale }: CodesPan
         <>
           <output
             aria-label={`${which} code`}
-            className={`block text-code-narrow font-medium narrow:text-code ${isStale ? '' : isSuspect ? 'text-ink-2' : 'text-ink'}`}
+            className={`block text-code-narrow font-medium narrow:text-code print:text-[21pt] print:leading-8 ${isStale ? '' : isSuspect ? 'text-ink-2' : 'text-ink'}`}
           >
             {code}
           </output>
@@ -82,7 +83,10 @@ function Code({ which, trim, trimmers, applied, appliedFrom, isStale }: CodesPan
             <span className="font-mono text-head">{word}</span>
             {isStale ? null : (
               <>
-                <CopyButton text={String(code)} what={`${which} code ${code}`} hint={copyKeys[which]} />
+                <span className="whitespace-nowrap">
+                  <CopyButton text={String(code)} what={`${which} code ${code}`} />
+                  <KeyHint keys={copyKeys[which]} />
+                </span>
                 <Button
                   look="quiet"
                   aria-label={`copy hex of the ${which} code, ${word}`}

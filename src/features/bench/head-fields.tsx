@@ -60,6 +60,9 @@ export function DesignFields(props: {
   )
 }
 
+/** On a narrow page a long choice is cut, not the page widened; printed without its arrow. */
+export const narrowSelect = '!max-w-48 narrow:!max-w-full print:appearance-none'
+
 type ChoiceProps = {
   label: string
   value: string
@@ -71,7 +74,7 @@ type ChoiceProps = {
 export function Choice({ label, value, options, onChange, error }: ChoiceProps) {
   return (
     <Field label={label} layout="inline" error={error}>
-      <Select value={value} onChange={(event) => onChange(event.target.value)}>
+      <Select className={narrowSelect} value={value} onChange={(event) => onChange(event.target.value)}>
         {options.map(([name, text]) => (
           <option key={name} value={name}>
             {text}

@@ -3,6 +3,7 @@ import { Button } from '../../ui/button.tsx'
 import { copyText } from '../../ui/clipboard.ts'
 import { Segmented } from '../../ui/segmented.tsx'
 import { announce } from '../../ui/status.tsx'
+import { Table } from '../../ui/table.tsx'
 import { csvText, svgText } from './copy-plot.ts'
 import { useWidth } from './use-width.ts'
 
@@ -67,9 +68,8 @@ export function PlotFigure(props: PlotFigureProps) {
 
 function PlotTable({ title, table }: { title: string; table: PlotTableData }) {
   return (
-    <div className="overflow-x-auto">
-      <table className="mt-2 w-full text-body">
-        <caption className="sr-only">{`${title}, as a table`}</caption>
+    <div className="mt-2">
+      <Table caption={`${title}, as a table`}>
         <thead>
           <tr className="border-b border-rule text-small">
             {table.head.map((name) => (
@@ -92,7 +92,7 @@ function PlotTable({ title, table }: { title: string; table: PlotTableData }) {
             </tr>
           ))}
         </tbody>
-      </table>
+      </Table>
     </div>
   )
 }

@@ -40,7 +40,7 @@ export function BenchPage(props: BenchPageProps) {
       <BenchFields {...props} page={page} acts={acts} />
       <BenchNotices {...props} page={page} />
       {file.trouble ? <FileTrouble error={file.trouble} onDismiss={file.dismiss} /> : null}
-      <div className="mt-1.5 grid grid-cols-1 gap-x-7 gap-y-4 wide:grid-cols-[1.2fr_0.49fr_1fr] print:gap-y-2">
+      <div className="mt-1.5 grid grid-cols-1 gap-x-7 gap-y-4 wide:grid-cols-[1.2fr_0.49fr_1fr] print:grid-cols-2 print:gap-y-2">
         <StepFound {...props} page={page} acts={acts} />
         <StepCodes {...props} page={page} />
         <StepNext {...props} page={page} acts={acts} />

@@ -15,7 +15,12 @@ export function StepFound(props: StepProps) {
   const [shown, setShown] = useState(first?.id)
   if (!first) {
     return (
-      <Section heavy title={<Numbered n={1}>As found</Numbered>} side={<PasteHint isFixed={page.isFixed} />}>
+      <Section
+        heavy
+        className="print:row-span-2"
+        title={<Numbered n={1}>As found</Numbered>}
+        side={<PasteHint isFixed={page.isFixed} />}
+      >
         <GridWithTools {...props} />
         <FitOfPage {...props} />
       </Section>
@@ -26,6 +31,7 @@ export function StepFound(props: StepProps) {
   return (
     <Section
       heavy
+      className="print:row-span-2"
       title={<Numbered n={1}>{title}</Numbered>}
       side={
         page.chain.length > 1 ? (

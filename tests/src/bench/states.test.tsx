@@ -139,6 +139,16 @@ test('a draft is computed and never recorded', async () => {
   expect(screen.getByRole('button', { name: /^Record/ })).toBeDisabled()
 })
 
+test('without a unit nothing is recorded: the field says so and takes the focus', async () => {
+  const server = benchServer()
+  const { user } = open('/bench?design=DBS-A', server)
+  await pasteBlock(found)
+  await user.click(await screen.findByRole('button', { name: /^Record/ }))
+  expect(document.activeElement).toBe(screen.getByLabelText('unit'))
+  expect(screen.getByLabelText('unit')).toHaveAccessibleDescription('Unit is missing.')
+  expect(server.recorded).toBe(0)
+})
+
 test('suspect: flags in words, codes marked, the readings drawn, and read again as the first act', async () => {
   const { user } = open(address, benchServer())
   await pasteBlock(unsettled)
