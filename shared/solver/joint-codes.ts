@@ -109,7 +109,7 @@ function alongGain(gain: Trimmer, offset: Trimmer, start: Start, o: number, kg: 
  * the last code, the last code is the best on its line: leaving it out would give a pair with a better neighbour.
  */
 function inside(trimmer: Trimmer, code: number): number {
-  return code < trimmer.firstCode ? trimmer.firstCode : code > trimmer.lastCode ? trimmer.lastCode : code
+  return Math.min(Math.max(code, trimmer.firstCode), trimmer.lastCode)
 }
 
 /**

@@ -98,6 +98,33 @@ describe('effects learned from a move (secant)', () => {
     expect(noisy.trim.effects.gain!.why).toBe('too-uncertain')
   })
 
+  test('adjusters that each move both offset and slope are told apart: true effects give factors of one', () => {
+    const effect = (slopePerV: number, offsetPerV: number) =>
+      ({ kind: 'measured', slopePerV, offsetPerV }) as const
+    const coupled = plainDesign({
+      adjusters: {
+        gain: { ...design.adjusters.gain!, effect: effect(0.002, 0.003) },
+        offset: { ...design.adjusters.offset!, effect: effect(0.0004, 0.01) },
+      },
+    })
+    const first = computeCodes(coupled, pointsOnLine(coupled, codes, 4e-3, -6e-4), { applied: 'neutral' })
+    const { gain = 0, offset = 0 } = first.trim.nodeV!
+    const left = pointsOnLine(
+      coupled,
+      codes,
+      4e-3 + 0.01 * offset + 0.003 * 1.1 * gain,
+      -6e-4 + 0.0004 * offset + 0.002 * 1.1 * gain,
+      calm,
+    )
+    const before = {
+      ...first,
+      fit: { ...first.fit, standardUncertainty: { offsetV: 1e-7, gainPpm: 0.01, covarianceVPpm: 0 } },
+    }
+    const { effects } = computeCodes(coupled, left, { applied: first.trim.codes!, learned: before }).trim
+    expect(effects.gain!.factor).toBeCloseTo(1.1, 3)
+    expect(effects.offset!.factor).toBeCloseTo(1, 3)
+  })
+
   test('one adjuster alone learns from the error where it nulls', () => {
     const lone = plainDesign({ adjusters: { gain: design.adjusters.gain } })
     const first = computeCodes(lone, pointsOnLine(lone, codes, 0, -6e-4, calm), { applied: 'neutral' })
