@@ -3,6 +3,7 @@ import axe from 'axe-core'
 import { expect, test } from 'vitest'
 import * as fixtures from '../support/web-fixtures.ts'
 import { open } from '../support/web-render.tsx'
+import * as results from '../support/web-results.ts'
 import { fakeServer, json, refusal } from '../support/web-server.ts'
 
 // One rule measures text on a canvas where there is one.
@@ -15,7 +16,7 @@ async function violations(container: Element) {
 }
 
 const record = fixtures.record(3, {
-  result: fixtures.suspectResult,
+  result: results.suspectResult,
   verdict: 'suspect',
   accepted: false,
   notices: [{ code: 'newer-record', message: 'Another station was first.', record: fixtures.recordId(1) }],

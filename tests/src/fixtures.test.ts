@@ -6,15 +6,16 @@ import { me } from '../../shared/contract/session.ts'
 import { station } from '../../shared/contract/stations.ts'
 import { postToken, token } from '../../shared/contract/tokens.ts'
 import * as fixtures from '../support/web-fixtures.ts'
+import * as results from '../support/web-results.ts'
 
 const cases: [string, z.ZodType, unknown][] = [
   ['me', me, fixtures.me('auditor')],
   ['design line', designLine, fixtures.designLine],
   ['revision', revision, fixtures.revision(1)],
   ['record with codes', record, fixtures.record(1)],
-  ['suspect record', record, fixtures.record(2, { result: fixtures.suspectResult, verdict: 'suspect' })],
-  ['record out of reach', record, fixtures.record(3, { result: fixtures.outOfReachResult })],
-  ['verification', record, fixtures.record(4, { kind: 'verify', result: fixtures.verifyResult })],
+  ['suspect record', record, fixtures.record(2, { result: results.suspectResult, verdict: 'suspect' })],
+  ['record out of reach', record, fixtures.record(3, { result: results.outOfReachResult })],
+  ['verification', record, fixtures.record(4, { kind: 'verify', result: results.verifyResult })],
   ['new token', postToken.reply.schema, { ...fixtures.tokens[0], token: fixtures.tokenText }],
   ...fixtures.stations.map((one): [string, z.ZodType, unknown] => [one.name, station, one]),
   ...fixtures.tokens.map((one): [string, z.ZodType, unknown] => [one.name, token, one]),

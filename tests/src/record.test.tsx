@@ -2,6 +2,7 @@ import { screen, waitFor, within } from '@testing-library/react'
 import { expect, test } from 'vitest'
 import * as fixtures from '../support/web-fixtures.ts'
 import { open } from '../support/web-render.tsx'
+import * as results from '../support/web-results.ts'
 import { type FakeServer, fakeServer, json, refusal } from '../support/web-server.ts'
 
 const id = fixtures.recordId
@@ -14,7 +15,7 @@ function serverWith(
   return server
 }
 const suspect = () =>
-  fixtures.record(3, { result: fixtures.suspectResult, verdict: 'suspect', accepted: false })
+  fixtures.record(3, { result: results.suspectResult, verdict: 'suspect', accepted: false })
 
 async function openRecord(n: number, server: FakeServer) {
   const opened = open(`/records/${id(n)}`, server)
@@ -41,7 +42,7 @@ test('the chain leads back through the records that it follows', async () => {
     fixtures.record(1),
     fixtures.record(2, {
       kind: 'verify',
-      result: fixtures.verifyResult,
+      result: results.verifyResult,
       verdict: 'conditional-pass',
       follows: id(1),
     }),
@@ -56,7 +57,7 @@ test('the chain leads back through the records that it follows', async () => {
 
 test('out of reach gives no code and says what was wanted and what there is', async () => {
   const record = fixtures.record(4, {
-    result: fixtures.outOfReachResult,
+    result: results.outOfReachResult,
     verdict: 'out-of-reach',
     ledger: null,
   })

@@ -1,10 +1,11 @@
 import { type FormEvent, useState } from 'react'
-import { scope } from '../../../shared/contract/primitives.ts'
+import { type Scope, scope } from '../../../shared/contract/primitives.ts'
 import { limits } from '../../../shared/limits.ts'
 import { Button } from '../../ui/button.tsx'
 import { Field } from '../../ui/field.tsx'
-import { Checkbox, Select, TextInput } from '../../ui/input.tsx'
+import { Select, TextInput } from '../../ui/input.tsx'
 import { fieldMessage, Problem } from '../../ui/problem.tsx'
+import { Checks } from './checks.tsx'
 import { useCreateToken } from './queries.ts'
 import { emptyOrder, type OrderForm, orderOf, orderTrouble, scopeWords } from './token-order.ts'
 import { TokenShownOnce } from './token-shown-once.tsx'
@@ -50,27 +51,15 @@ export function CreateToken({
             onChange={(event) => change({ name: event.target.value })}
           />
         </Field>
-        <Field label="Station" error={message('station')} layout="row">
-          <Select value={form.station} onChange={(event) => change({ station: event.target.value })}>
-            <option value="">none</option>
-            {stations.map((station) => (
-              <option key={station.id} value={station.id}>
-                {station.name}
-              </option>
-            ))}
-          </Select>
-        </Field>
-        <Checks
-          legend="Scopes"
+        <StationField
+          error={message('station')}
+          stations={stations}
+          value={form.station}
+          onChange={(station) => change({ station })}
+        />
+        <ScopeChecks
           error={message('scopes')}
-          all={scope.options}
           chosen={form.scopes}
-          word={(one) => (
-            <>
-              <code className="font-mono text-small">{one}</code>
-              <span className="text-ink-2"> {scopeWords[one]}</span>
-            </>
-          )}
           onChange={(scopes) => change({ scopes })}
         />
         <Field label="Days" error={message('days')} layout="row" hint="The token ends after that many days.">
@@ -99,45 +88,53 @@ export function CreateToken({
   )
 }
 
-function Checks<Value extends string>({
-  legend,
-  note,
+function ScopeChecks({
   error,
-  all,
   chosen,
-  word,
   onChange,
 }: {
-  legend: string
-  note?: string
-  error?: string | undefined
-  all: readonly Value[]
-  chosen: readonly Value[]
-  word: (value: Value) => React.ReactNode
-  onChange: (chosen: Value[]) => void
+  error: string | undefined
+  chosen: readonly Scope[]
+  onChange: (scopes: Scope[]) => void
 }) {
   return (
-    <fieldset className="grid grid-cols-1 gap-x-2 narrow:grid-cols-[7rem_1fr]">
-      <legend className="float-left text-ink-2">{legend}</legend>
-      <div className="flex flex-col narrow:col-start-2">
-        {note ? <span className="min-h-6 text-small text-ink-3">{note}</span> : null}
-        {all.map((value) => (
-          <Checkbox
-            key={value}
-            checked={chosen.includes(value)}
-            onChange={(event) =>
-              onChange(all.filter((one) => (one === value ? event.target.checked : chosen.includes(one))))
-            }
-          >
-            {word(value)}
-          </Checkbox>
+    <Checks
+      legend="Scopes"
+      error={error}
+      all={scope.options}
+      chosen={chosen}
+      word={(one) => (
+        <>
+          <code className="font-mono text-small">{one}</code>
+          <span className="text-ink-2"> {scopeWords[one]}</span>
+        </>
+      )}
+      onChange={onChange}
+    />
+  )
+}
+
+function StationField({
+  error,
+  stations,
+  value,
+  onChange,
+}: {
+  error: string | undefined
+  stations: readonly Choice[]
+  value: string
+  onChange: (id: string) => void
+}) {
+  return (
+    <Field label="Station" error={error} layout="row">
+      <Select value={value} onChange={(event) => onChange(event.target.value)}>
+        <option value="">none</option>
+        {stations.map((station) => (
+          <option key={station.id} value={station.id}>
+            {station.name}
+          </option>
         ))}
-        {error ? (
-          <span role="alert" className="text-small text-bad">
-            {error}
-          </span>
-        ) : null}
-      </div>
-    </fieldset>
+      </Select>
+    </Field>
   )
 }
