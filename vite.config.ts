@@ -18,6 +18,8 @@ export default defineConfig({
     // The content security policy knows no data: addresses, so nothing is inlined.
     assetsInlineLimit: 0,
     target: 'es2023',
+    // mathjs alone is over the default; it loads with the first cell that holds arithmetic.
+    chunkSizeWarningLimit: 800,
     // Two files for what sign-in needs: fewer requests, and they pack smaller than two dozen pieces.
     rolldownOptions: {
       output: {

@@ -19,23 +19,7 @@ export function CreateToken({
   stations: readonly Choice[]
   designs: readonly string[]
 }) {
-  const [form, setForm] = useState<OrderForm>(emptyOrder)
-  const [tried, setTried] = useState(false)
-  const create = useCreateToken()
-  const trouble = orderTrouble(form)
-  const change = (part: Partial<OrderForm>) => setForm({ ...form, ...part })
-  const message = (name: keyof typeof trouble) =>
-    (tried ? trouble[name] : undefined) ?? fieldMessage(create.error, `/${name}`)
-  const submit = (event: FormEvent) => {
-    event.preventDefault()
-    setTried(true)
-    if (Object.keys(trouble).length === 0 && !create.isPending) create.mutate(orderOf(form))
-  }
-  const done = () => {
-    create.reset()
-    setForm(emptyOrder)
-    setTried(false)
-  }
+  const { form, change, message, create, submit, done } = useOrder()
   return (
     <>
       <form onSubmit={submit} noValidate className="max-w-[40rem] space-y-3">
@@ -137,4 +121,26 @@ function StationField({
       </Select>
     </Field>
   )
+}
+
+/** The form's state: troubles show once it was tried, and a made token clears it. */
+function useOrder() {
+  const [form, setForm] = useState<OrderForm>(emptyOrder)
+  const [tried, setTried] = useState(false)
+  const create = useCreateToken()
+  const trouble = orderTrouble(form)
+  const change = (part: Partial<OrderForm>) => setForm({ ...form, ...part })
+  const message = (name: keyof typeof trouble) =>
+    (tried ? trouble[name] : undefined) ?? fieldMessage(create.error, `/${name}`)
+  const submit = (event: FormEvent) => {
+    event.preventDefault()
+    setTried(true)
+    if (Object.keys(trouble).length === 0 && !create.isPending) create.mutate(orderOf(form))
+  }
+  const done = () => {
+    create.reset()
+    setForm(emptyOrder)
+    setTried(false)
+  }
+  return { form, change, message, create, submit, done }
 }
