@@ -9,7 +9,7 @@ import { volts } from './words.ts'
  * The formula in plain words, the inputs and the source of one number of `ogee.size/1`.
  * @param path JSON pointer into the result, such as `/adjusters/gain/requiredBits`
  * @returns null for a path that is no number of the result
- * @example explainSize(design, size, '/lsbV')?.formula
+ * @example explainSize(unipolar18, size, '/adjusters/gain/spareBits')?.inputs.length // 2
  */
 export function explainSize(design: SizingDesign, result: SizeResult, path: string): Explanation | null {
   const parts = path.split('/').slice(1)

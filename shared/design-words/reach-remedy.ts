@@ -1,3 +1,4 @@
+import { seriesValues } from '../solver/network-synthesis/series.ts'
 import type { AdjusterSize } from '../solver/sizing/types.ts'
 import type { Adjuster, Which } from '../solver/types.ts'
 import { ohms, span, volts } from './words.ts'
@@ -18,7 +19,7 @@ export function reachRemedy(which: Which, size: AdjusterSize, adjuster: Adjuster
 }
 
 /**
- * The least lower resistor of a divider that reaches the tighter side, rounded up to three digits; null when none does
+ * The least lower resistor of a divider that reaches the tighter side, rounded up to E96; null when none does
  * (the auxiliary DAC itself falls short) or where the node is not nominally at 0 V, so that more than one resistor counts.
  * From V = V_aux·g_t/(g_t + g_b + g_in), the rest at 0 V.
  */
@@ -33,12 +34,6 @@ function neededBottom(size: AdjusterSize, { network, node, source }: Adjuster): 
   const top = 1 / network.topOhm
   const others = (reaches * top) / needed - top - (node.inputOhm === undefined ? 0 : 1 / node.inputOhm)
   if (!(others > 0)) return null
-  return upToThreeDigits(1 / others)
-}
-
-function upToThreeDigits(value: number): number {
-  const rounded = Number(value.toPrecision(3))
-  if (rounded >= value) return rounded
-  const [digits, exponent] = rounded.toExponential(2).split('e')
-  return Number(`${Number(digits) + 0.01}e${exponent}`)
+  // To be bought as it is named: the next value of E96.
+  return seriesValues('E96', 1 / others, 10 / others)[0] ?? null
 }
