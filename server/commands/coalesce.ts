@@ -1,6 +1,8 @@
 /** How many requests share a transaction, and how many transactions are under way at once in this process. */
 const shareMax = 64
 const underWayMax = 2
+/** One at a time makes the fullest transactions; one that takes longer than this, waiting for a lock, holds up nobody. */
+const slowMs = 40
 
 type Waiting<In, Out> = { input: In; resolve: (out: Out) => void; reject: (error: unknown) => void }
 
@@ -13,12 +15,21 @@ export function coalesce<In, Out>(
 ): (input: In) => Promise<Out> {
   const queue: Waiting<In, Out>[] = []
   let underWay = 0
+  let waitingForSlow = false
 
+  const start = () => {
+    if (queue.length === 0 || underWay >= underWayMax) return
+    underWay++
+    void run(queue.splice(0, shareMax))
+  }
   const pump = () => {
-    while (underWay < underWayMax && queue.length > 0) {
-      underWay++
-      void run(queue.splice(0, shareMax))
-    }
+    if (underWay === 0) start()
+    if (queue.length === 0 || waitingForSlow) return
+    waitingForSlow = true
+    setTimeout(() => {
+      waitingForSlow = false
+      start()
+    }, slowMs)
   }
   const run = async (batch: Waiting<In, Out>[]) => {
     try {

@@ -1,7 +1,7 @@
-import { UniqueConstraintError } from 'sequelize'
 import type { DesignLine } from '../../shared/contract/designs.ts'
 import { OgeeError } from '../../shared/errors.ts'
 import { canonicalBytes, type Json } from '../../shared/ledger/canonical.ts'
+import { failureOf } from '../db/failure.ts'
 import { sqlTime } from '../db/sql.ts'
 import { transaction } from '../db/transaction.ts'
 import type { Deps } from '../http/deps.ts'
@@ -37,7 +37,7 @@ export async function createDesign(
     await sql
       .run('INSERT INTO designs (design_key, created_at) VALUES ?', [[[key, sqlTime(revision.createdAt)]]])
       .catch((error: unknown) => {
-        if (!(error instanceof UniqueConstraintError)) throw error
+        if (failureOf(error) !== 'duplicate') throw error
         throw new OgeeError('already-exists', `There is a design ${key} already.`, {
           errors: [{ path: '/key', message: 'This key is taken.' }],
         })

@@ -10,6 +10,7 @@ import { findKeys, KeyHeld, KeyJustUsed, keyOf, takeKeys } from './recording/key
 import { readStored } from './recording/read-stored.ts'
 import type { RecordNumbers } from './recording/record-numbers.ts'
 import { makeReady, storeRecords } from './recording/store.ts'
+import { UnitJustMade } from './recording/units.ts'
 
 export type RecordingDeps = {
   database: Database
@@ -55,7 +56,7 @@ export async function recordTrims(deps: RecordingDeps, jobs: readonly Job[]): Pr
         // Which key is held is not known; each request by itself finds out.
         for (const job of open) outcomes.set(job, (await recordTrims(deps, [job]))[0]!)
         break
-      } else if (!(error instanceof KeyJustUsed) || look >= looks) {
+      } else if (!isWorthALook(error) || look >= looks) {
         for (const job of open) outcomes.set(job, { done: false, error: asReply(error) })
         break
       }
@@ -70,15 +71,17 @@ async function attempt(
   jobs: readonly Job[],
   numbers: readonly number[],
 ): Promise<Map<Job, Outcome>> {
-  const used = await findKeys(sql, jobs)
-  const replays = jobs.filter((job) => used.has(keyOf(job)))
-  const outcomes = await replay(sql, replays, used)
-  const fresh = jobs.filter((job) => !used.has(keyOf(job)))
-  if (fresh.length === 0) return outcomes
   const at = deps.now()
-  const ids = fresh.map((job, i) => uuid({ msecs: (job.at ?? at).getTime(), seq: sequence(i) }))
-  await takeKeys(sql, fresh, ids)
-  const { decisions, refusals, places } = await decideAll(sql, fresh, { ids, numbers, at })
+  const ids = new Map(
+    jobs.map((job, i) => [job, uuid({ msecs: (job.at ?? at).getTime(), seq: sequence(i) })]),
+  )
+  const { fresh, outcomes } = await separate(sql, jobs, ids)
+  if (fresh.length === 0) return outcomes
+  const { decisions, refusals, places } = await decideAll(sql, fresh, {
+    ids: fresh.map((job) => ids.get(job)!),
+    numbers,
+    at,
+  })
   if (refusals.size > 0) throw new Refused(refusals)
   const ready = decisions.map((decision) => makeReady(decision, deps.signer))
   await storeRecords(sql, ready, places)
@@ -86,6 +89,25 @@ async function attempt(
     outcomes.set(decision.context.job, { done: true, record: stored, replayed: false })
   }
   return outcomes
+}
+
+/** Takes the keys of all; only when one was used before are they looked up, and replays told from new requests. */
+async function separate(
+  sql: Sql,
+  jobs: readonly Job[],
+  ids: ReadonlyMap<Job, string>,
+): Promise<{ fresh: readonly Job[]; outcomes: Map<Job, Outcome> }> {
+  try {
+    await takeKeys(sql, jobs, ids)
+    return { fresh: jobs, outcomes: new Map() }
+  } catch (error) {
+    if (!(error instanceof KeyJustUsed)) throw error
+  }
+  const used = await findKeys(sql, jobs)
+  const fresh = jobs.filter((job) => !used.has(keyOf(job)))
+  const replays = jobs.filter((job) => used.has(keyOf(job)))
+  if (fresh.length > 0) await takeKeys(sql, fresh, ids)
+  return { fresh, outcomes: await replay(sql, replays, used) }
 }
 
 async function replay(
@@ -120,8 +142,11 @@ function keyReused(): OgeeError {
   )
 }
 
+/** Somebody else was a moment ahead with the same key or unit; they have committed, so looking again settles it. */
+const isWorthALook = (error: unknown) => error instanceof KeyJustUsed || error instanceof UnitJustMade
+
 function asReply(error: unknown): Error {
-  if (error instanceof KeyHeld || error instanceof KeyJustUsed) return inFlight()
+  if (error instanceof KeyHeld || isWorthALook(error)) return inFlight()
   return error instanceof Error ? error : new Error(String(error))
 }
 

@@ -1,8 +1,7 @@
 import type { ErrorRequestHandler, Request, Response } from 'express'
-import { UniqueConstraintError } from 'sequelize'
 import type { Problem } from '../../shared/contract/problem.ts'
 import { errorTable, isOgeeError, OgeeError } from '../../shared/errors.ts'
-import { asOutage } from '../db/failure.ts'
+import { asOutage, failureOf } from '../db/failure.ts'
 import { localsOf } from './locals.ts'
 
 /** The one place where errors become replies: RFC 9457 problem details, and the challenges of RFC 6750. */
@@ -62,7 +61,7 @@ function asKnown(error: unknown): OgeeError {
   if (isOgeeError(error)) return error
   const outage = asOutage(error)
   if (isOgeeError(outage)) return outage
-  if (error instanceof UniqueConstraintError) {
+  if (failureOf(error) === 'duplicate') {
     return new OgeeError('already-exists', 'That name is taken.', { cause: error })
   }
   return (

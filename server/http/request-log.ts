@@ -1,56 +1,45 @@
+import { randomUUID } from 'node:crypto'
 import type { RequestHandler, Response } from 'express'
 import type { Logger } from 'pino'
-import { pinoHttp } from 'pino-http'
-import { v7 as uuid } from 'uuid'
 import { localsOf } from './locals.ts'
 
 /**
  * One line a request: id, method, path, status, who, and the code of a refusal. Never a query, a header, a cookie or a
  * body: secrets travel there. Paths hold no secrets.
  */
-export function requestLog(logger: Logger): RequestHandler[] {
-  const log = pinoHttp<Parameters<RequestHandler>[0], Response>({
-    logger,
-    genReqId: (_, response) => localsOf(response).id,
-    customLogLevel: (_, response) => levelOf(response.statusCode),
-    customSuccessMessage: () => 'request',
-    customErrorMessage: () => 'request',
-    customSuccessObject: (_, response, values: object) => ({ ...values, ...facts(response) }),
-    customErrorObject: (_, response, __, values: object) => ({ ...values, ...facts(response) }),
-    serializers: {
-      req: (request: { method: string; url: string; remoteAddress: string }) => ({
-        method: request.method,
-        path: request.url.split('?')[0],
-      }),
-      res: (response: { statusCode: number }) => ({ status: response.statusCode }),
-      err: errorFacts,
-    },
-  })
-  return [
-    (_, response, next) => {
-      const id = uuid()
-      Object.assign(response.locals, { id, principal: null })
-      response.set('X-Request-Id', id)
-      next()
-    },
-    log,
-  ]
+export function requestLog(logger: Logger): RequestHandler {
+  return (request, response, next) => {
+    const id = randomUUID()
+    const begun = performance.now()
+    Object.assign(response.locals, { id, principal: null })
+    response.setHeader('X-Request-Id', id)
+    const path = request.path
+    // Closed, not finished: a caller who left before the answer is a line too.
+    response.once('close', () => {
+      const level = levelOf(response)
+      if (!logger.isLevelEnabled(level)) return
+      const ms = Math.round(performance.now() - begun)
+      logger[level]({ request: id, method: request.method, path, ...facts(response), ms }, 'request')
+    })
+    next()
+  }
 }
 
 function facts(response: Response): object {
-  const { principal, problem, failure, id } = localsOf(response)
+  const { principal, problem, failure } = localsOf(response)
   return {
-    request: id,
+    status: response.statusCode,
     address: response.req.ip,
     by: principal === null ? null : `${principal.kind}:${principal.id}`,
+    ...(response.writableFinished ? {} : { cut: true }),
     ...(problem === undefined ? {} : { problem }),
     ...(failure === undefined ? {} : { cause: errorFacts(failure) }),
   }
 }
 
-function levelOf(status: number): 'info' | 'warn' | 'error' {
-  if (status >= 500) return 'error'
-  return status === 401 || status === 403 || status === 429 ? 'warn' : 'info'
+function levelOf({ statusCode }: Response): 'info' | 'warn' | 'error' {
+  if (statusCode >= 500) return 'error'
+  return statusCode === 401 || statusCode === 403 || statusCode === 429 ? 'warn' : 'info'
 }
 
 /** What of an error may be logged: never its SQL or parameters, which hold what people typed. */

@@ -51,8 +51,24 @@ export function securityHeaders(config: Pick<Config, 'tls' | 'baseUrl' | 'dev'>)
     ...common,
     contentSecurityPolicy: { useDefaults: false, directives: sealedPolicy },
   })
+  const app = headersOf(forApp)
+  const data = headersOf(forData)
   return (request, response, next) => {
     const isData = /^\/(?:api|problems|healthz|readyz)(?:\/|$)/.test(request.path)
-    ;(isData ? forData : forApp)(request, response, next)
+    for (const [name, value] of isData ? data : app) response.setHeader(name, value)
+    next()
   }
+}
+
+/** What helmet sets, asked once: it is the same for every answer. */
+function headersOf(middleware: ReturnType<typeof helmet>): [string, string][] {
+  const headers = new Map<string, string>()
+  const collecting = {
+    setHeader: (name: string, value: string) => headers.set(name, value),
+    removeHeader: (name: string) => headers.delete(name),
+  }
+  middleware({} as never, collecting as never, (error?: unknown) => {
+    if (error) throw error
+  })
+  return [...headers]
 }

@@ -128,16 +128,16 @@ function send(response: Response, endpoint: Endpoint, reply: unknown, check: boo
     if (!breach.success)
       throw new Error(`The reply of ${endpoint.id} breaks its schema: ${breach.error.message}`)
   }
-  response.status(status).set('Cache-Control', 'no-store')
+  response.statusCode = status
+  response.setHeader('Cache-Control', 'no-store')
   if (status === 204) {
     response.end()
     return
   }
-  if (mediaType === 'text/plain') {
-    response.type('text/plain; charset=utf-8').send(String(reply))
-    return
-  }
-  response
-    .type('application/json; charset=utf-8')
-    .send(reply instanceof ReadyJson ? reply.text : JSON.stringify(reply))
+  const isText = mediaType === 'text/plain'
+  const text = isText ? String(reply) : reply instanceof ReadyJson ? reply.text : JSON.stringify(reply)
+  const bytes = Buffer.from(text)
+  response.setHeader('Content-Type', `${isText ? 'text/plain' : 'application/json'}; charset=utf-8`)
+  response.setHeader('Content-Length', bytes.length)
+  response.end(bytes)
 }

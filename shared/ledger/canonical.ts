@@ -58,18 +58,31 @@ function object(value: { readonly [key: string]: Json | undefined }): string {
     throw new OgeeError('invalid-document', 'Only plain objects have a canonical form.')
   }
   let text = ''
-  // The default order of sort() is by UTF-16 code units, which is what RFC 8785 section 3.2.3 asks for.
-  for (const key of Object.keys(value).sort()) {
+  for (const key of Object.keys(value).sort(byCodeUnits)) {
     const member = value[key]
-    if (member !== undefined) text += `${text === '' ? '' : ','}${quoted(key)}:${canonicalText(member)}`
+    if (member !== undefined) text += `${text === '' ? '' : ','}${quotedName(key)}:${canonicalText(member)}`
   }
   return `{${text}}`
 }
+
+/** Strings compare by UTF-16 code units in ECMAScript, which is the order that RFC 8785 section 3.2.3 asks for. */
+const byCodeUnits = (a: string, b: string): number => (a < b ? -1 : 1)
 
 function number(value: number): string {
   if (!Number.isFinite(value)) throw new OgeeError('not-finite', `${value} has no place in a document.`)
   // String() is the ECMAScript algorithm that RFC 8785 section 3.2.2.3 refers to; it already writes -0 as 0.
   return String(value)
+}
+
+/** Names of members are few and come again and again; kept up to a bound, in case somebody makes up new ones. */
+const quotedNames = new Map<string, string>()
+
+function quotedName(name: string): string {
+  const known = quotedNames.get(name)
+  if (known !== undefined) return known
+  const made = quoted(name)
+  if (quotedNames.size < 1_000) quotedNames.set(name, made)
+  return made
 }
 
 function quoted(text: string): string {

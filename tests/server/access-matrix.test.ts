@@ -177,6 +177,6 @@ describe('ASVS V16.3.2 failed authorisation is logged', () => {
     await requestTo(allEndpoints.find((endpoint) => endpoint.id === 'listTokens')!, {})
     const lines = harness.log.slice(before).filter((line) => line.level === 'warn')
     expect(lines.map((line) => line.problem)).toEqual(['forbidden', 'token-invalid', 'sign-in-required'])
-    expect(lines[0]).toMatchObject({ by: expect.stringMatching(/^person:/), res: { status: 403 } })
+    expect(lines[0]).toMatchObject({ by: expect.stringMatching(/^person:/), status: 403 })
   })
 })

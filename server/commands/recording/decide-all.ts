@@ -34,7 +34,7 @@ export async function decideAll(sql: Sql, jobs: readonly Job[], assigned: Assign
   )
   const places = await Places.read(
     sql,
-    [...units.values()].map((unit) => unit.id),
+    [...units.values()].filter((unit) => !unit.fresh).map((unit) => unit.id),
   )
   const known = await readFollowed(sql, idsToRead(resolved, units, places))
   const decisions: Decision[] = []
@@ -94,7 +94,7 @@ async function decide(sql: Sql, { job, revision, i }: Resolved, world: World): P
     number: world.assigned.numbers[i]!,
     recordedAt: (job.at ?? world.assigned.at).toISOString(),
     revision,
-    unit: { id: unit.id, fresh: !world.places.hasAny(unit.id) },
+    unit,
     place,
     state,
     known: world.known,

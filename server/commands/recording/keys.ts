@@ -6,7 +6,7 @@ export type FoundKey = { bodyHash: Buffer; recordId: string }
 
 /** Somebody else holds a key of these at this moment, in a transaction that has not ended. */
 export class KeyHeld extends Error {}
-/** Somebody else used a key of these since it was looked up: the whole must be looked at again. */
+/** A key of these was used before, or just now by somebody else. */
 export class KeyJustUsed extends Error {}
 
 export const keyOf = (job: Pick<Job, 'recorder' | 'key'>) => `${job.recorder.scope} ${job.key}`
@@ -25,9 +25,13 @@ export async function findKeys(sql: Sql, jobs: readonly Job[]): Promise<Map<stri
  * Takes keys for records to be, in the transaction of their effect. Two seconds of waiting for another's key are enough to
  * know that it is in flight: the caller hears so and asks again.
  */
-export async function takeKeys(sql: Sql, jobs: readonly Job[], recordIds: readonly string[]): Promise<void> {
+export async function takeKeys(
+  sql: Sql,
+  jobs: readonly Job[],
+  recordIds: ReadonlyMap<Job, string>,
+): Promise<void> {
   const rows = jobs
-    .map((job, i) => [job.recorder.scope, job.key, job.bodyHash, recordIds[i]!] as const)
+    .map((job) => [job.recorder.scope, job.key, job.bodyHash, recordIds.get(job)!] as const)
     .sort((a, b) => (`${a[0]} ${a[1]}` < `${b[0]} ${b[1]}` ? -1 : 1))
   try {
     await sql.run(

@@ -48,11 +48,6 @@ export class Places {
     return this.#states.get(keyOf(place)) ?? untouched
   }
 
-  /** A unit without any place has no records: refused ones leave no unit behind. */
-  hasAny(unitId: number): boolean {
-    return [...this.#states.keys()].some((key) => key.startsWith(`${unitId} `))
-  }
-
   /** Newest measurements of all channels and ranges of a unit. */
   measurementsOf(unitId: number): string[] {
     return [...this.#states].flatMap(([key, state]) =>

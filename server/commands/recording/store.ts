@@ -27,8 +27,12 @@ export async function storeRecords(sql: Sql, ready: readonly Ready[], places: Pl
     sql,
     ready.map((one) => one.leaf),
   )
-  await sql.run(`INSERT INTO records (${columns}) VALUES ?`, [ready.map((one, i) => rowOf(one, leafIds[i]!))])
-  await places.write(sql)
+  // Neither needs the other's answer, so the second is on its way before the first is done.
+  const both = await Promise.allSettled([
+    sql.run(`INSERT INTO records (${columns}) VALUES ?`, [ready.map((one, i) => rowOf(one, leafIds[i]!))]),
+    places.write(sql),
+  ])
+  for (const one of both) if (one.status === 'rejected') throw one.reason
 }
 
 const columns = `id, number, kind, unit_id, unit, channel, range_id, lot, design, revision, pass, follows, verdict,

@@ -1,7 +1,11 @@
+import { failureOf } from '../../db/failure.ts'
 import type { Sql } from '../../db/sql.ts'
 
 export type UnitName = { designId: number; serial: string }
-export type LockedUnit = UnitName & { id: number }
+/** `fresh`: made by this very transaction, so it has no records. */
+export type LockedUnit = UnitName & { id: number; fresh: boolean }
+
+export class UnitJustMade extends Error {}
 
 /**
  * Locks the units' rows, and makes those that are not there yet.
@@ -12,23 +16,29 @@ export async function lockUnits(sql: Sql, names: readonly UnitName[]): Promise<M
   const found = await lock(sql, wanted)
   const missing = wanted.filter((name) => !found.some((unit) => unitKey(unit) === unitKey(name)))
   if (missing.length === 0) return byKey(found)
-  // Somebody else may make the same unit at this moment; then theirs is taken, once they have committed.
-  await sql.run('INSERT INTO units (design_id, serial) VALUES ? ON DUPLICATE KEY UPDATE id = id', [
-    missing.map((name) => [name.designId, name.serial]),
-  ])
-  const made = await lock(sql, missing)
-  return byKey([...found, ...made])
+  try {
+    const made = await sql.rows<Omit<LockedUnit, 'fresh'>>(
+      'INSERT INTO units (design_id, serial) VALUES ? RETURNING id, design_id AS designId, serial',
+      [missing.map((name) => [name.designId, name.serial])],
+    )
+    return byKey([...found, ...made.map((unit) => ({ ...unit, fresh: true }))])
+  } catch (error) {
+    // Somebody else made one of them at this moment, and has committed: the next look finds it.
+    if (failureOf(error) === 'duplicate') throw new UnitJustMade()
+    throw error
+  }
 }
 
 export const unitKey = ({ designId, serial }: UnitName): string => `${designId} ${serial}`
 
 async function lock(sql: Sql, names: readonly UnitName[]): Promise<LockedUnit[]> {
   if (names.length === 0) return []
-  return sql.rows(
+  const units = await sql.rows<Omit<LockedUnit, 'fresh'>>(
     `SELECT id, design_id AS designId, serial FROM units WHERE
       ${names.map(() => '(design_id = ? AND serial = ?)').join(' OR ')} ORDER BY design_id, serial FOR UPDATE`,
     names.flatMap((name) => [name.designId, name.serial]),
   )
+  return units.map((unit) => ({ ...unit, fresh: false }))
 }
 
 function byKey(units: readonly LockedUnit[]): Map<string, LockedUnit> {
