@@ -64,6 +64,8 @@ export function fitSet(channel: Channel, set: PointSet, options: FitOptions): Fi
         ? fitMinimax(set)
         : fitTerminal(set, channel.noise)
   const { range } = channel
+  const { standardUncertainty, expandedUncertainty } = uncertainties(line, instr, range.x0)
+  const { residuals, linearity } = residualPart(set, line, range)
   const result: FitResult = {
     method,
     n: set.n,
@@ -72,8 +74,10 @@ export function fitSet(channel: Channel, set: PointSet, options: FitOptions): Fi
     offsetErrorV: line.offset,
     gainErrorPpm: line.gain * 1e6,
     fullScaleErrorV: line.offset + line.gain * range.zFull,
-    ...uncertainties(line, instr, range.x0),
-    ...residualPart(set, line, range),
+    standardUncertainty,
+    expandedUncertainty,
+    residuals,
+    linearity,
     chiSquared: line.chiSquared,
     instrument: instrument
       ? { id: instrument.id ?? null, gainPpm: instrument.gainPpm, offsetV: instrument.offsetV }

@@ -87,20 +87,35 @@ function alongOffset(gain: Trimmer, offset: Trimmer, start: Start, g: number, ko
   const full = start.errorFull + gain.endFull * dg
   for (let i = 0; i < 4; i++) {
     const o = turningCode(offset, start.offsetV, low, full, i)
-    consider(gain, offset, start, g, inside(offset, o), best)
-    consider(gain, offset, start, g, inside(offset, o + 1), best)
+    farther(gain, offset, start, g, inside(offset, o), ko, best)
+    farther(gain, offset, start, g, inside(offset, o + 1), ko, best)
   }
 }
 
+/** As `consider`, for an offset code outside the window that the loop before has tried. */
+function farther(
+  gain: Trimmer,
+  offset: Trimmer,
+  start: Start,
+  g: number,
+  o: number,
+  ko: number,
+  best: Best,
+): void {
+  if (o < ko - NEAR || o > ko + NEAR) consider(gain, offset, start, g, o, best)
+}
+
+/** The window itself was tried along offset; here only what lies outside it. */
 function alongGain(gain: Trimmer, offset: Trimmer, start: Start, o: number, kg: number, best: Best): void {
-  for (let g = Math.ceil(kg - NEAR); g <= kg + NEAR; g++) consider(gain, offset, start, g, o, best)
   const d = nodeV(offset, o) - start.offsetV
   const low = start.errorLow + offset.endLow * d
   const full = start.errorFull + offset.endFull * d
   for (let i = 0; i < 4; i++) {
-    const g = turningCode(gain, start.gainV, low, full, i)
-    consider(gain, offset, start, inside(gain, g), o, best)
-    consider(gain, offset, start, inside(gain, g + 1), o, best)
+    const below = turningCode(gain, start.gainV, low, full, i)
+    for (let code = below; code <= below + 1; code++) {
+      const g = inside(gain, code)
+      if (g < kg - NEAR || g > kg + NEAR) consider(gain, offset, start, g, o, best)
+    }
   }
 }
 

@@ -89,11 +89,12 @@ export function predict(
 
 /** Σ and Σ² of τ·|ΔV|·|effect| at one end. */
 function effectTerms(trimmers: Trimmers, dv: Move, atLow: boolean): { sum: number; squares: number } {
-  const term = (trimmer: Trimmer | null, move: number): number =>
-    trimmer === null
-      ? 0
-      : trimmer.tolerance * Math.abs(move) * Math.abs(atLow ? trimmer.endLow : trimmer.endFull)
-  const offset = term(trimmers.offset, dv.offset)
-  const gain = term(trimmers.gain, dv.gain)
+  const offset = effectTerm(trimmers.offset, dv.offset, atLow)
+  const gain = effectTerm(trimmers.gain, dv.gain, atLow)
   return { sum: offset + gain, squares: offset * offset + gain * gain }
+}
+
+function effectTerm(trimmer: Trimmer | null, move: number, atLow: boolean): number {
+  if (trimmer === null) return 0
+  return trimmer.tolerance * Math.abs(move) * Math.abs(atLow ? trimmer.endLow : trimmer.endFull)
 }

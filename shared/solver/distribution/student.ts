@@ -13,15 +13,50 @@ import { remember } from './remember.ts'
  * degrees of freedom by the expansion of Abramowitz and Stegun 26.7.5 with the fifth term of Fisher and Cornish (1960).
  * @example studentUpper(0.5, 3) // 0
  */
-export const studentUpper: (tail: number, dof: number) => number = remember((tail, dof) => {
+export function studentUpper(tail: number, dof: number): number {
+  // Whole numbers come again from unit to unit; the real ones of Welch-Satterthwaite never do.
+  return dof === Math.floor(dof) ? atWhole(tail, dof) : compute(tail, dof)
+}
+
+const atWhole = remember(compute)
+
+function compute(tail: number, dof: number): number {
   if (tail === 0.5) return 0
   if (tail > 0.5) return -studentUpper(1 - tail, dof)
-  if (dof === Number.POSITIVE_INFINITY) return normalUpper(tail)
   const z = normalUpper(tail)
+  if (dof === Number.POSITIVE_INFINITY) return z
   // From here on the first term left out of the expansion is under 1e-14 of t.
   if (dof >= (z < 2.6 ? 200 : z < 4 ? 1000 : 5000)) return expansion(z, 1 / dof)
-  return polish(dof > 20 && z < 2.6 ? expansion(z, 1 / dof) : hillStart(tail, dof), tail, dof)
-})
+  return polish(start(tail, dof, z), tail, dof)
+}
+
+function start(tail: number, dof: number, z: number): number {
+  if (dof > 20 && z < 2.6) return expansion(z, 1 / dof)
+  return dof > 3 && tail > 0.01 && dof !== Math.floor(dof) ? between(tail, dof) : hillStart(tail, dof)
+}
+
+/**
+ * A start for dof between whole numbers: the cubic in 1/dof through the four whole ones about it, which are remembered.
+ * Close enough that one step is all it takes.
+ */
+function between(tail: number, dof: number): number {
+  const n = Math.floor(dof)
+  const v = 1 / dof
+  const a = 1 / (n - 1)
+  const b = 1 / n
+  const c = 1 / (n + 1)
+  const d = 1 / (n + 2)
+  const va = v - a
+  const vb = v - b
+  const vc = v - c
+  const vd = v - d
+  return (
+    (studentUpper(tail, n - 1) * vb * vc * vd) / ((a - b) * (a - c) * (a - d)) +
+    (studentUpper(tail, n) * va * vc * vd) / ((b - a) * (b - c) * (b - d)) +
+    (studentUpper(tail, n + 1) * va * vb * vd) / ((c - a) * (c - b) * (c - d)) +
+    (studentUpper(tail, n + 2) * va * vb * vc) / ((d - a) * (d - b) * (d - c))
+  )
+}
 
 /** Abramowitz and Stegun 26.7.5 in v = 1/dof, one term more. */
 function expansion(z: number, v: number): number {
@@ -38,10 +73,10 @@ function expansion(z: number, v: number): number {
  * Steps on the tail by the series of the quantile function to the third power of e (the error left is of its fourth),
  * until e is so small that the next step would not be seen.
  */
-function polish(start: number, tail: number, dof: number): number {
+function polish(from: number, tail: number, dof: number): number {
   const a = dof / 2
   const ratio = halfGammaRatio(a) / SQRTPI
-  let t = start
+  let t = from
   for (let i = 0; i < 30; i++) {
     const t2 = t * t
     const r = t2 / dof

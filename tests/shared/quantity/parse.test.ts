@@ -129,6 +129,9 @@ describe('arithmetic', () => {
     ['(1).constructor', /not read here|not arithmetic/],
     ['2 * random()', /not read here/],
     ['2 * i', /not read here/],
+    ['5 mod 3 * 2', /not read here|not arithmetic/],
+    ['3! * 2', /not read here/],
+    ['2 * 3 > 1', /not read here/],
     [`${'1 + '.repeat(60)}1`, /200 characters/],
   ])('%j is refused', async (text, words) => {
     await expect(calc(text, 'V')).rejects.toThrow(words)

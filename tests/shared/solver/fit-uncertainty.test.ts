@@ -135,6 +135,10 @@ describe('uncertainty of the line', () => {
     expect(line.standardUncertaintyAt(0)).toBeCloseTo(std.offsetV, 15)
     expect(line.errorUncertaintyAt(0)).toBeCloseTo(result.fit.expandedUncertainty!.offsetV, 12)
     const bare = errorLine(design, fitPoints(design, points, { instrument: null }))
+    const { offsetV, gainPpm, covarianceVPpm } = fitPoints(design, points, { instrument: null }).fit
+      .standardUncertainty!
+    const at7 = offsetV ** 2 + (2 * 7 * covarianceVPpm) / 1e6 + (49 * gainPpm ** 2) / 1e12
+    expect(bare.standardUncertaintyAt(7)! ** 2 / at7).toBeCloseTo(1, 9)
     const added = line.standardUncertaintyAt(7)! ** 2 - bare.standardUncertaintyAt(7)! ** 2
     expect(added / (49 * 3e-12 + 4e-12 / 3)).toBeCloseTo(1, 6)
     expect(line.predictedErrorAt(3)).toBe(null)

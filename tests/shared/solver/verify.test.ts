@@ -86,6 +86,8 @@ describe('verification', () => {
     expect(good.tur).toBeCloseTo(1 / (1.959963984540054 * 0.1), 9)
     expect(good.notes).toEqual([])
     expect(verifyPoints(judged('guarded'), [at(0, 0, 0.2)]).notes).toEqual(['tur-under-4'])
+    // T/U of 3.4 stands between three and four.
+    expect(verifyPoints(judged('guarded'), [at(0, 0, 0.15)]).notes).toEqual(['tur-under-4'])
     const wide = verifyPoints(judged('guarded'), [at(0, 0, 0.6)])
     expect(wide.notes).toEqual(['tur-under-4', 'guard-band-too-wide'])
     expect(wide.outcome).toBe('conditional-pass')
