@@ -1,6 +1,7 @@
 import { type Design, designDocument } from '../../shared/contract/design.ts'
 import type { Point } from '../../shared/contract/point.ts'
-import { codesOn, prepareTrim, type TrimChannel } from '../../shared/solver/codes.ts'
+import { codesOn } from '../../shared/solver/codes.ts'
+import { prepareTrim, type TrimChannel } from '../../shared/solver/prepare-trim.ts'
 import type { Applied } from '../../shared/solver/types.ts'
 import { verifyPoints } from '../../shared/solver/verify.ts'
 import type { DemoRandom } from './random.ts'

@@ -1,7 +1,7 @@
 import type { Point } from '../../shared/contract/point.ts'
 import { appliedVoltages } from '../../shared/solver/applied.ts'
-import type { TrimChannel } from '../../shared/solver/codes.ts'
 import { idealV } from '../../shared/solver/converter.ts'
+import type { TrimChannel } from '../../shared/solver/prepare-trim.ts'
 import type { Applied, Which } from '../../shared/solver/types.ts'
 import type { DemoRandom } from './random.ts'
 

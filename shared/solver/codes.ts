@@ -1,9 +1,8 @@
-import { OgeeError } from '../errors.ts'
 import { prepareTrimmer, type Trimmers } from './adjuster.ts'
 import { appliedVoltages } from './applied.ts'
-import { type Channel, prepareChannel } from './channel.ts'
 import { type FitOptions, type Fitted, fitChannel } from './fit.ts'
 import { learnEffects, type PreviousPass } from './learn.ts'
+import { prepareTrim, type TrimChannel } from './prepare-trim.ts'
 import { sharedLines } from './shared-range.ts'
 import { trimOf } from './trim.ts'
 import type { Applied, CodesResult, Design, FitResult, MeasuredPoint } from './types.ts'
@@ -17,9 +16,6 @@ export type CodesOptions = FitOptions & {
   /** Points of the ranges that share this one's hardware, by range id, when they were measured too. */
   sharedPoints?: Readonly<Record<string, readonly MeasuredPoint[]>> | undefined
 }
-
-/** A channel with its adjusters, ready for any number of units. */
-export type TrimChannel = { channel: Channel; trimmers: Trimmers }
 
 /**
  * The trim codes of one measured unit, channel and range.
@@ -39,24 +35,6 @@ export function computeCodes(
   options: CodesOptions = {},
 ): CodesResult {
   return codesOn(prepareTrim(design, options.rangeId), points, options)
-}
-
-/**
- * Checks a design's range and adjusters once, so that many units can be solved without doing it again.
- * @throws as `computeCodes`, for the design's part
- * @example codesOn(prepareTrim(unipolar18), points).trim.verdict // 'ok'
- */
-export function prepareTrim(design: Design, rangeId?: string): TrimChannel {
-  const channel = prepareChannel(design, rangeId)
-  const trimmers = {
-    gain: prepareTrimmer(channel, 'gain'),
-    offset: prepareTrimmer(channel, 'offset'),
-  }
-  if (trimmers.gain === null && trimmers.offset === null) {
-    const message = 'The design has neither a gain nor an offset adjuster, so there are no codes to find.'
-    throw new OgeeError('no-adjuster', message, { errors: [{ path: '/adjusters', message }] })
-  }
-  return { channel, trimmers }
 }
 
 /** As `computeCodes`, on a prepared channel (`options.rangeId` is not read). */

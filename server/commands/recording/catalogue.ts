@@ -1,5 +1,5 @@
 import { type Design, designDocument } from '../../../shared/contract/design.ts'
-import { prepareTrim, type TrimChannel } from '../../../shared/solver/codes.ts'
+import { prepareTrim, type TrimChannel } from '../../../shared/solver/prepare-trim.ts'
 import type { Sql } from '../../db/sql.ts'
 import type { RevisionState } from '../../models/design.ts'
 

@@ -1,7 +1,7 @@
 import { OgeeError } from '../../errors.ts'
 import type { Trimmer, Trimmers } from '../adjuster.ts'
 import type { Channel } from '../channel.ts'
-import { prepareTrim } from '../codes.ts'
+import { prepareTrim } from '../prepare-trim.ts'
 import type { PerAdjuster } from '../types.ts'
 import { SOLVER_VERSION } from '../version.ts'
 import { judgeAvailable } from './available.ts'

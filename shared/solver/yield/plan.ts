@@ -1,6 +1,6 @@
 import { OgeeError } from '../../errors.ts'
-import { prepareTrim, type TrimChannel } from '../codes.ts'
 import { idealV, limitInVolts } from '../converter.ts'
+import { prepareTrim, type TrimChannel } from '../prepare-trim.ts'
 import { budgetTerms } from '../sizing/budget.ts'
 import type { GainLine, OffsetLine, SizingDesign } from '../sizing/types.ts'
 

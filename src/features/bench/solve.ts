@@ -1,10 +1,8 @@
 import type { Design } from '../../../shared/contract/design.ts'
-import type { Point } from '../../../shared/contract/point.ts'
 import { isOgeeError, type OgeeError } from '../../../shared/errors.ts'
 import { type Channel, prepareChannel } from '../../../shared/solver/channel.ts'
-import { codesOn, prepareTrim, type TrimChannel } from '../../../shared/solver/codes.ts'
-import { fitChannel } from '../../../shared/solver/fit.ts'
 import type { PreviousPass } from '../../../shared/solver/learn.ts'
+import { prepareTrim, type TrimChannel } from '../../../shared/solver/prepare-trim.ts'
 import type { Applied, FitResult, TrimResult } from '../../../shared/solver/types.ts'
 
 /** A design's range made ready once; `trim` is null, with the reason, when there are no codes to find. */
@@ -29,21 +27,3 @@ export type Solved =
   | { is: 'refused'; error: OgeeError }
 
 export type SolveOptions = { applied: Applied | null; previous: PreviousPass | null }
-
-/** Fit and codes of what is measured. Without knowing what was applied there is a fit and no code. */
-export function solve(bench: Bench, points: readonly Point[], options: SolveOptions): Solved {
-  if (points.length === 0) return { is: 'waiting' }
-  try {
-    if (bench.trim === null || options.applied === null) {
-      return { is: 'answer', answer: { fit: fitChannel(bench.channel, points).result, trim: null } }
-    }
-    const { fit, trim } = codesOn(bench.trim, points, {
-      applied: options.applied,
-      ...(options.previous ? { learned: options.previous } : {}),
-    })
-    return { is: 'answer', answer: { fit, trim } }
-  } catch (error) {
-    if (!isOgeeError(error)) throw error
-    return error.code === 'too-few-codes' ? { is: 'waiting' } : { is: 'refused', error }
-  }
-}

@@ -6,12 +6,12 @@ import type { PreviousPass } from '../../../shared/solver/learn.ts'
 import type { Applied, VerifyResult } from '../../../shared/solver/types.ts'
 import { buildViews } from './build-views.ts'
 import type { Row } from './grid-state.ts'
-import { barsOf, judge } from './judge.ts'
 import { cellProblems } from './problems.ts'
 import { readRows } from './read-cells.ts'
 import { farProblems, type RereadUnit, rereadRows, rereadUnit } from './reread.ts'
-import { type Answer, type Bench, solve } from './solve.ts'
+import type { Answer, Bench, Solved } from './solve.ts'
 import { useArithmetic } from './use-arithmetic.ts'
+import { useSolver } from './use-solver.ts'
 
 type Asked = {
   design: Design
@@ -28,9 +28,10 @@ export function useAnswer(asked: Asked) {
   const { design, bench, rows, applied, previous, refused } = asked
   const arithmetic = useArithmetic()
   const read = useMemo(() => readRows(rows, arithmetic), [rows, arithmetic])
+  const solver = useSolver(read.points.length > 0)
   const solved = useMemo(
-    () => solve(bench, read.points, { applied, previous }),
-    [bench, read.points, applied, previous],
+    (): Solved => solver?.solve(bench, read.points, { applied, previous }) ?? { is: 'waiting' },
+    [solver, bench, read.points, applied, previous],
   )
   const problems = useMemo(() => {
     const own = solved.is === 'refused' ? cellProblems(solved.error.errors, read.rowOf).cells : []
@@ -40,15 +41,15 @@ export function useAnswer(asked: Asked) {
   const isBusy = read.isPending
   const now = useMemo(
     () =>
-      solved.is === 'answer' && !isWrong && !isBusy
-        ? { answer: solved.answer, points: read.points, bars: barsOf(design, bench, read.points) }
+      solver && solved.is === 'answer' && !isWrong && !isBusy
+        ? { answer: solved.answer, points: read.points, bars: solver.barsOf(design, bench, read.points) }
         : null,
-    [solved, isWrong, isBusy, read.points, design, bench],
+    [solver, solved, isWrong, isBusy, read.points, design, bench],
   )
   const { good, isStale } = useLastGood(now, solved.is === 'waiting' && !isWrong && !isBusy)
   const verify = useMemo(
-    () => (isWrong ? null : judge(design, bench, read.points)),
-    [isWrong, design, bench, read],
+    () => (isWrong ? null : (solver?.judge(design, bench, read.points) ?? null)),
+    [solver, isWrong, design, bench, read],
   )
   const views = useMemo(
     () =>

@@ -1,22 +1,25 @@
-import { useEffect, useRef, useState } from 'react'
+import { lazy, Suspense, useEffect, useRef, useState } from 'react'
 import type { PointGroup } from '../../../shared/points/group.ts'
 import type { PointsCsv } from '../../../shared/points/parse-csv.ts'
 import { voltDecimals } from '../../features/bench/build-views.ts'
-import { IdealDialog } from '../../features/bench/ideal-dialog.tsx'
-import { pasteAction } from '../../features/bench/paste.ts'
-import { readPointsFile, rowsOf } from '../../features/bench/points-file.ts'
-import { ChooseMeasurement, FileTrouble } from '../../features/bench/points-file-dialog.tsx'
+import { loadPaste, loadPointsFile } from '../../features/bench/on-demand.ts'
+import { ChooseMeasurement, FileTrouble, IdealDialog } from '../../features/bench/panels.tsx'
+import { useLatest } from '../../features/bench/use-latest.ts'
 import { dropHandlers, useLoosePaste } from '../../features/bench/use-loose-paste.ts'
+import { UnmeasuredPlots } from '../../features/plot/unmeasured-plots.tsx'
 import { BenchFields } from './bench-fields.tsx'
 import { BenchHead } from './bench-head.tsx'
 import { BenchNotices } from './bench-notices.tsx'
-import { BenchPlots } from './bench-plots.tsx'
 import type { BenchPageProps, Incoming } from './bench-props.ts'
+import { plotRange } from './plot-props.ts'
 import { StepCodes } from './step-codes.tsx'
 import { StepFound } from './step-found.tsx'
 import { StepNext } from './step-next.tsx'
 import { useBenchActs } from './use-bench-acts.ts'
 import { useBenchPage } from './use-bench-page.ts'
+
+/** Plots and their scales come with the first line, and stay out of the first load. */
+const BenchPlots = lazy(() => import('./bench-plots.tsx'))
 
 /** One measurement: three steps from left to right as the hand works, plots below. */
 export function BenchPage(props: BenchPageProps) {
@@ -28,9 +31,13 @@ export function BenchPage(props: BenchPageProps) {
     toggleTable: () => setTable((shown) => !shown),
     showIdeal: () => setIdealShown(true),
   })
+  const grid = useLatest(page.grid)
   useLoosePaste((text) => {
-    const action = page.isFixed ? null : pasteAction(page.grid, text)
-    if (action) page.dispatch(action)
+    if (page.isFixed) return
+    void loadPaste().then(({ pasteAction }) => {
+      const action = pasteAction(grid.current, text)
+      if (action) page.dispatch(action)
+    })
   })
   const { bench, revision, range } = props
   const { answer } = page
@@ -45,16 +52,7 @@ export function BenchPage(props: BenchPageProps) {
         <StepCodes {...props} page={page} />
         <StepNext {...props} page={page} acts={acts} />
       </div>
-      <BenchPlots
-        design={page.document}
-        bench={bench}
-        points={answer.plotted?.points ?? []}
-        answer={answer.answer}
-        bars={answer.plotted?.bars ?? null}
-        chain={page.chain}
-        asTable={asTable}
-        onTable={setTable}
-      />
+      <Plots {...props} page={page} asTable={asTable} onTable={setTable} />
       {idealShown ? (
         <IdealDialog
           design={revision.document}
@@ -68,11 +66,37 @@ export function BenchPage(props: BenchPageProps) {
         <ChooseMeasurement
           file={file.chosen.csv}
           name={file.chosen.name}
-          onChoose={file.take}
+          onChoose={(group) => void file.take(group)}
           onClose={file.dismiss}
         />
       ) : null}
     </div>
+  )
+}
+
+type PlotsProps = BenchPageProps & {
+  page: ReturnType<typeof useBenchPage>
+  asTable: boolean
+  onTable: (asTable: boolean) => void
+}
+
+function Plots({ page, bench, asTable, onTable }: PlotsProps) {
+  const { answer, chain } = page
+  const unmeasured = <UnmeasuredPlots range={plotRange(bench.channel.range)} />
+  if (!answer.answer && chain.length === 0) return unmeasured
+  return (
+    <Suspense fallback={unmeasured}>
+      <BenchPlots
+        design={page.document}
+        bench={bench}
+        points={answer.plotted?.points ?? []}
+        answer={answer.answer}
+        bars={answer.plotted?.bars ?? null}
+        chain={chain}
+        asTable={asTable}
+        onTable={onTable}
+      />
+    </Suspense>
   )
 }
 
@@ -87,8 +111,9 @@ function usePointsFile(props: BenchPageProps, page: ReturnType<typeof useBenchPa
     setTrouble(null)
     setChosen(null)
   }
-  const take = (group: PointGroup) => {
+  const take = async (group: PointGroup) => {
     dismiss()
+    const { rowsOf } = await loadPointsFile()
     const rows = rowsOf(group, revision.document)
     const hasU = rows.some((row) => row.u !== '')
     const place = {
@@ -109,11 +134,14 @@ function usePointsFile(props: BenchPageProps, page: ReturnType<typeof useBenchPa
   }
   const open = (file: File) => {
     dismiss()
-    readPointsFile(file, revision.document).then((csv) => {
+    const read = async () => {
+      const { readPointsFile } = await loadPointsFile()
+      const csv = await readPointsFile(file, revision.document)
       const [first, second] = csv.groups
-      if (first && !second && csv.problems.length === 0) take(first)
+      if (first && !second && csv.problems.length === 0) await take(first)
       else setChosen({ csv, name: file.name })
-    }, setTrouble)
+    }
+    read().catch(setTrouble)
   }
   const { dispatch } = page
   const arrived = useRef<Incoming | null>(null)

@@ -13,7 +13,7 @@ import { ReadingsPlot } from '../../features/plot/readings-plot.tsx'
 import { ResidualStrip } from '../../features/plot/residual-strip.tsx'
 import { barsText, plotLine, plotPoints, plotRange, reachLines } from './plot-props.ts'
 
-export type BenchPlotsProps = {
+type BenchPlotsProps = {
   design: Design
   bench: Bench
   points: readonly Point[]
@@ -25,7 +25,7 @@ export type BenchPlotsProps = {
 }
 
 /** Below the steps, on the same two halves: as found and as left, or what explains an answer that is none. */
-export function BenchPlots(props: BenchPlotsProps) {
+export default function BenchPlots(props: BenchPlotsProps) {
   const { answer, chain } = props
   const isFirst = chain.length === 0
   const verdict = isFirst ? answer?.trim?.verdict : undefined

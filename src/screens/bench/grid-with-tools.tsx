@@ -4,11 +4,11 @@ import { FlagList } from '../../features/bench/flag-list.tsx'
 import { flagSentences, noteSentences } from '../../features/bench/flag-sentences.ts'
 import { copiedText } from '../../features/bench/grid-copy.ts'
 import { GridTools } from '../../features/bench/grid-tools.tsx'
-import { decimalCommaAction, pasteAction } from '../../features/bench/paste.ts'
+import { loadPaste, loadPointsFile } from '../../features/bench/on-demand.ts'
+import { ReadingsDialog } from '../../features/bench/panels.tsx'
 import { PasteReport } from '../../features/bench/paste-report.tsx'
-import { savePoints } from '../../features/bench/points-file.ts'
 import { PointsGrid } from '../../features/bench/points-grid.tsx'
-import { ReadingsDialog } from '../../features/bench/readings-dialog.tsx'
+import { useLatest } from '../../features/bench/use-latest.ts'
 import { NumberText } from '../../ui/number-text.tsx'
 import type { StepProps } from './step-props.ts'
 
@@ -17,14 +17,22 @@ export function GridWithTools(props: StepProps) {
   const { page, acts, search, channel, range } = props
   const { grid, dispatch, answer, isFixed } = page
   const [readingsOf, setReadingsOf] = useState<number | null>(null)
-  const paste = (text: string) => {
-    const action = pasteAction(grid, text)
+  const latest = useLatest(grid)
+  const paste = async (text: string) => {
+    const { pasteAction } = await loadPaste()
+    const action = pasteAction(latest.current, text)
+    if (action) dispatch(action)
+  }
+  const takeDecimalCommas = async () => {
+    const { decimalCommaAction } = await loadPaste()
+    const action = decimalCommaAction(latest.current)
     if (action) dispatch(action)
   }
   const reread = () => {
     if (answer.rereadAs) dispatch({ do: 'rows', rows: answer.reread(answer.rereadAs) })
   }
-  const save = () =>
+  const save = async () => {
+    const { savePoints } = await loadPointsFile()
     savePoints(
       {
         ...(search.unit === null ? {} : { unit: search.unit }),
@@ -36,6 +44,7 @@ export function GridWithTools(props: StepProps) {
       },
       `${search.unit ?? 'points'}-pass-${page.pass}`,
     )
+  }
   return (
     <>
       <PointsGrid
@@ -45,7 +54,7 @@ export function GridWithTools(props: StepProps) {
         views={answer.views}
         isFixed={isFixed}
         copyText={(state) => copiedText(state, answer.views)}
-        onPaste={paste}
+        onPaste={(text) => void paste(text)}
         onScan={acts.changeUnit}
       />
       <IdealAtFocus {...props} />
@@ -54,7 +63,7 @@ export function GridWithTools(props: StepProps) {
           state={grid}
           dispatch={dispatch}
           onReadings={() => setReadingsOf(grid.focus.row)}
-          onSave={save}
+          onSave={() => void save()}
           onDiscard={page.startAnew}
           canSave={answer.read.points.length > 0}
           canDiscard={page.hasReadings}
@@ -63,10 +72,7 @@ export function GridWithTools(props: StepProps) {
       {grid.report ? (
         <PasteReport
           report={grid.report}
-          onDecimalCommas={() => {
-            const action = decimalCommaAction(grid)
-            if (action) dispatch(action)
-          }}
+          onDecimalCommas={() => void takeDecimalCommas()}
           onDismiss={() => dispatch({ do: 'dismiss-report' })}
         />
       ) : null}

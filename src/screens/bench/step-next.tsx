@@ -1,6 +1,5 @@
 import { noteSentences } from '../../features/bench/flag-sentences.ts'
-import { ShortfallTable } from '../../features/bench/shortfall-table.tsx'
-import { SuspectPanel } from '../../features/bench/suspect-panel.tsx'
+import { ShortfallTable, SuspectPanel } from '../../features/bench/panels.tsx'
 import { refusedAt } from '../../features/bench/use-recording.ts'
 import { effectSentences, outcomeSentence, passName, predictionSentence } from '../../features/bench/words.ts'
 import { Button } from '../../ui/button.tsx'

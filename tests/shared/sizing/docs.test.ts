@@ -1,6 +1,6 @@
 import { readFileSync } from 'node:fs'
 import { describe, expect, test } from 'vitest'
-import { prepareTrim } from '../../../shared/solver/codes.ts'
+import { prepareTrim } from '../../../shared/solver/prepare-trim.ts'
 import { type NetworkRequest, wantedOf } from '../../../shared/solver/network-synthesis/request.ts'
 import { budgetTerms } from '../../../shared/solver/sizing/budget.ts'
 import { ladderOf } from '../../../shared/solver/sizing/ladder.ts'

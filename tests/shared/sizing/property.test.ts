@@ -1,5 +1,6 @@
 import { describe, expect, test } from 'vitest'
-import { codesOn, prepareTrim, type TrimChannel } from '../../../shared/solver/codes.ts'
+import { codesOn } from '../../../shared/solver/codes.ts'
+import { prepareTrim, type TrimChannel } from '../../../shared/solver/prepare-trim.ts'
 import { idealV } from '../../../shared/solver/converter.ts'
 import { nodeV } from '../../../shared/solver/network.ts'
 import { sizeDesign } from '../../../shared/solver/sizing/size.ts'

@@ -1,8 +1,9 @@
 import { readFileSync } from 'node:fs'
 import { describe, expect, test } from 'vitest'
-import { computeCodes, prepareTrim } from '../../../shared/solver/codes.ts'
+import { computeCodes } from '../../../shared/solver/codes.ts'
 import { fitChannel } from '../../../shared/solver/fit.ts'
 import { takePoints } from '../../../shared/solver/points.ts'
+import { prepareTrim } from '../../../shared/solver/prepare-trim.ts'
 import { exampleDesign, examplePoints } from '../../support/solver-fixtures.ts'
 
 /** Runs the `@example EXPRESSION // EXPECTED` of every docstring in shared/solver, quantity and points. */

@@ -1,6 +1,7 @@
 import { act, fireEvent, screen, within } from '@testing-library/react'
 import type { RecordRequest } from '../../../shared/contract/record.ts'
 import { computeCodes } from '../../../shared/solver/codes.ts'
+import { loadPaste } from '../../../src/features/bench/on-demand.ts'
 import { design, record, recordId } from '../../support/web-fixtures.ts'
 import { type FakeServer, fakeServer, json } from '../../support/web-server.ts'
 
@@ -76,7 +77,11 @@ export async function column(name: string): Promise<string[]> {
 export async function paste(text: string, row = 0, name = 'measured'): Promise<void> {
   const at = await cell(row, name)
   act(() => at.focus())
-  fireEvent.paste(at, { clipboardData: { getData: () => text } })
+  await act(async () => {
+    fireEvent.paste(at, { clipboardData: { getData: () => text } })
+    // What reads blocks, and what solves, loads with the first of them.
+    await Promise.all([loadPaste(), import('../../../src/features/bench/solving.ts')])
+  })
 }
 
 export const pasteBlock = (values: readonly string[]) => paste(`${values.join('\r\n')}\r\n`)

@@ -1,0 +1,125 @@
+import { execFile } from 'node:child_process'
+import { join } from 'node:path'
+import { promisify } from 'node:util'
+import { afterAll, beforeAll, describe, expect, test } from 'vitest'
+import { openPage } from '../support/browser.ts'
+import { openStage, readings, type Stage } from './stage.ts'
+
+const run = promisify(execFile)
+const cli = join(import.meta.dirname, '../../dist/cli/ogee.mjs')
+const points =
+  'code,measured\n0,1.3e-6\n65536,2.4994998\n131072,4.9989783\n196608,7.4984718\n262143,9.9979342\n'
+
+let stage: Stage
+beforeAll(async () => {
+  stage = await openStage()
+})
+afterAll(() => stage.close())
+
+describe('from measured points to recorded codes', () => {
+  test('an engineer signs in, pastes five readings, records, and finds the record with its place in the ledger', async () => {
+    const { page, complaints, context } = await openPage(stage.browser)
+    // The page that was wanted comes back after sign-in.
+    await page.goto(`${stage.server.url}/bench?design=DBS-A&channel=1`)
+    await stage.signIn(page, 'engineer')
+    await page.getByRole('grid').waitFor()
+
+    await page.getByLabel('unit', { exact: true }).fill('E2E-0001')
+    await page.keyboard.press('Enter')
+    await page.evaluate((text) => navigator.clipboard.writeText(text), readings.join('\r\n'))
+    await page.keyboard.press('Control+V')
+    await page.getByText('2593', { exact: true }).first().waitFor()
+    await page.getByText('2048', { exact: true }).first().waitFor()
+    await page.getByText('0xA21', { exact: true }).first().waitFor()
+    await page.getByText('Loading codes moves a live output.').first().waitFor()
+
+    await page.keyboard.press('Control+Enter')
+    const said = page.getByText(/Recorded as .* at \d\d:\d\d:\d\d/).first()
+    await said.waitFor()
+    await page
+      .getByText(/In the ledger since \d\d:\d\d:\d\d/)
+      .first()
+      .waitFor({ timeout: 20_000 })
+    expect(new URL(page.url()).searchParams.get('unit')).toBe('E2E-0001')
+
+    await page.goto(`${stage.server.url}/history?unit=E2E-0001`)
+    await page.getByRole('link', { name: /\d/ }).filter({ hasText: /\d/ }).first().waitFor()
+    await page.locator('tbody tr').first().getByRole('link').first().click()
+    await page.getByRole('heading', { name: /E2E-0001/ }).waitFor()
+    expect(await page.locator('main').textContent()).toMatch(/2593/)
+    expect(complaints).toEqual([])
+    await context.close()
+  })
+
+  test('a shell script with a token gets the same codes, and both records are in History', async () => {
+    const child = run(
+      process.execPath,
+      [
+        cli,
+        'trim',
+        '--design',
+        'DBS-A',
+        '--unit',
+        'E2E-0002',
+        '--channel',
+        '1',
+        '--applied',
+        'neutral',
+        '--points',
+        '-',
+        '--format',
+        'json',
+      ],
+      {
+        env: {
+          PATH: process.env.PATH ?? '',
+          HOME: stage.server.dataDir,
+          OGEE_URL: stage.server.url,
+          OGEE_TOKEN: stage.server.accounts().token,
+        },
+      },
+    )
+    child.child.stdin?.end(points)
+    const { stdout } = await child
+    const record = JSON.parse(stdout) as {
+      unit: string
+      result: { trim: { codes: unknown }; fit: { expandedUncertainty: { gainPpm: number } } }
+    }
+    expect(record.result.trim.codes).toEqual({ gain: 2593, offset: 2048 })
+    expect(record.result.fit.expandedUncertainty.gainPpm).toBeGreaterThan(0)
+
+    const { page, context } = await openPage(stage.browser)
+    await page.goto(`${stage.server.url}/history`)
+    await stage.signIn(page, 'auditor')
+    await page.getByText('E2E-0001').first().waitFor()
+    await page.getByText('E2E-0002').first().waitFor()
+    await context.close()
+  })
+
+  test('a killed tab loses nothing typed, and an ended session keeps it too', async () => {
+    const { page, context } = await openPage(stage.browser)
+    await page.goto(`${stage.server.url}/bench?design=DBS-A&channel=2&unit=E2E-0003`)
+    await stage.signIn(page, 'operator')
+    await page.getByRole('grid').waitFor()
+    await page.locator('[data-cell="0-measured"]').click()
+    await page.keyboard.type('1.10 uV')
+    await page.keyboard.press('Enter')
+    // At most a second of typing may be lost (U7).
+    await page.waitForTimeout(1200)
+    const address = page.url()
+    await page.close()
+    const again = await context.newPage()
+    await again.goto(address)
+    await expectCell(again, '0-measured', /1\.10 uV/)
+    await context.clearCookies()
+    await again.getByRole('link', { name: /History/ }).click()
+    await again.getByText('Your session has ended. Sign in here; nothing typed is lost.').waitFor()
+    await context.close()
+  })
+})
+
+async function expectCell(page: import('playwright-core').Page, place: string, text: RegExp): Promise<void> {
+  const cell = page.locator(`[data-cell="${place}"]`)
+  await cell.waitFor()
+  expect(await cell.textContent()).toMatch(text)
+}
