@@ -83,10 +83,10 @@ async function problemOf(response: Response): Promise<OgeeError> {
       `The server answered ${response.status} in a form that is not ours.`,
     )
   }
-  const { code, detail, errors, facts } = parsed.data
+  const { code, detail, errors, facts, instance } = parsed.data
   return new OgeeError(code, detail, {
     ...(errors ? { errors } : {}),
-    facts: { ...facts, ...retryAfter(response) },
+    facts: { ...facts, ...(instance === undefined ? {} : { instance }), ...retryAfter(response) },
   })
 }
 

@@ -39,6 +39,8 @@ function initialise(dir) {
       '--no-defaults',
       ...userArgument,
       `--datadir=${half}`,
+      // Installs side by side would meet in the shared folder for temporary files.
+      `--tmpdir=${dir}`,
       '--auth-root-authentication-method=socket',
       `--auth-root-socket-user=${userInfo().username}`,
       '--skip-test-db',

@@ -1,5 +1,6 @@
-import { Suspense, useEffect, useRef, useState } from 'react'
+import { lazy, Suspense, useEffect, useRef, useState } from 'react'
 import { Outlet, useLocation, useNavigate } from 'react-router-dom'
+import { useOutbox } from '../features/bench/outbox.ts'
 import { useConnection } from '../lib/connection.ts'
 import { installKeys, useKeys } from '../lib/keys.ts'
 import { paths } from '../lib/paths.ts'
@@ -10,12 +11,16 @@ import { KeysDialog } from './keys-dialog.tsx'
 import { Rail } from './rail.tsx'
 import { SessionDialog } from './session-dialog.tsx'
 
+const OutboxSender = lazy(() => import('./outbox-sender.tsx'))
+
 /** The frame round every page: rail, main part, banner of an outage, dialog of an ended session. */
 export default function Frame() {
   const { pathname } = useLocation()
   const { sessionEnded } = useConnection()
   const [keysShown, setKeysShown] = useState(false)
   const main = useRef<HTMLElement>(null)
+  // Bench sends what waits itself, and tells its own form how it ended.
+  const hasWaiting = useOutbox().length > 0 && pathname !== paths.bench
   useFrameKeys(() => setKeysShown(true))
   useEffect(installKeys, [])
   useFocusOnNewPage(main, pathname)
@@ -41,6 +46,11 @@ export default function Frame() {
           </Suspense>
         </ErrorBoundary>
       </main>
+      {hasWaiting ? (
+        <Suspense fallback={null}>
+          <OutboxSender />
+        </Suspense>
+      ) : null}
       {sessionEnded ? <SessionDialog /> : null}
       {keysShown ? <KeysDialog onClose={() => setKeysShown(false)} /> : null}
     </div>

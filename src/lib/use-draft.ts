@@ -18,6 +18,7 @@ export function useDraft<T>(
 
   const flush = useCallback(() => {
     clearTimeout(timer.current)
+    timer.current = undefined
     if (pending.current) writeStored(pending.current.name, pending.current.value)
     pending.current = null
   }, [])
@@ -26,14 +27,15 @@ export function useDraft<T>(
     (next: T) => {
       setValue(next)
       pending.current = { name, value: next }
-      clearTimeout(timer.current)
-      timer.current = setTimeout(flush, writeAfterMs)
+      // Not begun anew by each key: steady typing is written too.
+      timer.current ??= setTimeout(flush, writeAfterMs)
     },
     [name, flush],
   )
 
   const discard = useCallback(() => {
     clearTimeout(timer.current)
+    timer.current = undefined
     pending.current = null
     writeStored(name, null)
     setValue(initial)

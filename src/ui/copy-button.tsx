@@ -18,14 +18,16 @@ export function CopyButton({
   children?: string
 }) {
   return (
-    <Button
-      look={look}
-      // What is seen is part of what is spoken (WCAG 2.5.3).
-      aria-label={children === 'copy' ? `copy ${what}` : undefined}
-      onClick={() => void copyText(text, `Copied ${what}.`)}
-    >
-      {children}
+    <>
+      <Button
+        look={look}
+        // What is seen is part of what is spoken (WCAG 2.5.3); the key beside it is not part of the name.
+        aria-label={children === 'copy' ? `copy ${what}` : undefined}
+        onClick={() => void copyText(text, `Copied ${what}.`)}
+      >
+        {children}
+      </Button>
       {hint ? <KeyHint keys={hint} /> : null}
-    </Button>
+    </>
   )
 }
