@@ -71,6 +71,7 @@ describe('effects learned from a move (secant)', () => {
       plainDesign({ measurement: { instrument: { gainPpm: 5, offsetV: 1e-5 } } }),
     )
     expect(metered[1].trim.effects.gain!.tolerance).toBeCloseTo(second.trim.effects.gain!.tolerance, 8)
+    expect(metered[1].trim.effects.offset!.tolerance).toBeCloseTo(second.trim.effects.offset!.tolerance, 8)
   })
 
   test('a factor outside its tolerance is flagged effect-off and not used', () => {
