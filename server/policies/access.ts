@@ -7,7 +7,11 @@ import type { Principal } from '../http/principal.ts'
  * What belongs to others within an allowed call is the business of `may-see.ts`.
  */
 export function requireAccess(access: Access, principal: Principal | null): void {
-  if (access === 'open') return
+  if (access === 'open') {
+    // What is open and yet looks at the caller is about sessions, which tokens do not have.
+    if (principal?.kind !== 'token') return
+    throw new OgeeError('insufficient-scope', 'That is for people; no token can do it.')
+  }
   if (!principal)
     throw new OgeeError('sign-in-required', 'Sign in, or send a token as Authorization: Bearer.')
   if (principal.kind === 'token') {
