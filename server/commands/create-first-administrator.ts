@@ -1,6 +1,7 @@
 import { OgeeError } from '../../shared/errors.ts'
 import type { Sql } from '../db/sql.ts'
 import { transaction } from '../db/transaction.ts'
+import { within } from '../http/deadline.ts'
 import type { Deps } from '../http/deps.ts'
 import { hashPassword } from '../http/passwords.ts'
 import type { PersonPrincipal } from '../http/principal.ts'
@@ -23,10 +24,10 @@ export async function createFirstAdministrator(
   deps: Pick<Deps, 'database' | 'now' | 'notifyLedger'>,
   asked: { name: string; email: string; password: string },
 ): Promise<PersonPrincipal> {
-  if (!(await isSetupOpen(deps.database.sql))) throw closed()
+  if (!(await within(isSetupOpen(deps.database.sql)))) throw closed()
   requireGoodPassword(asked.password, asked)
   const passwordHash = await hashPassword(asked.password)
-  const person = await transaction(deps.database, async (sql) => {
+  const entering = transaction(deps.database, async (sql) => {
     await lockHead(sql)
     if (!(await isSetupOpen(sql))) throw closed()
     return createPerson(deps.database.models, sql, {
@@ -38,6 +39,7 @@ export async function createFirstAdministrator(
       by: 'set-up',
     })
   })
+  const person = await within(entering)
   deps.notifyLedger()
   return person
 }

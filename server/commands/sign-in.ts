@@ -1,4 +1,5 @@
 import type { Database } from '../db/connection.ts'
+import { within } from '../http/deadline.ts'
 import { checkPassword } from '../http/passwords.ts'
 import type { PersonPrincipal } from '../http/principal.ts'
 import { foldEmail } from '../models/person.ts'
@@ -11,7 +12,8 @@ export async function signIn(
   database: Database,
   { email, password }: { email: string; password: string },
 ): Promise<PersonPrincipal | null> {
-  const found = (await database.models.people.findOne({ where: { emailFolded: foldEmail(email) } }))?.get()
+  const asked = database.models.people.findOne({ where: { emailFolded: foldEmail(email) } })
+  const found = (await within(asked))?.get()
   const person = found?.disabledAt === null ? found : null
   const right = await checkPassword(person?.passwordHash ?? null, password)
   if (!person || !right) return null

@@ -1,14 +1,23 @@
 import { hash, verify } from '@node-rs/argon2'
+import { OgeeError } from '../../shared/errors.ts'
 
 /** OWASP's recommendation with room: argon2id (the library's default kind), 64 MiB, three passes, one lane (S7). */
 const parameters = { memoryCost: 65_536, timeCost: 3, parallelism: 1 }
 /** Each takes 64 MiB and a thread; more at once would starve everything else. */
 const atOnce = 4
 
+/** Who comes when so many wait would wait for most of a minute. */
+const waitingMax = 100
+
 let running = 0
 const waiting: (() => void)[] = []
 
 async function inTurn<T>(work: () => Promise<T>): Promise<T> {
+  if (waiting.length >= waitingMax) {
+    throw new OgeeError('too-many-requests', 'Too many people sign in at this moment. Try again in 10 s.', {
+      facts: { retryAfterSeconds: 10 },
+    })
+  }
   if (running >= atOnce) await new Promise<void>((resolve) => waiting.push(resolve))
   else running++
   try {

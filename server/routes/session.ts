@@ -5,6 +5,7 @@ import { deleteSession, getMe, type Me, postSession } from '../../shared/contrac
 import { OgeeError } from '../../shared/errors.ts'
 import { SOLVER_VERSION } from '../../shared/solver/version.ts'
 import { signIn } from '../commands/sign-in.ts'
+import { within } from '../http/deadline.ts'
 import type { Deps } from '../http/deps.ts'
 import { localsOf } from '../http/locals.ts'
 import type { PersonPrincipal, Principal } from '../http/principal.ts'
@@ -17,7 +18,7 @@ export function sessionRoutes(serve: Serve, deps: RouteDeps): void {
 
   serve(postSession, async ({ request, response }) => {
     const person = await byPassword(request, response)
-    await deps.sessions.open(request, person.id)
+    await within(deps.sessions.open(request, person.id))
     localsOf(response).principal = person
     return meReply(deps, person)
   })

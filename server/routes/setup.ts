@@ -1,6 +1,7 @@
 import { getSetup, postSetup } from '../../shared/contract/session.ts'
 import { OgeeError } from '../../shared/errors.ts'
 import { createFirstAdministrator, isSetupOpen } from '../commands/create-first-administrator.ts'
+import { within } from '../http/deadline.ts'
 import { localsOf } from '../http/locals.ts'
 import type { Serve } from '../http/serve.ts'
 import type { RouteDeps } from './route-deps.ts'
@@ -18,7 +19,7 @@ export function setupRoutes(serve: Serve, deps: RouteDeps): void {
     }
     const { secret: _, ...person } = body
     const made = await createFirstAdministrator(deps, person)
-    await deps.sessions.open(request, made.id)
+    await within(deps.sessions.open(request, made.id))
     localsOf(response).principal = made
     return meReply(deps, made)
   })
