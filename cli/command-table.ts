@@ -18,6 +18,21 @@ export const commandTable: readonly Entry[] = [
     load: async () => (await import('./commands/verify.ts')).verifyCommand,
   },
   {
+    name: 'size',
+    summary: 'Reach, step and bits that a design needs, offline',
+    load: async () => (await import('./commands/size.ts')).sizeCommand,
+  },
+  {
+    name: 'network',
+    summary: 'Resistor values between the auxiliary DAC and the adjust node, offline',
+    load: async () => (await import('./commands/network.ts')).networkCommand,
+  },
+  {
+    name: 'yield',
+    summary: 'Yield of a design by simulation, offline',
+    load: async () => (await import('./commands/yield.ts')).yieldCommand,
+  },
+  {
     name: 'simulate',
     summary: 'Points of simulated units, repeatable from a seed',
     load: async () => (await import('./commands/simulate.ts')).simulateCommand,

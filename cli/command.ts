@@ -23,7 +23,8 @@ export type Example = { run: string; says: string }
 /** What stood on the command line, before it means anything. */
 export type Given = {
   args: readonly string[]
-  options: Readonly<Record<string, string | boolean | undefined>>
+  /** A flag that may stand more than once (`<file...>`) gives a list. */
+  options: Readonly<Record<string, string | boolean | readonly string[] | undefined>>
 }
 
 export type Context = {

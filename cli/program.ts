@@ -7,7 +7,7 @@ import { version } from './version.ts'
 export type Chosen = {
   command: Command
   args: string[]
-  options: Record<string, string | boolean | undefined>
+  options: Record<string, string | boolean | readonly string[] | undefined>
 }
 type OnChosen = (chosen: Chosen) => void
 type Output = (text: string) => void

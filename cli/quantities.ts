@@ -4,7 +4,9 @@ import { parseQuantityAsync } from '../shared/quantity/parse.ts'
 import { loadArithmetic } from './arithmetic.ts'
 
 /** Numbers for a terminal. The minus stays ASCII: what is copied from a terminal is typed in somewhere. */
-const ascii = (text: string) => text.replaceAll('\u2212', '-')
+export const ascii = (text: string) => text.replaceAll('\u2212', '-')
+/** Resistances and currents: 8.66 kohm. */
+export const prefixed = (value: number, unit: 'ohm' | 'A') => ascii(engineering(value, unit))
 
 export const volts = (value: number, digits = 3) =>
   value === 0 ? '0 V' : ascii(engineering(value, 'V', { digits }))

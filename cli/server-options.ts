@@ -29,7 +29,7 @@ export async function connect(options: ConnectionOptions, { io }: Context): Prom
 }
 
 /** The value of an option as text, or nothing when it was not given. */
-export function text(value: string | boolean | undefined): string | undefined {
+export function text(value: string | boolean | readonly string[] | undefined): string | undefined {
   return typeof value === 'string' ? value : undefined
 }
 

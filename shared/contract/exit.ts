@@ -12,6 +12,9 @@ export const verdictExit = {
   'conditional-fail': 15,
 } as const satisfies Record<Verdict | Outcome, number>
 
+/** Exit codes of a sizing, and of a network with an obstacle (`short`). */
+export const sizeExit = { covers: 0, short: 10, both: 10, coarse: 11 } as const
+
 /** A proof, receipt, checkpoint or ledger that does not check. */
 export const proofFailsExit = 16
 /** A batch, or `spool send`, that finished while some units are not good. */

@@ -7,7 +7,7 @@ import type { NetworkCandidate, Wanted } from './request.ts'
  * A network by the measures of a candidate: nominal and corner spans, steps, lost resolution, source resistance, current.
  * The node's voltage is monotone in each resistance, so the extremes lie at the corners of the tolerance.
  * Source: solver.md section 7.
- * @example evaluateNetwork(wanted, { kind: 'divider', topOhm: 8660, bottomOhm: 1500 }).stepV
+ * @example evaluateNetwork(wanted, { kind: 'divider', topOhm: 8660, bottomOhm: 1500 }).sourceOhm // 1278.54330708661...
  */
 export function evaluateNetwork(wanted: Wanted, network: Network): NetworkCandidate {
   const nominal = mapOf(wanted, network)

@@ -15,7 +15,7 @@ import { searchNetworks, valuesOf } from './search.ts'
  *   shift from 1 kohm to 1 Mohm, bottom from 10 ohm to 10 Mohm
  * @throws network-request, source-span-zero, bits-out-of-bounds, resistance-not-positive
  * Source: solver.md section 7; IEC 60063:2015; Millman's theorem.
- * @example synthesiseNetwork(unipolar18, 'gain', request).candidates[0]?.network
+ * @example synthesiseNetwork(unipolar18, 'gain', request).candidates[0]?.network.topOhm // 5230
  */
 export function synthesiseNetwork(
   design: { adjusters: PerAdjuster<Adjuster> },
