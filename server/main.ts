@@ -1,5 +1,7 @@
-import { isOgeeError } from '../shared/errors.ts'
+import { AccessDeniedError } from 'sequelize'
+import { isOgeeError, OgeeError } from '../shared/errors.ts'
 import { readConfig } from './config.ts'
+import { asOutage } from './db/failure.ts'
 import { runServer } from './run-server.ts'
 
 /** The process: only here is it ended. Bad configuration ends it with 78 and one sentence; the supervisor then gives up. */
@@ -19,7 +21,22 @@ async function main(): Promise<void> {
   process.on('disconnect', stop)
 }
 
-main().catch((error: unknown) => {
+/** A database that is not there yet is worth another start (75); an account that it does not let in is not (78). */
+function asStartTrouble(cause: unknown): unknown {
+  if (cause instanceof AccessDeniedError) {
+    return new OgeeError(
+      'configuration',
+      'The database refuses the account of DATABASE_URL or DATABASE_ADMIN_URL.',
+      {
+        cause,
+      },
+    )
+  }
+  return asOutage(cause)
+}
+
+main().catch((cause: unknown) => {
+  const error = asStartTrouble(cause)
   const known = isOgeeError(error)
   process.stderr.write(
     `ogee: ${known ? error.message : error instanceof Error ? error.stack : String(error)}\n`,

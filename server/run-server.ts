@@ -1,3 +1,4 @@
+import { readFileSync } from 'node:fs'
 import type { AddressInfo } from 'node:net'
 import type { RequestHandler } from 'express'
 import { OgeeError } from '../shared/errors.ts'
@@ -40,7 +41,7 @@ export async function runServer(config: Config, say: (line: string) => void): Pr
   if (config.demo) await loadDemo(deps, config.dataDir, say)
   const vite = config.dev ? await developmentPage() : null
   const app = createApp(vite ? { ...deps, devPage: vite.middleware } : deps)
-  const server = createServer(app.express, config.tls)
+  const server = createServer(app.express, config.tls && readTls(config.tls))
   await new Promise<void>((resolve, reject) => {
     server.once('error', (cause: NodeJS.ErrnoException) => reject(cannotListen(config, cause)))
     server.listen(config.port, config.host, resolve)
@@ -60,6 +61,16 @@ export async function runServer(config: Config, say: (line: string) => void): Pr
       await sequencer.stop()
       await database.close()
     },
+  }
+}
+
+function readTls({ cert, key }: { cert: string; key: string }): { cert: Buffer; key: Buffer } {
+  try {
+    return { cert: readFileSync(cert), key: readFileSync(key) }
+  } catch (cause) {
+    throw new OgeeError('configuration', 'The files of OGEE_TLS_CERT and OGEE_TLS_KEY cannot be read.', {
+      cause,
+    })
   }
 }
 

@@ -1,4 +1,3 @@
-import { readFileSync } from 'node:fs'
 import { createServer as createHttpServer, type RequestListener, type Server } from 'node:http'
 import { createServer as createHttpsServer } from 'node:https'
 import type { Duplex } from 'node:stream'
@@ -18,12 +17,9 @@ const bounds = {
   requireHostHeader: true,
 } as const
 
-export function createServer(listener: RequestListener, tls: { cert: string; key: string } | null): Server {
+export function createServer(listener: RequestListener, tls: { cert: Buffer; key: Buffer } | null): Server {
   const server = tls
-    ? createHttpsServer(
-        { ...bounds, cert: readFileSync(tls.cert), key: readFileSync(tls.key), minVersion: 'TLSv1.2' },
-        listener,
-      )
+    ? createHttpsServer({ ...bounds, ...tls, minVersion: 'TLSv1.2' }, listener)
     : createHttpServer(bounds, listener)
   server.maxHeadersCount = 100
   server.maxRequestsPerSocket = 0
