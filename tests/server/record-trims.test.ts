@@ -1,52 +1,19 @@
 import { afterAll, beforeAll, describe, expect, it } from 'vitest'
-import { api, newKey, post, signIn } from '../support/server-client.ts'
-import { pointsOf, suspectPoints, trimBody, unipolar } from '../support/server-factories.ts'
-import {
-  addDesign,
-  addPerson,
-  addStation,
-  addToken,
-  type Harness,
-  serverHarness,
-} from '../support/server-harness.ts'
+import { api, newKey, post } from '../support/server-client.ts'
+import { pointsOf, trimBody } from '../support/server-factories.ts'
+import type { Harness } from '../support/server-harness.ts'
+import { type Scene, serverScene } from '../support/server-scene.ts'
 
 let harness: Harness
 let url: string
 let station: { token: string }
-let other: { token: string }
 let engineer: { cookie: string }
-let operator: { cookie: string }
+let currentOf: Scene['currentOf']
 
 beforeAll(async () => {
-  harness = await serverHarness()
-  url = harness.url
-  await addDesign(harness, 'U18')
-  await addDesign(
-    harness,
-    'TWO',
-    unipolar({
-      channels: ['a', 'b'],
-      ranges: [
-        { id: 'u10', lowV: 0, highV: 10 },
-        { id: 'u5', lowV: 0, highV: 5 },
-      ],
-    }),
-  )
-  const a = await addStation(harness, 'Station A')
-  const b = await addStation(harness, 'Station B')
-  station = await addToken(harness, ['trims:write', 'trims:read'], a.id)
-  other = await addToken(harness, ['trims:write', 'trims:read'], b.id)
-  await addPerson(harness, 'engineer')
-  await addPerson(harness, 'operator')
-  engineer = { cookie: await signIn(url, 'engineer@example.org') }
-  operator = { cookie: await signIn(url, 'operator@example.org') }
+  ;({ harness, url, station, engineer, currentOf } = await serverScene())
 })
 afterAll(() => harness.close())
-
-const currentOf = async (serial: string) => {
-  const reply = await api(url, 'get', `/units?serial=${serial}`, station)
-  return reply.body.items[0].current[0]
-}
 
 describe('a trim', () => {
   it('is computed by the server and becomes the unit’s current codes', async () => {
@@ -234,205 +201,6 @@ describe('a verification', () => {
   it('of an untouched unit takes it as neutral', async () => {
     const record = await post(url, station, trimBody({ unit: 'V-2', kind: 'verify' }))
     expect(record).toMatchObject({ follows: null, pass: 0, applied: 'neutral' })
-  })
-})
-
-describe('an override', () => {
-  const reason = 'Seen on the bench: connector reseated.'
-
-  it('by an engineer makes a suspect record’s codes current and says so on it', async () => {
-    const suspect = await post(url, station, trimBody({ unit: 'O-1', points: suspectPoints() }))
-    expect(suspect).toMatchObject({ verdict: 'suspect', accepted: false })
-    expect(suspect.result.trim.codes).not.toBeNull()
-    expect(await currentOf('O-1')).toMatchObject({ codes: null, record: null, lastRecord: suspect.id })
-    const body = { kind: 'override', design: 'U18', unit: 'O-1', follows: suspect.id, reason }
-    const override = await post(url, engineer, body)
-    expect(override).toMatchObject({
-      kind: 'override',
-      verdict: 'suspect',
-      accepted: true,
-      result: null,
-      follows: suspect.id,
-      reason,
-    })
-    expect(await currentOf('O-1')).toMatchObject({
-      codes: suspect.result.trim.codes,
-      record: suspect.id,
-      lastRecord: override.id,
-    })
-    const seen = await api(url, 'get', `/trims/${suspect.id}`, engineer)
-    expect(seen.body.accepted).toBe(false)
-    expect(seen.body.notices).toMatchObject([{ code: 'overridden', record: override.id }])
-    expect(await post(url, engineer, body, 422)).toMatchObject({ code: 'override-not-suspect' })
-  })
-
-  it('is for engineers in person, with a reason, of suspect trims', async () => {
-    const suspect = await post(url, station, trimBody({ unit: 'O-2', points: suspectPoints() }))
-    const body = { kind: 'override', design: 'U18', unit: 'O-2', follows: suspect.id, reason }
-    expect(await post(url, station, body, 403)).toMatchObject({ code: 'override-needs-a-person' })
-    expect(await post(url, operator, body, 403)).toMatchObject({ code: 'forbidden' })
-    expect(await post(url, engineer, { ...body, reason: 'too short' }, 422)).toMatchObject({
-      code: 'reason-required',
-    })
-    expect(await post(url, engineer, { ...body, points: pointsOf() }, 422)).toMatchObject({
-      code: 'invalid-request',
-    })
-    const fine = await post(url, station, trimBody({ unit: 'O-3' }))
-    expect(await post(url, engineer, { ...body, unit: 'O-3', follows: fine.id }, 422)).toMatchObject({
-      code: 'override-not-suspect',
-    })
-  })
-})
-
-describe('a withdrawal', () => {
-  const withdraw = (unit: string, follows: string) => ({
-    kind: 'withdraw',
-    design: 'U18',
-    unit,
-    follows,
-    reason: 'The wrong unit was on the bench.',
-  })
-
-  it('takes a record out of what counts, and the codes before it come back', async () => {
-    const first = await post(url, station, trimBody({ unit: 'W-1' }))
-    const applied = first.result.trim.codes
-    const second = await post(
-      url,
-      station,
-      trimBody({ unit: 'W-1', applied, follows: 'last', points: pointsOf({ gainPpm: 40 }) }),
-    )
-    expect(await currentOf('W-1')).toMatchObject({ record: second.id, pass: 2 })
-    const gone = await post(url, engineer, withdraw('W-1', second.id))
-    expect(await currentOf('W-1')).toMatchObject({
-      record: first.id,
-      codes: applied,
-      pass: 1,
-      lastRecord: gone.id,
-    })
-    const seen = await api(url, 'get', `/trims/${second.id}`, engineer)
-    expect(seen.body.notices).toMatchObject([{ code: 'withdrawn', record: gone.id }])
-    expect(await post(url, engineer, withdraw('W-1', second.id), 409)).toMatchObject({
-      code: 'already-withdrawn',
-    })
-    expect(await post(url, engineer, withdraw('W-1', gone.id), 422)).toMatchObject({
-      code: 'follows-unknown',
-    })
-    const verify = await post(url, station, trimBody({ unit: 'W-1', kind: 'verify', points: pointsOf() }))
-    expect(verify.follows).toBe(first.id)
-    await post(url, engineer, withdraw('W-1', first.id))
-    expect(await currentOf('W-1')).toMatchObject({ record: null, codes: null })
-  })
-
-  it('of an override takes its codes back', async () => {
-    const suspect = await post(url, station, trimBody({ unit: 'W-2', points: suspectPoints() }))
-    const reason = 'Looked at by two engineers.'
-    const override = await post(url, engineer, {
-      kind: 'override',
-      design: 'U18',
-      unit: 'W-2',
-      follows: suspect.id,
-      reason,
-    })
-    await post(url, engineer, withdraw('W-2', override.id))
-    expect(await currentOf('W-2')).toMatchObject({ codes: null, record: null })
-  })
-
-  it('is for engineers', async () => {
-    const record = await post(url, station, trimBody({ unit: 'W-3' }))
-    expect(await post(url, operator, withdraw('W-3', record.id), 403)).toMatchObject({ code: 'forbidden' })
-    expect(await post(url, station, withdraw('W-3', record.id), 403)).toMatchObject({
-      code: 'override-needs-a-person',
-    })
-  })
-})
-
-describe('notices', () => {
-  it('tells who based a trim on an older record that another station was first', async () => {
-    const first = await post(url, station, trimBody({ unit: 'N-1' }))
-    const applied = first.result.trim.codes
-    const follow = { unit: 'N-1', applied, follows: first.id, points: pointsOf({ gainPpm: 1 }) }
-    const second = await post(url, other, trimBody(follow))
-    expect(second.notices).toEqual([])
-    const late = await post(url, station, trimBody(follow))
-    expect(late.notices).toMatchObject([{ code: 'newer-record', record: second.id }])
-  })
-
-  it('tells a station whose clock runs ahead, and one whose codes differ', async () => {
-    const at = new Date(Date.now() + 300_000).toISOString()
-    const record = await post(
-      url,
-      station,
-      trimBody({
-        unit: 'N-2',
-        measuredAt: at,
-        claimed: { solver: '1.0.0', codes: { gain: 1, offset: 1 }, at },
-      }),
-    )
-    expect(record.notices.map((notice: { code: string }) => notice.code)).toEqual([
-      'clock-skew',
-      'claimed-codes-differ',
-    ])
-    expect(record.claimed.codes).toEqual({ gain: 1, offset: 1 })
-    const { codes } = record.result.trim
-    const same = await post(
-      url,
-      station,
-      trimBody({ unit: 'N-3', claimed: { solver: '1.0.0', codes, at: new Date().toISOString() } }),
-    )
-    expect(same.notices).toEqual([])
-  })
-
-  it('accepts a fresh unit under a withdrawn revision only when it was done before', async () => {
-    await addDesign(harness, 'OLD')
-    await post(url, station, trimBody({ design: 'OLD', unit: 'N-4' }))
-    await harness.database.sql.run(
-      `UPDATE revisions r JOIN designs d ON d.id = r.design_id SET r.state = 'withdrawn', r.withdrawn_at = UTC_TIMESTAMP(3)
-        WHERE d.design_key = 'OLD'`,
-    )
-    const fresh = { design: 'OLD', unit: 'N-5' }
-    expect(await post(url, station, trimBody(fresh), 422)).toMatchObject({ code: 'revision-withdrawn' })
-    const early = await post(url, station, trimBody({ ...fresh, measuredAt: '2025-01-01T00:00:00Z' }))
-    expect(early.notices).toMatchObject([{ code: 'revision-withdrawn' }])
-    const known = await post(url, station, trimBody({ design: 'OLD', unit: 'N-4', applied: 'neutral' }))
-    expect(known.notices).toMatchObject([{ code: 'revision-withdrawn' }])
-    const claimed = { solver: '1.0.0', codes: null, at: '2026-01-01T00:00:00Z' }
-    await post(url, station, trimBody({ design: 'OLD', unit: 'N-6', claimed }))
-  })
-})
-
-describe('the list', () => {
-  it('goes through all records newest first, page by page, and filters', async () => {
-    const seen: { id: string; recordedAt: string }[] = []
-    let after: string | null = null
-    do {
-      const query: string = after === null ? '' : `&after=${encodeURIComponent(after)}`
-      const page = await api(url, 'get', `/trims?limit=7${query}`, engineer)
-      expect(page.status).toBe(200)
-      seen.push(...page.body.items)
-      after = page.body.next
-    } while (after !== null)
-    const [count] = await harness.database.sql.rows<{ n: number }>('SELECT COUNT(*) AS n FROM records')
-    expect(new Set(seen.map((line) => line.id)).size).toBe(count!.n)
-    const times = seen.map((line) => Date.parse(line.recordedAt))
-    expect(times).toEqual(times.toSorted((a, b) => b - a))
-    const verifies = await api(url, 'get', '/trims?kind=verify&unit=V-1', engineer)
-    expect(verifies.body.items.map((line: { verdict: string }) => line.verdict)).toEqual(['fail', 'pass'])
-    const wrong = await api(url, 'get', '/trims?after=x', engineer)
-    expect(wrong.body).toMatchObject({ code: 'invalid-request', errors: [{ path: '/after' }] })
-  })
-
-  it('shows a station’s token its own records only, and hides the others wholly', async () => {
-    const mine = await post(url, other, trimBody({ unit: 'L-1' }))
-    const list = await api(url, 'get', '/trims?unit=L-1', station)
-    expect(list.body.items).toEqual([])
-    const own = await api(url, 'get', '/trims?unit=L-1', other)
-    expect(own.body.items).toHaveLength(1)
-    const hidden = await api(url, 'get', `/trims/${mine.id}`, station)
-    const missing = await api(url, 'get', '/trims/01a230b2-a46d-7315-89af-a51980fdfb2a', station)
-    expect(hidden.status).toBe(404)
-    const { instance: _, ...shown } = hidden.body
-    const { instance: __, ...same } = missing.body
-    expect(shown).toEqual(same)
   })
 })
 
