@@ -60,6 +60,14 @@ const predicted = z.object({
   worstPpm: finite,
   atV: finite,
   expandedUncertaintyV: finite.nullable(),
+  effectV: finite.describe('What the tolerances of the effects may add at the worse end, V'),
+})
+
+/** What these codes do to a range that shares the hardware; `predicted` is null when that range was not measured. */
+const sharedLine = z.object({
+  range: z.string(),
+  change: z.object({ offsetErrorV: finite, gainErrorPpm: finite }),
+  predicted: z.object({ offsetErrorV: finite, gainErrorPpm: finite, worstV: finite, atV: finite }).nullable(),
 })
 
 const missing = z.object({
@@ -82,6 +90,7 @@ export const trim = z.object({
   shortfall: perAdjuster(missing).extend({ remainingWorstV: finite }).nullable(),
   predicted: predicted.nullable(),
   notes: z.array(z.string()),
+  shared: z.array(sharedLine).optional(),
 })
 
 const head = { solver: z.string(), range: z.string() }

@@ -26,6 +26,7 @@ export const verifyDocument = z
     points: z.array(judged),
     worst: z.object({ code, errorV: finite, errorLsb: finite }),
     fit: fit.nullable(),
+    notes: z.array(z.string()).describe('Such as tur-under-4, guard-band-too-wide'),
   })
   .meta({ id: 'Verify' })
 export type VerifyDocument = z.output<typeof verifyDocument>

@@ -72,13 +72,13 @@ test('P7: JavaScript of a first load, over the wire, stays under its limits', as
   await session.send('Network.enable')
   await session.send('Network.setCacheDisabled', { cacheDisabled: true })
   let bytes = 0
-  const scripts = new Set<string>()
-  session.on(
-    'Network.responseReceived',
-    ({ requestId, type }) => void (type === 'Script' && scripts.add(requestId)),
-  )
+  const headerBytes = new Map<string, number>()
+  session.on('Network.responseReceived', ({ requestId, type, response }) => {
+    if (type === 'Script') headerBytes.set(requestId, response.encodedDataLength)
+  })
   session.on('Network.loadingFinished', ({ requestId, encodedDataLength }) => {
-    if (scripts.has(requestId)) bytes += encodedDataLength
+    const head = headerBytes.get(requestId)
+    if (head !== undefined) bytes += encodedDataLength - head
   })
   const load = async (path: string) => {
     bytes = 0

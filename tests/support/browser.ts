@@ -57,9 +57,7 @@ export async function axeViolations(page: Page): Promise<string[]> {
   return await page.evaluate(async () => {
     const { axe } = globalThis as unknown as {
       axe: {
-        run: (
-          options: object,
-        ) => Promise<{
+        run: (options: object) => Promise<{
           violations: { id: string; help: string; nodes: { html: string; failureSummary?: string }[] }[]
         }>
       }

@@ -64,6 +64,7 @@ export const codesResult: CodesDocument = {
       worstPpm: 0.19,
       atV: 0,
       expandedUncertaintyV: 0.000016,
+      effectV: 0.0004,
     },
     notes: [],
   },
@@ -121,4 +122,5 @@ export const verifyResult: VerifyDocument = {
   })),
   worst: { code: 262143, errorV: 0.76 * lsbV, errorLsb: 0.76 },
   fit: null,
+  notes: [],
 }
