@@ -55,7 +55,7 @@ describe.each(recordedNames)('recorded table %s', (table) => {
   })
 })
 
-describe('a released revision', () => {
+describe('ASVS V2.3.1 a released revision', () => {
   it.each([
     ["document_hash = REPEAT('x', 32)", 'is fixed'],
     ['number = 9', 'never changes'],

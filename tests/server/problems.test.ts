@@ -123,19 +123,22 @@ describe('problems (S4)', () => {
       'application/json',
       JSON.stringify(trimBody({ conditions: { note: 'x\ud800' } })),
     ],
-  ] as const)('a body that is %s gets %i', async (code, status, type, body) => {
-    // By fetch: supertest would write some of these bodies as JSON of its own.
-    const reply = await fetch(`${url}/api/v1/trims`, {
-      method: 'POST',
-      headers: {
-        Authorization: `Bearer ${station.token}`,
-        'Idempotency-Key': newKey(),
-        'Content-Type': type,
-      },
-      body,
-    })
-    expect([reply.status, ((await reply.json()) as { code: string }).code]).toEqual([status, code])
-  })
+  ] as const)(
+    'ASVS V5.2.1 a body that is %s gets %i, at the limit and a byte over it too',
+    async (code, status, type, body) => {
+      // By fetch: supertest would write some of these bodies as JSON of its own.
+      const reply = await fetch(`${url}/api/v1/trims`, {
+        method: 'POST',
+        headers: {
+          Authorization: `Bearer ${station.token}`,
+          'Idempotency-Key': newKey(),
+          'Content-Type': type,
+        },
+        body,
+      })
+      expect([reply.status, ((await reply.json()) as { code: string }).code]).toEqual([status, code])
+    },
+  )
 
   it('a compressed body is refused before it can unfold', async () => {
     const reply = await api(url, 'post', '/trims', {

@@ -61,7 +61,7 @@ describe('a trim', () => {
     expect(await currentOf('T-2')).toMatchObject({ record: first.id, lastRecord: record.id })
   })
 
-  it('of a unit with current codes must say which codes were applied', async () => {
+  it('ASVS V2.3.1 of a unit with current codes must say which codes were applied', async () => {
     const first = await post(url, station, trimBody({ unit: 'T-3' }))
     const refused = await post(url, station, trimBody({ unit: 'T-3' }), 422)
     expect(refused).toMatchObject({ code: 'applied-required', errors: [{ path: '/applied' }] })
@@ -158,13 +158,16 @@ describe('a trim', () => {
     ['invalid-request', { points: [{ code: 0, measured: 'x' }] }, 422],
     ['invalid-request', { unit: ' S' }, 422],
     ['invalid-request', { extra: 1 }, 422],
-  ])('is refused as %s for %j, and leaves nothing', async (code, change, status) => {
-    const unit = 'R-1'
-    const problem = await post(url, station, trimBody({ unit, ...change }), status)
-    expect(problem.code).toBe(code)
-    const units = await api(url, 'get', `/units?serial=${unit}`, station)
-    expect(units.body.items).toEqual([])
-  })
+  ])(
+    'ASVS V2.2.2 is refused by the server as %s for %j, and leaves nothing',
+    async (code, change, status) => {
+      const unit = 'R-1'
+      const problem = await post(url, station, trimBody({ unit, ...change }), status)
+      expect(problem.code).toBe(code)
+      const units = await api(url, 'get', `/units?serial=${unit}`, station)
+      expect(units.body.items).toEqual([])
+    },
+  )
 
   it('keeps serials apart that differ only in case or in trailing letters', async () => {
     for (const unit of ['k-1', 'K-1', 'K-1 x', 'É', 'E']) await post(url, station, trimBody({ unit }))

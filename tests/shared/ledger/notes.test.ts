@@ -65,7 +65,9 @@ describe('verifier key', () => {
     const text = verifierKey(sha256, key)
     expect(parseVerifierKey(sha256, text.replace('test', 'best'))).toBeNull()
     expect(parseVerifierKey(sha256, text.replace(/\+[0-9a-f]/, '+z'))).toBeNull()
-    expect(parseVerifierKey(sha256, text.replace(`${keyName(sha256, key)}+A`, `${keyName(sha256, key)}+B`))).toBeNull()
+    expect(
+      parseVerifierKey(sha256, text.replace(`${keyName(sha256, key)}+A`, `${keyName(sha256, key)}+B`)),
+    ).toBeNull()
     expect(parseVerifierKey(sha256, 'nonsense')).toBeNull()
   })
 
