@@ -1,8 +1,11 @@
 import { scaleLinear } from 'd3-scale'
 import { useId, useState } from 'react'
-import { type Box, ErrorBar, Hatch, PlotText, type Scale, XAxis, YAxis } from './axes.tsx'
+import { type Box, ErrorBar, Hatch, PlotText, type Scale, XAxis, YAxis } from '../../ui/plot/axes.tsx'
+import { type EndLabel, EndLabels } from '../../ui/plot/end-labels.tsx'
+import { PlotFigure } from '../../ui/plot/plot-figure.tsx'
+import { PlotSvg } from '../../ui/plot/plot-svg.tsx'
+import { useWalk } from '../../ui/plot/walk-points.ts'
 import { barsSentence, pointLabel, pointTable } from './describe-points.ts'
-import { type EndLabel, EndLabels } from './end-labels.tsx'
 import { GuardBand } from './guard-band.tsx'
 import {
   fullScaleV,
@@ -14,9 +17,6 @@ import {
   type PlotUnit,
   shownUnit,
 } from './plot-data.ts'
-import { PlotFigure } from './plot-figure.tsx'
-import { PlotSvg } from './plot-svg.tsx'
-import { useWalk } from './walk-points.ts'
 
 /** One pass as drawn: filled dots for the latest, open circles for the one before. */
 export type PlotPass = { label: string; points: readonly PlotPoint[]; line: PlotLine | null }

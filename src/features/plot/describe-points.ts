@@ -1,6 +1,6 @@
+import type { PlotTableData } from '../../ui/plot/plot-figure.tsx'
+import { codeText, labelDecimals, numberText } from '../../ui/plot/plot-numbers.ts'
 import { largest, type PlotPoint, type PlotRange, shownUnit } from './plot-data.ts'
-import type { PlotTableData } from './plot-figure.tsx'
-import { codeText, labelDecimals, numberText } from './plot-numbers.ts'
 
 const micro = (volts: number, signed = true): string => {
   const shown = volts * 1e6

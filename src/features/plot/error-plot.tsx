@@ -1,6 +1,9 @@
 import { scaleLinear } from 'd3-scale'
 import { useId, useState } from 'react'
-import { type Box, ErrorBar, Hatch, PlotText, type Scale, XAxis, YAxis } from './axes.tsx'
+import { type Box, ErrorBar, Hatch, PlotText, type Scale, XAxis, YAxis } from '../../ui/plot/axes.tsx'
+import { PlotFigure } from '../../ui/plot/plot-figure.tsx'
+import { PlotSvg } from '../../ui/plot/plot-svg.tsx'
+import { useWalk } from '../../ui/plot/walk-points.ts'
 import { barsSentence, pointLabel, pointTable } from './describe-points.ts'
 import { LineTakenApart, type OnPlot, Predicted, Reach } from './line-parts.tsx'
 import {
@@ -13,10 +16,7 @@ import {
   type PlotUnit,
   shownUnit,
 } from './plot-data.ts'
-import { PlotFigure } from './plot-figure.tsx'
-import { PlotSvg } from './plot-svg.tsx'
 import { StripMarks } from './residual-strip.tsx'
-import { useWalk } from './walk-points.ts'
 
 type ErrorPlotProps = {
   title: string

@@ -1,4 +1,4 @@
-import type { Box, Scale } from './axes.tsx'
+import type { Box, Scale } from '../../ui/plot/axes.tsx'
 import type { PlotPoint } from './plot-data.ts'
 
 type GuardBandProps = {

@@ -1,6 +1,6 @@
-import { type Box, PlotText, type Scale } from './axes.tsx'
+import { type Box, PlotText, type Scale } from '../../ui/plot/axes.tsx'
+import { labelDecimals, numberText } from '../../ui/plot/plot-numbers.ts'
 import { fullScaleV, lineAt, type PlotLine, type PlotRange } from './plot-data.ts'
-import { labelDecimals, numberText } from './plot-numbers.ts'
 
 export type OnPlot = { range: PlotRange; x: Scale; at: (volts: number) => number }
 

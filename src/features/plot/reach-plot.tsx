@@ -1,10 +1,10 @@
 import { scaleLinear } from 'd3-scale'
 import { useId } from 'react'
-import { type Box, Hatch, PlotText } from './axes.tsx'
-import { PlotFigure } from './plot-figure.tsx'
-import { numberText } from './plot-numbers.ts'
-import { PlotSvg } from './plot-svg.tsx'
-import { useWalk } from './walk-points.ts'
+import { type Box, Hatch, PlotText } from '../../ui/plot/axes.tsx'
+import { PlotFigure } from '../../ui/plot/plot-figure.tsx'
+import { numberText } from '../../ui/plot/plot-numbers.ts'
+import { PlotSvg } from '../../ui/plot/plot-svg.tsx'
+import { useWalk } from '../../ui/plot/walk-points.ts'
 
 /** `share` is signed: below nominal is negative; 1 is the whole reach on that side. */
 export type ReachMark = { adjuster: 'gain' | 'offset'; share: number }

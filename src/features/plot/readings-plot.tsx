@@ -1,11 +1,11 @@
 import { scaleLinear } from 'd3-scale'
 import { useId, useState } from 'react'
-import { type Box, Hatch, XAxis, YAxis } from './axes.tsx'
+import { type Box, Hatch, XAxis, YAxis } from '../../ui/plot/axes.tsx'
+import { PlotFigure, type PlotTableData } from '../../ui/plot/plot-figure.tsx'
+import { codeText, numberText } from '../../ui/plot/plot-numbers.ts'
+import { PlotSvg } from '../../ui/plot/plot-svg.tsx'
+import { useWalk } from '../../ui/plot/walk-points.ts'
 import { type PlotRange, shownUnit } from './plot-data.ts'
-import { PlotFigure, type PlotTableData } from './plot-figure.tsx'
-import { codeText, numberText } from './plot-numbers.ts'
-import { PlotSvg } from './plot-svg.tsx'
-import { useWalk } from './walk-points.ts'
 
 type ReadingsPlotProps = {
   code: number

@@ -1,11 +1,11 @@
 import { scaleLinear } from 'd3-scale'
-import { type Box, PlotText, type Scale, XAxis, YAxis } from './axes.tsx'
+import { type Box, PlotText, type Scale, XAxis, YAxis } from '../../ui/plot/axes.tsx'
+import { PlotFigure } from '../../ui/plot/plot-figure.tsx'
+import { numberText } from '../../ui/plot/plot-numbers.ts'
+import { PlotSvg } from '../../ui/plot/plot-svg.tsx'
+import { type PointStop, useWalk } from '../../ui/plot/walk-points.ts'
 import { pointLabel, pointTable } from './describe-points.ts'
 import { largest, type PlotPoint, type PlotRange } from './plot-data.ts'
-import { PlotFigure } from './plot-figure.tsx'
-import { numberText } from './plot-numbers.ts'
-import { PlotSvg } from './plot-svg.tsx'
-import { type PointStop, useWalk } from './walk-points.ts'
 
 type StripProps = { points: readonly PlotPoint[]; range: PlotRange; box: Box; x: Scale }
 

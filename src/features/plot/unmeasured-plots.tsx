@@ -1,5 +1,5 @@
-import { decimalsFor, numberText } from './plot-numbers.ts'
-import { useWidth } from './use-width.ts'
+import { decimalsFor, numberText } from '../../ui/plot/plot-numbers.ts'
+import { useWidth } from '../../ui/plot/use-width.ts'
 
 type Span = { lowV: number; highV: number }
 

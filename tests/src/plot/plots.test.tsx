@@ -3,13 +3,13 @@ import { render, screen } from '@testing-library/react'
 import { userEvent } from '@testing-library/user-event'
 import { expect, test, vi } from 'vitest'
 import { AsLeftPlot } from '../../../src/features/plot/as-left-plot.tsx'
-import { csvText, svgText } from '../../../src/features/plot/copy-plot.ts'
-import { spread } from '../../../src/features/plot/end-labels.tsx'
 import { ErrorPlot } from '../../../src/features/plot/error-plot.tsx'
-import { lightColours } from '../../../src/features/plot/light-colours.ts'
 import type { PlotPoint } from '../../../src/features/plot/plot-data.ts'
 import { ReadingsPlot } from '../../../src/features/plot/readings-plot.tsx'
 import { ResidualStrip } from '../../../src/features/plot/residual-strip.tsx'
+import { csvText, svgText } from '../../../src/ui/plot/copy-plot.ts'
+import { spread } from '../../../src/ui/plot/end-labels.tsx'
+import { lightColours } from '../../../src/ui/plot/light-colours.ts'
 
 const range = { lowV: 0, highV: 10, lsbV: 10 / 2 ** 18 }
 const point = (code: number, errorV: number, barV: number | null): PlotPoint => ({
