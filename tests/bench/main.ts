@@ -4,6 +4,7 @@ import type { BenchRow } from './row.ts'
 
 const benches: Record<string, () => Promise<readonly BenchRow[]>> = {
   solver: async () => (await import('./solver.ts')).benchSolver(),
+  yield: async () => (await import('./yield.ts')).benchYield(),
   cli: async () => (await import('./cli-start.ts')).benchCliStart(),
   recording: async () => (await import('./recording.ts')).benchRecording(),
   'first-load': async () => (await import('./first-load.ts')).benchFirstLoad(),

@@ -17,21 +17,19 @@ const UNITS = 20_000
 const ROUNDS = 15
 
 export async function benchYield(): Promise<BenchRow[]> {
-  const example = readFileSync(join(import.meta.dirname, '../vectors/examples/unipolar-18.design.json'), 'utf8')
+  const example = readFileSync(
+    join(import.meta.dirname, '../vectors/examples/unipolar-18.design.json'),
+    'utf8',
+  )
   const design = designDocument.parse(JSON.parse(example))
-  const noisy = {
-    ...design,
-    measurement: {
-      ...design.measurement,
-      readings: 4,
-      noiseV: 1.5e-6,
-      instrument: { gainPpm: 3, offsetV: 2e-6 },
-    },
+  // The plan of the contract's example: without readings that scatter nothing would be drawn for the measurement.
+  const measurement = {
+    ...design.measurement,
+    readings: 4,
+    noiseV: 1.5e-6,
+    instrument: { gainPpm: 3, offsetV: 2e-6 },
   }
-  return [
-    rowOf('one simulated unit, unipolar-18', design),
-    rowOf('one simulated unit, four noisy readings a point', noisy),
-  ]
+  return [rowOf('one simulated unit, four readings a point', { ...design, measurement })]
 }
 
 function rowOf(name: string, design: SizingDesign): BenchRow {

@@ -1,6 +1,6 @@
 import { appliedVoltages } from '../applied.ts'
-import { prepareTrim } from '../prepare-trim.ts'
 import { fitChannel } from '../fit.ts'
+import { prepareTrim } from '../prepare-trim.ts'
 import type { Applied, Design, MeasuredPoint } from '../types.ts'
 import type { UnitError } from './types.ts'
 

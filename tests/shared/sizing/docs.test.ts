@@ -1,7 +1,7 @@
 import { readFileSync } from 'node:fs'
 import { describe, expect, test } from 'vitest'
-import { prepareTrim } from '../../../shared/solver/prepare-trim.ts'
 import { type NetworkRequest, wantedOf } from '../../../shared/solver/network-synthesis/request.ts'
+import { prepareTrim } from '../../../shared/solver/prepare-trim.ts'
 import { budgetTerms } from '../../../shared/solver/sizing/budget.ts'
 import { ladderOf } from '../../../shared/solver/sizing/ladder.ts'
 import { sizeDesign } from '../../../shared/solver/sizing/size.ts'

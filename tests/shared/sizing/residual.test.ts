@@ -108,6 +108,18 @@ describe('residual after trim', () => {
   })
 })
 
+test('one adjuster: a bias counts by its size, whatever its sign', () => {
+  const left = (nominalV: number) => {
+    const offset = [
+      { name: 'O', limitV: 1e-3, nominalV, distribution: 'rectangular', when: 'initial' },
+    ] as const
+    const design = handDesign({ adjusters: { gain: adjuster({ beta: 1e-3 }) }, budget: { gain: [], offset } })
+    return lineOf(design, 'Not trimmed, no offset adjuster').worstV
+  }
+  expect(left(5e-4)).toBeCloseTo(1.5e-3, 15)
+  expect(left(-5e-4)).toBeCloseTo(1.5e-3, 15)
+})
+
 describe('passes', () => {
   test('closed form: τ^p·E·R + ½s·E <= T', () => {
     // One adjuster: E = 1e-2, R = 0.1 V, so 1 mV; τ 0.1; target 152.6 uV; half a step 2.44 uV.

@@ -137,6 +137,16 @@ describe('closed forms through the simulation', () => {
     }
   })
 
+  test('a gain line turns the output about its pivot: the offset code takes out what that leaves at the offset point', () => {
+    const gain = [
+      { name: 'G', limitPpm: 0, nominalPpm: 100, pivotV: 5, distribution: 'rectangular', when: 'initial' },
+    ] as const
+    const { codes } = simulateYield(handDesign({ budget: { gain, offset: [] } }), { trials: 3, passes: 1 })
+    // -0.5 mV at 0 V asks 50 mV more at 1e-2 V/V, 102.4 steps; +100 ppm asks 100 mV less at 1e-3 /V, 204.8 steps.
+    expect(codes.offset!.mean! - 2048).toBeCloseTo(102.4, -0.5)
+    expect(codes.gain!.mean! - 2048).toBeCloseTo(-204.8, -0.5)
+  })
+
   test('the sizing’s worst case holds every simulated unit: no remaining error is over its sum', () => {
     const design = handDesign({
       converter: { bits: 16, coding: 'straight-binary', inlLsb: 0.5 },
