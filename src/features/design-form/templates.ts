@@ -1,0 +1,104 @@
+import type { FormDoc } from './form-doc.ts'
+import { newLine } from './form-state.ts'
+
+/** Starting points of our own making: usual circuits with round values; resolution and range are left to be typed. */
+export const templates = [
+  {
+    name: 'unipolar',
+    word: 'Unipolar',
+    says: 'From 0 V up. The gain adjuster pulls on the reference, the offset adjuster sums at the output.',
+  },
+  {
+    name: 'bipolar',
+    word: 'Bipolar',
+    says: 'About 0 V, offset read at 0 V. Both adjusters, converter in two\u2019s complement.',
+  },
+  { name: 'gain-only', word: 'Gain only', says: 'One adjuster, for channels whose offset needs no trim.' },
+] as const
+export type TemplateName = (typeof templates)[number]['name']
+export const isTemplate = (name: string | null): name is TemplateName =>
+  templates.some((one) => one.name === name)
+
+const gain = {
+  'gain.effect': 'measured',
+  'gain.slope': '2e-3 /V',
+  'gain.offsetPerV': '0',
+  'gain.known': '20 %',
+  'gain.nominal': '0 V',
+  'gain.limits': '-5 V to 5 V',
+  'gain.nodeInput': '250 kohm',
+  'gain.return': '0 V',
+  'gain.network': 'divider',
+  'gain.rs': '8.2k / 1.5k',
+  'gain.bits': '12 bits',
+  'gain.coding': 'offset-binary',
+  'gain.span': '-2.5 V to 2.5 V',
+  'gain.spanTolerance': '',
+  'gain.inlDrift': '1 LSB, 5 ppm/K',
+}
+const offset = {
+  'offset.effect': 'output-summing',
+  'offset.feedback': '10 kohm',
+  'offset.adjust': '1 Mohm',
+  'offset.sign': 'inverting',
+  'offset.known': '20 %',
+  'offset.nominal': '0 V',
+  'offset.limits': '-5 V to 5 V',
+  'offset.nodeInput': '',
+  'offset.return': '0 V',
+  'offset.network': 'direct',
+  'offset.bits': '12 bits',
+  'offset.coding': 'offset-binary',
+  'offset.span': '-2.5 V to 2.5 V',
+  'offset.spanTolerance': '',
+  'offset.inlDrift': '',
+}
+const plan = {
+  bits: '',
+  coding: 'straight-binary',
+  inl: '1 LSB',
+  channels: '1',
+  hasBudget: 'yes',
+  combine: 'worst-case',
+  margin: '25 %',
+  temperatureSpan: '20 K',
+  target: '1 LSB',
+  method: 'best-fit',
+  points: '5 even',
+  readings: '4',
+  noise: '',
+  meterResolution: '',
+  plausible: '5 %',
+  settle: '0.25 LSB',
+  instrument: '1 ppm, 1 uV',
+  rule: 'guarded',
+  tolerance: '2 LSB',
+}
+
+/** A new design from a template, under a title that a person will change. */
+export function fromTemplate(name: TemplateName, title: string): FormDoc {
+  const hasOffset = name !== 'gain-only'
+  const range = {
+    id: 1,
+    name: 'main',
+    label: '',
+    ends: '',
+    offsetAt: 'zero-volts',
+    sharedWith: '',
+    effects: '',
+  }
+  const ofGain = { ...newLine(2), name: 'Gain error', limit: '300 ppm' }
+  const ofOffset = { ...newLine(3), name: 'Amplifier offset', limit: '50 uV' }
+  return {
+    values: {
+      ...plan,
+      ...gain,
+      ...(hasOffset ? offset : { 'offset.effect': 'none' }),
+      title,
+      ...(name === 'bipolar' ? { coding: 'twos-complement' } : {}),
+    },
+    lines: { gain: [ofGain], offset: hasOffset ? [ofOffset] : [] },
+    ranges: [range],
+    nextId: 4,
+  }
+}
