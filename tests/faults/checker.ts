@@ -19,6 +19,7 @@ type Row = {
 export async function disagreements(
   root: Connection,
   acknowledgements: readonly Acknowledged[],
+  round = 0,
 ): Promise<string[]> {
   const rows = await root.query<Row[]>(
     `SELECT r.id, i.idem_key, l.hash, l.body, l.at, l.kind, e.idx AS place
@@ -26,7 +27,8 @@ export async function disagreements(
        JOIN ledger_leaves l ON l.id = r.leaf_id
        LEFT JOIN idempotency_keys i ON i.record_id = r.id
        LEFT JOIN ledger_entries e ON e.leaf_id = l.id
-      WHERE i.idem_key LIKE 'fault-%'`,
+      WHERE i.idem_key LIKE ?`,
+    [`fault-${round}-%`],
   )
   return [
     ...lostOrChanged(rows, acknowledgements),

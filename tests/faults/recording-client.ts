@@ -7,17 +7,17 @@ export type Acknowledged = { key: string; unit: string; id: string; leaf: string
 
 export type Delivery = { key: string; unit: string; body: string }
 
-/** One invented unit of DBS-A: hidden gain and offset, five readings. */
-export function delivery(index: number, random: Random): Delivery {
+/** One invented unit of DBS-A: hidden gain and offset, five readings. Keys of a round share a start, so that it can be checked apart. */
+export function delivery(index: number, random: Random, round = 0): Delivery {
   const gain = (random.next() - 0.5) * 4e-4
   const offset = (random.next() - 0.5) * 2e-5
   const points = [0, 65536, 131072, 196608, 262143].map((code) => {
     const ideal = (10 * code) / 262144
     return { code, measured: ideal + offset + gain * ideal + (random.next() - 0.5) * 2e-6 }
   })
-  const unit = `F-${String(index).padStart(7, '0')}`
+  const unit = `F-${round}-${String(index).padStart(7, '0')}`
   return {
-    key: `fault-${index}`,
+    key: `fault-${round}-${index}`,
     unit,
     body: JSON.stringify({ design: 'DBS-A', unit, channel: '1', applied: 'neutral', points }),
   }
