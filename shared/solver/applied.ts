@@ -7,7 +7,8 @@ import type { Applied, PerAdjuster, Which } from './types.ts'
 export type AppliedV = { gain: number; offset: number; assumed: boolean }
 
 /**
- * The voltages that applied codes make. Nothing said gives neutral; a code within half a step of nominal is neutral too.
+ * The voltages that applied codes make. Nothing said gives neutral, which stands for nominal to within half a step; a code
+ * that is given counts exactly, because taking it for nominal would put up to half a step of error into the next pass.
  * @param applied `neutral`, a pair of codes, or nothing
  * @returns volts at each node (0 for an absent adjuster)
  * @throws applied-unknown: a code that the DAC does not have, or an adjuster that the design does not have
@@ -35,8 +36,7 @@ function voltage(trimmer: Trimmer, code: number): number {
     const top = trimmer.count - 1
     unknown(trimmer.which, `Applied ${trimmer.which} code ${code} does not exist: the highest is ${top}.`)
   }
-  const v = nodeV(trimmer, code)
-  return Math.abs(v - trimmer.nominalV) <= Math.abs(trimmer.stepV) / 2 ? trimmer.nominalV : v
+  return nodeV(trimmer, code)
 }
 
 function unknown(which: Which, message: string): never {

@@ -45,7 +45,7 @@ const pieces = [
   'NULL',
 ]
 
-it('ASVS V1.2.4 of 500 texts made of SQL, each is stored, found and told apart as any other text', async () => {
+it('ASVS V1.2.4 of 500 texts made of SQL, each is stored, found and told apart like any other text', async () => {
   const seed = runSeed()
   const random = seededRandom(seed)
   const texts = new Set<string>()

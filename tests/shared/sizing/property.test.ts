@@ -311,14 +311,10 @@ describe(`seed ${seed}`, () => {
 /**
  * Nominal lies in the needed reach of each adjuster. Where a bias keeps it out, the end that is nearer to nominal is the
  * last voltage that a unit ends at; on its way there, a second pass with a stronger effect than stated may ask for less.
- * Parts of one or two bits are left out too: a code within half a step of nominal counts as nominal, which is half of all
- * that such a part has.
  */
 function straddles({ adjusters }: ReturnType<typeof sizeDesign>): boolean {
   return [adjusters.gain, adjusters.offset].every(
-    (size) =>
-      !size ||
-      (size.requiredBits > 2 && size.requiredLowV <= size.nominalV && size.requiredHighV >= size.nominalV),
+    (size) => !size || (size.requiredLowV <= size.nominalV && size.requiredHighV >= size.nominalV),
   )
 }
 
