@@ -1,3 +1,5 @@
+import { guarded } from '../shared/points/formula-guard.ts'
+
 /** Plain text tables: columns aligned, numbers to the right, two spaces between. */
 
 export type Cell = string | number | null | undefined
@@ -37,6 +39,6 @@ export function csv(heads: readonly string[], rows: readonly (readonly Cell[])[]
 function csvCell(cell: Cell): string {
   if (cell === null || cell === undefined) return ''
   if (typeof cell === 'number') return String(cell)
-  const text = /^[=+\-@\t\r]/.test(cell) ? `'${cell}` : cell
+  const text = guarded(cell)
   return /[",\r\n]/.test(text) ? `"${text.replaceAll('"', '""')}"` : text
 }

@@ -1,6 +1,7 @@
 import { type ErrorCode, OgeeError } from '../errors.ts'
 import { limits } from '../limits.ts'
 import type { MeasuredPoint } from '../solver/types.ts'
+import { unguarded } from './formula-guard.ts'
 import { type CsvProblem, names, type PointGroup, place, readApplied, sameMeasurement } from './group.ts'
 import { type Header, headerOf } from './header.ts'
 import {
@@ -114,7 +115,7 @@ export class PointsReader {
 
   private groupCells(row: CsvRow): Map<Column, string> {
     const cells = new Map<Column, string>()
-    for (const column of groupColumns) cells.set(column, this.cell(row, column))
+    for (const column of groupColumns) cells.set(column, unguarded(this.cell(row, column)))
     return cells
   }
 

@@ -1,3 +1,4 @@
+import { guarded } from './formula-guard.ts'
 import type { PointGroup } from './group.ts'
 import { type Column, columns, groupColumns } from './row.ts'
 
@@ -37,9 +38,14 @@ function rowOf(group: PointGroup, point: PointGroup['points'][number]): Row {
     temperature: text(point.temperatureC),
   }
   for (const column of groupColumns) {
-    if (column !== 'applied_gain' && column !== 'applied_offset') row[column] = group[column]
+    if (column !== 'applied_gain' && column !== 'applied_offset') row[column] = named(group[column])
   }
   return row
+}
+
+/** A name that somebody gave, kept from being run as a formula; the reader takes the guard away again. */
+function named(value: string | undefined): string | undefined {
+  return value === undefined ? undefined : guarded(value)
 }
 
 /** The shortest decimal that is this double. */
