@@ -1,13 +1,19 @@
 import { PlotText } from './axes.tsx'
 
-export type EndLabel = { y: number; text: string; colour: string }
+export type EndLabel = { y: number; text: string; colour: string; weight?: number }
 
 const lineHeight = 13
 
 /** Direct labels at the right end, moved apart where they would cover one another. */
 export function EndLabels({ x, labels }: { x: number; labels: readonly EndLabel[] }) {
   return spread(labels).map((label) => (
-    <PlotText key={`${label.text} ${label.y}`} x={x} y={label.y + 4} colour={label.colour}>
+    <PlotText
+      key={`${label.text} ${label.y}`}
+      x={x}
+      y={label.y + 4}
+      colour={label.colour}
+      weight={label.weight ?? 400}
+    >
       {label.text}
     </PlotText>
   ))

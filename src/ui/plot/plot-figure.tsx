@@ -18,15 +18,19 @@ export type PlotTableData = {
 
 type PlotFigureProps = {
   title: string
+  /** Said after the title, in ink-3. */
+  note?: string | undefined
   /** Unit choices, value and label; none when the plot has one unit only. */
   units: readonly (readonly [string, string])[]
   unit: string
   onUnit: (unit: string) => void
   table: PlotTableData
-  caption: string
+  caption: ReactNode
   /** Given when a page key shows all its plots as tables. */
   asTable?: boolean | undefined
   onTable?: ((asTable: boolean) => void) | undefined
+  /** Other controls, left of the switch. */
+  side?: ReactNode
   children: (width: number) => ReactNode
 }
 
@@ -45,10 +49,14 @@ export function PlotFigure(props: PlotFigureProps) {
   }
   return (
     <figure aria-labelledby={titleId} className="plot-figure break-inside-avoid border-t border-rule pt-1">
-      <div className="flex min-h-[30px] items-center justify-between gap-3">
-        <h2 id={titleId} className="text-body font-semibold">
-          {props.title}
-        </h2>
+      <div className="flex min-h-[30px] flex-wrap items-center gap-x-3 gap-y-1">
+        <div className="flex grow flex-wrap items-baseline gap-x-3">
+          <h2 id={titleId} className="text-body font-semibold">
+            {props.title}
+          </h2>
+          {props.note ? <span className="text-small text-ink-3">{props.note}</span> : null}
+        </div>
+        {props.side}
         <Segmented
           label={`${props.title}, shown in`}
           segments={[...props.units, ['table', 'table'] as const].map(([value, label]) => ({ value, label }))}
@@ -66,7 +74,7 @@ export function PlotFigure(props: PlotFigureProps) {
   )
 }
 
-function PlotTable({ title, table }: { title: string; table: PlotTableData }) {
+export function PlotTable({ title, table }: { title: string; table: PlotTableData }) {
   return (
     <div className="mt-2">
       <Table caption={`${title}, as a table`}>

@@ -1,10 +1,21 @@
 import { type KeyboardEvent, useState } from 'react'
 
-const steps: Record<string, (at: number, last: number) => number> = {
+type Steps = Readonly<Record<string, (at: number, last: number) => number>>
+
+/** Points in reading order. */
+const across: Steps = {
   ArrowRight: (at, last) => Math.min(at + 1, last),
   ArrowDown: (at, last) => Math.min(at + 1, last),
   ArrowLeft: (at) => Math.max(at - 1, 0),
   ArrowUp: (at) => Math.max(at - 1, 0),
+  Home: () => 0,
+  End: (_, last) => last,
+}
+
+/** Stops that stand above one another, the lowest first. */
+export const upward: Steps = {
+  ArrowUp: (at, last) => Math.min(at + 1, last),
+  ArrowDown: (at) => Math.max(at - 1, 0),
   Home: () => 0,
   End: (_, last) => last,
 }
@@ -17,8 +28,11 @@ export type PointStop = {
   onFocus: () => void
 }
 
-/** One tab stop for a plot; arrow keys, Home and End walk its points. */
-export function useWalk(count: number): (index: number) => PointStop {
+/**
+ * One tab stop for a plot; arrow keys, Home and End walk its points. Where a drawing has several walks, each stands in an
+ * element with `data-walk`.
+ */
+export function useWalk(count: number, steps: Steps = across): (index: number) => PointStop {
   const [at, setAt] = useState(0)
   const stop = Math.min(at, Math.max(0, count - 1))
   return (index) => ({
@@ -32,7 +46,8 @@ export function useWalk(count: number): (index: number) => PointStop {
       event.preventDefault()
       const next = step(index, count - 1)
       setAt(next)
-      event.currentTarget.ownerSVGElement?.querySelector<SVGElement>(`[data-stop="${next}"]`)?.focus()
+      const walk = event.currentTarget.closest('[data-walk]') ?? event.currentTarget.ownerSVGElement
+      walk?.querySelector<SVGElement>(`[data-stop="${next}"]`)?.focus()
     },
   })
 }

@@ -1,0 +1,48 @@
+import { Fragment } from 'react'
+import { Explain, type Explained } from './explain.tsx'
+
+/** A number as it stands in a sentence, and where it comes from. */
+export type NumberInText = { text: string; label: string; path: string }
+
+type Piece = { text: string; number: NumberInText | null; at: number }
+
+/** A sentence with its numbers, each found after the one before; one that does not occur stays plain text. */
+export function piecesOf(sentence: string, numbers: readonly NumberInText[]): Piece[] {
+  const pieces: Piece[] = []
+  let at = 0
+  for (const number of numbers) {
+    const found = sentence.indexOf(number.text, at)
+    if (found < 0) continue
+    pieces.push({ text: sentence.slice(at, found), number: null, at })
+    pieces.push({ text: number.text, number, at: found })
+    at = found + number.text.length
+  }
+  pieces.push({ text: sentence.slice(at), number: null, at })
+  return pieces.filter(({ text }) => text !== '')
+}
+
+type ExplainedSentenceProps = Explained & {
+  sentence: string
+  numbers: readonly NumberInText[]
+  onField?: ((path: string) => void) | undefined
+}
+
+export function ExplainedSentence({ sentence, numbers, design, result, onField }: ExplainedSentenceProps) {
+  return piecesOf(sentence, numbers).map(({ text, number, at }) =>
+    number === null ? (
+      <Fragment key={at}>{text}</Fragment>
+    ) : (
+      <Explain
+        key={at}
+        design={design}
+        result={result}
+        of={[{ label: number.label, path: number.path }]}
+        name={number.label}
+        onField={onField}
+        className="-my-1"
+      >
+        {text}
+      </Explain>
+    ),
+  )
+}

@@ -1,0 +1,33 @@
+import { bitsWord, volts } from '../../../shared/design-words/words.ts'
+import type { AdjusterSize } from '../../../shared/solver/sizing/types.ts'
+import type { Which } from '../../../shared/solver/types.ts'
+import type { NumberInText } from './explained-sentence.tsx'
+
+/** The numbers of the verdict sentences in the order in which the sentences say them. */
+export function verdictNumbers(which: Which, size: AdjusterSize): NumberInText[] {
+  const at = (path: string) => `/adjusters/${which}/${path}`
+  return [
+    {
+      text: volts(size.availableReachOutputV),
+      label: `reach of ${which} at the output`,
+      path: at('availableReachOutputV'),
+    },
+    {
+      text: volts(size.requiredReachOutputV),
+      label: `needed reach of ${which} at the output`,
+      path: at('requiredReachOutputV'),
+    },
+    {
+      text: volts(size.available.outputStepV),
+      label: `step of ${which} at the output`,
+      path: at('available/outputStepV'),
+    },
+    {
+      text: volts(size.requiredStepV * size.outputPerV),
+      label: `allowed step of ${which}`,
+      path: at('requiredStepV'),
+    },
+    { text: bitsWord(size.available.bits), label: `bits of ${which}`, path: at('available/bits') },
+    { text: String(size.requiredBits), label: `bits that ${which} needs`, path: at('requiredBits') },
+  ]
+}
