@@ -16,6 +16,7 @@ type AnyInput = {
   query?: Record<string, unknown>
   body?: unknown
   idempotencyKey?: string
+  ifMatch?: string
 }
 
 /**
@@ -48,6 +49,7 @@ async function send(caller: Caller, endpoint: Endpoint, request: AnyInput): Prom
   const headers: Record<string, string> = { accept: 'application/json', ...caller.headers }
   if (request.body !== undefined) headers['content-type'] = 'application/json'
   if (request.idempotencyKey !== undefined) headers['idempotency-key'] = request.idempotencyKey
+  if (request.ifMatch !== undefined) headers['if-match'] = request.ifMatch
   try {
     return await caller.fetch(`${caller.baseUrl}/api/v1${pathOf(endpoint, request)}`, {
       method: endpoint.method,

@@ -89,6 +89,8 @@ export const errorTable = {
   'already-withdrawn': badInput('The record was withdrawn before', 409),
   'revision-not-released': badInput('The revision is not released'),
   'revision-withdrawn': badInput('The revision was withdrawn'),
+  'revision-state': badInput('The revision is in another state', 409),
+  'author-cannot-release': { status: 403, title: 'The author does not release', retry: false, exit: 77 },
   'instrument-unknown': badInput('There is no such instrument'),
   'kind-not-served': badInput('This version does not record that kind yet'),
   // Identity

@@ -1,6 +1,7 @@
 import { Op } from 'sequelize'
 import type { DesignLine } from '../../shared/contract/designs.ts'
 import type { Database } from '../db/connection.ts'
+import type { Sql } from '../db/sql.ts'
 import { designReply, type RevisionRow } from '../models/design.ts'
 import { plain } from '../models/table.ts'
 
@@ -31,7 +32,7 @@ export async function readDesigns(
   return {
     items: page.map((design) =>
       designReply(
-        design.designKey,
+        design,
         revisions.filter((revision) => revision.designId === design.id),
       ),
     ),
@@ -39,11 +40,20 @@ export async function readDesigns(
   }
 }
 
-/** The design's revisions, lowest first; null when there is no such design. */
-export async function readDesign({ models }: Database, key: string): Promise<RevisionRow[] | null> {
-  const design = (await models.designs.findOne({ where: { designKey: key } }))?.get()
+/** One design with its revisions, lowest first; null when there is no such design. */
+export async function readDesign(
+  { models }: Database,
+  key: string,
+  within: Sql['within'] = {},
+): Promise<DesignLine | null> {
+  const design = (await models.designs.findOne({ where: { designKey: key }, ...within }))?.get()
   if (!design) return null
-  return plain(await models.revisions.findAll({ where: { designId: design.id }, order: ['number'] }))
+  const rows = await models.revisions.findAll({
+    where: { designId: design.id },
+    order: ['number'],
+    ...within,
+  })
+  return designReply(design, plain(rows))
 }
 
 /** One revision with its exact bytes; the highest released one for `released`. */
@@ -52,17 +62,21 @@ export async function readRevision(
   key: string,
   number: number | 'released',
 ): Promise<{ row: RevisionRow; bytes: Buffer } | null> {
-  const revisions = await readDesign(database, key)
-  const row =
-    number === 'released'
-      ? revisions?.filter((revision) => revision.state === 'released').at(-1)
-      : revisions?.find((revision) => revision.number === number)
+  const { models, sql } = database
+  const design = (await models.designs.findOne({ where: { designKey: key } }))?.get()
+  if (!design) return null
+  const which = number === 'released' ? { state: 'released' as const } : { number }
+  const row = (
+    await models.revisions.findOne({ where: { designId: design.id, ...which }, order: [['number', 'DESC']] })
+  )?.get()
   if (!row) return null
-  const [stored] = await database.sql.rows<{ bytes: Buffer | null }>(
-    `SELECT COALESCE(r.document, d.bytes) AS bytes FROM revisions r
+  const [stored] = await sql.rows<{ bytes: Buffer | null; version: number }>(
+    `SELECT COALESCE(r.document, d.bytes) AS bytes, r.version FROM revisions r
       LEFT JOIN design_documents d ON d.hash = r.document_hash WHERE r.design_id = ? AND r.number = ?`,
     [row.designId, row.number],
   )
   if (!stored?.bytes) throw new Error(`Revision ${row.number} of design ${key} has no document.`)
+  // Somebody saved between the two reads: hash and bytes must be of one state.
+  if (stored.version !== row.version) return readRevision(database, key, row.number)
   return { row, bytes: stored.bytes }
 }

@@ -3,6 +3,7 @@ import type { RunnableMigration } from 'umzug'
 import { guards } from './migrations/001-guards.ts'
 import { mutableTables } from './migrations/001-mutable.ts'
 import { recordedTables } from './migrations/001-recorded.ts'
+import { revisionHistory } from './migrations/002-revisions.ts'
 
 /**
  * Every step there is, in order, by static import: a built file and a source file run the same names. Statements can run
@@ -10,6 +11,7 @@ import { recordedTables } from './migrations/001-recorded.ts'
  */
 export const migrations: RunnableMigration<Sequelize>[] = [
   step('001-tables', [...mutableTables, ...recordedTables, ...guards]),
+  step('002-revisions', revisionHistory),
 ]
 
 function step(name: string, statements: readonly string[]): RunnableMigration<Sequelize> {

@@ -8,8 +8,8 @@ import { readDesign } from '../commands/read-design.ts'
 import { recordTrims } from '../commands/record-trims.ts'
 import { jobOf } from '../commands/recorder.ts'
 import { recordNumbers } from '../commands/recording/record-numbers.ts'
-import { releaseRevision } from '../commands/release-revision.ts'
-import { submitRevision } from '../commands/submit-revision.ts'
+import { releaseRevision } from '../commands/revisions/release-revision.ts'
+import { submitRevision } from '../commands/revisions/submit-revision.ts'
 import { transaction } from '../db/transaction.ts'
 import type { Deps } from '../http/deps.ts'
 import { hashPassword } from '../http/passwords.ts'
@@ -104,10 +104,13 @@ async function loadDesigns(deps: DemoDeps, at: Date): Promise<void> {
   const engineer = (await deps.database.models.people.findOne({ where: { role: 'engineer' } }))?.get()
   if (!engineer) throw new Error('The demo has no engineer.')
   for (const { key, document } of demoDesigns) {
-    const state = async () => (await readDesign(deps.database, key))?.[0]?.state
+    const state = async () => (await readDesign(deps.database, key))?.revisions[0]?.state
+    const first = { key, number: 1, ifMatch: null }
     if ((await state()) === undefined) await createDesign(dated, { key, document, author })
-    if ((await state()) === 'draft') await submitRevision(deps, { key, number: 1 })
-    if ((await state()) === 'in-review') await releaseRevision(dated, { key, number: 1, by: engineer })
+    if ((await state()) === 'draft') await submitRevision(dated, { ...first, by: author })
+    if ((await state()) === 'in-review') {
+      await releaseRevision(dated, { ...first, by: { kind: 'person', id: engineer.id, name: engineer.name } })
+    }
   }
 }
 

@@ -28,7 +28,7 @@ export type Deps = {
   notifyLedger: () => void
   now: () => Date
   logger: Logger
-  config: Pick<Config, 'baseUrl' | 'tls' | 'trustedHops' | 'webRoot' | 'dev'>
+  config: Pick<Config, 'baseUrl' | 'tls' | 'trustedHops' | 'webRoot' | 'dev' | 'selfRelease'>
   setup: SetupSecret
   quotas: Quotas
   /** Serves the page while developing, in place of the built one. */

@@ -28,6 +28,8 @@ export type Input<E extends Endpoint> = {
   /** The body as it was sent, before defaults: what hashes and exact bytes are made from. */
   rawBody: unknown
   idempotencyKey: string
+  /** What the caller says that it saw; empty where nobody asks. */
+  ifMatch: string
   request: Request
   response: Response
 }
@@ -102,6 +104,7 @@ function inputOf<E extends Endpoint>(endpoint: E, request: Request, response: Re
     body: (body ? validate(body, rawBody, 'body') : undefined) as Output<E['body']>,
     rawBody,
     idempotencyKey: endpoint.idempotent ? idempotencyKeyOf(request) : '',
+    ifMatch: endpoint.conditional ? ifMatchOf(request) : '',
     request,
     response,
   }
@@ -123,6 +126,15 @@ function idempotencyKeyOf(request: Request): string {
     )
   }
   return key
+}
+
+function ifMatchOf(request: Request): string {
+  const etag = request.get('if-match')
+  if (etag !== undefined && etag !== '') return etag
+  throw new OgeeError(
+    'precondition-required',
+    'Send a header If-Match with the etag of what you saw, so that nobody else’s change is lost.',
+  )
 }
 
 function send(response: Response, endpoint: Endpoint, reply: unknown, check: boolean): void {

@@ -1,8 +1,14 @@
 import type { Sequelize } from 'sequelize'
-import type { DesignLine } from '../../shared/contract/designs.ts'
-import { bytes, type Table, table, text, time, whole } from './table.ts'
+import type { DesignLine, RevisionLine } from '../../shared/contract/designs.ts'
+import { bytes, flag, longText, type Table, table, text, time, whole } from './table.ts'
 
-export type DesignRow = { id: number; designKey: string; createdAt: Date }
+export type DesignRow = {
+  id: number
+  designKey: string
+  createdAt: Date
+  copiedFrom: string | null
+  copiedRevision: number | null
+}
 export type RevisionState = 'draft' | 'in-review' | 'released' | 'withdrawn'
 export type RevisionRow = {
   designId: number
@@ -13,9 +19,24 @@ export type RevisionRow = {
   authorId: string | null
   author: string
   createdAt: Date
+  /** Goes up with every change of the row. */
+  version: number
+  basedOn: number | null
+  /** JSON: everybody who saved it, its author first; null for one that was made before that was kept. */
+  writers: string | null
+  savedBy: string | null
+  savedAt: Date | null
+  submittedBy: string | null
+  submittedAt: Date | null
+  returnedBy: string | null
+  returnedAt: Date | null
+  returnReason: string | null
   releasedBy: string | null
   releasedAt: Date | null
+  releasedByAuthor: boolean
+  withdrawnBy: string | null
   withdrawnAt: Date | null
+  withdrawReason: string | null
 }
 export type LotRow = {
   id: number
@@ -31,6 +52,8 @@ export const designs = (sequelize: Sequelize): Table<DesignRow> =>
     id: { type: whole, primaryKey: true, autoIncrement: true },
     designKey: text,
     createdAt: time,
+    copiedFrom: text,
+    copiedRevision: whole,
   })
 
 /** Without the draft's document, which only the command that reads one revision asks for. */
@@ -44,9 +67,22 @@ export const revisions = (sequelize: Sequelize): Table<RevisionRow> =>
     authorId: text,
     author: text,
     createdAt: time,
+    version: whole,
+    basedOn: whole,
+    writers: longText,
+    savedBy: text,
+    savedAt: time,
+    submittedBy: text,
+    submittedAt: time,
+    returnedBy: text,
+    returnedAt: time,
+    returnReason: longText,
     releasedBy: text,
     releasedAt: time,
+    releasedByAuthor: flag,
+    withdrawnBy: text,
     withdrawnAt: time,
+    withdrawReason: longText,
   })
 
 export const lots = (sequelize: Sequelize): Table<LotRow> =>
@@ -59,26 +95,61 @@ export const lots = (sequelize: Sequelize): Table<LotRow> =>
     createdAt: time,
   })
 
-export function revisionReply(row: RevisionRow): DesignLine['revisions'][number] {
+/** What `If-Match` takes: no two states of a design's revisions share it. */
+export const etagOf = ({ number, version }: Pick<RevisionRow, 'number' | 'version'>) =>
+  `"${number}.${version}"`
+
+export type Writer = { kind: 'person' | 'token'; id: string; name: string }
+
+export function writersOf(row: Pick<RevisionRow, 'writers' | 'authorId' | 'author'>): Writer[] {
+  if (row.writers !== null) return JSON.parse(row.writers) as Writer[]
+  return row.authorId === null ? [] : [{ kind: 'person', id: row.authorId, name: row.author }]
+}
+
+const isoOf = (time: Date | null) => time?.toISOString() ?? null
+
+export function revisionReply(row: RevisionRow): RevisionLine {
   return {
     number: row.number,
     state: row.state,
     title: row.title,
     author: row.author,
     createdAt: row.createdAt.toISOString(),
+    basedOn: row.basedOn,
+    writers: writersOf(row),
+    savedBy: row.savedBy ?? row.author,
+    savedAt: (row.savedAt ?? row.createdAt).toISOString(),
+    submittedBy: row.submittedBy,
+    submittedAt: isoOf(row.submittedAt),
+    returnedBy: row.returnedBy,
+    returnedAt: isoOf(row.returnedAt),
+    returnReason: row.returnReason,
     releasedBy: row.releasedBy,
-    releasedAt: row.releasedAt?.toISOString() ?? null,
+    releasedAt: isoOf(row.releasedAt),
+    releasedByAuthor: Boolean(row.releasedByAuthor),
+    withdrawnBy: row.withdrawnBy,
+    withdrawnAt: isoOf(row.withdrawnAt),
+    withdrawReason: row.withdrawReason,
     hash: row.documentHash.toString('hex'),
+    etag: etagOf(row),
   }
 }
 
 /** `rows` are the design's revisions, lowest first. */
-export function designReply(key: string, rows: readonly RevisionRow[]): DesignLine {
+export function designReply(
+  design: Pick<DesignRow, 'designKey' | 'copiedFrom' | 'copiedRevision'>,
+  rows: readonly RevisionRow[],
+): DesignLine {
   const released = rows.filter((row) => row.state === 'released').at(-1)
+  const { designKey: key, copiedFrom, copiedRevision } = design
   return {
     key,
     title: (released ?? rows.at(-1))?.title ?? key,
     released: released?.number ?? null,
+    copiedFrom:
+      copiedFrom === null || copiedRevision === null
+        ? null
+        : { design: copiedFrom, revision: copiedRevision },
     revisions: rows.map(revisionReply),
   }
 }

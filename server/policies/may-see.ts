@@ -1,3 +1,4 @@
+import { OgeeError } from '../../shared/errors.ts'
 import type { Principal } from '../http/principal.ts'
 
 /** What a principal may see of records: everything, or one station's; of every design, or of some. */
@@ -21,3 +22,11 @@ export function maySeeRecord(
 export function maySeeDesign(principal: Principal, design: string): boolean {
   return principal.kind === 'person' || principal.designs === null || principal.designs.includes(design)
 }
+
+export function requireDesign(principal: Principal, design: string): void {
+  if (!maySeeDesign(principal, design)) throw designNotOpen()
+}
+
+/** The same for what is not there and what is not open, so that neither can be told from the other. */
+export const designNotOpen = () =>
+  new OgeeError('not-found', 'There is no such design or revision, or it is not open to you.')

@@ -6,6 +6,7 @@ import type { Serve } from '../http/serve.ts'
 import { productVersion } from '../root.ts'
 import { designRoutes } from './designs.ts'
 import { ledgerRoutes } from './ledger.ts'
+import { revisionRoutes } from './revisions.ts'
 import type { RouteDeps } from './route-deps.ts'
 import { sessionRoutes } from './session.ts'
 import { setupRoutes } from './setup.ts'
@@ -25,6 +26,7 @@ export function registerRoutes(serve: Serve, router: Router, deps: RouteDeps): v
     sessionRoutes,
     setupRoutes,
     designRoutes,
+    revisionRoutes,
     trimRoutes,
     unitRoutes,
     stationRoutes,

@@ -1,6 +1,16 @@
 import { getDesign, getRevision, listDesigns, listLots, postDesign } from './designs.ts'
 import type { Endpoint } from './endpoint.ts'
 import { getCheckpoint, getLedgerKey } from './ledger.ts'
+import {
+  getDifference,
+  getUse,
+  postRelease,
+  postReturn,
+  postReview,
+  postRevision,
+  postWithdrawal,
+  putRevision,
+} from './revisions.ts'
 import { deleteSession, getMe, getSetup, postSession, postSetup } from './session.ts'
 import { listStations, patchStation, postStation } from './stations.ts'
 import { deleteToken, listTokens, postToken } from './tokens.ts'
@@ -18,6 +28,14 @@ export const allEndpoints: readonly Endpoint[] = [
   postDesign,
   getDesign,
   getRevision,
+  postRevision,
+  putRevision,
+  postReview,
+  postReturn,
+  postRelease,
+  postWithdrawal,
+  getUse,
+  getDifference,
   listLots,
   postTrim,
   listTrims,

@@ -31,6 +31,8 @@ export type Endpoint<
   body?: Body
   /** Takes `Idempotency-Key`. */
   idempotent?: boolean
+  /** Takes `If-Match`: the `etag` of what the caller saw. */
+  conditional?: boolean
   reply: { status: 200 | 201 | 204; schema: Reply; mediaType?: 'application/json' | 'text/plain' }
   /** Refusals of its own, beside those that every route can give. */
   refusals: readonly ErrorCode[]
@@ -50,10 +52,15 @@ type PartOf<Name extends string, Schema> = Schema extends z.ZodType
   ? { [K in Name]: z.input<Schema> }
   : unknown
 
-/** What a caller passes: `params`, `query`, `body` where the endpoint has them, and the key of an idempotent one. */
+/** What a caller passes: `params`, `query`, `body` where the endpoint has them, the key of an idempotent one, the etag of a conditional one. */
 export type InputOf<E> =
   E extends Endpoint<infer P, infer Q, infer B, z.ZodType>
-    ? PartOf<'params', P> & PartOf<'query', Q> & PartOf<'body', B> & { idempotencyKey?: string }
+    ? PartOf<'params', P> &
+        PartOf<'query', Q> &
+        PartOf<'body', B> & {
+          idempotencyKey?: string
+          ifMatch?: string
+        }
     : never
 
 /** What comes back. */

@@ -77,10 +77,18 @@ function parametersOf(endpoint: Endpoint, schemas: JsonObject): JsonObject[] {
     description: 'Chosen by the client; the same key and body again give the first answer.',
     schema: { type: 'string', minLength: 1, maxLength: 128, pattern: '^[\\x21-\\x7e]+$' },
   }
+  const etag = {
+    name: 'If-Match',
+    in: 'header',
+    required: true,
+    description: 'The etag of what the caller saw; refused with 412 when it was changed since.',
+    schema: { type: 'string', minLength: 1 },
+  }
   return [
     ...fields(endpoint.params, 'path'),
     ...fields(endpoint.query, 'query'),
     ...(endpoint.idempotent ? [key] : []),
+    ...(endpoint.conditional ? [etag] : []),
   ]
 }
 
@@ -115,6 +123,7 @@ function problemsOf(endpoint: Endpoint): JsonObject {
   if (endpoint.params || endpoint.query || endpoint.body) codes.push('invalid-request')
   if (endpoint.params) codes.push('not-found')
   if (endpoint.body) codes.push('malformed-json', 'unsupported-media-type', 'body-too-large')
+  if (endpoint.conditional) codes.push('precondition-required', 'precondition-failed')
   const byStatus = new Map<number, Set<ErrorCode>>()
   for (const code of codes) {
     const { status } = errorTable[code]

@@ -3,7 +3,7 @@ import { finite } from './primitives.ts'
 
 /** `ogee.size/1`: reach, step and bits that a design needs against what it has. Readers ignore keys that they do not know. */
 
-const sizeVerdict = z.enum(['covers', 'short', 'coarse', 'both'])
+export const sizeVerdict = z.enum(['covers', 'short', 'coarse', 'both'])
 const span = z.object({ bits: z.int(), lowV: finite, highV: finite })
 
 const adjusterSize = z.object({

@@ -4,7 +4,7 @@ import { allEndpoints } from '../../shared/contract/all-endpoints.ts'
 import type { Endpoint } from '../../shared/contract/endpoint.ts'
 import { type Role, role as roles, type Scope, scope as scopes } from '../../shared/contract/primitives.ts'
 import { api, newKey, post, signIn } from '../support/server-client.ts'
-import { trimBody } from '../support/server-factories.ts'
+import { trimBody, unipolar } from '../support/server-factories.ts'
 import {
   addDesign,
   addPerson,
@@ -106,11 +106,16 @@ function requestTo(endpoint: Endpoint, send: Caller['send']) {
   const id =
     endpoint.id === 'readRecord' ? recordOfA : endpoint.path.startsWith('/tokens') ? 'AAAAAAAA' : unknownId
   const params = { id, key: 'U18', number: 'released' }
-  const query = endpoint.id === 'findUnits' ? { serial: 'M-1' } : {}
-  const verb = endpoint.method.toLowerCase() as 'get' | 'post' | 'patch' | 'delete'
+  const queries: Record<string, object> = {
+    findUnits: { serial: 'M-1' },
+    compareRevisions: { to: 'released' },
+  }
+  const query = (queries[endpoint.id] ?? {}) as Record<string, string>
+  const verb = endpoint.method.toLowerCase() as 'get' | 'post' | 'put' | 'patch' | 'delete'
   const sent = api(harness.url, verb, pathOf(endpoint, { params, query }), {
     ...send,
     ...(endpoint.idempotent ? { key: newKey() } : {}),
+    ...(endpoint.conditional ? { headers: { 'If-Match': '"0.0"' } } : {}),
   })
   // An empty object is refused by every schema of ours, but only after access.
   return endpoint.body ? sent.send({}) : sent
@@ -159,7 +164,18 @@ describe('ASVS V8.2.2 object-level access: two stations, ids swapped', () => {
     const get = (path: string) => api(harness.url, 'get', path, narrow)
     expect((await get('/designs')).body.items.map((design: { key: string }) => design.key)).toEqual(['OTHER'])
     expect((await get('/designs/U18')).status).toBe(404)
-    expect((await get('/designs/U18/revisions/1')).status).toBe(404)
+    for (const path of ['revisions/1', 'revisions/1/difference?to=1', 'use']) {
+      expect((await get(`/designs/U18/${path}`)).status, path).toBe(404)
+    }
+    const headers = { 'If-Match': '*' }
+    const document = unipolar()
+    const to = (verb: 'post' | 'put', path: string) =>
+      api(harness.url, verb, `/designs/U18/${path}`, { ...narrow, headers })
+    expect((await to('post', 'revisions').send({ document })).status).toBe(404)
+    expect((await to('put', 'revisions/1').send({ document })).status).toBe(404)
+    expect((await to('post', 'revisions/1/review')).status).toBe(404)
+    const copy = { key: 'OTHER', document, copiedFrom: { design: 'U18', revision: 1 } }
+    expect((await api(harness.url, 'post', '/designs', narrow).send(copy)).status).toBe(404)
     expect((await get(`/trims/${recordOfA}`)).status).toBe(404)
     expect((await get('/trims')).body.items).toEqual([])
     expect((await get('/units?serial=M-1')).body.items).toEqual([])

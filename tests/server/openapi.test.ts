@@ -132,17 +132,24 @@ describe('S3 fuzzing by the document', () => {
       measuredAt: '2026-01-01T00:00:00Z',
     }),
     createDesign: { key: 'F1', document: unipolar() },
+    startRevision: { document: unipolar({ title: 'Fuzzed' }), from: 1 },
+    saveDraft: { document: unipolar({ title: 'Fuzzed' }) },
+    returnRevision: { reason: 'a reason long enough' },
+    withdrawRevision: { reason: 'a reason long enough' },
     signIn: { email: 'a@example.org', password: 'b' },
     setUp: { secret: 's', name: 'N', email: 'a@example.org', password: 'p' },
     createStation: { name: 'S' },
     changeStation: { name: 'S2' },
     createToken: { name: 'T', station: null, scopes: ['designs:read'], days: 1 },
   }
+  const known: Record<string, string> = { key: 'U18', number: '2' }
   const anyRequest = fc.record({
     pick: fc.nat(),
     part: odd,
+    /** Half of the requests go to things that are there. */
+    known: fc.boolean(),
     query: fc.dictionary(
-      fc.constantFrom('unit', 'design', 'serial', 'after', 'limit', 'kind', 'verdict', 'x'),
+      fc.constantFrom('unit', 'design', 'serial', 'after', 'limit', 'kind', 'verdict', 'to', 'x'),
       fc.string(),
       { maxKeys: 3 },
     ),
@@ -159,8 +166,9 @@ describe('S3 fuzzing by the document', () => {
     )
     const work = samples.map((sample) => async () => {
       const { path, verb, operation } = list[sample.pick % list.length]!
-      const target = path.replaceAll(/\{(\w+)\}/g, () =>
-        encodeURIComponent(String(sample.part).replaceAll(/\p{Cs}/gu, '?')),
+      const part = typeof sample.part === 'string' ? sample.part : JSON.stringify(sample.part)
+      const target = path.replaceAll(/\{(\w+)\}/g, (_, name: string) =>
+        encodeURIComponent((sample.known && known[name]) || part.replaceAll(/\p{Cs}/gu, '?')),
       )
       const query = new URLSearchParams(Object.entries(sample.query)).toString()
       const body = changed[operation.operationId]?.[sample.mutation % 200]
@@ -187,6 +195,7 @@ describe('S3 fuzzing by the document', () => {
       'Content-Type': 'application/json',
       'x-ogee': '1',
       'Sec-Fetch-Site': 'same-origin',
+      'If-Match': '*',
     }
     if (who < 4) headers.Cookie = cookies[who]!
     else if (who < 6) headers.Authorization = `Bearer ${tokens[who - 4]}`

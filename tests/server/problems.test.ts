@@ -189,8 +189,11 @@ describe('problems (S4)', () => {
     )) {
       if (endpoint.access === 'open') continue
       const who = asRole[endpoint.access.roles[0] as 'administrator']
-      const path = endpoint.path.replace(':id', '01a230b2-a46d-7315-89af-a51980fdfb2a')
-      const verb = endpoint.method.toLowerCase() as 'post' | 'patch'
+      const path = endpoint.path
+        .replace(':id', '01a230b2-a46d-7315-89af-a51980fdfb2a')
+        .replace(':key', 'U18')
+        .replace(':number', '1')
+      const verb = endpoint.method.toLowerCase() as 'post' | 'put' | 'patch'
       const reply = await api(url, verb, path, { ...who, key: newKey() }).send({ isAdmin: true, id: 'x' })
       expect(reply.status, endpoint.id).toBe(422)
       const paths = reply.body.errors.map((error: { path: string }) => error.path)

@@ -9,8 +9,8 @@ import { createDesign } from '../../server/commands/create-design.ts'
 import { createPerson } from '../../server/commands/create-person.ts'
 import { createStation } from '../../server/commands/create-station.ts'
 import { createToken } from '../../server/commands/create-token.ts'
-import { releaseRevision } from '../../server/commands/release-revision.ts'
-import { submitRevision } from '../../server/commands/submit-revision.ts'
+import { releaseRevision } from '../../server/commands/revisions/release-revision.ts'
+import { submitRevision } from '../../server/commands/revisions/submit-revision.ts'
 import { openDatabase } from '../../server/db/connection.ts'
 import { migrate } from '../../server/db/migrate.ts'
 import { transaction } from '../../server/db/transaction.ts'
@@ -67,6 +67,7 @@ export async function serverHarness(options: Options = {}) {
       trustedHops: 0,
       webRoot: join(dir, 'web'),
       dev: false,
+      selfRelease: false,
       ...options.config,
     },
     setup: newSetupSecret(),
@@ -162,6 +163,7 @@ export async function addToken(
 export async function addDesign({ deps }: Pick<Harness, 'deps'>, key: string, document: Json = unipolar()) {
   const author = { kind: 'person', id: '00000000-0000-7000-8000-00000000000a', name: 'Author' } as const
   await createDesign(deps, { key, document, author })
-  await submitRevision(deps, { key, number: 1 })
-  await releaseRevision(deps, { key, number: 1, by: { id: 'b', name: 'Releaser' } })
+  await submitRevision(deps, { key, number: 1, by: author, ifMatch: null })
+  const releaser = { kind: 'person', id: 'b', name: 'Releaser' } as const
+  await releaseRevision(deps, { key, number: 1, by: releaser, ifMatch: null })
 }

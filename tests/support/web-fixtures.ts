@@ -5,6 +5,7 @@ import type { RecordLine, Record as TrimRecord } from '../../shared/contract/rec
 import type { Me } from '../../shared/contract/session.ts'
 import type { Station } from '../../shared/contract/stations.ts'
 import type { Token } from '../../shared/contract/tokens.ts'
+import { revisionLine } from './revision-lines.ts'
 import { codesResult, measured } from './web-results.ts'
 
 /** Answers of the server for tests of pages. `web-fixtures.test.ts` checks each against its schema. */
@@ -54,37 +55,32 @@ export const design = designDocument.parse({
 })
 
 const revisionLines: DesignLine['revisions'] = [
-  {
-    number: 1,
+  revisionLine({
     state: 'released',
     title: design.title,
-    author: 'M. Okafor',
-    createdAt: '2026-02-20T09:00:00Z',
     releasedBy: 'S. Brandt',
     releasedAt: '2026-03-02T10:00:00Z',
     hash,
-  },
-  {
-    number: 2,
-    state: 'draft',
-    title: design.title,
-    author: 'M. Okafor',
-    createdAt: '2026-05-20T09:00:00Z',
-    releasedBy: null,
-    releasedAt: null,
-    hash,
-  },
+  }),
+  revisionLine({ number: 2, title: design.title, createdAt: '2026-05-20T09:00:00Z', hash }),
 ]
 export const designLine: DesignLine = {
   key: 'DBS-A',
   title: design.title,
   released: 1,
+  copiedFrom: null,
   revisions: revisionLines,
 }
 export function revision(number: 1 | 2): Revision {
   const line = revisionLines[number - 1]
   if (!line) throw new Error('no such revision')
-  return { ...line, key: 'DBS-A', document: design, bytes: btoa(JSON.stringify(design)) }
+  return {
+    ...line,
+    key: 'DBS-A',
+    document: design,
+    bytes: btoa(JSON.stringify(design)),
+    authorMayRelease: false,
+  }
 }
 
 export function me(role: Role = 'engineer'): Me {

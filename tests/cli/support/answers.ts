@@ -6,6 +6,7 @@ import type { Record as StoredRecord } from '../../../shared/contract/record.ts'
 import type { Me } from '../../../shared/contract/session.ts'
 import type { Unit } from '../../../shared/contract/units.ts'
 import { computeCodes } from '../../../shared/solver/codes.ts'
+import { revisionLine } from '../../support/revision-lines.ts'
 import { examples } from './built-cli.ts'
 import type { Seen } from './fake-server.ts'
 
@@ -34,16 +35,17 @@ export const me: Me = {
 }
 
 export const revision = (sha256: string): Revision => ({
+  ...revisionLine({
+    state: 'released',
+    title: design.title,
+    createdAt: at,
+    releasedBy: 'S. Brandt',
+    releasedAt: at,
+    hash: sha256,
+  }),
   key: 'DBS-A',
-  number: 1,
-  state: 'released',
-  title: design.title,
-  author: 'M. Okafor',
-  createdAt: at,
-  releasedBy: 'S. Brandt',
-  releasedAt: at,
-  hash: sha256,
   document: design,
+  authorMayRelease: false,
   bytes: bytes.toString('base64'),
 })
 export const designBytes = bytes
