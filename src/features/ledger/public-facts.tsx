@@ -17,8 +17,10 @@ export function PublicFacts() {
           <>
             <dt>ledger</dt>
             <dd>
-              {head.origin}, <NumberText>{String(head.size)}</NumberText>{' '}
-              {head.size === 1 ? 'entry' : 'entries'}
+              {head.origin},{' '}
+              <span className="whitespace-nowrap">
+                <NumberText>{String(head.size)}</NumberText> {head.size === 1 ? 'entry' : 'entries'}
+              </span>
             </dd>
             <dt>root</dt>
             <dd>{head.rootHex}</dd>
