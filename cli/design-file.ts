@@ -1,4 +1,5 @@
 import { type Design, designDocument } from '../shared/contract/design.ts'
+import { issueWords } from '../shared/contract/issue-words.ts'
 import { OgeeError } from '../shared/errors.ts'
 import { limits } from '../shared/limits.ts'
 import { fieldErrors } from './field-errors.ts'
@@ -19,7 +20,7 @@ export async function readDesign(io: Io, path: string): Promise<Design> {
 /** The design in a parsed document that came from `name`. */
 export function designFrom(parsed: unknown, name: string): Design {
   refuseOtherFormats(parsed, name)
-  const checked = designDocument.safeParse(parsed)
+  const checked = designDocument.safeParse(parsed, { error: issueWords })
   if (checked.success) return checked.data
   const errors = checked.error.issues.flatMap(fieldErrors)
   const first = errors[0]

@@ -1,4 +1,5 @@
 import type * as z from 'zod'
+import { issueWords } from '../shared/contract/issue-words.ts'
 import { recordRequest } from '../shared/contract/record.ts'
 import { OgeeError } from '../shared/errors.ts'
 import { canonicalBytes, type Json } from '../shared/ledger/canonical.ts'
@@ -56,7 +57,7 @@ function present<T extends object>(values: T): { [K in keyof T]?: Exclude<T[K], 
 
 /** The same schema as the server's, so that a slip is told before anything is sent. */
 function checked(body: unknown): RequestBody {
-  const result = recordRequest.safeParse(body)
+  const result = recordRequest.safeParse(body, { error: issueWords })
   if (result.success) return body as RequestBody
   const errors = result.error.issues.flatMap(fieldErrors)
   const first = errors[0]

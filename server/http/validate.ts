@@ -1,4 +1,5 @@
 import type * as z from 'zod'
+import { issueWords } from '../../shared/contract/issue-words.ts'
 import { type FieldError, OgeeError } from '../../shared/errors.ts'
 
 /** Parses by the endpoint's schema; a breach is 422 with every bad field by JSON pointer. */
@@ -7,7 +8,7 @@ export function validate<Schema extends z.ZodType>(
   value: unknown,
   part: 'body' | 'query' | 'path',
 ): z.output<Schema> {
-  const parsed = schema.safeParse(value)
+  const parsed = schema.safeParse(value, { error: issueWords })
   if (parsed.success) return parsed.data
   const errors = parsed.error.issues.flatMap(fieldErrors).slice(0, 100)
   const first = errors[0]
