@@ -1,4 +1,5 @@
 import type { Design } from '../../../shared/contract/design.ts'
+import { OgeeError } from '../../../shared/errors.ts'
 import type { PointGroup } from '../../../shared/points/group.ts'
 import { type PointsCsv, parsePointsCsvAsync } from '../../../shared/points/parse-csv.ts'
 import { refuseLargeCsv } from '../../../shared/points/split-csv.ts'
@@ -12,7 +13,16 @@ const arithmetic = () => import('../../../shared/quantity/arithmetic.ts')
 export async function readPointsFile(file: File, design: Design): Promise<PointsCsv> {
   refuseLargeCsv(file.size)
   // A file that names no channel or range is of the one that is on the page.
-  return onlyKnown(await parsePointsCsvAsync(await file.text(), arithmetic), design)
+  return onlyKnown(await parsePointsCsvAsync(textOf(await file.arrayBuffer(), file.name), arithmetic), design)
+}
+
+/** Whatever its name says, a file that is no text is refused; taken loosely, letters of names would be changed unseen. */
+function textOf(bytes: ArrayBuffer, name: string): string {
+  try {
+    return new TextDecoder('utf-8', { fatal: true }).decode(bytes)
+  } catch (cause) {
+    throw new OgeeError('invalid-document', `${name} is not UTF-8 text. Save it as CSV in UTF-8.`, { cause })
+  }
 }
 
 /** A channel or range that the design does not have costs its measurement, and is named. */
