@@ -39,7 +39,7 @@ export function ExplainedSentence({ sentence, numbers, design, result, onField }
         of={[{ label: number.label, path: number.path }]}
         name={number.label}
         onField={onField}
-        className="-my-1"
+        className="-mx-0.5 -my-1 px-0.5"
       >
         {text}
       </Explain>

@@ -10,7 +10,7 @@ export function ExplanationText(props: {
   const { label, explanation, onField } = props
   return (
     <div className="not-first:mt-2 not-first:border-t not-first:border-hair not-first:pt-2">
-      <p className="font-semibold">{label}</p>
+      <p className="font-semibold first-letter:uppercase">{label}</p>
       <p>{explanation.formula}</p>
       <dl className="mt-1 grid grid-cols-[auto_1fr] gap-x-3">
         {explanation.inputs.map((input) => (

@@ -4,7 +4,7 @@ import { PlotText } from '../../ui/plot/axes.tsx'
 import { type EndLabel, EndLabels } from '../../ui/plot/end-labels.tsx'
 import { bracketGap, halfRails, type LadderFrame } from './ladder-frame.ts'
 import { ladderColours } from './ladder-rungs.tsx'
-import { bitsText } from './ladder-words.ts'
+import { bitsText, isShort } from './ladder-words.ts'
 
 /** Said by the ladder's own sentences. */
 const silent = { 'aria-hidden': true }
@@ -16,18 +16,17 @@ type Placed = { ladder: Ladder; centre: number; frame: LadderFrame }
 
 /** What budget (top) and target (bottom) demand; where it sticks out it is heavy and in the verdict's colour. */
 export function Bracket({ ladder, centre, frame }: Placed) {
-  const { bracket, shortBits, coarseBits, reachV, stepV } = ladder
+  const { bracket, coarseBits, reachV, stepV } = ladder
   const x = centre + halfRails + bracketGap
   if (bracket === null) return null
   const top = frame.y(bracket.topV)
   const bottom = frame.y(bracket.bottomV)
-  const isShort = shortBits > 0 || reachV <= 0
   const reach = reachV > 0 ? Math.min(frame.y(reachV), bottom) : bottom
   const step = Math.max(frame.y(stepV), top)
   return (
     <g fill="none" data-bracket="">
       <path d={`M${x - serif} ${top}H${x}V${bottom}H${x - serif}`} stroke="var(--ink)" strokeWidth={1.75} />
-      {isShort && (
+      {isShort(ladder) && (
         <path
           data-sticks-out="above"
           d={`M${x - serif} ${top}H${x}V${reach}`}
@@ -52,10 +51,9 @@ export function LadderLabels({ ladder, centre, frame }: Placed) {
   const colour = ladderColours[ladder.which]
   const { rungs, reachV, stepV, coarseBits } = ladder
   const highest = Math.max(reachV, ...rungs.map(({ outputV }) => outputV))
-  const isShort = rungs.some(({ bit, kind }) => kind === 'missing' && bit >= 0) || reachV <= 0
   return (
     <g {...silent}>
-      {!isShort && (
+      {!isShort(ladder) && (
         <PlotText x={centre} y={frame.y(highest) - 8} anchor="middle" colour={colour}>
           {`reach ${volts(reachV)}`}
         </PlotText>
@@ -65,15 +63,12 @@ export function LadderLabels({ ladder, centre, frame }: Placed) {
           {`step ${volts(stepV)}`}
         </PlotText>
       )}
-      <EndLabels
-        x={centre + halfRails + bracketGap + labelGap}
-        labels={bracketLabels(ladder, frame, isShort)}
-      />
+      <EndLabels x={centre + halfRails + bracketGap + labelGap} labels={bracketLabels(ladder, frame)} />
     </g>
   )
 }
 
-function bracketLabels(ladder: Ladder, { y }: LadderFrame, isShort: boolean): EndLabel[] {
+function bracketLabels(ladder: Ladder, { y }: LadderFrame): EndLabel[] {
   const { which, bracket, reachV, stepV, shortBits, coarseBits, spareAboveBits, spareBelowBits } = ladder
   const own = ladderColours[which]
   if (bracket === null) {
@@ -85,7 +80,7 @@ function bracketLabels(ladder: Ladder, { y }: LadderFrame, isShort: boolean): En
     { y: top, text: `needs ${volts(bracket.topV)}`, colour: 'var(--ink)', weight: 600 },
     { y: bottom, text: `allows ${volts(bracket.bottomV)}`, colour: 'var(--ink)', weight: 600 },
   ]
-  if (isShort) {
+  if (isShort(ladder)) {
     const text = shortBits > 0 ? `short ${bitsText(shortBits)}` : 'short, no reach'
     ends.push({ y: top - line, text, colour: 'var(--bad)', weight: 600 })
     ends.push({ y: reachV > 0 ? y(reachV) : bottom - line, text: `reach ${volts(reachV)}`, colour: own })

@@ -15,7 +15,7 @@ export function LadderColumn(props: { ladder: Ladder; centre: number; frame: Lad
   return (
     <g {...spoken} data-walk="" data-ladder={ladder.which}>
       <text
-        x={centre - halfRails - 14}
+        x={centre - halfRails - 28}
         y={frame.top - 26}
         dy="0.35em"
         fontSize={13}

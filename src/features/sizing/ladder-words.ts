@@ -13,6 +13,10 @@ export const bitsText = (bits: number): string =>
 
 export const verdictNames = { covers: 'covers', short: 'short', coarse: 'too-coarse', both: 'both' } as const
 
+/** The budget asks more on the tighter side than is reached, or nothing is reached there. */
+export const isShort = ({ bracket, shortBits, reachV }: Ladder): boolean =>
+  bracket !== null && (shortBits > 0 || reachV <= 0)
+
 const lsbText = (lsb: number): string => `${fixed(lsb, labelDecimals(lsb))} LSB`
 
 /** Off centre, the top bit is worth more than the tighter side reaches: it stands above the rails. */

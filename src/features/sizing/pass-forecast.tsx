@@ -20,7 +20,7 @@ export function PassForecast({ design, result, onField }: PassForecastProps) {
       of={[{ label, path: `/passes/${name}` }]}
       name={label}
       onField={onField}
-      className="-my-1 font-semibold"
+      className="-mx-2 -my-1 px-1 font-semibold"
     >
       {result.passes[name] ?? 'not within 9'}
     </Explain>

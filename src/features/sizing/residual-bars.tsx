@@ -1,6 +1,6 @@
-import { volts } from '../../../shared/design-words/words.ts'
 import type { SizeResult, SizingDesign } from '../../../shared/solver/sizing/types.ts'
 import { CopyCsv } from '../../ui/plot/copy-csv.tsx'
+import { Quantity } from '../../ui/quantity.tsx'
 import { Section } from '../../ui/section.tsx'
 import { Segmented } from '../../ui/segmented.tsx'
 import { Table, Th } from '../../ui/table.tsx'
@@ -71,17 +71,21 @@ export function ResidualBars({ design, result, unit, onUnit, onField }: Residual
         <ResidualTotals explained={{ design, result }} perVolt={volt.perVolt} unit={unit} onField={onField} />
       </Table>
       <p className="mt-1 text-small text-ink-3">
-        {largestSentence(result)} Copper: by way of gain. Tide: by way of offset. Ink: neither.{' '}
-        <CopyCsv {...residualCsv(residual)} />
+        <Largest result={result} />
+        Copper: by way of gain. Tide: by way of offset. Ink: neither. <CopyCsv {...residualCsv(residual)} />
       </p>
     </Section>
   )
 }
 
-function largestSentence({ residual }: SizeResult): string {
+/** The end of the range to the last microvolt: it is a code's place and no estimate. */
+function Largest({ result: { residual } }: { result: SizeResult }) {
   const [first] = residual.lines
-  const at = `At ${volts(residual.atV)}, where it is largest.`
-  if (!first) return at
-  const remains = first.kind === 'budget' ? ', and no trim removes it' : ''
-  return `${at} ${first.name} makes ${shareText(first.share)} of it${remains}.`
+  const remains = first?.kind === 'budget' ? ', and no trim removes it' : ''
+  return (
+    <>
+      At <Quantity value={residual.atV} unit="V" digits={7} />, where it is largest.{' '}
+      {first ? `${first.name} makes ${shareText(first.share)} of it${remains}. ` : null}
+    </>
+  )
 }

@@ -58,7 +58,7 @@ export function ResidualRow({ line, index, explained, perVolt, unit, onField }: 
 function ShareBar({ line }: { line: ResidualLine }) {
   return (
     <span className="flex items-center gap-1.5 whitespace-nowrap text-plot text-ink-2">
-      <svg aria-hidden="true" height={8} className="shrink-0" width={`${Math.max(line.share * 78, 0.8)}%`}>
+      <svg aria-hidden="true" height={8} className="shrink-0" width={`${Math.max(line.share * 84, 0.8)}%`}>
         <rect width="100%" height={8} className={fills[line.path]} />
       </svg>
       {shareText(line.share)}

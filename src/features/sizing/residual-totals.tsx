@@ -30,7 +30,7 @@ export function ResidualTotals({ explained, perVolt, unit, onField }: ResidualTo
     <tfoot className="font-medium">
       {rows.map(({ name, path, values }) => (
         <tr key={path} className="border-t border-rule">
-          <RowHead className="border-rule">
+          <RowHead>
             <Explain
               {...explained}
               name={name}

@@ -1,4 +1,5 @@
 import type { Residual, ResidualLine } from '../../../shared/solver/sizing/types.ts'
+import { fixed } from '../../ui/number-format.ts'
 import type { PlotTableData } from '../../ui/plot/plot-figure.tsx'
 
 export type ResidualUnit = 'V' | 'LSB' | 'ppm'
@@ -58,5 +59,4 @@ export function columnLook(one: ResidualUnit, chosen: ResidualUnit): string {
 }
 
 /** "77 %", "3.6 %" */
-export const shareText = (share: number): string =>
-  `${(share * 100).toPrecision(share >= 0.0995 ? 2 : 1).replace('e+2', '00')} %`
+export const shareText = (share: number): string => `${fixed(share * 100, share < 0.0995 ? 1 : 0)} %`

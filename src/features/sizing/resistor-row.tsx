@@ -2,14 +2,16 @@ import type { ReactNode } from 'react'
 import type { NetworkCandidate } from '../../../shared/solver/network-synthesis/request.ts'
 import type { Network } from '../../../shared/solver/types.ts'
 import { Button } from '../../ui/button.tsx'
-import { fixed, significant } from '../../ui/number-format.ts'
+import { fixed } from '../../ui/number-format.ts'
 import { None, Td } from '../../ui/table.tsx'
+import { nodeEnds, type ResistorFormat } from './resistor-format.ts'
 import { networkName } from './resistor-words.ts'
 
 type ResistorRowProps = {
   candidate: NetworkCandidate
   isShifted: boolean
   outputPerV: number
+  format: ResistorFormat
   act?: ReactNode
   isOwn?: boolean
   /** It does not meet the request; nothing does. */
@@ -17,21 +19,30 @@ type ResistorRowProps = {
   onUse?: ((network: Network) => void) | undefined
 }
 
-export function ResistorRow({ candidate, isShifted, outputPerV, isOwn = false, ...rest }: ResistorRowProps) {
+export function ResistorRow({
+  candidate,
+  isShifted,
+  outputPerV,
+  format,
+  isOwn = false,
+  ...rest
+}: ResistorRowProps) {
   const { network, nodeLowV, nodeHighV, cornerLowV, cornerHighV, stepV, lostBits } = candidate
   return (
     <tr className={isOwn ? 'bg-shade' : ''}>
       <Td className="whitespace-nowrap">
         {rest.act ?? <Use network={network} onUse={rest.onUse} isNearest={rest.isNearest ?? false} />}
       </Td>
-      <Num>{kiloohms('topOhm' in network ? network.topOhm : undefined)}</Num>
-      {isShifted && <Num>{kiloohms(network.kind === 'shifted' ? network.shiftOhm : undefined)}</Num>}
-      <Num>{kiloohms('bottomOhm' in network ? network.bottomOhm : undefined)}</Num>
-      <Num>{ends(nodeLowV, nodeHighV)}</Num>
-      <Num>{ends(cornerLowV, cornerHighV)}</Num>
+      <Num>{kiloohms('topOhm' in network ? network.topOhm : undefined, format.ohm)}</Num>
+      {isShifted && (
+        <Num>{kiloohms(network.kind === 'shifted' ? network.shiftOhm : undefined, format.ohm)}</Num>
+      )}
+      <Num>{kiloohms('bottomOhm' in network ? network.bottomOhm : undefined, format.ohm)}</Num>
+      <Num>{nodeEnds(nodeLowV, nodeHighV)}</Num>
+      <Num>{nodeEnds(cornerLowV, cornerHighV)}</Num>
       <Num>{fixed(lostBits, 2, 'always')}</Num>
-      <Num>{significant(stepV * outputPerV * 1e6, 3)}</Num>
-      <Num>{significant(candidate.sourceOhm / 1e3, 3)}</Num>
+      <Num>{fixed(stepV * outputPerV * format.stepPer, format.step)}</Num>
+      <Num>{fixed(candidate.sourceOhm / 1e3, 2)}</Num>
       <Num>{fixed(candidate.dacCurrentA * 1e6, 0)}</Num>
     </tr>
   )
@@ -60,16 +71,6 @@ function Use({ network, isNearest, onUse }: UseProps) {
   )
 }
 
-function kiloohms(ohm: number | undefined): ReactNode {
-  return ohm === undefined || ohm === Number.POSITIVE_INFINITY ? <None /> : fixed(ohm / 1e3, 2)
-}
-
-/** Symmetric to a tenth of a millivolt as one number, else both ends. */
-function ends(lowV: number, highV: number): string {
-  const low = fixed(-lowV * 1e3, 1)
-  const high = fixed(highV * 1e3, 1)
-  const isSymmetric = Math.abs(lowV + highV) <= 0.002 * Math.abs(highV - lowV)
-  return isSymmetric
-    ? `±${fixed(Math.min(-lowV, highV) * 1e3, 1)}`
-    : `${low.startsWith('\u2212') ? low.slice(1) : `\u2212${low}`} to ${high}`
+function kiloohms(ohm: number | undefined, decimals: number): ReactNode {
+  return ohm === undefined || ohm === Number.POSITIVE_INFINITY ? <None /> : fixed(ohm / 1e3, decimals)
 }

@@ -1,10 +1,11 @@
-import { ohms, span, volts } from '../../../shared/design-words/words.ts'
-import { engineering } from '../../../shared/quantity/format.ts'
+import { span, volts } from '../../../shared/design-words/words.ts'
 import type { NetworkResult } from '../../../shared/solver/network-synthesis/request.ts'
 import type { Network } from '../../../shared/solver/types.ts'
+import { exact } from '../../ui/number-format.ts'
 import { Section } from '../../ui/section.tsx'
 import { Table, Th } from '../../ui/table.tsx'
 import { ResistorControls } from './resistor-controls.tsx'
+import { resistorFormat } from './resistor-format.ts'
 import type { ResistorAnswer, ResistorSettings } from './resistor-request.ts'
 import { ResistorRow } from './resistor-row.tsx'
 
@@ -24,7 +25,7 @@ export function ResistorTable({ answer, outputPerV, settings, onSettings, onUse 
   return (
     <Section
       title={which === null ? 'Resistors' : `Resistors for the ${which} network`}
-      note={'result' in answer ? noteOf(answer.result) : undefined}
+      note={'result' in answer ? <Note result={answer.result} /> : undefined}
     >
       <ResistorControls settings={settings} onSettings={onSettings} name={which ?? 'network'} />
       {'refusal' in answer ? (
@@ -36,18 +37,18 @@ export function ResistorTable({ answer, outputPerV, settings, onSettings, onUse 
   )
 }
 
-function noteOf({
-  series,
-  tolerance,
-  maxSourceOhm,
-  maxCurrentA,
-  wantedLowV,
-  wantedHighV,
-}: NetworkResult): string {
-  const limits = [`${series}, ${Number((tolerance * 100).toPrecision(3))} %`]
-  if (maxSourceOhm !== null) limits.push(`source under ${ohms(maxSourceOhm)}`)
-  if (maxCurrentA !== null) limits.push(`load under ${engineering(maxCurrentA, 'A')}`)
-  return `${limits.join(', ')}; need ${span(wantedLowV, wantedHighV)} at the node`
+/** Series and limits stand in the controls; paper has none. */
+function Note({ result }: { result: NetworkResult }) {
+  const { series, tolerance, maxSourceOhm, maxCurrentA, wantedLowV, wantedHighV } = result
+  const asked = [`${series}, ${Number((tolerance * 100).toPrecision(3))} %`]
+  if (maxSourceOhm !== null) asked.push(`source under ${exact(maxSourceOhm, 'Ω')}`)
+  if (maxCurrentA !== null) asked.push(`load under ${exact(maxCurrentA, 'A')}`)
+  return (
+    <>
+      <span className="hidden print:inline">{asked.join(', ')}; </span>
+      need {span(wantedLowV, wantedHighV)} at the node
+    </>
+  )
 }
 
 type CandidatesProps = {
@@ -59,7 +60,8 @@ type CandidatesProps = {
 function Candidates({ result, outputPerV, onUse }: CandidatesProps) {
   const { own, candidates, obstacle } = result
   const isShifted = [own, ...candidates].some((one) => one?.network.kind === 'shifted')
-  const common = { isShifted, outputPerV }
+  const format = resistorFormat(own ? [own, ...candidates] : candidates, outputPerV)
+  const common = { isShifted, outputPerV, format }
   return (
     <>
       {obstacle === null ? null : <p className="py-1 text-text">{obstacle}</p>}
@@ -89,7 +91,7 @@ function Candidates({ result, outputPerV, onUse }: CandidatesProps) {
             <Th align="right" unit="bits">
               over need
             </Th>
-            <Th align="right" unit="µV">
+            <Th align="right" unit={format.stepUnit}>
               step at output
             </Th>
             <Th align="right" unit="kΩ">

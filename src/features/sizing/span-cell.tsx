@@ -17,7 +17,7 @@ type SpanCellButtonProps = {
 /** Shape and step margin; the design's own cell is boxed. A table that only shows has no buttons. */
 export function SpanCellButton({ cell, name, place, isStop, onKeyDown, onTry }: SpanCellButtonProps) {
   const verdict = verdictNames[cell.verdict]
-  const look = `inline-flex min-h-6 w-full items-center justify-end gap-1.5 px-1.5 ${cell.own ? 'outline-2 -outline-offset-1 outline-ink' : ''}`
+  const look = `inline-flex min-h-6 w-full items-center justify-end gap-0.5 px-[3px] text-small ${cell.own ? 'outline-2 -outline-offset-1 outline-ink' : ''}`
   const content = (
     <>
       <VerdictMark verdict={verdict} />

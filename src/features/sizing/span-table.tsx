@@ -59,7 +59,7 @@ export function SpanTable({ table, onTry }: SpanTableProps) {
           <tr>
             <Th>bits</Th>
             {columns.map((column) => (
-              <Th key={`${column.lowV} ${column.highV}`} align="right" className="whitespace-nowrap">
+              <Th key={`${column.lowV} ${column.highV}`} align="right" className="!px-0.5 whitespace-nowrap">
                 {spanText(column, unit)}
                 <span className={`block ${(column.reachSpareBits ?? 0) < 0 ? 'text-bad' : 'text-ink-2'}`}>
                   <span className="sr-only">reach </span>

@@ -1,12 +1,13 @@
 import { useState } from 'react'
 import type { Ladder } from '../../../shared/solver/sizing/ladder.ts'
-import { PlotFigure, PlotTable } from '../../ui/plot/plot-figure.tsx'
+import { PlotFigure } from '../../ui/plot/plot-figure.tsx'
 import { PlotSvg } from '../../ui/plot/plot-svg.tsx'
 import { LadderAxes } from './ladder-axes.tsx'
 import { LadderColumn } from './ladder-column.tsx'
 import { type LadderScale, ladderFrames } from './ladder-frame.ts'
 import { LadderLegend } from './ladder-legend.tsx'
 import { ladderSentence, ladderTable } from './ladder-words.ts'
+import { SpokenTable } from './spoken-table.tsx'
 
 export type TrimLadderProps = {
   /** Gain first; those that the design has. None: the axis alone. */
@@ -55,7 +56,7 @@ export function TrimLadder({ ladders, scale, problem }: TrimLadderProps) {
             </PlotSvg>
             {shown.length > 0 && (
               <div className="sr-only">
-                <PlotTable title="Trim ladder" table={table} />
+                <SpokenTable table={table} />
               </div>
             )}
           </>

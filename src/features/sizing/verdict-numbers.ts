@@ -28,6 +28,11 @@ export function verdictNumbers(which: Which, size: AdjusterSize): NumberInText[]
       path: at('requiredStepV'),
     },
     { text: bitsWord(size.available.bits), label: `bits of ${which}`, path: at('available/bits') },
-    { text: String(size.requiredBits), label: `bits that ${which} needs`, path: at('requiredBits') },
+    { text: neededText(size), label: `bits that ${which} needs`, path: at('requiredBits') },
   ]
+}
+
+/** As the bits sentence says it: "10 would do", or how tall the demand is. */
+function neededText({ verdict, requiredBits }: AdjusterSize): string {
+  return verdict === 'covers' ? `${requiredBits} would do` : bitsWord(requiredBits)
 }

@@ -19,20 +19,25 @@ export function EndLabels({ x, labels }: { x: number; labels: readonly EndLabel[
   ))
 }
 
-/** In order from the top, each at its place or as far below the one above as a line of text needs; then centred again. */
+/** In order from the top, each at its place; those that would cover one another stand as a block about their middle. */
 export function spread(labels: readonly EndLabel[]): EndLabel[] {
-  const sorted = [...labels].sort((a, b) => a.y - b.y)
-  const groups: EndLabel[][] = []
-  for (const label of sorted) {
-    const above = groups.at(-1)
-    const bottom = above ? middle(above) + (above.length * lineHeight) / 2 : Number.NEGATIVE_INFINITY
-    if (above && label.y - lineHeight / 2 < bottom) above.push(label)
-    else groups.push([label])
+  const blocks: EndLabel[][] = []
+  for (const label of [...labels].sort((a, b) => a.y - b.y)) {
+    let block = [label]
+    // A block that grows reaches further up too: it may meet the one above.
+    for (let above = blocks.at(-1); above && meets(above, block); above = blocks.at(-1)) {
+      block = [...above, ...block]
+      blocks.pop()
+    }
+    blocks.push(block)
   }
-  return groups.flatMap((group) =>
-    group.map((label, i) => ({ ...label, y: middle(group) + (i - (group.length - 1) / 2) * lineHeight })),
+  return blocks.flatMap((block) =>
+    block.map((label, i) => ({ ...label, y: middle(block) + (i - (block.length - 1) / 2) * lineHeight })),
   )
 }
+
+const meets = (above: readonly EndLabel[], below: readonly EndLabel[]): boolean =>
+  middle(below) - middle(above) < ((above.length + below.length) * lineHeight) / 2
 
 const middle = (group: readonly EndLabel[]): number =>
   group.reduce((sum, one) => sum + one.y, 0) / group.length

@@ -48,7 +48,10 @@ export function PlotFigure(props: PlotFigureProps) {
     if (value !== 'table') props.onUnit(value)
   }
   return (
-    <figure aria-labelledby={titleId} className="plot-figure break-inside-avoid border-t border-rule pt-1">
+    <figure
+      aria-labelledby={titleId}
+      className="plot-figure min-w-0 break-inside-avoid border-t border-rule pt-1"
+    >
       <div className="flex min-h-[30px] flex-wrap items-center gap-x-3 gap-y-1">
         <div className="flex grow flex-wrap items-baseline gap-x-3">
           <h2 id={titleId} className="text-body font-semibold">
