@@ -39,8 +39,12 @@ export async function openPage(
   await context.grantPermissions(['clipboard-read', 'clipboard-write'])
   const page = await context.newPage()
   const complaints: string[] = []
+  await page.exposeFunction('cspBreach', (text: string) => complaints.push(`CSP: ${text}`))
   await page.addInitScript(() => {
-    document.addEventListener('securitypolicyviolation', (_event) => {})
+    document.addEventListener('securitypolicyviolation', (event) => {
+      const { cspBreach } = globalThis as unknown as { cspBreach: (text: string) => void }
+      cspBreach(`${event.effectiveDirective} ${event.blockedURI} ${event.sample}`)
+    })
   })
   page.on('console', (message) => {
     // A refusal that the page handles still shows as a failed resource; the status is tested where it is caused.
