@@ -1,7 +1,7 @@
 import type { Request, RequestHandler, Response, Router } from 'express'
 import type * as z from 'zod'
 import type { Endpoint } from '../../shared/contract/endpoint.ts'
-import { OgeeError } from '../../shared/errors.ts'
+import { isOgeeError, OgeeError } from '../../shared/errors.ts'
 import { limits } from '../../shared/limits.ts'
 import { requireAccess } from '../policies/access.ts'
 import { requireSameSite } from './cross-site.ts'
@@ -9,6 +9,7 @@ import { within } from './deadline.ts'
 import type { Deps } from './deps.ts'
 import { jsonBody } from './json-body.ts'
 import { localsOf } from './locals.ts'
+import { nameAdministrators } from './name-administrators.ts'
 import type { Principal } from './principal.ts'
 import { validate } from './validate.ts'
 
@@ -84,7 +85,13 @@ function guard(endpoint: Endpoint, deps: Deps): RequestHandler {
   return (request, response, next) => {
     const { principal } = localsOf(response)
     // Access first: who is not signed in hears that, and not how to prove where the request came from.
-    requireAccess(endpoint.access, principal)
+    try {
+      requireAccess(endpoint.access, principal)
+    } catch (refusal) {
+      if (!isOgeeError(refusal, 'forbidden')) throw refusal
+      within(nameAdministrators(deps.database, refusal)).then(next, next)
+      return
+    }
     if (isUnsafe(endpoint) && principal?.kind !== 'token') requireSameSite(request, deps.config.baseUrl)
     next()
   }

@@ -18,7 +18,13 @@ const names = commandTable.flatMap((entry) =>
 function answerEverything(): void {
   const hash = createHash('sha256').update(designBytes).digest('hex')
   const { document: _, bytes: __, key: ___, ...revisionLine } = revision(hash)
-  const design = { key: 'DBS-A', title: revisionLine.title, released: 1, revisions: [revisionLine] }
+  const design = {
+    key: 'DBS-A',
+    title: revisionLine.title,
+    released: 1,
+    copiedFrom: null,
+    revisions: [revisionLine],
+  }
   const routes: [RegExp, (seen: Parameters<typeof recordOf>[0]) => unknown][] = [
     [/\/me$/, () => me],
     [/\/designs\/DBS-A\/revisions\//, () => revision(hash)],
