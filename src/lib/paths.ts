@@ -7,6 +7,8 @@ export const paths = {
     revision === undefined
       ? `/designs/${encodeURIComponent(key)}`
       : `/designs/${encodeURIComponent(key)}/revisions/${revision}`,
+  newDesign: (key: string, template: string, title: string) =>
+    `/designs/${encodeURIComponent(key)}${query({ template, title })}`,
   bench: '/bench',
   benchFor: (search: Record<string, string | number | undefined>) => `/bench${query(search)}`,
   history: '/history',

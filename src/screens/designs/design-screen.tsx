@@ -1,48 +1,66 @@
 import { useQuery } from '@tanstack/react-query'
-import { useParams } from 'react-router-dom'
-import type { DesignLine, Revision } from '../../../shared/contract/designs.ts'
-import { stateWord } from '../../features/design/design-table.tsx'
-import { DocumentView } from '../../features/design/document-view.tsx'
+import { useState } from 'react'
+import { useParams, useSearchParams } from 'react-router-dom'
+import type { DesignLine } from '../../../shared/contract/designs.ts'
+import { isOgeeError } from '../../../shared/errors.ts'
 import { designOptions, revisionOptions } from '../../features/design/queries.ts'
 import { RevisionTable } from '../../features/design/revision-table.tsx'
-import { paths } from '../../lib/paths.ts'
-import { LinkButton } from '../../ui/button.tsx'
-import { CopyButton } from '../../ui/copy-button.tsx'
+import { fromTemplate, isTemplate } from '../../features/design-form/templates.ts'
+import { usePerson } from '../../features/session/use-person.ts'
 import { Empty } from '../../ui/empty.tsx'
 import { Loading } from '../../ui/loading.tsx'
 import { PageHead } from '../../ui/page-head.tsx'
 import { PageProblem } from '../../ui/page-problem.tsx'
 import { Section } from '../../ui/section.tsx'
-import { utcDay } from '../../ui/time-text.tsx'
+import { DesignPage } from '../design-page/design-page.tsx'
 
-/** One revision of a design, to read: the number in the address, else the released one, else the newest. */
+/**
+ * One revision of a design: the number in the address, else the released one, else the newest. A key that does not exist
+ * yet and a template in the address begin a new one.
+ */
 export default function DesignScreen() {
-  const { key = '', number } = useParams()
-  const design = useQuery(designOptions(key))
+  const { key = '' } = useParams()
+  return <OneDesign key={key} designKey={key} />
+}
+
+function OneDesign({ designKey }: { designKey: string }) {
+  const { number } = useParams()
+  const [search] = useSearchParams()
+  const { role } = usePerson()
+  const design = useQuery(designOptions(designKey))
+  const template = search.get('template')
+  const [isNew, setNew] = useState(false)
+  const mayBegin = role === 'engineer' && isTemplate(template) && number === undefined
+  if (!isNew && mayBegin && !design.data && isOgeeError(design.error, 'not-found')) setNew(true)
+  if (isNew && isTemplate(template)) {
+    // It stays what it is when the server has it too: whoever types goes on typing.
+    const doc = fromTemplate(template, search.get('title') || designKey)
+    return <DesignPage start={{ designKey, revision: null, doc }} />
+  }
   if (design.error && !design.data) {
     return (
       <PageProblem
         place="Designs"
-        what={`Design ${key}`}
+        what={`Design ${designKey}`}
         error={design.error}
         onRetry={() => void design.refetch()}
       />
     )
   }
-  if (!design.data) return <Loading page>{`Reading design ${key}.`}</Loading>
+  if (!design.data) return <Loading page>{`Reading design ${designKey}.`}</Loading>
   const shown = whichRevision(design.data, number)
   if (shown === null) {
     return (
       <>
-        <PageHead place={`Design ${key}`} title={design.data.title} />
-        <Empty>Design {key} has no such revision.</Empty>
+        <PageHead place={`Design ${designKey}`} title={design.data.title} />
+        <Empty>Design {designKey} has no such revision.</Empty>
         <Section title="Revisions">
           <RevisionTable design={design.data} shown={0} />
         </Section>
       </>
     )
   }
-  return <RevisionPage design={design.data} number={shown} />
+  return <OneRevision key={shown} designKey={designKey} number={shown} />
 }
 
 function whichRevision(design: DesignLine, wanted: string | undefined): number | null {
@@ -53,58 +71,18 @@ function whichRevision(design: DesignLine, wanted: string | undefined): number |
   return numbers.find((number) => String(number) === wanted) ?? null
 }
 
-function RevisionPage({ design, number }: { design: DesignLine; number: number }) {
-  const revision = useQuery(revisionOptions(design.key, number))
-  const data = revision.data
-  if (revision.error && !data) {
+function OneRevision({ designKey, number }: { designKey: string; number: number }) {
+  const { data, error, refetch } = useQuery(revisionOptions(designKey, number))
+  if (data) return <DesignPage start={{ designKey, revision: data }} />
+  if (error) {
     return (
       <PageProblem
-        place={`Design ${design.key}`}
+        place={`Design ${designKey}`}
         what={`Revision ${number}`}
-        error={revision.error}
-        onRetry={() => void revision.refetch()}
+        error={error}
+        onRetry={() => void refetch()}
       />
     )
   }
-  return (
-    <>
-      <PageHead
-        place={`Design ${design.key}`}
-        title={data?.title ?? design.title}
-        state={data ? `revision ${number}, ${stateSentence(data)}` : `revision ${number}`}
-        acts={
-          <LinkButton look="primary" to={paths.benchFor({ design: design.key, revision: number })}>
-            Open on Bench
-          </LinkButton>
-        }
-      />
-      {data ? (
-        <div className="mt-3">
-          <DocumentView design={data.document} />
-        </div>
-      ) : (
-        <Loading>{`Reading revision ${number}.`}</Loading>
-      )}
-      <Section
-        title="Revisions"
-        className="mt-3.5"
-        side={
-          data ? (
-            <CopyButton text={data.hash} what="hash of this revision">
-              copy hash
-            </CopyButton>
-          ) : null
-        }
-      >
-        <RevisionTable design={design} shown={number} />
-      </Section>
-    </>
-  )
-}
-
-function stateSentence(revision: Revision): string {
-  if (revision.releasedAt && revision.releasedBy && revision.state === 'released') {
-    return `released by ${revision.releasedBy} on ${utcDay(revision.releasedAt)}. Released revisions do not change.`
-  }
-  return `${stateWord(revision.state)} by ${revision.author}`
+  return <Loading page>{`Reading revision ${number}.`}</Loading>
 }

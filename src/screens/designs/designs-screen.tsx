@@ -1,6 +1,12 @@
 import { useInfiniteQuery } from '@tanstack/react-query'
+import { useState } from 'react'
+import { useNavigate } from 'react-router-dom'
 import { DesignTable } from '../../features/design/design-table.tsx'
+import { NewDesignDialog } from '../../features/design/new-design-dialog.tsx'
 import { designsOptions } from '../../features/design/queries.ts'
+import { templates } from '../../features/design-form/templates.ts'
+import { usePerson } from '../../features/session/use-person.ts'
+import { paths } from '../../lib/paths.ts'
 import { Button } from '../../ui/button.tsx'
 import { Empty } from '../../ui/empty.tsx'
 import { Loading } from '../../ui/loading.tsx'
@@ -9,6 +15,9 @@ import { PageProblem } from '../../ui/page-problem.tsx'
 
 export default function DesignsScreen() {
   const designs = useInfiniteQuery(designsOptions)
+  const { role } = usePerson()
+  const navigate = useNavigate()
+  const [isStarting, setStarting] = useState(false)
   if (designs.error && !designs.data) {
     return (
       <PageProblem place="Ogee" what="Designs" error={designs.error} onRetry={() => void designs.refetch()} />
@@ -17,11 +26,29 @@ export default function DesignsScreen() {
   const lines = designs.data?.pages.flatMap((page) => page.items) ?? []
   return (
     <>
-      <PageHead place="Ogee" title="Designs" />
+      <PageHead
+        place="Ogee"
+        title="Designs"
+        acts={
+          role === 'engineer' ? (
+            <Button look="primary" onClick={() => setStarting(true)}>
+              New design
+            </Button>
+          ) : null
+        }
+      />
+      {isStarting ? (
+        <NewDesignDialog
+          choices={templates}
+          taken={lines.map(({ key }) => key)}
+          onStart={(key, template, title) => void navigate(paths.newDesign(key, template, title))}
+          onClose={() => setStarting(false)}
+        />
+      ) : null}
       {designs.isPending ? <Loading>Reading the designs.</Loading> : null}
       {designs.data && lines.length === 0 ? (
         <Empty>
-          No design yet. A token with the scope designs:write can send one; here they can be read.
+          No design yet. {role === 'engineer' ? 'Start one from a template.' : 'An engineer starts one.'}
         </Empty>
       ) : null}
       {lines.length > 0 ? (

@@ -1,0 +1,141 @@
+import { memo, type ReactNode, useId } from 'react'
+import { minus } from '../../ui/number-format.ts'
+import { useFormLinks } from './form-context.ts'
+
+/** Field ground, one rule below, no box; 25 px as the form's rows; in error a 2 px rule in bad. */
+const look =
+  'h-[25px] w-full min-w-0 rounded-none border-0 border-b border-rule bg-field px-1 text-body text-ink aria-invalid:border-b-2 aria-invalid:border-bad placeholder:text-ink-3 forced-colors:border print:hidden'
+
+type CellProps = {
+  /** Name in the form's state. */
+  field: string
+  /** Spoken; what stands beside the cell says it to the eye. */
+  label: string
+  text: string
+  problem?: string | undefined
+  remark?: string | undefined
+  placeholder?: string
+}
+
+/** One text of the form. Memoised: a key in one field draws no other. */
+export const TextCell = memo(function TextCell({
+  field,
+  label,
+  text,
+  problem,
+  remark,
+  placeholder = 'not stated',
+}: CellProps) {
+  const { dispatch, isReadOnly } = useFormLinks()
+  const id = useId()
+  if (isReadOnly) return <Printed text={text} remark={remark} />
+  return (
+    <span className="block min-w-0">
+      <input
+        type="text"
+        data-field={field}
+        aria-label={label}
+        aria-invalid={problem ? true : undefined}
+        aria-describedby={problem || remark ? id : undefined}
+        autoComplete="off"
+        spellCheck={false}
+        placeholder={placeholder}
+        value={text}
+        onChange={(event) => dispatch({ do: 'set', field, text: event.target.value })}
+        onFocus={(event) => event.target.select()}
+        onBlur={() => dispatch({ do: 'leave' })}
+        className={look}
+      />
+      <PrintedText text={text} />
+      <Said id={id} problem={problem} remark={remark} />
+    </span>
+  )
+})
+
+/** Options that are the same array on every drawing. */
+export type Options = readonly (readonly [value: string, word: string])[]
+
+export const SelectCell = memo(function SelectCell({
+  field,
+  label,
+  text,
+  problem,
+  remark,
+  options,
+}: Omit<CellProps, 'placeholder'> & { options: Options }) {
+  const { dispatch, isReadOnly } = useFormLinks()
+  const id = useId()
+  const word = options.find(([value]) => value === text)?.[1] ?? text
+  if (isReadOnly) return <Printed text={word} remark={remark} />
+  return (
+    <span className="block min-w-0">
+      <select
+        data-field={field}
+        aria-label={label}
+        aria-invalid={problem ? true : undefined}
+        aria-describedby={problem || remark ? id : undefined}
+        value={text}
+        onChange={(event) => dispatch({ do: 'set', field, text: event.target.value })}
+        onBlur={() => dispatch({ do: 'leave' })}
+        className={`${look} pl-0`}
+      >
+        {options.every(([value]) => value !== text) ? <option value={text}>{word}</option> : null}
+        {options.map(([value, name]) => (
+          <option key={value} value={value}>
+            {name}
+          </option>
+        ))}
+      </select>
+      <PrintedText text={word} />
+      <Said id={id} problem={problem} remark={remark} />
+    </span>
+  )
+})
+
+/** Released and printed: text, no underline. */
+function Printed({ text, remark }: { text: string; remark: string | undefined }) {
+  return (
+    <span className="block min-h-6 min-w-0 px-1 pt-[3px] [overflow-wrap:anywhere]">
+      {text === '' ? <span className="text-ink-3">not stated</span> : text.replaceAll('-', minus)}
+      <Said problem={undefined} remark={remark} />
+    </span>
+  )
+}
+
+function PrintedText({ text }: { text: string }) {
+  return (
+    <span aria-hidden="true" className="hidden min-h-5 px-1 print:block">
+      {text === '' ? 'not stated' : text}
+    </span>
+  )
+}
+
+function Said({
+  id,
+  problem,
+  remark,
+}: {
+  id?: string
+  problem: string | undefined
+  remark: string | undefined
+}) {
+  if (!problem && !remark) return null
+  return (
+    <span id={id} className={`mt-0.5 block text-small ${problem ? 'text-bad' : 'text-caution'}`}>
+      {problem ?? remark}
+    </span>
+  )
+}
+
+/** Label left, field, and at its right what was understood. */
+export function Row({ label, hint, children }: { label: ReactNode; hint?: ReactNode; children: ReactNode }) {
+  return (
+    <div className="grid grid-cols-[6.75rem_minmax(0,9.5rem)_minmax(0,1fr)] items-start gap-x-2">
+      <span className="pt-[4px] text-small text-ink-2" aria-hidden="true">
+        {label}
+      </span>
+      {children}
+      <span className="pt-[4px] text-small text-ink-3">{hint}</span>
+    </div>
+  )
+}

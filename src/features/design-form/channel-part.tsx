@@ -1,0 +1,144 @@
+import { Button } from '../../ui/button.tsx'
+import { engineering, exact } from '../../ui/number-format.ts'
+import { Row, SelectCell, TextCell } from './cells.tsx'
+import { type Said, useFormLinks } from './form-context.ts'
+import { type FormDoc, type RangeTexts, rangeField } from './form-doc.ts'
+import { Part } from './part.tsx'
+import { codings, offsetPlaces } from './words.ts'
+
+/** What of a range is understood: stands at the right of its fields. */
+export type RangeHint = { fsrV: number; lsbV: number; inlV: number | null }
+
+export function ChannelPart({
+  doc,
+  said: { problems, remarks },
+  hints,
+}: {
+  doc: FormDoc
+  said: Said
+  hints: readonly (RangeHint | null)[]
+}) {
+  const { dispatch, isReadOnly } = useFormLinks()
+  const { values } = doc
+  const cell = (field: string, label: string) => ({
+    field,
+    label,
+    text: values[field] ?? '',
+    problem: problems.get(field),
+    remark: remarks.get(field),
+  })
+  const [first] = hints
+  const several = doc.ranges.length > 1
+  const range = (one: RangeTexts, i: number) => (
+    <RangeRows
+      key={one.id}
+      range={one}
+      hint={hints[i] ?? null}
+      problems={problems}
+      name={several ? i + 1 : null}
+    />
+  )
+  return (
+    <Part number={1} title="Channel" problem={problems.get('ranges')}>
+      <Row label="Resolution" hint={first ? `FSR ${exact(first.fsrV, 'V')}` : null}>
+        <TextCell {...cell('bits', 'Resolution')} placeholder="18 bits" />
+      </Row>
+      {doc.ranges.slice(0, 1).map(range)}
+      <Row label="Coding">
+        <SelectCell {...cell('coding', 'Coding')} options={codings} />
+      </Row>
+      {several ? null : <OffsetRow range={doc.ranges[0]} problems={problems} />}
+      <Row label="INL limit" hint={first?.inlV ? engineering(first.inlV, 'V') : null}>
+        <TextCell {...cell('inl', 'INL limit')} />
+      </Row>
+      <Row label="Channels">
+        <TextCell {...cell('channels', 'Channels')} placeholder="1" />
+      </Row>
+      {several ? <OffsetRow range={doc.ranges[0]} problems={problems} /> : null}
+      {doc.ranges.slice(1).map((one, i) => (
+        <div key={one.id}>
+          {range(one, i + 1)}
+          <OffsetRow range={one} problems={problems} />
+        </div>
+      ))}
+      {isReadOnly ? null : (
+        <Button look="quiet" className="mt-0.5 text-small" onClick={() => dispatch({ do: 'add-range' })}>
+          add a range
+        </Button>
+      )}
+    </Part>
+  )
+}
+
+function OffsetRow({ range, problems }: { range: RangeTexts | undefined; problems: Said['problems'] }) {
+  if (!range) return null
+  const field = rangeField(range.id, 'offsetAt')
+  return (
+    <Row label="Offset read at">
+      <SelectCell
+        field={field}
+        label={`Offset read at, ${range.name}`}
+        text={range.offsetAt}
+        problem={problems.get(field)}
+        options={offsetPlaces}
+      />
+    </Row>
+  )
+}
+
+function RangeRows({
+  range,
+  hint,
+  problems,
+  name,
+}: {
+  range: RangeTexts
+  hint: RangeHint | null
+  problems: Said['problems']
+  /** Its number where there are several; they then have names of their own. */
+  name: number | null
+}) {
+  const { dispatch, isReadOnly } = useFormLinks()
+  const cell = (which: 'name' | 'ends' | 'sharedWith', label: string) => ({
+    field: rangeField(range.id, which),
+    label: name === null ? label : `${label} ${name}`,
+    text: range[which],
+    problem: problems.get(rangeField(range.id, which)),
+  })
+  return (
+    <>
+      {name === null ? null : (
+        <Row
+          label={`Range ${name}, name`}
+          hint={
+            isReadOnly || name === 1 ? null : (
+              <Button
+                look="quiet"
+                className="-my-1 text-small"
+                onClick={() => dispatch({ do: 'remove-range', id: range.id })}
+              >
+                {`take range ${name} away`}
+              </Button>
+            )
+          }
+        >
+          <TextCell {...cell('name', 'Name of range')} />
+        </Row>
+      )}
+      <Row
+        label={name === null ? 'Range' : `Range ${name}`}
+        hint={hint ? `LSB ${engineering(hint.lsbV, 'V', 5)}` : null}
+      >
+        <TextCell {...cell('ends', 'Range')} placeholder="0 V to 10 V" />
+      </Row>
+      {name === null ? null : (
+        <Row label="Codes shared with">
+          <TextCell {...cell('sharedWith', 'Codes shared with, range')} placeholder="none" />
+        </Row>
+      )}
+      {range.effects === '' ? null : (
+        <p className="text-small text-ink-2">This range has an effect of its own, as imported; it is kept.</p>
+      )}
+    </>
+  )
+}

@@ -1,0 +1,112 @@
+import { Suspense, useCallback, useDeferredValue, useRef } from 'react'
+import { fieldAt } from '../../features/design-form/field-at.ts'
+import { withTexts } from '../../features/design-form/form-doc.ts'
+import { Segmented } from '../../ui/segmented.tsx'
+import { utcText } from '../../ui/time-text.tsx'
+import { LadderAndTables, Lower, RevisionsPanel, Verdicts } from './on-demand.ts'
+import type { DesignPageState } from './use-design-page.ts'
+import type { RevisionActs } from './use-revision-acts.ts'
+
+/** The answer in the order of decision: verdicts, ladder with resolution × span, residual, resistors, yield; then revisions. */
+export function AnswerColumn({
+  page,
+  acts,
+  compared,
+  onCompare,
+}: {
+  page: DesignPageState
+  acts: RevisionActs
+  compared: number | null
+  onCompare: (number: number | null) => void
+}) {
+  const { answer, isStale, refusal } = page.answered
+  const lower = useDeferredValue(answer)
+  const latest = useRef(page)
+  latest.current = page
+  const onField = useCallback((path: string) => {
+    const field = fieldAt(latest.current.form.doc, path)
+    document.querySelector<HTMLElement>(`[data-field="${CSS.escape(field)}"]`)?.focus()
+  }, [])
+  const onTry = useCallback((texts: Readonly<Record<string, string>>) => {
+    const { form, dispatch } = latest.current
+    dispatch({ do: 'try', doc: withTexts(form.doc, texts) })
+  }, [])
+  const onUse = useCallback((texts: Readonly<Record<string, string>>) => {
+    latest.current.dispatch({ do: 'set-all', texts })
+  }, [])
+  const grey = isStale ? 'opacity-60 [&_*]:!text-ink-3' : ''
+  return (
+    <div className="contents wide:block wide:overflow-y-auto wide:pr-2 print:contents">
+      <div className="sticky top-0 z-1 order-1 -mx-4 bg-paper px-4 pb-1.5 medium:mx-0 medium:px-0 wide:static print:static">
+        <Ranges page={page} />
+        <AnswerState page={page} />
+        <div className={grey}>
+          <Suspense fallback={null}>
+            {answer ? <Verdicts answer={answer} onField={onField} /> : null}
+          </Suspense>
+        </div>
+      </div>
+      <div className={`order-2 min-w-0 wide:mt-3 ${grey}`}>
+        <Suspense fallback={null}>
+          <LadderAndTables
+            answer={answer}
+            problem={refusal?.code === 'adjusters-not-independent' ? refusal.message : undefined}
+            onTry={onTry}
+          />
+        </Suspense>
+      </div>
+      <div className={`order-4 min-w-0 wide:mt-3.5 ${grey}`}>
+        <Suspense fallback={null}>
+          {lower ? (
+            <Lower
+              answer={lower}
+              isReady={!isStale}
+              onUse={page.isEditable ? onUse : undefined}
+              onField={onField}
+            />
+          ) : null}
+        </Suspense>
+      </div>
+      <div className="order-5 min-w-0 space-y-3.5 pb-6 wide:mt-3.5 print:hidden">
+        <Suspense fallback={null}>
+          {page.number === null ? null : (
+            <RevisionsPanel page={page} acts={acts} compared={compared} onCompare={onCompare} />
+          )}
+        </Suspense>
+      </div>
+    </div>
+  )
+}
+
+function Ranges({ page }: { page: DesignPageState }) {
+  const { answer } = page.answered
+  if (!answer || answer.design.ranges.length < 2) return null
+  return (
+    <div className="mb-1.5">
+      <Segmented
+        label="Range of the answer"
+        segments={answer.design.ranges.map(({ id, label }) => ({ value: id, label: label ?? id }))}
+        value={answer.size.range}
+        onChange={page.setRange}
+      />
+    </div>
+  )
+}
+
+/** What the answer is of: nothing yet, or the last good values. */
+function AnswerState({ page }: { page: DesignPageState }) {
+  const { answer, answeredAt, isStale, said, refusal } = page.answered
+  const { values, ranges } = page.form.doc
+  if (answer === null && ((values.bits ?? '') === '' || (ranges[0]?.ends ?? '') === '')) {
+    return (
+      <p className="text-text">
+        Enter the resolution and the range. The answer appears as soon as the two are there.
+      </p>
+    )
+  }
+  const why = [...said.problems.values()][0] ?? refusal?.message ?? ''
+  if (answer === null) return <p className="text-text">{why}</p>
+  if (!isStale) return null
+  const at = answeredAt ? utcText(answeredAt.toISOString()).slice(11) : ''
+  return <p role="status" className="text-text">{`Answer for the last good values, ${at} UTC. ${why}`}</p>
+}

@@ -1,0 +1,36 @@
+import type { Design } from '../../../shared/contract/design.ts'
+import { isOgeeError, type OgeeError } from '../../../shared/errors.ts'
+import { type Ladder, ladderOf } from '../../../shared/solver/sizing/ladder.ts'
+import { sizeDesign } from '../../../shared/solver/sizing/size.ts'
+import { resolutionSpanTable, type SpanTable } from '../../../shared/solver/sizing/span-table.ts'
+import type { SizeResult } from '../../../shared/solver/sizing/types.ts'
+
+/** Everything that stands at the right of the form, of one range. */
+export type Answer = {
+  design: Design
+  size: SizeResult
+  fsrV: number
+  ladders: readonly Ladder[]
+  tables: readonly SpanTable[]
+}
+
+const both = ['gain', 'offset'] as const
+
+/** The answer of the shared solver, or its refusal. */
+export function answerOf(design: Design, rangeId: string): Answer | OgeeError {
+  try {
+    const range = design.ranges.find(({ id }) => id === rangeId)!
+    const size = sizeDesign(design, { rangeId })
+    const fsrV = range.highV - range.lowV
+    return {
+      design,
+      size,
+      fsrV,
+      ladders: both.flatMap((which) => ladderOf(size, which, fsrV) ?? []),
+      tables: both.flatMap((which) => resolutionSpanTable(design, which, { rangeId }) ?? []),
+    }
+  } catch (error) {
+    if (isOgeeError(error)) return error
+    throw error
+  }
+}

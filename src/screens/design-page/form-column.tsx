@@ -1,0 +1,82 @@
+import { useMemo } from 'react'
+import { limitInVolts } from '../../features/design/words.ts'
+import { AdjustersPart } from '../../features/design-form/adjusters-part.tsx'
+import { BudgetPart, type Sums } from '../../features/design-form/budget-part.tsx'
+import { ChannelPart, type RangeHint } from '../../features/design-form/channel-part.tsx'
+import type { Said } from '../../features/design-form/form-context.ts'
+import type { FormDoc } from '../../features/design-form/form-doc.ts'
+import { type Hints, MeasurementPart, SizingPart } from '../../features/design-form/plan-parts.tsx'
+import { engineering, significant } from '../../ui/number-format.ts'
+import type { Answer } from './answer.ts'
+import { DocumentActs } from './document-acts.tsx'
+import type { DesignPageState } from './use-design-page.ts'
+
+/** The form in the order of the signal path, in two columns where there is room for two and one where not. */
+export function FormColumn({ page }: { page: DesignPageState }) {
+  const { doc } = page.form
+  const { said, answer } = page.answered
+  const hints = useMemo(() => hintsOf(answer), [answer])
+  return (
+    <div className="grid grid-cols-1 gap-x-7 gap-y-3.5 medium:grid-cols-2 wide:grid-cols-1 print:grid-cols-2">
+      <div className="min-w-0 space-y-3.5">
+        <ChannelPart doc={doc} said={said} hints={hints.ranges} />
+        <AdjustersPart doc={doc} said={said} />
+      </div>
+      <div className="min-w-0 space-y-3.5">
+        <Rest doc={doc} said={said} hints={hints.plan} sums={hints.sums} />
+        <DocumentActs page={page} />
+      </div>
+    </div>
+  )
+}
+
+function Rest({ doc, said, hints, sums }: { doc: FormDoc; said: Said; hints: Hints; sums: Sums }) {
+  return (
+    <>
+      <BudgetPart doc={doc} said={said} sums={sums} />
+      <SizingPart doc={doc} said={said} hints={hints} />
+      <MeasurementPart doc={doc} said={said} hints={hints} />
+    </>
+  )
+}
+
+const noSums: Sums = { gain: null, offset: null }
+
+/** What was understood, of the last good answer. */
+function hintsOf(answer: Answer | null): {
+  ranges: readonly (RangeHint | null)[]
+  plan: Hints
+  sums: Sums
+} {
+  if (answer === null) return { ranges: [], plan: {}, sums: noSums }
+  const { design, size } = answer
+  const { bits, inlLsb } = design.converter
+  const range = design.ranges.find(({ id }) => id === size.range)!
+  const inVolts = (limit: Parameters<typeof limitInVolts>[0]) => {
+    const volts = limitInVolts(limit, range, bits)
+    const ppm = `${significant((volts / answer.fsrV) * 1e6, 3)} ppm`
+    return limit.unit === 'ppm'
+      ? engineering(volts, 'V')
+      : limit.unit === 'V'
+        ? ppm
+        : `${engineering(volts, 'V')}, ${ppm}`
+  }
+  const { gain, offset } = size.extents
+  return {
+    ranges: design.ranges.map(({ lowV, highV }) => {
+      const lsbV = (highV - lowV) / 2 ** bits
+      return { fsrV: highV - lowV, lsbV, inlV: inlLsb === undefined ? null : inlLsb * lsbV }
+    }),
+    plan: {
+      target: inVolts(design.target.residual),
+      points: `0 … ${2 ** bits - 1}`,
+      plausible: 'of FSR',
+      settle: engineering(design.measurement.settleLimitLsb * size.lsbV, 'V'),
+      tolerance: design.decision ? inVolts(design.decision.tolerance) : null,
+    },
+    sums: {
+      gain: `${significant(gain.worstCasePpm, 3)} ppm / ${significant(gain.rssPpm, 3)} ppm`,
+      offset: `${engineering(offset.worstCaseV, 'V')} / ${engineering(offset.rssV, 'V')}`,
+    },
+  }
+}
