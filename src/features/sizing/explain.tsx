@@ -65,6 +65,9 @@ type PopoverProps = {
   children: ReactNode
 }
 
+/** Browsers without popovers show it in its place in the page. */
+const hasPopovers = (): boolean => 'showPopover' in HTMLElement.prototype
+
 const widthPx = 340
 const edge = 8
 
@@ -75,8 +78,7 @@ function Popover({ id, button, label, onClose, children }: PopoverProps) {
     const own = ref.current
     const anchor = button.current?.getBoundingClientRect()
     if (!own || !anchor) return
-    // Browsers without popovers show it in its place in the page.
-    if (typeof own.showPopover === 'function') own.showPopover()
+    if (hasPopovers()) own.showPopover()
     const { height, width } = own.getBoundingClientRect()
     const below = anchor.bottom + 4
     setPlace({
@@ -88,7 +90,7 @@ function Popover({ id, button, label, onClose, children }: PopoverProps) {
     <div
       ref={ref}
       id={id}
-      popover="auto"
+      popover={hasPopovers() ? 'auto' : undefined}
       role="dialog"
       aria-label={label}
       onToggle={(event) => {

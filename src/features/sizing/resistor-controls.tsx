@@ -42,7 +42,7 @@ export function ResistorControls({ settings, onSettings, name }: ResistorControl
       />
       <Setting
         label="source under"
-        unit="Ω"
+        unit="ohm"
         value={maxSourceOhm}
         onValue={(ohm) => change({ maxSourceOhm: ohm })}
       />
@@ -76,7 +76,9 @@ function Setting({ label, unit, value, onValue }: SettingProps) {
   return (
     <Field label={label} layout="inline" error={error}>
       <TextInput
-        value={typed ?? (value === null ? '' : exact(Number(value.toPrecision(12)), unit))}
+        value={
+          typed ?? (value === null ? '' : exact(Number(value.toPrecision(12)), unit === 'ohm' ? 'Ω' : unit))
+        }
         placeholder="no limit"
         className="!w-24"
         onChange={({ target }) => take(target.value)}

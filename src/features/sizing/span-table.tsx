@@ -22,7 +22,7 @@ const moves: Record<string, (at: Cell, last: Cell) => Cell> = {
   End: (at, last) => ({ ...at, column: last.column }),
 }
 
-/** Resolution × span: reach stands once in the head of its column, shape and step margin in the cells. */
+/** Resolution × span: reach stands once in the head of its column, shape and step margin in the cells. Bits. */
 export function SpanTable({ table, onTry }: SpanTableProps) {
   const { which, columns, rows } = table
   const own = {
@@ -92,9 +92,6 @@ export function SpanTable({ table, onTry }: SpanTableProps) {
           ))}
         </tbody>
       </Table>
-      <p className="mt-1 text-small text-ink-3">
-        Bits to spare: reach in the head, step in the cell. Box: this design.
-      </p>
     </Section>
   )
 }
