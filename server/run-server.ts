@@ -1,4 +1,5 @@
 import { readFileSync } from 'node:fs'
+import type { RequestListener, Server } from 'node:http'
 import type { AddressInfo } from 'node:net'
 import type { RequestHandler } from 'express'
 import { OgeeError } from '../shared/errors.ts'
@@ -39,9 +40,14 @@ export async function runServer(config: Config, say: (line: string) => void): Pr
     quotas: defaultQuotas,
   }
   if (config.demo) await loadDemo(deps, config.dataDir, say)
-  const vite = config.dev ? await developmentPage() : null
+  let listener: RequestListener = () => undefined
+  const server = createServer(
+    (request, response) => listener(request, response),
+    config.tls && readTls(config.tls),
+  )
+  const vite = config.dev ? await developmentPage(server) : null
   const app = createApp(vite ? { ...deps, devPage: vite.middleware } : deps)
-  const server = createServer(app.express, config.tls && readTls(config.tls))
+  listener = app.express
   await new Promise<void>((resolve, reject) => {
     server.once('error', (cause: NodeJS.ErrnoException) => reject(cannotListen(config, cause)))
     server.listen(config.port, config.host, resolve)
@@ -101,9 +107,16 @@ function cannotListen(config: Config, cause: NodeJS.ErrnoException): Error {
   })
 }
 
-/** Vite inside our own server, so that page and interface share an origin while developing. */
-async function developmentPage(): Promise<{ middleware: RequestHandler; close: () => Promise<void> }> {
+/** Vite inside our own server, so that page, its reloads and interface share one port while developing. */
+async function developmentPage(
+  server: Server,
+): Promise<{ middleware: RequestHandler; close: () => Promise<void> }> {
   const { createServer: createVite } = await import('vite')
-  const vite = await createVite({ server: { middlewareMode: true }, appType: 'spa' })
+  const vite = await createVite({
+    // Other loaders write the configuration into a passing file, which `node --watch` takes for a change of ours.
+    configLoader: 'runner',
+    server: { middlewareMode: true, hmr: { server } },
+    appType: 'spa',
+  })
   return { middleware: vite.middlewares as unknown as RequestHandler, close: () => vite.close() }
 }

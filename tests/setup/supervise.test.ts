@@ -1,5 +1,6 @@
 import { type ChildProcess, spawn } from 'node:child_process'
 import { existsSync, mkdtempSync, readdirSync, readFileSync, rmSync, statSync } from 'node:fs'
+import { request } from 'node:http'
 import { tmpdir } from 'node:os'
 import { join } from 'node:path'
 import { setTimeout as sleep } from 'node:timers/promises'
@@ -15,9 +16,9 @@ let running: Started[] = []
 
 type Started = { child: ChildProcess; said: () => string; ended: Promise<number | null> }
 
-function start(): Started {
+function start(...args: string[]): Started {
   let said = ''
-  const child = spawn(process.execPath, [join(root, 'server/setup/supervise.mjs')], {
+  const child = spawn(process.execPath, [join(root, 'server/setup/supervise.mjs'), ...args], {
     env: {
       PATH: process.env.PATH ?? '',
       HOME: process.env.HOME ?? '',
@@ -50,6 +51,30 @@ async function until(
     await sleep(50)
   }
   throw new Error(`not within a minute: ${what}\n${said()}`)
+}
+
+/** The status with which the server answers whoever asks for the socket over which Vite tells pages to reload. */
+function reloadSocket(): Promise<number | undefined> {
+  return new Promise((resolve, reject) => {
+    const asked = request({
+      port,
+      host: '127.0.0.1',
+      headers: {
+        Connection: 'Upgrade',
+        Upgrade: 'websocket',
+        'Sec-WebSocket-Version': '13',
+        'Sec-WebSocket-Key': 'AAAAAAAAAAAAAAAAAAAAAA==',
+        'Sec-WebSocket-Protocol': 'vite-ping',
+      },
+    })
+    asked.on('upgrade', ({ statusCode }, socket) => {
+      socket.destroy()
+      resolve(statusCode)
+    })
+    asked.on('response', ({ statusCode }) => resolve(statusCode))
+    asked.on('error', reject)
+    asked.end()
+  })
 }
 
 /** Process ids that name our data folder on their command line or in their environment. */
@@ -95,12 +120,7 @@ describe('npm start', () => {
       people: { role: string }[]
       token: string
     }
-    expect(people.map(({ role }) => role).sort()).toEqual([
-      'administrator',
-      'auditor',
-      'engineer',
-      'operator',
-    ])
+    expect(people.map(({ role }) => role)).toEqual(['administrator', 'engineer', 'operator', 'auditor'])
     expect(token).toMatch(/^ogee_[0-9A-Za-z]{8}_[0-9A-Za-z]{36}$/)
 
     const second = start()
@@ -150,5 +170,26 @@ describe('npm start', () => {
       first,
     )
     expect(first.child.exitCode).toBe(null)
+  })
+})
+
+describe('npm run dev', () => {
+  test('serves the page from its source, its reloads and the interface at one port, and starts once', async () => {
+    const dev = start('--dev')
+    await until('ready', isReady, dev)
+    const at = `http://127.0.0.1:${port}`
+    const page = await fetch(`${at}/bench`, { headers: { accept: 'text/html' } })
+    expect(await page.text()).toContain('/@vite/client')
+    const source = await fetch(`${at}/src/app/main.tsx`)
+    expect([source.status, source.headers.get('content-type')]).toEqual([200, 'text/javascript'])
+    expect((await fetch(`${at}/api/v1/me`)).status).toBe(401)
+    expect(await reloadSocket()).toBe(101)
+    // What Vite writes while it starts is no change of ours: the server stays up.
+    await sleep(3_000)
+    expect(dev.said().match(/Ogee is ready/g)).toHaveLength(1)
+    expect(await isReady()).toBe(true)
+    dev.child.kill('SIGTERM')
+    expect(await dev.ended).toBe(0)
+    expect(processesOfOurs()).toEqual([])
   })
 })
