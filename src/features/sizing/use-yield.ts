@@ -71,7 +71,15 @@ export function useYield(startWorker: StartWorker) {
         setState({ is: 'failed', message: 'This browser did not start the simulation.' })
     }
   }
-  const stop = () => running.current?.postMessage({ kind: 'stop' })
+  const stop = () => {
+    if (running.current) {
+      running.current.postMessage({ kind: 'stop' })
+      return
+    }
+    // Still loading: nothing was simulated yet.
+    turn.current += 1
+    setState({ is: 'idle' })
+  }
   return { state, start, stop }
 }
 
