@@ -71,6 +71,21 @@ export const commandTable: readonly Entry[] = [
         summary: 'The exact document of a revision',
         load: async () => (await import('./commands/design/pull.ts')).designPullCommand,
       },
+      {
+        name: 'push',
+        summary: 'Save a document as a new design or as its next draft',
+        load: async () => (await import('./commands/design/push.ts')).designPushCommand,
+      },
+      {
+        name: 'submit',
+        summary: 'Hand a draft in for review',
+        load: async () => (await import('./commands/design/submit.ts')).designSubmitCommand,
+      },
+      {
+        name: 'diff',
+        summary: 'What changed between two revisions, and what that does to the answer',
+        load: async () => (await import('./commands/design/diff.ts')).designDiffCommand,
+      },
     ],
   },
   {

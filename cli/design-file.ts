@@ -1,6 +1,7 @@
 import { type Design, designDocument } from '../shared/contract/design.ts'
 import { issueWords } from '../shared/contract/issue-words.ts'
 import { OgeeError } from '../shared/errors.ts'
+import type { Json } from '../shared/ledger/canonical.ts'
 import { limits } from '../shared/limits.ts'
 import { fieldErrors } from './field-errors.ts'
 import { parseJson, readText } from './files.ts'
@@ -8,13 +9,23 @@ import type { Io } from './io.ts'
 
 /** Reads and checks a design document; every bad field is named by its JSON pointer. */
 export async function readDesign(io: Io, path: string): Promise<Design> {
+  return designFrom(await readDesignJson(io, path), path)
+}
+
+/** The same, and what stands in the file: without the defaults that the schema fills in. */
+export async function readDesignAsSent(io: Io, path: string): Promise<{ design: Design; sent: Json }> {
+  const sent = await readDesignJson(io, path)
+  return { design: designFrom(sent, path), sent: sent as Json }
+}
+
+async function readDesignJson(io: Io, path: string): Promise<unknown> {
   const text = await readText(
     io,
     path,
     limits.bodyMaxBytes,
     () => new OgeeError('invalid-document', `${path} is over 1 MiB. A design document is smaller.`),
   )
-  return designFrom(parseJson(text.replace(/^\uFEFF/, ''), path), path)
+  return parseJson(text.replace(/^\uFEFF/, ''), path)
 }
 
 /** The design in a parsed document that came from `name`. */

@@ -3,8 +3,8 @@ import { OgeeError } from '../shared/errors.ts'
 import type { Client } from './client.ts'
 import { wholeNumber } from './server-options.ts'
 
-export const readRevision = (word: string): number | 'released' =>
-  word === 'released' ? word : wholeNumber('--revision', word, 1, 1_000_000)
+export const readRevision = (word: string, flag = '--revision'): number | 'released' =>
+  word === 'released' ? word : wholeNumber(flag, word, 1, 1_000_000)
 
 /** A revision and its exact bytes, whose hash has been checked. */
 export async function fetchRevision(

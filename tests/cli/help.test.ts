@@ -4,9 +4,10 @@ import { copyFileSync, mkdirSync, symlinkSync, writeFileSync } from 'node:fs'
 import { join } from 'node:path'
 import { afterAll, beforeAll, describe, expect, test } from 'vitest'
 import { commandTable } from '../../cli/command-table.ts'
+import { revisionLine as lineOf } from '../support/revision-lines.ts'
 import { designBytes, line, me, recordOf, revision, unit } from './support/answers.ts'
 import { builtCli, ended, examples } from './support/built-cli.ts'
-import { FakeServer, json } from './support/fake-server.ts'
+import { FakeServer, json, problem } from './support/fake-server.ts'
 
 const cli = builtCli()
 const server = new FakeServer()
@@ -18,16 +19,20 @@ const names = commandTable.flatMap((entry) =>
 function answerEverything(): void {
   const hash = createHash('sha256').update(designBytes).digest('hex')
   const { document: _, bytes: __, key: ___, ...revisionLine } = revision(hash)
+  const draft = lineOf({ number: 2 })
   const design = {
     key: 'DBS-A',
     title: revisionLine.title,
     released: 1,
     copiedFrom: null,
-    revisions: [revisionLine],
+    revisions: [revisionLine, draft],
   }
   const routes: [RegExp, (seen: Parameters<typeof recordOf>[0]) => unknown][] = [
     [/\/me$/, () => me],
+    [/\/designs\/DBS-A\/revisions\/2\/review$/, () => ({ ...draft, key: 'DBS-A', state: 'in-review' })],
+    [/\/designs\/DBS-A\/revisions$/, () => ({ ...draft, key: 'DBS-A' })],
     [/\/designs\/DBS-A\/revisions\//, () => revision(hash)],
+    [/\/designs$/, () => ({ ...design, key: 'DBS-B', revisions: [draft] })],
     [/\/designs\/DBS-A$/, () => design],
     [/\/designs\?/, () => ({ items: [design], next: null })],
     [/\/units\?/, () => ({ items: [unit], next: null })],
@@ -36,7 +41,7 @@ function answerEverything(): void {
   ]
   server.willAnswer((seen, response) => {
     const route = routes.find(([path]) => path.test(seen.path))
-    if (!route) json(404, {})(seen, response)
+    if (!route) problem('not-found')(seen, response)
     else json(seen.method === 'POST' ? 201 : 200, route[1](seen))(seen, response)
   })
 }

@@ -200,6 +200,6 @@ describe('ASVS V2.3.1 the states of revisions', () => {
       }),
       { numRuns: 30, seed, endOnFailure: true },
     )
-    expect([...reached].sort()).toEqual(['draft', 'in-review', 'released', 'withdrawn'])
+    expect(reached).toEqual(new Set(['draft', 'in-review', 'released', 'withdrawn']))
   })
 })
