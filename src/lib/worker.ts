@@ -1,3 +1,4 @@
+import networkWorkerUrl from './network-worker.ts?worker&url'
 import yieldWorkerUrl from './yield-worker.ts?worker&url'
 
 /** Trusted Types as browsers have them; TypeScript's DOM library does not know them yet. */
@@ -7,7 +8,7 @@ type PolicyFactory = {
 }
 
 /** The only addresses that a worker may be started from: those that the build made. */
-const built: ReadonlySet<string> = new Set([yieldWorkerUrl])
+const built: ReadonlySet<string> = new Set([yieldWorkerUrl, networkWorkerUrl])
 
 export function onlyBuilt(url: string): string {
   if (built.has(url)) return url
@@ -28,4 +29,9 @@ function trusted(url: string): string {
 /** A new worker that simulates yield; whoever starts it ends it. */
 export function startYieldWorker(): Worker {
   return new Worker(trusted(yieldWorkerUrl), { type: 'module', name: 'ogee-yield' })
+}
+
+/** A new worker that looks for resistors; whoever starts it ends it. */
+export function startNetworkWorker(): Worker {
+  return new Worker(trusted(networkWorkerUrl), { type: 'module', name: 'ogee-network' })
 }

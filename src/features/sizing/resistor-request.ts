@@ -1,9 +1,8 @@
-import { isOgeeError } from '../../../shared/errors.ts'
-import type { NetworkResult } from '../../../shared/solver/network-synthesis/request.ts'
 import type { Series } from '../../../shared/solver/network-synthesis/series.ts'
-import { synthesiseNetwork } from '../../../shared/solver/network-synthesis/synthesise.ts'
 import type { SizeResult } from '../../../shared/solver/sizing/types.ts'
 import type { Adjuster, PerAdjuster, Which } from '../../../shared/solver/types.ts'
+import { findNetwork } from '../../lib/find-network.ts'
+import type { FromNetworkWorker, ToNetworkWorker } from '../../lib/network-messages.ts'
 
 /** What the person asks of the resistors. Ratio, ohms, amperes; null is no limit. */
 export type ResistorSettings = {
@@ -20,30 +19,38 @@ export const usualSettings: ResistorSettings = {
   maxCurrentA: 500e-6,
 }
 
-export type ResistorAnswer = { result: NetworkResult } | { refusal: string }
+export type ResistorAnswer = FromNetworkWorker
 
-/** Values for the reach that the sizing asks of the node, or why none can be looked for; null without the adjuster. */
-export function findResistors(
-  design: { adjusters: PerAdjuster<Adjuster> },
+type Adjusted = { adjusters: PerAdjuster<Adjuster> }
+
+/** The question for the reach that the sizing asks of the node; null without the adjuster. */
+export function resistorQuestion(
+  { adjusters }: Adjusted,
   size: SizeResult,
   which: Which,
   { series, tolerance, maxSourceOhm, maxCurrentA }: ResistorSettings,
-): ResistorAnswer | null {
+): ToNetworkWorker | null {
   const needed = size.adjusters[which]
   if (needed === undefined) return null
-  try {
-    const result = synthesiseNetwork(design, which, {
-      wantedLowV: needed.requiredLowV,
-      wantedHighV: needed.requiredHighV,
-      series,
-      tolerance,
-      maxSourceOhm: maxSourceOhm ?? undefined,
-      maxCurrentA: maxCurrentA ?? undefined,
-      count: 4,
-    })
-    return { result }
-  } catch (error) {
-    if (isOgeeError(error)) return { refusal: error.message }
-    throw error
+  const request = {
+    wantedLowV: needed.requiredLowV,
+    wantedHighV: needed.requiredHighV,
+    series,
+    tolerance,
+    maxSourceOhm: maxSourceOhm ?? undefined,
+    maxCurrentA: maxCurrentA ?? undefined,
+    count: 4,
   }
+  return { design: { adjusters }, which, request }
+}
+
+/** Asked and answered at once, in the page. */
+export function findResistors(
+  design: Adjusted,
+  size: SizeResult,
+  which: Which,
+  settings: ResistorSettings,
+): ResistorAnswer | null {
+  const question = resistorQuestion(design, size, which, settings)
+  return question === null ? null : findNetwork(question)
 }

@@ -1,10 +1,11 @@
-import { memo, Suspense, useMemo, useState } from 'react'
+import { memo, Suspense, useState } from 'react'
 import { both, type Which } from '../../features/design-form/form-doc.ts'
 import { YieldPanel } from '../../features/sizing/on-demand.ts'
 import { PassForecast } from '../../features/sizing/pass-forecast.tsx'
 import { ResidualBars } from '../../features/sizing/residual-bars.tsx'
-import { findResistors, usualSettings } from '../../features/sizing/resistor-request.ts'
+import { usualSettings } from '../../features/sizing/resistor-request.ts'
 import { ResistorTable } from '../../features/sizing/resistor-table.tsx'
+import { useResistors } from '../../features/sizing/use-resistors.ts'
 import type { Answer } from './answer.ts'
 import { networkTexts } from './network-texts.ts'
 
@@ -50,7 +51,7 @@ function Resistors({
   onUse: ((texts: Texts) => void) | undefined
 }) {
   const [settings, setSettings] = useState(usualSettings)
-  const found = useMemo(() => findResistors(design, size, which, settings), [design, size, which, settings])
+  const found = useResistors(design, size, which, settings)
   if (found === null) return null
   return (
     <ResistorTable

@@ -1,7 +1,7 @@
-import { render, screen, within } from '@testing-library/react'
+import { act, render, screen, waitFor, within } from '@testing-library/react'
 import { userEvent } from '@testing-library/user-event'
 import { useState } from 'react'
-import { expect, test, vi } from 'vitest'
+import { expect, type Mock, test, vi } from 'vitest'
 import { sizeDesign } from '../../../shared/solver/sizing/size.ts'
 import type { Network } from '../../../shared/solver/types.ts'
 import {
@@ -10,7 +10,14 @@ import {
   usualSettings,
 } from '../../../src/features/sizing/resistor-request.ts'
 import { ResistorTable } from '../../../src/features/sizing/resistor-table.tsx'
-import { unipolar } from './designs.ts'
+import {
+  type NetworkWorker,
+  type StartNetworkWorker,
+  useResistors,
+} from '../../../src/features/sizing/use-resistors.ts'
+import { findNetwork } from '../../../src/lib/find-network.ts'
+import type { FromNetworkWorker } from '../../../src/lib/network-messages.ts'
+import { unipolar, withGain } from './designs.ts'
 
 const size = sizeDesign(unipolar)
 const outputPerV = size.adjusters.gain!.outputPerV
@@ -93,4 +100,40 @@ test('a request that makes no sense is refused in a sentence, without a table', 
 test('a design without the adjuster has no resistors to find', () => {
   const alone = { ...unipolar, adjusters: { offset: unipolar.adjusters.offset } }
   expect(findResistors(alone, sizeDesign(alone), 'gain', usualSettings)).toBeNull()
+})
+
+const shifted: Network = { kind: 'shifted', topOhm: 10_000, shiftOhm: 20_000, shiftV: 2.5 }
+const shiftedDesign = withGain({ lowV: 0, highV: 2.5 }, shifted)
+const shiftedSize = sizeDesign(shiftedDesign)
+
+function Shifted({ startWorker, settings }: { startWorker: StartNetworkWorker; settings: ResistorSettings }) {
+  const answer = useResistors(shiftedDesign, shiftedSize, 'gain', settings, startWorker)
+  if (answer === null) return <p>looking</p>
+  return <p>{'result' in answer ? JSON.stringify(answer.result) : answer.refusal}</p>
+}
+
+test('three resistors are looked for in a worker, once typing rests; what is overtaken is ended', async () => {
+  const workers: { postMessage: Mock; terminate: Mock; onmessage: NetworkWorker['onmessage'] }[] = []
+  const startWorker = () => {
+    const worker = { postMessage: vi.fn(), terminate: vi.fn(), onmessage: null }
+    workers.push(worker)
+    return worker
+  }
+  const { rerender } = render(<Shifted startWorker={startWorker} settings={usualSettings} />)
+  const other = { ...usualSettings, series: 'E24' } as const
+  rerender(<Shifted startWorker={startWorker} settings={other} />)
+  expect(screen.getByText('looking')).toBeVisible()
+  await waitFor(() => expect(workers.length).toBe(1))
+  const [question] = workers[0]!.postMessage.mock.calls[0]!
+  expect(question).toMatchObject({ which: 'gain', request: { series: 'E24' } })
+  const answer = findResistors(shiftedDesign, shiftedSize, 'gain', other)
+  act(() => workers[0]!.onmessage?.({ data: findNetwork(question) } as MessageEvent<FromNetworkWorker>))
+  expect(screen.getByText(JSON.stringify(answer && 'result' in answer && answer.result))).toBeVisible()
+  expect(workers[0]!.terminate).toHaveBeenCalled()
+  // Another question: the answer stays until the next is there, and leaving ends the worker.
+  rerender(<Shifted startWorker={startWorker} settings={usualSettings} />)
+  expect(screen.queryByText('looking')).toBeNull()
+  await waitFor(() => expect(workers.length).toBe(2))
+  rerender(<p>left</p>)
+  expect(workers[1]!.terminate).toHaveBeenCalled()
 })
