@@ -63,6 +63,7 @@ export const notice = z.object({
   code: z.enum([
     'newer-record',
     'revision-withdrawn',
+    'released-by-author',
     'instrument-overdue',
     'clock-skew',
     'claimed-codes-differ',

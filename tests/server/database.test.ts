@@ -1,5 +1,6 @@
 import request from 'supertest'
 import { afterAll, beforeAll, describe, expect, it, vi } from 'vitest'
+import { createDesign } from '../../server/commands/create-design.ts'
 import { openDatabase } from '../../server/db/connection.ts'
 import { migrate, missingSteps } from '../../server/db/migrate.ts'
 import { recordedNames } from '../../server/db/migrations/001-recorded.ts'
@@ -7,10 +8,11 @@ import { sqlTime } from '../../server/db/sql.ts'
 import { transaction } from '../../server/db/transaction.ts'
 import { unsafeSetting } from '../../server/http/health.ts'
 import { post } from '../support/server-client.ts'
-import { trimBody } from '../support/server-factories.ts'
+import { trimBody, unipolar } from '../support/server-factories.ts'
 import { addDesign, addStation, addToken, type Harness, serverHarness } from '../support/server-harness.ts'
 
 let harness: Harness
+const writer = { kind: 'person', id: '00000000-0000-7000-8000-00000000000a', name: 'Author' } as const
 
 beforeAll(async () => {
   harness = await serverHarness()
@@ -63,6 +65,12 @@ describe('ASVS V2.3.1 a released revision', () => {
     ["state = 'draft', document = 'x'", 'never goes back'],
   ])('refuses SET %s', async (change, message) => {
     await expect(harness.database.sql.run(`UPDATE revisions SET ${change}`)).rejects.toThrow(message)
+  })
+
+  it.each(['released', 'withdrawn'])('is not reached from draft in one step: %s', async (state) => {
+    await createDesign(harness.deps, { key: `STEP-${state}`, document: unipolar(), author: writer })
+    const change = `UPDATE revisions SET state = ?, document = NULL WHERE state = 'draft'`
+    await expect(harness.database.sql.run(change, [state])).rejects.toThrow('never skips a step')
   })
 
   it('refuses deletion', async () => {

@@ -85,6 +85,8 @@ describe('review and release', () => {
     await lenient.stop()
     expect(released.body).toMatchObject({ state: 'released', releasedByAuthor: true })
     expect((await leaves('release')).at(-1)).toMatchObject({ design: 'ALONE', releasedByAuthor: true })
+    const record = await post(scene.url, scene.station, trimBody({ unit: 'A-1', design: 'ALONE' }))
+    expect(record.notices).toMatchObject([{ code: 'released-by-author' }])
   })
 
   it('goes back to draft with a reason, is edited, and comes again', async () => {

@@ -10,6 +10,7 @@ export type RevisionInPlay = {
   state: RevisionState
   hash: string
   withdrawnAt: Date | null
+  releasedByAuthor: boolean
 }
 export type LotInPlay = { designId: number; lotKey: string; revision: number; state: string }
 
@@ -23,7 +24,7 @@ export async function readCatalogue(
 ): Promise<Catalogue> {
   const rows = await sql.rows<Omit<RevisionInPlay, 'hash'> & { documentHash: Buffer }>(
     `SELECT r.design_id AS designId, d.design_key AS design, r.number, r.state, r.document_hash AS documentHash,
-      r.withdrawn_at AS withdrawnAt
+      r.withdrawn_at AS withdrawnAt, r.released_by_author AS releasedByAuthor
       FROM designs d JOIN revisions r ON r.design_id = d.id WHERE d.design_key IN (?) ORDER BY r.number`,
     [[...new Set(designs)]],
   )

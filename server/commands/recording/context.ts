@@ -24,6 +24,7 @@ export type NoticeList = { code: NoticeCode; message: string; record?: string }[
 type NoticeCode =
   | 'newer-record'
   | 'revision-withdrawn'
+  | 'released-by-author'
   | 'clock-skew'
   | 'claimed-codes-differ'
   | 'overridden'

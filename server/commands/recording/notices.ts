@@ -8,6 +8,7 @@ export function measurementNotices(context: Context, body: RecordBody): NoticeLi
   return [
     ...newerRecord(context, body),
     ...withdrawnRevision(context),
+    ...releasedByAuthor(context),
     ...clockSkew(context, body),
     ...claimedCodes(context, body),
   ]
@@ -50,6 +51,13 @@ function withdrawnRevision({ revision }: Context): NoticeList {
       message: `Revision ${revision.number} of ${revision.design} was withdrawn.`,
     },
   ]
+}
+
+/** Where a site lets an author release, everything that was made under it says so. */
+function releasedByAuthor({ revision }: Context): NoticeList {
+  if (!revision.releasedByAuthor) return []
+  const message = `Revision ${revision.number} of ${revision.design} was released by its author.`
+  return [{ code: 'released-by-author', message }]
 }
 
 /** A clock ahead of ours is wrong; one behind may belong to a measurement that waited. */
