@@ -60,7 +60,7 @@ describe('quantiles', () => {
     }
   })
 
-  test('textbook values (from memory): χ² 95 % and 99.9 % of 10, F 95 % of (4, 6)', () => {
+  test('textbook values: χ² 95 % and 99.9 % of 10, F 95 % of (4, 6)', () => {
     expect(chiSquaredUpper(0.05, 10)).toBeCloseTo(18.307, 3)
     expect(chiSquaredUpper(0.001, 10)).toBeCloseTo(29.588, 3)
     expect(fisherUpper(0.05, 4, 6)).toBeCloseTo(4.534, 3)
