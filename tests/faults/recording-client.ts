@@ -32,7 +32,8 @@ export async function deliver(
   token: string,
   { key, unit, body }: Delivery,
 ): Promise<Acknowledged> {
-  for (let attempt = 0; attempt < 400; attempt += 1) {
+  const since = Date.now()
+  for (let attempt = 0; Date.now() - since < patienceMs; attempt += 1) {
     try {
       const response = await fetch(`${urlOf()}/api/v1/trims`, {
         method: 'POST',
@@ -54,8 +55,11 @@ export async function deliver(
     }
     await sleep(Math.min(10 * (attempt + 1), 100))
   }
-  throw new Error(`${key}: not acknowledged after 400 tries`)
+  throw new Error(`${key}: not acknowledged in three minutes`)
 }
+
+/** A guard against hanging: on a busy machine database and server take long to be there again. */
+const patienceMs = 180_000
 
 class Refused extends Error {}
 
