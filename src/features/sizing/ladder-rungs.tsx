@@ -37,7 +37,7 @@ export function RungMark(props: { ladder: Ladder; rung: Rung; centre: number; y:
   return (
     <>
       {/* The target reaches over the whole rung and its number. */}
-      <rect x={centre - half - 22} y={y - 11} width={2 * half + 22} height={22} fill="transparent" />
+      <rect x={centre - half - 22} y={y - 12} width={2 * half + 22} height={24} fill="transparent" />
       <rect
         data-rung={isMissing ? 'missing' : isFilled ? 'filled' : 'hollow'}
         x={centre - half + inset}

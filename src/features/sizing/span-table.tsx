@@ -61,7 +61,7 @@ export function SpanTable({ table, onTry }: SpanTableProps) {
             {columns.map((column) => (
               <Th key={`${column.lowV} ${column.highV}`} align="right" className="!px-0.5 whitespace-nowrap">
                 {spanText(column, unit)}
-                <span className={`block ${(column.reachSpareBits ?? 0) < 0 ? 'text-bad' : 'text-ink-2'}`}>
+                <span className={`block ${(column.reachMargin ?? 0) < 0 ? 'text-bad' : 'text-ink-2'}`}>
                   <span className="sr-only">reach </span>
                   {column.reachSpareBits === null ? 'none' : marginText(column.reachSpareBits)}
                 </span>

@@ -12,7 +12,7 @@ export function YieldAnswer({ result }: { result: YieldResult }) {
     <div className="grid gap-x-7 gap-y-3 wide:grid-cols-[minmax(0,1.15fr)_minmax(0,1fr)]">
       <YieldPlot result={result} />
       <div>
-        <Table caption="Yield by pass">
+        <Table caption="Yield by pass" className="whitespace-nowrap">
           <thead>
             <tr>
               <Th>passes</Th>
@@ -27,9 +27,7 @@ export function YieldAnswer({ result }: { result: YieldResult }) {
               <tr key={pass} className={pass === lastPass ? 'bg-shade' : ''}>
                 <Td>{pass}</Td>
                 <Td align="right">{percent(share)}</Td>
-                <Td align="right" className="whitespace-nowrap">
-                  {`${fixed(low95 * 100, 3)} to ${percent(high95, 3)}`}
-                </Td>
+                <Td align="right">{`${fixed(low95 * 100, 3)} to ${percent(high95, 3)}`}</Td>
                 <Td align="right">{percent(outOfReach)}</Td>
                 <Td align="right">{percent(failing)}</Td>
               </tr>
