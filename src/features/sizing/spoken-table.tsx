@@ -1,7 +1,10 @@
-import type { PlotTableData } from '../../ui/plot/plot-figure.tsx'
+import { memo } from 'react'
+import type { Ladder } from '../../../shared/solver/sizing/ladder.ts'
+import { ladderTable } from './ladder-words.ts'
 
 /** The picture for a screen reader: never seen, never a tab stop. */
-export function SpokenTable({ table }: { table: PlotTableData }) {
+export const SpokenTable = memo(function SpokenTable({ ladders }: { ladders: readonly Ladder[] }) {
+  const table = ladderTable(ladders)
   return (
     <table>
       <caption>Trim ladder, rung by rung</caption>
@@ -25,4 +28,4 @@ export function SpokenTable({ table }: { table: PlotTableData }) {
       </tbody>
     </table>
   )
-}
+})

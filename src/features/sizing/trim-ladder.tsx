@@ -1,4 +1,4 @@
-import { useState } from 'react'
+import { useDeferredValue, useState } from 'react'
 import type { Ladder } from '../../../shared/solver/sizing/ladder.ts'
 import { PlotFigure } from '../../ui/plot/plot-figure.tsx'
 import { PlotSvg } from '../../ui/plot/plot-svg.tsx'
@@ -18,14 +18,18 @@ export type TrimLadderProps = {
   problem?: string | undefined
 }
 
+const none: readonly Ladder[] = []
+
 /** A scale to draw an axis by while there is none: its LSB and ppm are not shown. */
 const anyScale: LadderScale = { lsbV: 1e-5, fsrV: 10 }
 
 /** Each bit of the auxiliary DAC is a rung, the bracket what budget and target demand. */
 export function TrimLadder({ ladders, scale, problem }: TrimLadderProps) {
   const [asTable, setAsTable] = useState(false)
-  const shown = problem === undefined && scale !== null ? ladders : []
+  const shown = problem === undefined && scale !== null ? ladders : none
   const table = ladderTable(shown)
+  // What is only spoken may follow a moment after the picture.
+  const spoken = useDeferredValue(shown)
   const sentence = shown.length > 0 ? shown.map(ladderSentence).join(' ') : 'Trim ladder: the axis alone.'
   return (
     <PlotFigure
@@ -56,7 +60,7 @@ export function TrimLadder({ ladders, scale, problem }: TrimLadderProps) {
             </PlotSvg>
             {shown.length > 0 && (
               <div className="sr-only">
-                <SpokenTable table={table} />
+                <SpokenTable ladders={spoken} />
               </div>
             )}
           </>
