@@ -86,6 +86,13 @@ describe('the OpenAPI document', () => {
       expect.objectContaining({ name: 'Idempotency-Key', in: 'header', required: true }),
     )
     expect(post).toMatchObject({ security: [{ session: [] }, { token: [] }] })
+    const put = document.paths['/designs/{key}/revisions/{number}']!.put!
+    expect(put.parameters).toContainEqual(
+      expect.objectContaining({ name: 'If-Match', in: 'header', required: true }),
+    )
+    expect(Object.keys(put.responses)).toEqual(expect.arrayContaining(['409', '412', '428']))
+    const release = document.paths['/designs/{key}/revisions/{number}/release']!.post!
+    expect(release).toMatchObject({ security: [{ session: [] }] })
   })
 })
 

@@ -201,5 +201,5 @@ describe('ASVS V2.3.1 the states of revisions', () => {
       { numRuns: 30, seed, endOnFailure: true },
     )
     expect(reached).toEqual(new Set(['draft', 'in-review', 'released', 'withdrawn']))
-  })
+  }, 300_000)
 })

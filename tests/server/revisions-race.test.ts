@@ -57,7 +57,7 @@ describe(`ASVS V2.3.4 R7: ${races} races of two writers on one draft`, () => {
         expect(current).toBe(`"1.${1 + races / lanes}"`)
       }),
     )
-  })
+  }, 300_000)
 })
 
 describe('two who release at once', () => {

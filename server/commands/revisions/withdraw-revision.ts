@@ -16,6 +16,8 @@ export async function withdrawRevision(
   asked: Asked & { reason: string },
 ): Promise<RevisionSummary & { use: RevisionUse }> {
   const { key, number, by, reason } = asked
+  // Looked up before, not within: a design with many units takes a while, and its row is locked while we change it.
+  const [use] = (await readUse(database.sql, key, number)) ?? []
   const withdrawn = await transaction(database, async (sql) => {
     const row = await lockRevision(database, sql, asked)
     requireState(row, 'released', 'withdrawn')
@@ -30,16 +32,14 @@ export async function withdrawRevision(
       reason,
     }
     await insertLeaves(sql, [newLeaf('withdrawal', at.toISOString(), body)])
-    const changed = await changeRevision(database, sql, row, key, {
+    return changeRevision(database, sql, row, key, {
       state: 'withdrawn',
       withdrawn_by: by.name,
       withdrawn_at: sqlTime(at),
       withdraw_reason: reason,
     })
-    const [use] = (await readUse(sql, key, number)) ?? []
-    if (!use) throw new Error(`Revision ${number} of ${key} has gone.`)
-    return { ...changed, use }
   })
   notifyLedger()
-  return withdrawn
+  if (!use) throw new Error(`Revision ${number} of ${key} was withdrawn and has no use to report.`)
+  return { ...withdrawn, use }
 }
