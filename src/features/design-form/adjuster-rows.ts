@@ -3,7 +3,14 @@ import type { FormDoc, Which } from './form-doc.ts'
 import { codings, networkKinds, signs } from './words.ts'
 
 /** One question to an adjuster: a text, or one of a list. */
-export type Asking = { name: string; label: string; options?: Options; placeholder?: string }
+export type Asking = {
+  name: string
+  label: string
+  /** Where two labels share a row. */
+  short?: string
+  options?: Options
+  placeholder?: string
+}
 /** A row of the table: what it asks each adjuster; the two may be asked different things in the same place. */
 export type AskingRow = Readonly<Record<Which, Asking | null>>
 
@@ -16,13 +23,13 @@ const effectRows: Readonly<Record<string, readonly Asking[]>> = {
     ask('offsetPerV', 'Offset per V', { placeholder: '0' }),
   ],
   'output-summing': [
-    ask('feedback', 'R feedback', { placeholder: '10 kohm' }),
-    ask('adjust', 'R adjust', { placeholder: '1 Mohm' }),
+    ask('feedback', 'R feedback', { short: 'R f', placeholder: '10 kohm' }),
+    ask('adjust', 'R adjust', { short: 'R a', placeholder: '1 Mohm' }),
     ask('sign', 'Sign', { options: signs }),
   ],
   'reference-summing': [
-    ask('inputR', 'R input', { placeholder: '10 kohm' }),
-    ask('adjust', 'R adjust', { placeholder: '820 kohm' }),
+    ask('inputR', 'R input', { short: 'R in', placeholder: '10 kohm' }),
+    ask('adjust', 'R adjust', { short: 'R a', placeholder: '820 kohm' }),
     ask('reference', 'Reference', { placeholder: '5 V' }),
     ask('sign', 'Sign', { options: signs }),
     ask('pivot', 'Pivot', { placeholder: '0 V' }),
@@ -73,6 +80,7 @@ export function adjusterRows({ values }: FormDoc): AskingRow[] {
 }
 
 export function rowLabel({ gain, offset }: AskingRow): string {
-  if (gain && offset && gain.label !== offset.label) return `${gain.label}, ${offset.label}`
+  if (gain && offset && gain.label !== offset.label)
+    return `${gain.short ?? gain.label}, ${offset.short ?? offset.label}`
   return gain?.label ?? offset?.label ?? ''
 }

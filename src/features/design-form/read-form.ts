@@ -22,24 +22,43 @@ import {
 } from './reader.ts'
 
 export type Reading = {
-  /** Null while anything is in error or not yet computed. */
-  document: Design | null
+  /** As read and not yet checked against the contract; null while anything is in error or not yet computed. */
+  draft: Design | null
   problems: ReadonlyMap<string, string>
   isPending: boolean
 }
 
-/** The form as a design document, or what is wrong at which field. */
-export function readForm(doc: FormDoc, arithmetic: Arithmetic): Reading {
+/**
+ * The fields of the form as a document: enough for the solver, which checks what it needs. The check against the whole
+ * contract takes some milliseconds, more than a key may; see `checkDraft`.
+ */
+export function readFields(doc: FormDoc, arithmetic: Arithmetic): Reading {
   const reader = newReader(arithmetic)
   const raw = readDocument(reader, doc)
-  const { problems } = reader
-  if (problems.size > 0 || reader.isPending) return { document: null, problems, isPending: reader.isPending }
-  const parsed = designDocument.safeParse(raw)
-  if (parsed.success) return { document: parsed.data, problems, isPending: false }
+  const { problems, isPending } = reader
+  return { draft: problems.size > 0 || isPending ? null : (raw as Design), problems, isPending }
+}
+
+export type Checked = { document: Design | null; problems: ReadonlyMap<string, string> }
+
+/** The document by the contract, or what is wrong at which field. */
+export function checkDraft(doc: FormDoc, draft: Design): Checked {
+  const problems = new Map<string, string>()
+  const parsed = designDocument.safeParse(draft)
+  if (parsed.success) return { document: parsed.data, problems }
   for (const { path, message } of parsed.error.issues) {
-    wrong(reader, fieldAt(doc, `/${path.map(String).join('/')}`), message)
+    const field = fieldAt(doc, `/${path.map(String).join('/')}`)
+    if (!problems.has(field)) problems.set(field, message)
   }
-  return { document: null, problems, isPending: false }
+  return { document: null, problems }
+}
+
+/** Both at once: the form as a design document, or what is wrong at which field. */
+export function readForm(doc: FormDoc, arithmetic: Arithmetic): Checked & { isPending: boolean } {
+  const { draft, problems, isPending } = readFields(doc, arithmetic)
+  return draft === null
+    ? { document: null, problems, isPending }
+    : { ...checkDraft(doc, draft), isPending: false }
 }
 
 function readDocument(reader: Reader, doc: FormDoc): object {

@@ -20,7 +20,8 @@ export function AnswerColumn({
   onCompare: (number: number | null) => void
 }) {
   const { answer, isStale, refusal } = page.answered
-  const lower = useDeferredValue(answer)
+  // The sentences come with the key; what is drawn follows them, and gives way to the next key.
+  const drawn = useDeferredValue(answer)
   const latest = useRef(page)
   latest.current = page
   const onField = useCallback((path: string) => {
@@ -49,7 +50,7 @@ export function AnswerColumn({
       <div className={`order-2 min-w-0 wide:mt-3 ${grey}`}>
         <Suspense fallback={null}>
           <LadderAndTables
-            answer={answer}
+            answer={drawn}
             problem={refusal?.code === 'adjusters-not-independent' ? refusal.message : undefined}
             onTry={onTry}
           />
@@ -57,9 +58,9 @@ export function AnswerColumn({
       </div>
       <div className={`order-4 min-w-0 wide:mt-3.5 ${grey}`}>
         <Suspense fallback={null}>
-          {lower ? (
+          {drawn ? (
             <Lower
-              answer={lower}
+              answer={drawn}
               isReady={!isStale}
               onUse={page.isEditable ? onUse : undefined}
               onField={onField}

@@ -1,9 +1,9 @@
-import { memo } from 'react'
+import { memo, useMemo } from 'react'
 import { endsText } from '../../features/design-form/exact-text.ts'
 import { SpanTable } from '../../features/sizing/span-table.tsx'
 import { TrimLadder } from '../../features/sizing/trim-ladder.tsx'
 import { VerdictRows } from '../../features/sizing/verdict-rows.tsx'
-import type { Answer } from './answer.ts'
+import { type Answer, picturesOf } from './answer.ts'
 
 type OnTry = (texts: Readonly<Record<string, string>>) => void
 type OnField = (path: string) => void
@@ -21,12 +21,13 @@ export const LadderAndTables = memo(function LadderAndTables({
   problem: string | undefined
   onTry: OnTry
 }) {
+  const pictures = useMemo(() => (answer ? picturesOf(answer) : null), [answer])
   const scale = answer ? { lsbV: answer.size.lsbV, fsrV: answer.fsrV } : null
   return (
     <div className="grid grid-cols-1 gap-x-5 gap-y-3 wide:grid-cols-[minmax(0,1fr)_17.5rem]">
-      <TrimLadder ladders={answer?.ladders ?? []} scale={scale} problem={problem} />
+      <TrimLadder ladders={pictures?.ladders ?? []} scale={scale} problem={problem} />
       <div className="grid min-w-0 grid-cols-1 content-start gap-x-7 gap-y-3 medium:grid-cols-2 wide:grid-cols-1">
-        {answer?.tables.map((table) => (
+        {pictures?.tables.map((table) => (
           <SpanTable
             key={table.which}
             table={table}
@@ -38,7 +39,7 @@ export const LadderAndTables = memo(function LadderAndTables({
             }
           />
         ))}
-        {answer && answer.tables.length > 0 ? (
+        {pictures && pictures.tables.length > 0 ? (
           <p className="text-small text-ink-3 medium:col-span-2 wide:col-span-1">
             Bits to spare: reach in the head, step in the cell. Box: this design.
           </p>

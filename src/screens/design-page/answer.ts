@@ -10,9 +10,10 @@ export type Answer = {
   design: Design
   size: SizeResult
   fsrV: number
-  ladders: readonly Ladder[]
-  tables: readonly SpanTable[]
 }
+
+/** What is drawn of it. */
+export type Pictures = { ladders: readonly Ladder[]; tables: readonly SpanTable[] }
 
 const both = ['gain', 'offset'] as const
 
@@ -21,16 +22,17 @@ export function answerOf(design: Design, rangeId: string): Answer | OgeeError {
   try {
     const range = design.ranges.find(({ id }) => id === rangeId)!
     const size = sizeDesign(design, { rangeId })
-    const fsrV = range.highV - range.lowV
-    return {
-      design,
-      size,
-      fsrV,
-      ladders: both.flatMap((which) => ladderOf(size, which, fsrV) ?? []),
-      tables: both.flatMap((which) => resolutionSpanTable(design, which, { rangeId }) ?? []),
-    }
+    return { design, size, fsrV: range.highV - range.lowV }
   } catch (error) {
     if (isOgeeError(error)) return error
     throw error
+  }
+}
+
+export function picturesOf({ design, size, fsrV }: Answer): Pictures {
+  const rangeId = size.range
+  return {
+    ladders: both.flatMap((which) => ladderOf(size, which, fsrV) ?? []),
+    tables: both.flatMap((which) => resolutionSpanTable(design, which, { rangeId }) ?? []),
   }
 }

@@ -35,7 +35,7 @@ export function DocumentActs({ page }: { page: DesignPageState }) {
       >
         <Button
           look="quiet"
-          disabled={answered.document === null}
+          disabled={!answered.isGood}
           onClick={() => {
             if (answered.document === null) return
             const name = `${designKey}-${number ?? 'new'}.json`

@@ -42,7 +42,7 @@ export function HeadActs({
       {isEngineer && page.isEditable ? (
         <Button
           look="primary"
-          disabled={acts.isBusy || page.answered.document === null || page.isTried}
+          disabled={acts.isBusy || !page.answered.isGood || page.isTried}
           onClick={onSubmit}
         >
           Send to review

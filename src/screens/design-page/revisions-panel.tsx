@@ -94,7 +94,7 @@ function CopyForm({ page, acts }: { page: DesignPageState; acts: RevisionActs })
   const { document } = page.answered
   if (!isOpen) {
     return (
-      <Button look="quiet" className="mt-1" onClick={() => setOpen(true)} disabled={document === null}>
+      <Button look="quiet" className="mt-1" onClick={() => setOpen(true)} disabled={!page.answered.isGood}>
         Copy to a new key
       </Button>
     )

@@ -1,6 +1,6 @@
 import { type QueryClient, useQueryClient } from '@tanstack/react-query'
 import { useCallback, useEffect, useRef, useState } from 'react'
-import type { Design } from '../../../shared/contract/design.ts'
+import { type Design, designDocument } from '../../../shared/contract/design.ts'
 import { postDesign, type Revision, type RevisionLine } from '../../../shared/contract/designs.ts'
 import { putRevision } from '../../../shared/contract/revisions.ts'
 import { isOgeeError } from '../../../shared/errors.ts'
@@ -82,8 +82,12 @@ export function useServerDraft({ designKey, revision, startEtag, document }: Ask
 }
 
 function savedOf(line: Pick<RevisionLine, 'number' | 'etag' | 'savedAt'>, document: Design): Saved {
-  return { number: line.number, etag: line.etag, at: line.savedAt, text: JSON.stringify(document) }
+  return { number: line.number, etag: line.etag, at: line.savedAt, text: textOf(document) }
 }
+
+/** In the order of keys that the form's own reading gives, so that the same is seen as the same. */
+const textOf = (document: Design): string =>
+  JSON.stringify(designDocument.safeParse(document).data ?? document)
 
 async function put(client: QueryClient, key: string, saved: Saved | null, document: Design): Promise<Saved> {
   if (saved === null) {
