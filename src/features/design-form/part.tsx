@@ -33,6 +33,5 @@ export function Part({
 export function jumpToPart(number: number): void {
   const part = document.querySelector<HTMLElement>(`[data-part="${number}"]`)
   const target = part?.querySelector<HTMLElement>('[data-field]') ?? part
-  target?.scrollIntoView({ block: 'nearest' })
   target?.focus()
 }
