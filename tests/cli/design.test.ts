@@ -59,6 +59,7 @@ describe('push', () => {
       code: 'precondition-required',
       facts: { savedBy: 'Test token', etag: done(made).etag },
     })
+    expect((await run(['show', 'P-1', '--format', 'table'])).stdout).toContain(done(made).etag)
     // Without its quotes too: shells take them away.
     const saved = await push('P-1', '--if-match', done(made).etag.replaceAll('"', ''))
     expect(done(saved)).toMatchObject({ done: 'saved', number: 1, title: 'Two' })

@@ -28,6 +28,7 @@ async function show(options: Options, context: Context): Promise<number> {
     revision.releasedAt,
     revision.hash,
     revision.title,
+    revision.etag,
   ])
   await print(
     {
@@ -35,14 +36,16 @@ async function show(options: Options, context: Context): Promise<number> {
       lines: design.revisions,
       table: () =>
         textTable(
-          ['Revision', 'State', 'Author', 'Released by', 'Released', 'SHA-256', 'Title'].map((head, i) => ({
-            head,
-            right: i === 0,
-          })),
+          ['Revision', 'State', 'Author', 'Released by', 'Released', 'SHA-256', 'Title', 'ETag'].map(
+            (head, i) => ({
+              head,
+              right: i === 0,
+            }),
+          ),
           rows,
         ),
       csv: {
-        heads: ['revision', 'state', 'author', 'released_by', 'released_at', 'hash', 'title'],
+        heads: ['revision', 'state', 'author', 'released_by', 'released_at', 'hash', 'title', 'etag'],
         rows,
       },
     },
