@@ -1,4 +1,3 @@
-import './zod-words.ts'
 import { lazy, Suspense, useEffect, useRef, useState } from 'react'
 import { Outlet, useLocation, useNavigate } from 'react-router-dom'
 import { useOutbox } from '../features/bench/outbox.ts'

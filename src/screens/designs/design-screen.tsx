@@ -1,3 +1,4 @@
+import '../../lib/zod-words.ts'
 import { useQuery } from '@tanstack/react-query'
 import { useState } from 'react'
 import { useParams, useSearchParams } from 'react-router-dom'
