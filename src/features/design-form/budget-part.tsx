@@ -24,7 +24,7 @@ export function BudgetPart({ doc, said, sums }: { doc: FormDoc; said: Said; sums
   return (
     <Part number={3} title="Error budget" side={side} problem={said.problems.get('budget')}>
       <div
-        className="hidden grid-cols-[minmax(0,1fr)_4.25rem_5.5rem_4.25rem_1.25rem] gap-x-1.5 text-small font-medium text-ink-2 narrow:grid"
+        className="hidden grid-cols-[minmax(0,1fr)_4.25rem_5.5rem_4.25rem_1.25rem] gap-x-1.5 text-small font-medium text-ink-2 narrow:grid print:hidden"
         aria-hidden="true"
       >
         <span className="px-1">Line</span>
@@ -169,9 +169,9 @@ const LineRow = memo(function LineRow({
       aria-label={`${which} line ${number}`}
       data-line={`${which}.${line.id}`}
       onKeyDown={onKeyDown}
-      className="mb-1 grid grid-cols-[1fr_1fr_1fr_1.25rem] items-start gap-x-1.5 narrow:mb-0 narrow:grid-cols-[minmax(0,1fr)_4.25rem_5.5rem_4.25rem_1.25rem]"
+      className="mb-1 grid grid-cols-[1fr_1fr_1fr_1.25rem] items-start gap-x-1.5 narrow:mb-0 narrow:grid-cols-[minmax(0,1fr)_4.25rem_5.5rem_4.25rem_1.25rem] print:mb-1 print:grid-cols-3"
     >
-      <span className="col-span-4 min-w-0 narrow:col-span-1">
+      <span className="col-span-4 min-w-0 narrow:col-span-1 print:col-span-3">
         <TextCell {...cell('name', 'Line')} placeholder="name" />
       </span>
       <TextCell {...cell('limit', 'Limit')} placeholder={which === 'gain' ? 'ppm' : 'uV'} />

@@ -130,7 +130,7 @@ function Said({
 /** Label left, field, and at its right what was understood. */
 export function Row({ label, hint, children }: { label: ReactNode; hint?: ReactNode; children: ReactNode }) {
   return (
-    <div className="grid grid-cols-[6.75rem_minmax(0,9.5rem)_minmax(0,1fr)] items-start gap-x-2">
+    <div className="grid grid-cols-[6.75rem_minmax(0,9.5rem)_minmax(0,1fr)] items-start gap-x-2 print:grid-cols-[6rem_minmax(0,1fr)_minmax(0,1fr)]">
       <span className="pt-[4px] text-small text-ink-2" aria-hidden="true">
         {label}
       </span>
