@@ -1,7 +1,7 @@
-import { type ReactNode, useEffect, useId, useRef, useState } from 'react'
-import { explainSize } from '../../../shared/design-words/explain.ts'
+import { lazy, type ReactNode, Suspense, useEffect, useId, useRef, useState } from 'react'
 import type { SizeResult, SizingDesign } from '../../../shared/solver/sizing/types.ts'
-import { ExplanationText } from './explanation-text.tsx'
+
+const Explanations = lazy(() => import('./explanations.tsx'))
 
 export type Explained = { design: SizingDesign; result: SizeResult }
 
@@ -45,12 +45,9 @@ export function Explain({ design, result, of, name, onField, className = '', chi
       </button>
       {isOpen && (
         <Popover id={id} button={button} label={`How ${name} comes about`} onClose={() => setOpen(false)}>
-          {of.map(({ label, path }) => {
-            const explanation = explainSize(design, result, path)
-            return explanation === null ? null : (
-              <ExplanationText key={path} label={label} explanation={explanation} onField={onField} />
-            )
-          })}
+          <Suspense fallback={null}>
+            <Explanations design={design} result={result} of={of} onField={onField} />
+          </Suspense>
         </Popover>
       )}
     </>

@@ -1,17 +1,13 @@
 import { memo, Suspense, useState } from 'react'
-import { both, type Which } from '../../features/design-form/form-doc.ts'
-import { YieldPanel } from '../../features/sizing/on-demand.ts'
 import { PassForecast } from '../../features/sizing/pass-forecast.tsx'
 import { ResidualBars } from '../../features/sizing/residual-bars.tsx'
-import { usualSettings } from '../../features/sizing/resistor-request.ts'
-import { ResistorTable } from '../../features/sizing/resistor-table.tsx'
-import { useResistors } from '../../features/sizing/use-resistors.ts'
+import { WhenNear } from '../../ui/when-near.tsx'
 import type { Answer } from './answer.ts'
-import { networkTexts } from './network-texts.ts'
+import { Choices } from './on-demand.ts'
 
 type Texts = Readonly<Record<string, string>>
 
-/** Residual, resistors and yield. */
+/** Residual and passes; then, once they are near, resistors and yield. */
 export default memo(function Lower({
   answer,
   isReady,
@@ -28,38 +24,12 @@ export default memo(function Lower({
   return (
     <div className="space-y-3.5">
       <ResidualBars design={design} result={size} unit={unit} onUnit={setUnit} onField={onField} />
-      {both.map((which) =>
-        design.adjusters[which] && design.adjusters[which].network.kind !== 'direct' ? (
-          <Resistors key={which} answer={answer} which={which} onUse={onUse} />
-        ) : null,
-      )}
-      <Suspense fallback={null}>
-        <YieldPanel design={design} rangeId={size.range} isReady={isReady} />
-      </Suspense>
+      <WhenNear minHeight={400}>
+        <Suspense fallback={null}>
+          <Choices answer={answer} isReady={isReady} onUse={onUse} />
+        </Suspense>
+      </WhenNear>
       <PassForecast design={design} result={size} onField={onField} />
     </div>
   )
 })
-
-function Resistors({
-  answer: { design, size },
-  which,
-  onUse,
-}: {
-  answer: Answer
-  which: Which
-  onUse: ((texts: Texts) => void) | undefined
-}) {
-  const [settings, setSettings] = useState(usualSettings)
-  const found = useResistors(design, size, which, settings)
-  if (found === null) return null
-  return (
-    <ResistorTable
-      answer={found}
-      outputPerV={size.adjusters[which]?.outputPerV ?? 0}
-      settings={settings}
-      onSettings={setSettings}
-      onUse={onUse ? (network) => onUse(networkTexts(which, network)) : undefined}
-    />
-  )
-}

@@ -50,7 +50,7 @@ describe('verdict rows', () => {
     expect(document.activeElement).toHaveTextContent('7.63 mV')
     await user.keyboard('{Enter}')
     const shown = screen.getByRole('dialog', { name: 'How reach of gain at the output comes about' })
-    expect(shown).toHaveTextContent('Available reach on the tighter side times the effect.')
+    await within(shown).findByText('Available reach on the tighter side times the effect.')
     expect(shown).toHaveTextContent('Definition of this page: solver, section 6')
     await user.click(within(shown).getByRole('button', { name: '0.0208 V/V' }))
     expect(onField).toHaveBeenCalledWith('/adjusters/gain/effect')

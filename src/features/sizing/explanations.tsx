@@ -1,0 +1,18 @@
+import { explainSize } from '../../../shared/design-words/explain.ts'
+import type { Explained } from './explain.tsx'
+import { ExplanationText } from './explanation-text.tsx'
+
+type ExplanationsProps = Explained & {
+  of: readonly { label: string; path: string }[]
+  onField: ((path: string) => void) | undefined
+}
+
+/** The text of an explanation; it loads with the first number that is asked about. */
+export default function Explanations({ design, result, of, onField }: ExplanationsProps) {
+  return of.map(({ label, path }) => {
+    const explanation = explainSize(design, result, path)
+    return explanation === null ? null : (
+      <ExplanationText key={path} label={label} explanation={explanation} onField={onField} />
+    )
+  })
+}

@@ -1,0 +1,26 @@
+import { type ReactNode, useEffect, useRef, useState } from 'react'
+
+/** Draws its content once it is about to be seen, or printed, and from then on; until then it keeps a place for it. */
+export function WhenNear({ minHeight, children }: { minHeight: number; children: ReactNode }) {
+  const place = useRef<HTMLDivElement>(null)
+  const [isNear, setNear] = useState(typeof IntersectionObserver === 'undefined')
+  useEffect(() => {
+    const element = place.current
+    if (isNear || !element) return
+    const show = () => setNear(true)
+    const observer = new IntersectionObserver((seen) => {
+      if (seen.some((one) => one.isIntersecting)) show()
+    })
+    observer.observe(element)
+    window.addEventListener('beforeprint', show)
+    return () => {
+      observer.disconnect()
+      window.removeEventListener('beforeprint', show)
+    }
+  }, [isNear])
+  return (
+    <div ref={place} style={isNear ? undefined : { minHeight }}>
+      {isNear ? children : null}
+    </div>
+  )
+}
