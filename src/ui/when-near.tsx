@@ -19,7 +19,7 @@ export function WhenNear({ minHeight, children }: { minHeight: number; children:
     }
   }, [isNear])
   return (
-    <div ref={place} style={isNear ? undefined : { minHeight }}>
+    <div ref={place} data-when-near style={isNear ? undefined : { minHeight }}>
       {isNear ? children : null}
     </div>
   )

@@ -15,6 +15,7 @@ test('yield is simulated in a worker of the build, under its own content securit
   await stage.signIn(page, 'engineer')
   const started = page.waitForEvent('worker')
   await page.getByLabel('trials').fill('20 000')
+  await page.locator('[data-when-near]').scrollIntoViewIfNeeded()
   await page.getByRole('button', { name: 'Simulate' }).click()
   const worker = await started
   expect(worker.url()).toMatch(/^http:\/\/[^/]+\/assets\/yield-worker-[\w-]+\.js$/)
