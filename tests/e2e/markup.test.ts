@@ -73,7 +73,7 @@ test('ASVS V1.2.1 markup in unit, note and station stays text, on every page tha
     .getByRole('heading', { level: 1 })
     .filter({ hasText: mark('unit') })
     .waitFor()
-  expect(await page.locator('main').textContent()).toContain(mark('note'))
+  await expect.poll(() => page.locator('main').textContent()).toContain(mark('note'))
   expect(await page.evaluate(made)).toEqual({ elements: 0, ran: false })
   expect(complaints).toEqual([])
   await context.close()

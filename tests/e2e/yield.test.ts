@@ -13,9 +13,9 @@ test('yield is simulated in a worker of the build, under its own content securit
   page.setDefaultTimeout(90_000)
   await page.goto(`${stage.server.url}/designs/DBS-A`)
   await stage.signIn(page, 'engineer')
+  await page.locator('[data-when-near]').scrollIntoViewIfNeeded()
   const started = page.waitForEvent('worker')
   await page.getByLabel('trials').fill('20 000')
-  await page.locator('[data-when-near]').scrollIntoViewIfNeeded()
   await page.getByRole('button', { name: 'Simulate' }).click()
   const worker = await started
   expect(worker.url()).toMatch(/^http:\/\/[^/]+\/assets\/yield-worker-[\w-]+\.js$/)

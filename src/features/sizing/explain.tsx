@@ -1,9 +1,7 @@
 import { lazy, type ReactNode, Suspense, useEffect, useId, useRef, useState } from 'react'
-import type { SizeResult, SizingDesign } from '../../../shared/solver/sizing/types.ts'
+import type { Explained } from './explained.ts'
 
 const Explanations = lazy(() => import('./explanations.tsx'))
-
-export type Explained = { design: SizingDesign; result: SizeResult }
 
 type ExplainProps = Explained & {
   /** JSON pointers into the result; each number explained under its label. */

@@ -1,5 +1,6 @@
 import { Fragment } from 'react'
-import { Explain, type Explained } from './explain.tsx'
+import { Explain } from './explain.tsx'
+import type { Explained } from './explained.ts'
 
 /** A number as it stands in a sentence, and where it comes from. */
 export type NumberInText = { text: string; label: string; path: string }

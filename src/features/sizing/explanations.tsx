@@ -1,5 +1,5 @@
 import { explainSize } from '../../../shared/design-words/explain.ts'
-import type { Explained } from './explain.tsx'
+import type { Explained } from './explained.ts'
 import { ExplanationText } from './explanation-text.tsx'
 
 type ExplanationsProps = Explained & {

@@ -1,7 +1,8 @@
 import type { ResidualLine } from '../../../shared/solver/sizing/types.ts'
 import { fixed } from '../../ui/number-format.ts'
 import { RowHead, Td } from '../../ui/table.tsx'
-import { Explain, type Explained } from './explain.tsx'
+import { Explain } from './explain.tsx'
+import type { Explained } from './explained.ts'
 import { residualFrom } from './residual-from.ts'
 import { columnLook, pathWords, type ResidualUnit, shareText } from './residual-units.ts'
 
@@ -30,7 +31,7 @@ export function ResidualRow({ line, index, explained, perVolt, unit, onField }: 
             { label: 'Share', path: `${at}/share` },
           ]}
           onField={onField}
-          className="-my-1 text-left"
+          className="text-left"
         >
           {line.name}
         </Explain>

@@ -1,6 +1,7 @@
 import { fixed } from '../../ui/number-format.ts'
 import { RowHead, Td } from '../../ui/table.tsx'
-import { Explain, type Explained } from './explain.tsx'
+import { Explain } from './explain.tsx'
+import type { Explained } from './explained.ts'
 import { columnLook, type ResidualUnit } from './residual-units.ts'
 
 type ResidualTotalsProps = {
@@ -36,7 +37,7 @@ export function ResidualTotals({ explained, perVolt, unit, onField }: ResidualTo
               name={name}
               of={[{ label: name, path }]}
               onField={onField}
-              className="-my-1 text-left"
+              className="text-left"
             >
               {name}
             </Explain>

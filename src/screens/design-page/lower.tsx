@@ -1,9 +1,10 @@
-import { memo, Suspense, useState } from 'react'
+import { lazy, memo, Suspense, useState } from 'react'
 import { PassForecast } from '../../features/sizing/pass-forecast.tsx'
 import { ResidualBars } from '../../features/sizing/residual-bars.tsx'
 import { WhenNear } from '../../ui/when-near.tsx'
 import type { Answer } from './answer.ts'
-import { Choices } from './on-demand.ts'
+
+const Choices = lazy(() => import('./choices.tsx'))
 
 type Texts = Readonly<Record<string, string>>
 

@@ -10,6 +10,5 @@ export const LadderAndTables = lazy(async () => ({ default: (await parts).Ladder
 
 /** What stands under the fold or behind an act loads when it is first wanted. */
 export const Lower = lazy(() => import('./lower.tsx'))
-export const Choices = lazy(() => import('./choices.tsx'))
 export const RevisionsPanel = lazy(() => import('./revisions-panel.tsx'))
 export const ConflictBar = lazy(() => import('./conflict-bar.tsx'))
