@@ -3,10 +3,10 @@
  * All functions are pure; bytes handed in are never changed.
  */
 
-/** SHA-256 (FIPS 180-4): any bytes in, 32 bytes out. */
+/** SHA-256 (FIPS 180-4) of a byte string, 32 bytes. */
 export type Sha256 = (bytes: Uint8Array) => Uint8Array
 
-/** Ed25519 (RFC 8032) under a fixed key: any bytes in, 64 bytes out. */
+/** Ed25519 (RFC 8032) under a fixed key of a byte string, 64 bytes. */
 export type Sign = (bytes: Uint8Array) => Uint8Array
 
 /** True when the 64-byte signature is that of the 32-byte public key over the bytes. */

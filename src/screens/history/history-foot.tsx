@@ -4,7 +4,7 @@ import { KeyHint } from '../../ui/key-hint.tsx'
 import { Whole } from '../../ui/number-text.tsx'
 import type { Pages } from './use-pages.ts'
 
-/** No page numbers and no total: any page is equally quick. */
+/** Neither page numbers nor a total, so that each page is equally quick. */
 export function HistoryFoot({ records, pages }: { records: readonly RecordLine[]; pages: Pages }) {
   const first = records[0]
   const last = records.at(-1)
