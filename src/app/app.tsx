@@ -8,7 +8,8 @@ export function App({ queryClient }: { queryClient: QueryClient }) {
   return (
     <ErrorBoundary>
       <QueryClientProvider client={queryClient}>
-        <BrowserRouter>
+        {/* Without transitions the page of an address is drawn before the next key arrives: what is typed then is not lost. */}
+        <BrowserRouter useTransitions={false}>
           <AppRoutes />
         </BrowserRouter>
         <StatusRegion />
