@@ -4,6 +4,7 @@ import { guards } from './migrations/001-guards.ts'
 import { mutableTables } from './migrations/001-mutable.ts'
 import { recordedTables } from './migrations/001-recorded.ts'
 import { revisionHistory } from './migrations/002-revisions.ts'
+import { ledgerUpkeep } from './migrations/004-ledger.ts'
 
 /**
  * Every step there is, in order, by static import: a built file and a source file run the same names. Statements can run
@@ -12,6 +13,7 @@ import { revisionHistory } from './migrations/002-revisions.ts'
 export const migrations: RunnableMigration<Sequelize>[] = [
   step('001-tables', [...mutableTables, ...recordedTables, ...guards]),
   step('002-revisions', revisionHistory),
+  step('004-ledger', ledgerUpkeep),
 ]
 
 function step(name: string, statements: readonly string[]): RunnableMigration<Sequelize> {

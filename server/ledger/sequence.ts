@@ -4,6 +4,7 @@ import type { Database } from '../db/connection.ts'
 import { type Sql, sqlTime } from '../db/sql.ts'
 import { transaction } from '../db/transaction.ts'
 import { sha256 } from './crypto.ts'
+import { readNodes } from './nodes.ts'
 import type { Signer } from './signer.ts'
 
 const leavesAPass = 1_000
@@ -58,7 +59,7 @@ async function append(
   const grown = appendLeaves(
     sha256,
     head.size,
-    await readPeaks(sql, head.size),
+    peakPlaces(head.size).map(await readNodes(sql, peakPlaces(head.size))),
     pending.map((leaf) => leaf.hash),
   )
   const root = Buffer.from(rootOf(sha256, grown.peaks))
@@ -71,17 +72,6 @@ async function append(
   await sql.run('UPDATE ledger_head SET size = ?, root = ? WHERE id = 1', [grown.size, root])
   await sql.run('DELETE FROM ledger_pending WHERE leaf_id IN (?)', [pending.map((leaf) => leaf.leafId)])
   return { ...head, size: grown.size, root }
-}
-
-async function readPeaks(sql: Sql, size: number): Promise<Buffer[]> {
-  const places = peakPlaces(size)
-  if (places.length === 0) return []
-  const where = places.map(() => '(level = ? AND idx = ?)').join(' OR ')
-  const rows = await sql.rows<{ level: number; hash: Buffer }>(
-    `SELECT level, hash FROM ledger_nodes WHERE ${where} ORDER BY level DESC`,
-    places.flatMap((place) => [place.level, place.index]),
-  )
-  return rows.map((row) => row.hash)
 }
 
 /** Signs the head as it stands. The caller holds its lock. */

@@ -19,6 +19,15 @@ export function maySeeRecord(
   return station && maySeeDesign(principal, record.design)
 }
 
+/** Who reads the ledger reads every record in it; a token's designs bound that too. */
+export function mayProveRecord(
+  principal: Principal,
+  record: { stationId: string | null; design: string },
+): boolean {
+  const reads = principal.kind === 'token' && principal.scopes.includes('ledger:read')
+  return reads ? maySeeDesign(principal, record.design) : maySeeRecord(principal, record)
+}
+
 export function maySeeDesign(principal: Principal, design: string): boolean {
   return principal.kind === 'person' || principal.designs === null || principal.designs.includes(design)
 }

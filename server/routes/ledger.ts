@@ -1,17 +1,25 @@
-import { getCheckpoint, getLedgerKey } from '../../shared/contract/ledger.ts'
+import { getCheckpoint, getConsistency, getLedgerKey, getProof } from '../../shared/contract/ledger.ts'
+import { OgeeError } from '../../shared/errors.ts'
 import { verifierKey } from '../../shared/ledger/checkpoint.ts'
 import type { Serve } from '../http/serve.ts'
 import { sha256 } from '../ledger/crypto.ts'
+import { newestCheckpoint, proveConsistency, proveRecord } from '../ledger/prove.ts'
+import { mayProveRecord } from '../policies/may-see.ts'
 import type { RouteDeps } from './route-deps.ts'
 
 export function ledgerRoutes(serve: Serve, { database, signer }: RouteDeps): void {
-  serve(getCheckpoint, async () => {
-    const [newest] = await database.sql.rows<{ note: string }>(
-      'SELECT note FROM ledger_checkpoints ORDER BY number DESC LIMIT 1',
-    )
-    if (!newest) throw new Error('The ledger was opened without a checkpoint.')
-    return newest.note
-  })
+  serve(getCheckpoint, async () => (await newestCheckpoint(database.sql)).note)
 
   serve(getLedgerKey, async () => `${verifierKey(sha256, signer.key)}\n`)
+
+  serve(getConsistency, async ({ query }) => proveConsistency(database.sql, query))
+
+  serve(getProof, async ({ params, principal }) => {
+    const attributes = ['stationId', 'design'] as const
+    const found = await database.models.records.findByPk(params.recordId, { attributes: [...attributes] })
+    if (!found || !mayProveRecord(principal, found.get())) {
+      throw new OgeeError('not-found', 'There is no such record, or it is not open to you.')
+    }
+    return proveRecord(database.sql, params.recordId)
+  })
 }

@@ -1,6 +1,6 @@
 import { getDesign, getRevision, listDesigns, listLots, postDesign } from './designs.ts'
 import type { Endpoint } from './endpoint.ts'
-import { getCheckpoint, getLedgerKey } from './ledger.ts'
+import { getCheckpoint, getConsistency, getLedgerKey, getProof } from './ledger.ts'
 import {
   getDifference,
   getUse,
@@ -49,4 +49,6 @@ export const allEndpoints: readonly Endpoint[] = [
   deleteToken,
   getCheckpoint,
   getLedgerKey,
+  getConsistency,
+  getProof,
 ] as const satisfies readonly Endpoint[]

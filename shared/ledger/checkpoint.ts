@@ -133,3 +133,20 @@ function isSignature(sha256: Sha256, line: string, text: string, key: LedgerKey,
   if (bytes?.length !== 68 || toHex(bytes.slice(0, 4)) !== toHex(keyHash(sha256, key))) return false
   return verify(key.publicKey, encoder.encode(text), bytes.slice(4))
 }
+
+/**
+ * Who claims to have signed a note: short names of keys, as `keyName` gives them. Nothing is checked.
+ *
+ * @param note the signed note.
+ * @returns `<name>+<hash>` of each signature line that can be read.
+ * Throws nothing.
+ * Source: C2SP signed-note, section "Signatures".
+ * @example signerNames('nonsense') // []
+ */
+export function signerNames(note: string): string[] {
+  return note.split('\n').flatMap((line) => {
+    const match = /^\u2014 ([^\s+]+) (\S+)$/.exec(line)
+    const bytes = fromBase64(match?.[2] ?? '')
+    return match && bytes?.length === 68 ? [`${match[1]}+${toHex(bytes.slice(0, 4))}`] : []
+  })
+}

@@ -12,6 +12,9 @@ export type Sign = (bytes: Uint8Array) => Uint8Array
 /** True when the 64-byte signature is that of the 32-byte public key over the bytes. */
 export type Verify = (publicKey: Uint8Array, bytes: Uint8Array, signature: Uint8Array) => boolean
 
+/** What checking needs: handed in together. */
+export type LedgerCrypto = { sha256: Sha256; verify: Verify }
+
 /** Joins byte strings. */
 export function joinBytes(...parts: readonly Uint8Array[]): Uint8Array {
   let length = 0
@@ -35,6 +38,14 @@ export function toHex(bytes: Uint8Array): string {
   let text = ''
   for (const byte of bytes) text += byte.toString(16).padStart(2, '0')
   return text
+}
+
+/** Reads lower-case hexadecimal; null when the text is anything else. */
+export function fromHex(text: string): Uint8Array | null {
+  if (!/^(?:[0-9a-f]{2})*$/.test(text)) return null
+  return Uint8Array.from({ length: text.length / 2 }, (_, i) =>
+    Number.parseInt(text.slice(2 * i, 2 * i + 2), 16),
+  )
 }
 
 /** Standard base64 with padding (RFC 4648 section 4). */

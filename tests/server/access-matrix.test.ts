@@ -105,10 +105,11 @@ function permits(endpoint: Endpoint, list: 'roles' | 'scopes', value: Role | Sco
 function requestTo(endpoint: Endpoint, send: Caller['send']) {
   const id =
     endpoint.id === 'readRecord' ? recordOfA : endpoint.path.startsWith('/tokens') ? 'AAAAAAAA' : unknownId
-  const params = { id, key: 'U18', number: 'released' }
+  const params = { id, recordId: recordOfA, key: 'U18', number: 'released' }
   const queries: Record<string, object> = {
     findUnits: { serial: 'M-1' },
     compareRevisions: { to: 'released' },
+    proveConsistency: { from: '1' },
   }
   const query = (queries[endpoint.id] ?? {}) as Record<string, string>
   const verb = endpoint.method.toLowerCase() as 'get' | 'post' | 'put' | 'patch' | 'delete'
@@ -177,6 +178,7 @@ describe('ASVS V8.2.2 object-level access: two stations, ids swapped', () => {
     const copy = { key: 'OTHER', document, copiedFrom: { design: 'U18', revision: 1 } }
     expect((await api(harness.url, 'post', '/designs', narrow).send(copy)).status).toBe(404)
     expect((await get(`/trims/${recordOfA}`)).status).toBe(404)
+    expect((await get(`/ledger/proof/${recordOfA}`)).status).toBe(404)
     expect((await get('/trims')).body.items).toEqual([])
     expect((await get('/units?serial=M-1')).body.items).toEqual([])
     await post(harness.url, narrow, trimBody({ unit: 'M-2' }), 404)
