@@ -1,5 +1,6 @@
 import express, { type Express, type RequestHandler, Router } from 'express'
 import { OgeeError } from '../shared/errors.ts'
+import { createRecorder } from './commands/recorder.ts'
 import type { Deps } from './http/deps.ts'
 import { tokenFinder } from './http/find-token.ts'
 import { healthz, readyz } from './http/health.ts'
@@ -10,7 +11,7 @@ import { requestLog } from './http/request-log.ts'
 import { securityHeaders } from './http/security-headers.ts'
 import { createServe } from './http/serve.ts'
 import { createSessions } from './http/session.ts'
-import { throttleSignIn, throttleToken } from './http/throttles.ts'
+import { limitBatches, throttleSignIn, throttleToken } from './http/throttles.ts'
 import { webApp } from './http/web-app.ts'
 import { registerRoutes } from './routes/register.ts'
 
@@ -30,12 +31,14 @@ export function createApp(deps: Deps): App {
   const sessions = createSessions(deps)
   const tokens = tokenFinder(deps.database, deps.now)
   const api = Router({ caseSensitive: true, strict: true })
+  const throttle = throttleToken(deps.quotas)
   const serve = createServe(api, deps, {
     identify: identify(deps.database, sessions, tokens),
-    throttleToken: throttleToken(deps.quotas),
+    throttleToken: throttle.byRequest,
     throttleSignIn: throttleSignIn(deps.quotas),
+    limitBatches: limitBatches(),
   })
-  registerRoutes(serve, api, { ...deps, sessions, tokens })
+  registerRoutes(serve, api, { ...deps, sessions, tokens, throttle, record: createRecorder(deps) })
   api.use(nothingHere)
   app.use('/api/v1', api)
   app.use('/api', nothingHere)

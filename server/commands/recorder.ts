@@ -12,14 +12,15 @@ import { recordNumbers } from './recording/record-numbers.ts'
 
 export type Asked = { principal: Principal; request: RecordRequest; rawBody: unknown; key: string }
 export type Recorded = { record: StoredRecord; replayed: boolean }
+export type RecordOne = (asked: Asked) => Promise<Recorded>
 
 /** The one door to recording for requests that come one by one. */
-export function createRecorder(deps: Pick<Deps, 'database' | 'signer' | 'now' | 'notifyLedger'>) {
+export function createRecorder(deps: Pick<Deps, 'database' | 'signer' | 'now' | 'notifyLedger'>): RecordOne {
   const recording = { ...deps, numbers: recordNumbers(deps.database) }
   const record = coalesce((jobs: readonly Job[]) => recordTrims(recording, jobs))
   const inWork = new Set<string>()
 
-  return async (asked: Asked): Promise<Recorded> => {
+  return async (asked) => {
     const job = jobOf(asked)
     const key = keyOf(job)
     if (inWork.has(key)) throw inFlight()

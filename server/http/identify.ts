@@ -5,7 +5,7 @@ import { OgeeError } from '../../shared/errors.ts'
 import type { Database } from '../db/connection.ts'
 import type { TokenFinder } from './find-token.ts'
 import { localsOf } from './locals.ts'
-import type { PersonPrincipal, TokenPrincipal } from './principal.ts'
+import type { PersonPrincipal, Principal, TokenPrincipal } from './principal.ts'
 import type { Sessions } from './session.ts'
 
 /**
@@ -38,6 +38,17 @@ export function identify(database: Database, sessions: Sessions, tokens: TokenFi
     }
     void byBearer(request, response, next)
   }
+}
+
+/** Asked again in the middle of a long answer: null once the token was revoked or the session has ended. */
+export async function stillThere(
+  deps: { database: Database; sessions: Sessions; tokens: TokenFinder },
+  request: Request,
+): Promise<Principal | null> {
+  const { authorization } = request.headers
+  return authorization === undefined
+    ? await personOf(deps.database, deps.sessions, request)
+    : await deps.tokens.find(authorization.slice('Bearer '.length))
 }
 
 function bearer(tokens: TokenFinder): RequestHandler {

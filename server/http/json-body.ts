@@ -8,37 +8,47 @@ const depthMax = 40
 /** Bytes without which no key can reach a prototype and no text can hold half a character. */
 const suspicious = ['\\u', '__proto__', 'constructor', 'prototype']
 
-const readBytes = express.raw({ limit: limits.bodyMaxBytes, inflate: false, type: 'application/json' })
+const json = { type: 'application/json', limit: limits.bodyMaxBytes } as const
+const ndjson = { type: 'application/x-ndjson', limit: limits.batchMaxBytes } as const
 
 /** Reads a JSON body: bounded in size and depth, UTF-8, no key that reaches a prototype, no half characters. */
-export const jsonBody: RequestHandler = (request, response, next) => {
-  requireJson(request)
-  void readBytes(request, response, (error?: unknown) => {
-    if (error !== undefined) {
-      next(error)
-      return
-    }
-    try {
-      request.body = parseJson(request.body as Buffer)
-      next()
-    } catch (refusal) {
-      next(refusal)
-    }
-  })
+export const jsonBody = bodyReader(json, parseJson)
+
+/** Reads a block of NDJSON as bytes: bounded as a whole here, and line by line by whoever reads the lines. */
+export const ndjsonBody = bodyReader(ndjson, (bytes) => bytes)
+
+function bodyReader(kind: typeof json | typeof ndjson, read: (bytes: Buffer) => unknown): RequestHandler {
+  const readBytes = express.raw({ ...kind, inflate: false })
+  return (request, response, next) => {
+    requireType(request, kind.type)
+    void readBytes(request, response, (error?: unknown) => {
+      if (error !== undefined) {
+        next(error)
+        return
+      }
+      try {
+        request.body = read(request.body as Buffer)
+        next()
+      } catch (refusal) {
+        next(refusal)
+      }
+    })
+  }
 }
 
-function requireJson(request: Request): void {
+function requireType(request: Request, type: string): void {
   const length = request.headers['content-length']
   if (request.headers['transfer-encoding'] === undefined && (length === undefined || length === '0')) {
     throw new OgeeError('malformed-json', 'The body is missing.')
   }
   const charset = /;\s*charset\s*=\s*"?([^";\s]+)/i.exec(request.headers['content-type'] ?? '')?.[1]
-  if (!request.is('application/json') || (charset !== undefined && !/^utf-?8$/i.test(charset))) {
-    throw new OgeeError('unsupported-media-type', 'Send the body as application/json in UTF-8.')
+  if (!request.is(type) || (charset !== undefined && !/^utf-?8$/i.test(charset))) {
+    throw new OgeeError('unsupported-media-type', `Send the body as ${type} in UTF-8.`)
   }
 }
 
-function parseJson(bytes: Buffer): unknown {
+/** One JSON text of a body, with the bounds that hold for all of them. */
+export function parseJson(bytes: Buffer): unknown {
   if (!isUtf8(bytes)) throw new OgeeError('malformed-json', 'The body is not UTF-8.')
   boundDepth(bytes)
   let value: unknown

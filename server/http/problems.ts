@@ -57,7 +57,8 @@ function challengeOf(error: OgeeError, byToken: boolean): string | null {
   return error.status === 401 ? bare : null
 }
 
-function asKnown(error: unknown): OgeeError {
+/** Any error as one of the table: what nobody foresaw is a defect without words of its own. */
+export function asKnown(error: unknown): OgeeError {
   if (isOgeeError(error)) return error
   const outage = asOutage(error)
   if (isOgeeError(outage)) return outage
@@ -74,10 +75,13 @@ function asKnown(error: unknown): OgeeError {
 
 /** What Express and its JSON parser refuse by themselves. */
 function asBodyTrouble(error: unknown): OgeeError | null {
-  const { type, status } = error as { type?: unknown; status?: unknown }
+  const { type, status, limit } = error as { type?: unknown; status?: unknown; limit?: unknown }
   switch (type) {
     case 'entity.too.large':
-      return new OgeeError('body-too-large', 'The body is larger than 1 MiB. Send less at once.')
+      return new OgeeError(
+        'body-too-large',
+        `The body is larger than ${Number(limit) / 1024 / 1024} MiB. Send less at once.`,
+      )
     case 'entity.parse.failed':
     case 'request.size.invalid':
     case 'request.aborted':

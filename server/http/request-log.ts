@@ -37,8 +37,10 @@ function facts(response: Response): object {
   }
 }
 
-function levelOf({ statusCode }: Response): 'info' | 'warn' | 'error' {
-  if (statusCode >= 500) return 'error'
+function levelOf(response: Response): 'info' | 'warn' | 'error' {
+  const { statusCode } = response
+  // A batch answers 200 whatever became of its lines.
+  if (statusCode >= 500 || localsOf(response).failure !== undefined) return 'error'
   return statusCode === 401 || statusCode === 403 || statusCode === 429 ? 'warn' : 'info'
 }
 

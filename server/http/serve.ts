@@ -7,7 +7,7 @@ import { requireAccess } from '../policies/access.ts'
 import { requireSameSite } from './cross-site.ts'
 import { within } from './deadline.ts'
 import type { Deps } from './deps.ts'
-import { jsonBody } from './json-body.ts'
+import { jsonBody, ndjsonBody } from './json-body.ts'
 import { localsOf } from './locals.ts'
 import { nameAdministrators } from './name-administrators.ts'
 import type { Principal } from './principal.ts'
@@ -43,9 +43,17 @@ export class ReadyJson {
   }
 }
 
+/** A reply of lines that are made while they are sent, some at a time. */
+export class ReadyLines {
+  readonly lines: AsyncIterable<readonly string[]>
+  constructor(lines: AsyncIterable<readonly string[]>) {
+    this.lines = lines
+  }
+}
+
 export type Handler<E extends Endpoint> = (
   input: Input<E>,
-) => Promise<z.input<E['reply']['schema']> | ReadyJson>
+) => Promise<z.input<E['reply']['schema']> | ReadyJson | ReadyLines>
 
 /** Registers routes from their descriptions; there is no other way to register one. */
 export type Serve = <E extends Endpoint>(endpoint: E, handler: Handler<E>) => void
@@ -54,6 +62,7 @@ export type Gates = {
   identify: RequestHandler
   throttleToken: RequestHandler
   throttleSignIn: RequestHandler
+  limitBatches: RequestHandler
 }
 
 export function createServe(router: Router, deps: Deps, gates: Gates): Serve {
@@ -63,12 +72,14 @@ export function createServe(router: Router, deps: Deps, gates: Gates): Serve {
       endpoint.path,
       ...(needsIdentity(endpoint) ? [gates.identify, gates.throttleToken] : []),
       guard(endpoint, deps),
-      ...(endpoint.body ? [jsonBody] : []),
+      ...(endpoint.ndjson ? [gates.limitBatches, ndjsonBody] : endpoint.body ? [jsonBody] : []),
       ...(endpoint.id === 'signIn' ? [gates.throttleSignIn] : []),
       async (request, response) => {
         const work = handler(inputOf(endpoint, request, response))
         const reply = await (takesPassword.has(endpoint.id) ? work : within(work))
-        send(response, endpoint, reply, deps.checkReplies ?? false)
+        if (reply instanceof ReadyLines)
+          await sendLines(response, endpoint, reply, deps.checkReplies ?? false)
+        else send(response, endpoint, reply, deps.checkReplies ?? false)
       },
     )
   }
@@ -108,7 +119,8 @@ function inputOf<E extends Endpoint>(endpoint: E, request: Request, response: Re
     },
     params: (params ? validate(params, request.params, 'path') : undefined) as Output<E['params']>,
     query: (query ? validate(query, request.query, 'query') : undefined) as Output<E['query']>,
-    body: (body ? validate(body, rawBody, 'body') : undefined) as Output<E['body']>,
+    // Lines of NDJSON are checked one by one: a bad one is no reason to refuse the others.
+    body: (body && !endpoint.ndjson ? validate(body, rawBody, 'body') : undefined) as Output<E['body']>,
     rawBody,
     idempotencyKey: endpoint.idempotent ? idempotencyKeyOf(request) : '',
     ifMatch: endpoint.conditional ? ifMatchOf(request) : '',
@@ -144,13 +156,42 @@ function ifMatchOf(request: Request): string {
   )
 }
 
-function send(response: Response, endpoint: Endpoint, reply: unknown, check: boolean): void {
-  const { status, schema, mediaType } = endpoint.reply
-  if (check) {
-    const breach = schema.safeParse(reply instanceof ReadyJson ? JSON.parse(reply.text) : reply)
-    if (!breach.success)
-      throw new Error(`The reply of ${endpoint.id} breaks its schema: ${breach.error.message}`)
+/** Waits for a slow reader, and stops making lines once the reader has gone. */
+async function sendLines(
+  response: Response,
+  endpoint: Endpoint,
+  { lines }: ReadyLines,
+  check: boolean,
+): Promise<void> {
+  response.statusCode = endpoint.reply.status
+  response.setHeader('Cache-Control', 'no-store')
+  response.setHeader('Content-Type', 'application/x-ndjson; charset=utf-8')
+  for await (const some of lines) {
+    if (check) for (const line of some) requireAsAgreed(endpoint, JSON.parse(line))
+    if (response.closed) return
+    if (!response.write(`${some.join('\n')}\n`)) await drained(response)
   }
+  response.end()
+}
+
+function drained(response: Response): Promise<void> {
+  return new Promise((resolve) => {
+    const done = () => {
+      response.off('drain', done).off('close', done)
+      resolve()
+    }
+    response.on('drain', done).on('close', done)
+  })
+}
+
+function requireAsAgreed({ id, reply }: Endpoint, value: unknown): void {
+  const checked = reply.schema.safeParse(value)
+  if (!checked.success) throw new Error(`The reply of ${id} breaks its schema: ${checked.error.message}`)
+}
+
+function send(response: Response, endpoint: Endpoint, reply: unknown, check: boolean): void {
+  const { status, mediaType } = endpoint.reply
+  if (check) requireAsAgreed(endpoint, reply instanceof ReadyJson ? JSON.parse(reply.text) : reply)
   response.statusCode = status
   response.setHeader('Cache-Control', 'no-store')
   if (status === 204) {

@@ -4,6 +4,7 @@ import { openApiDocument } from '../../shared/contract/openapi.ts'
 import { OgeeError } from '../../shared/errors.ts'
 import type { Serve } from '../http/serve.ts'
 import { productVersion } from '../root.ts'
+import { batchRoutes } from './batches.ts'
 import { designRoutes } from './designs.ts'
 import { ledgerRoutes } from './ledger.ts'
 import { revisionRoutes } from './revisions.ts'
@@ -28,6 +29,7 @@ export function registerRoutes(serve: Serve, router: Router, deps: RouteDeps): v
     designRoutes,
     revisionRoutes,
     trimRoutes,
+    batchRoutes,
     unitRoutes,
     stationRoutes,
     tokenRoutes,

@@ -1,15 +1,13 @@
 import { getTrim, listTrims, postTrim } from '../../shared/contract/trims.ts'
 import { OgeeError } from '../../shared/errors.ts'
 import { listRecords } from '../commands/list-records.ts'
-import { createRecorder } from '../commands/recorder.ts'
 import { readStored, recordJson } from '../commands/recording/read-stored.ts'
 import { ReadyJson, type Serve } from '../http/serve.ts'
 import { maySeeRecord } from '../policies/may-see.ts'
 import type { RouteDeps } from './route-deps.ts'
 
 export function trimRoutes(serve: Serve, deps: RouteDeps): void {
-  const { database } = deps
-  const record = createRecorder(deps)
+  const { database, record } = deps
 
   serve(postTrim, async ({ principal, body, rawBody, idempotencyKey }) => {
     const made = await record({ principal, request: body, rawBody, key: idempotencyKey })

@@ -1,3 +1,4 @@
+import { postBatch } from './batches.ts'
 import { getDesign, getRevision, listDesigns, listLots, postDesign } from './designs.ts'
 import type { Endpoint } from './endpoint.ts'
 import { getCheckpoint, getConsistency, getLedgerKey, getProof } from './ledger.ts'
@@ -38,6 +39,7 @@ export const allEndpoints: readonly Endpoint[] = [
   getDifference,
   listLots,
   postTrim,
+  postBatch,
   listTrims,
   getTrim,
   findUnits,

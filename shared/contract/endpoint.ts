@@ -29,6 +29,8 @@ export type Endpoint<
   params?: Params
   query?: Query
   body?: Body
+  /** Body and reply are NDJSON: their schemas describe one line of them. */
+  ndjson?: boolean
   /** Takes `Idempotency-Key`. */
   idempotent?: boolean
   /** Takes `If-Match`: the `etag` of what the caller saw. */

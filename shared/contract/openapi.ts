@@ -50,7 +50,7 @@ function operation(endpoint: Endpoint, schemas: JsonObject): JsonObject {
       ? {
           requestBody: {
             required: true,
-            content: { 'application/json': { schema: toSchema(endpoint.body, 'input', schemas) } },
+            content: { [mediaTypeOf(endpoint)]: { schema: toSchema(endpoint.body, 'input', schemas) } },
           },
         }
       : {}),
@@ -92,13 +92,17 @@ function parametersOf(endpoint: Endpoint, schemas: JsonObject): JsonObject[] {
   ]
 }
 
-function replyOf({ reply }: Endpoint, schemas: JsonObject): JsonObject {
+/** What an NDJSON schema describes is one line. */
+const mediaTypeOf = ({ ndjson }: Endpoint) => (ndjson ? 'application/x-ndjson' : 'application/json')
+
+function replyOf(endpoint: Endpoint, schemas: JsonObject): JsonObject {
+  const { reply } = endpoint
   if (reply.status === 204) return { 204: { description: 'Done' } }
   const schema = toSchema(reply.schema, 'output', schemas)
   return {
     [reply.status]: {
       description: reply.status === 201 ? 'Created' : 'Done',
-      content: { [reply.mediaType ?? 'application/json']: { schema } },
+      content: { [reply.mediaType ?? mediaTypeOf(endpoint)]: { schema } },
     },
   }
 }

@@ -119,6 +119,7 @@ function requestTo(endpoint: Endpoint, send: Caller['send']) {
     ...(endpoint.conditional ? { headers: { 'If-Match': '"0.0"' } } : {}),
   })
   // An empty object is refused by every schema of ours, but only after access.
+  if (endpoint.ndjson) return sent.set('Content-Type', 'application/x-ndjson').send('{}\n')
   return endpoint.body ? sent.send({}) : sent
 }
 

@@ -80,6 +80,15 @@ describe('the OpenAPI document', () => {
     expect(document.components.schemas.Record).not.toHaveProperty('additionalProperties')
   })
 
+  it('says that a block and its answer are lines', () => {
+    const post = document.paths['/batches']!.post! as Operation & { responses: Record<string, unknown> }
+    const type = 'application/x-ndjson'
+    expect(post.requestBody?.content[type]?.schema).toEqual({ $ref: '#/components/schemas/BatchLineInput' })
+    expect(post.responses[200]).toMatchObject({
+      content: { [type]: { schema: { $ref: '#/components/schemas/BatchAnswer' } } },
+    })
+  })
+
   it('says which headers and credentials a write takes', () => {
     const post = document.paths['/trims']!.post!
     expect(post.parameters).toContainEqual(
@@ -138,6 +147,7 @@ describe('S3 fuzzing by the document', () => {
       conditions: { temperatureC: 23 },
       measuredAt: '2026-01-01T00:00:00Z',
     }),
+    recordBatch: trimBody({ key: 'fuzz-1', applied: 'neutral' }),
     createDesign: { key: 'F1', document: unipolar() },
     startRevision: { document: unipolar({ title: 'Fuzzed' }), from: 1 },
     saveDraft: { document: unipolar({ title: 'Fuzzed' }) },
@@ -183,7 +193,7 @@ describe('S3 fuzzing by the document', () => {
       const body = changed[operation.operationId]?.[sample.mutation % 200]
       const response = await fetch(`${harness.url}/api/v1${target}${query === '' ? '' : `?${query}`}`, {
         method: verb.toUpperCase(),
-        headers: headersOf(sample),
+        headers: { ...headersOf(sample), 'Content-Type': mediaTypeOf(operation) },
         ...(body === undefined ? {} : { body: JSON.stringify(body) }),
       })
       const text = await response.text()
@@ -199,9 +209,11 @@ describe('S3 fuzzing by the document', () => {
     for (let i = 0; i < work.length; i += 8) await Promise.all(work.slice(i, i + 8).map((run) => run()))
   }, 600_000)
 
+  const mediaTypeOf = ({ requestBody }: Operation) =>
+    Object.keys(requestBody?.content ?? {})[0] ?? 'application/json'
+
   function headersOf({ who, key }: { who: number; key: string | null }): Record<string, string> {
     const headers: Record<string, string> = {
-      'Content-Type': 'application/json',
       'x-ogee': '1',
       'Sec-Fetch-Site': 'same-origin',
       'If-Match': '*',

@@ -1,0 +1,106 @@
+import { isOgeeError } from '../../shared/errors.ts'
+import { asOutage } from '../db/failure.ts'
+import type { Principal } from '../http/principal.ts'
+import type { Asked, Recorded, RecordOne } from './recorder.ts'
+
+/** A line with what it asks for, or with the reason why it cannot be read. */
+export type BatchLine = { line: number; key: string | null } & (
+  | { asked: Omit<Asked, 'principal'> }
+  | { asked: null; error: unknown }
+)
+export type LineOutcome = { line: number; key: string | null } & (
+  | { recorded: Recorded }
+  | { recorded: null; error: unknown }
+)
+
+type Deps = {
+  record: RecordOne
+  /** Who is asking, asked again before each step; throws once they may no longer. */
+  principalNow: () => Promise<Principal>
+}
+
+/** Lines that go to the recorder together: enough to share a transaction, few enough that others get their turn. */
+const stepMax = 64
+
+/**
+ * Records the lines of a block in their order and tells what became of each, some at a time.
+ * Guarantee: each line is recorded whole or not at all, once for its key, as if it had been sent alone; a refused one takes
+ * no other with it. After an outage, or once the caller may no longer, the rest is not tried and hears why.
+ */
+export async function* recordBatch(
+  { record, principalNow }: Deps,
+  lines: Iterable<BatchLine>,
+): AsyncGenerator<LineOutcome[]> {
+  let obstacle: { error: unknown } | null = null
+  for (const step of stepsOf(lines)) {
+    if (obstacle === null) {
+      const outcomes: LineOutcome[] = await recordStep(record, principalNow, step)
+      obstacle = outcomes.map(obstacleOf).find((found) => found !== null) ?? null
+      yield outcomes
+    } else {
+      const { error } = obstacle
+      yield step.map(({ line, key }) => ({ line, key, recorded: null, error }))
+    }
+  }
+}
+
+async function recordStep(
+  record: RecordOne,
+  principalNow: () => Promise<Principal>,
+  step: readonly BatchLine[],
+): Promise<LineOutcome[]> {
+  const principal = await principalNow().then(
+    (found) => ({ found }),
+    (error: unknown) => ({ found: null, error }),
+  )
+  return await Promise.all(
+    step.map(async (one): Promise<LineOutcome> => {
+      const { line, key } = one
+      if (principal.found === null) return { line, key, recorded: null, error: principal.error }
+      if (one.asked === null) return { line, key, recorded: null, error: one.error }
+      try {
+        return { line, key, recorded: await record({ ...one.asked, principal: principal.found }) }
+      } catch (error) {
+        return { line, key, recorded: null, error }
+      }
+    }),
+  )
+}
+
+/** What would befall the rest as well. */
+function obstacleOf(outcome: LineOutcome): { error: unknown } | null {
+  if (outcome.recorded !== null) return null
+  const error = asOutage(outcome.error)
+  const isForAll = (['database-unavailable', 'token-invalid', 'sign-in-required'] as const).some((code) =>
+    isOgeeError(error, code),
+  )
+  return isForAll ? { error } : null
+}
+
+/**
+ * Cuts lines into steps. Within a step all are under way at once, so a key that comes again waits for the next one, and
+ * what is said about a record (which may be of a line just before) stands alone.
+ */
+function* stepsOf(lines: Iterable<BatchLine>): Generator<BatchLine[]> {
+  let step: BatchLine[] = []
+  let keys = new Set<string>()
+  for (const line of lines) {
+    const alone = isStatement(line)
+    if (step.length >= stepMax || alone || (line.key !== null && keys.has(line.key))) {
+      if (step.length > 0) yield step
+      step = []
+      keys = new Set()
+    }
+    step.push(line)
+    if (line.key !== null) keys.add(line.key)
+    if (alone) {
+      yield step
+      step = []
+    }
+  }
+  if (step.length > 0) yield step
+}
+
+function isStatement({ asked }: BatchLine): boolean {
+  return asked !== null && (asked.request.kind === 'override' || asked.request.kind === 'withdraw')
+}
