@@ -5,6 +5,7 @@ import { mutableTables } from './migrations/001-mutable.ts'
 import { recordedTables } from './migrations/001-recorded.ts'
 import { revisionHistory } from './migrations/002-revisions.ts'
 import { ledgerUpkeep } from './migrations/004-ledger.ts'
+import { historyColumns } from './migrations/005-history.ts'
 
 /**
  * Every step there is, in order, by static import: a built file and a source file run the same names. Statements can run
@@ -14,6 +15,7 @@ export const migrations: RunnableMigration<Sequelize>[] = [
   step('001-tables', [...mutableTables, ...recordedTables, ...guards]),
   step('002-revisions', revisionHistory),
   step('004-ledger', ledgerUpkeep),
+  step('005-history', historyColumns),
 ]
 
 function step(name: string, statements: readonly string[]): RunnableMigration<Sequelize> {

@@ -24,6 +24,9 @@ export type RecordRow = {
   offsetCode: number | null
   worstLsb: number | null
   byName: string
+  byId: string | null
+  /** The how manieth of its kind that day for its unit, channel and range; null for what is no measurement. */
+  attempt: number | null
   stationId: string | null
   station: string | null
   measuredAt: Date | null
@@ -57,6 +60,8 @@ export const records = (sequelize: Sequelize): Table<RecordRow> =>
     offsetCode: whole,
     worstLsb: real,
     byName: text,
+    byId: text,
+    attempt: whole,
     stationId: text,
     station: text,
     measuredAt: time,
@@ -86,6 +91,7 @@ export function recordLineReply(row: RecordRow): RecordLine {
     gainCode: row.gainCode,
     offsetCode: row.offsetCode,
     worstLsb: row.worstLsb,
+    attempt: row.attempt,
     by: row.byName,
     station: row.station,
     measuredAt: row.measuredAt?.toISOString() ?? null,

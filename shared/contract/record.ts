@@ -148,6 +148,11 @@ export const recordLine = z
     gainCode: z.int().nullable(),
     offsetCode: z.int().nullable(),
     worstLsb: z.number().nullable().describe('Predicted for trims, measured for verifications'),
+    attempt: z
+      .int()
+      .positive()
+      .nullable()
+      .describe('Which measurement of its kind this is for its unit, channel and range on its UTC day'),
     by: z.string(),
     station: z.string().nullable(),
     measuredAt: instant.nullable(),

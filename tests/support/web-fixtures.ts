@@ -172,6 +172,7 @@ export function recordLine(n: number): RecordLine {
     gainCode: none ? null : 2000 + n,
     offsetCode: none ? null : 2048,
     worstLsb: none ? null : 0.05 + (n % 7) / 10,
+    attempt: 1 + (n % 5 === 0 ? 1 : 0),
     by: n % 2 === 0 ? 'T. Ruiz' : 'station B',
     station: n % 2 === 0 ? 'station A' : 'station B',
     measuredAt: null,

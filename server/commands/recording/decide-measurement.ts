@@ -11,6 +11,7 @@ import { channelOf, designOf } from './catalogue.ts'
 import { type Context, commonBody, currentFrom, type Decision, lastOf } from './context.ts'
 import { type Followed, measurementBefore } from './followed.ts'
 import { measurementNotices } from './notices.ts'
+import type { PlaceState } from './place.ts'
 
 type Applied = NonNullable<RecordBody['applied']>
 type Judged = Pick<RecordBody, 'result' | 'verdict' | 'accepted'>
@@ -39,9 +40,16 @@ export function decideMeasurement(context: Context): Decision {
   return {
     body,
     notices: measurementNotices(context, body),
-    state: { current, last: lastOf(context), measurement: body.id, pass },
+    state: { current, last: lastOf(context), measurement: body.id, pass, day: countOn(body, state.day) },
     context,
   }
+}
+
+/** The day's measurements with this one: measuring until it passes is seen in the last number. */
+function countOn({ recordedAt, kind }: RecordBody, before: PlaceState['day']): PlaceState['day'] {
+  const on = recordedAt.slice(0, 10)
+  const { trim, verify } = before?.on === on ? before : { trim: 0, verify: 0 }
+  return kind === 'trim' ? { on, trim: trim + 1, verify } : { on, trim, verify: verify + 1 }
 }
 
 function trim(context: Context, points: Point[], applied: Applied, before: Followed | null): Judged {

@@ -34,7 +34,7 @@ export async function decideWithdrawal(sql: Sql, context: Context): Promise<Deci
   }
   const body: RecordBody = { ...statement(context, meant), verdict: null, accepted: false }
   const rest = await stateWithout(sql, context, meant.id)
-  return { body, notices: [], state: { ...rest, last: lastOf(context) }, context }
+  return { body, notices: [], state: { ...rest, day: context.state.day, last: lastOf(context) }, context }
 }
 
 function meantBy({ job, known, state, place }: Context): Followed {

@@ -22,6 +22,8 @@ export type PlaceState = {
   measurement: string | null
   /** Trims in its chain so far. */
   pass: number
+  /** Measurements on the last UTC day that had one, so that a record can say which it is of its kind on its day. */
+  day?: { on: string; trim: number; verify: number } | undefined
 }
 
 export type Place = { unitId: number; channel: string; range: string }

@@ -36,8 +36,8 @@ export async function storeRecords(sql: Sql, ready: readonly Ready[], places: Pl
 }
 
 const columns = `id, number, kind, unit_id, unit, channel, range_id, lot, design, revision, pass, follows, verdict,
-  accepted, gain_error_ppm, offset_error_v, gain_code, offset_code, worst_lsb, by_name, station_id, station,
-  measured_at, recorded_at, leaf_id, receipt_key, receipt_signature, notices`
+  accepted, gain_error_ppm, offset_error_v, gain_code, offset_code, worst_lsb, by_name, by_id, attempt,
+  station_id, station, measured_at, recorded_at, leaf_id, receipt_key, receipt_signature, notices`
 
 function rowOf({ decision, stored }: Ready, leafId: number): SqlValue[] {
   const { body, context, notices, state } = decision
@@ -65,6 +65,8 @@ function rowOf({ decision, stored }: Ready, leafId: number): SqlValue[] {
     codes.offset ?? null,
     line.worstLsb,
     body.by.name,
+    body.by.id,
+    body.kind === 'trim' || body.kind === 'verify' ? (state.day?.[body.kind] ?? null) : null,
     context.job.recorder.station?.id ?? null,
     body.station,
     body.measuredAt === null ? null : sqlTime(body.measuredAt),

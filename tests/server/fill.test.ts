@@ -1,0 +1,93 @@
+import { type Connection, createConnection } from 'mariadb'
+import { afterAll, beforeAll, expect, inject, it } from 'vitest'
+import { loadDemo } from '../../server/demo/load-demo.ts'
+import { sha256 } from '../../server/ledger/crypto.ts'
+import { designDocument } from '../../shared/contract/design.ts'
+import { type RecordBody, recordBody } from '../../shared/contract/record.ts'
+import { canonicalText } from '../../shared/ledger/canonical.ts'
+import { leafBytes, leafHash } from '../../shared/ledger/leaf.ts'
+import { codesOn } from '../../shared/solver/codes.ts'
+import { prepareTrim } from '../../shared/solver/prepare-trim.ts'
+import { fillRecords } from '../bench/fill/fill.ts'
+import { mth } from '../shared/ledger/reference-tree.ts'
+import { api, signIn } from '../support/server-client.ts'
+import { addPerson, type Harness, serverHarness } from '../support/server-harness.ts'
+
+/** What benches and tamper tests fill a database with is what the product itself would have written. */
+
+const count = 3_000
+let harness: Harness
+let roots: [Connection, Connection]
+let auditor: { cookie: string }
+
+beforeAll(async () => {
+  harness = await serverHarness()
+  await loadDemo({ ...harness.deps, notifyLedger: () => undefined }, harness.dir, () => undefined)
+  await harness.sequencer.drain()
+  const asRoot = () =>
+    createConnection({
+      socketPath: inject('mariadbSocket'),
+      user: 'root',
+      database: harness.test.name,
+      permitLocalInfile: true,
+    })
+  roots = [await asRoot(), await asRoot()]
+  await fillRecords({ roots, signer: harness.deps.signer, count, seed: 7, end: new Date() })
+  await addPerson(harness, 'auditor')
+  auditor = { cookie: await signIn(harness.url, 'auditor@example.org') }
+})
+afterAll(async () => {
+  for (const root of roots) await root.end()
+  await harness.close()
+})
+
+type Leaf = { idx: number; kind: 'record'; at: Date; hash: Buffer; body: Buffer }
+const leaves = () =>
+  harness.database.sql.rows<Leaf>(
+    'SELECT e.idx, l.kind, l.at, l.hash, l.body FROM ledger_entries e JOIN ledger_leaves l ON l.id = e.leaf_id ORDER BY e.idx',
+  )
+
+it('gives every leaf its hash and place, and signs the root that a slow reference finds', async () => {
+  const all = await leaves()
+  expect(all.length).toBeGreaterThanOrEqual(count)
+  for (const [i, { idx, kind, at, hash, body }] of all.entries()) {
+    expect(idx).toBe(i)
+    expect(Buffer.from(leafHash(sha256, leafBytes(kind, at.toISOString(), body))).equals(hash)).toBe(true)
+  }
+  const root = mth(all.map(({ kind, at, body }) => leafBytes(kind, at.toISOString(), body)))
+  const [head] = await harness.database.sql.rows<{ root: Buffer; size: number; checkpoint: number }>(
+    'SELECT root, size, checkpoint_size AS checkpoint FROM ledger_head',
+  )
+  expect([head?.size, head?.checkpoint]).toEqual([all.length, all.length])
+  expect(head?.root.equals(root)).toBe(true)
+})
+
+it('writes records that are canonical, of the contract, and that the solver computes again bit for bit', async () => {
+  const bodies = (await leaves()).filter(({ kind }) => kind === 'record').slice(-count)
+  const { document } = (await api(harness.url, 'get', '/designs/DBS-A/revisions/1', auditor)).body
+  const channel = prepareTrim(designDocument.parse(document))
+  let compared = 0
+  for (const { body } of bodies) {
+    const text = body.toString('utf8')
+    const parsed = JSON.parse(text) as RecordBody
+    expect(text.length).toBeLessThan(4_096)
+    expect(canonicalText(parsed as never)).toBe(text)
+    recordBody.parse(parsed)
+    if (parsed.design !== 'DBS-A' || parsed.kind !== 'trim' || parsed.effects !== 'design') continue
+    const again = codesOn(channel, parsed.points!, { applied: parsed.applied! })
+    expect(canonicalText(again as never)).toBe(canonicalText(parsed.result as never))
+    compared += 1
+  }
+  expect(compared).toBeGreaterThan(100)
+})
+
+it('leaves units as recording would: a page reads, and the next record goes on from them', async () => {
+  const page = (await api(harness.url, 'get', '/trims?kind=verify&limit=50', auditor)).body
+  expect(page.items).toHaveLength(50)
+  const line = page.items.find((item: { design: string }) => item.design === 'DBS-A')
+  const unit = (await api(harness.url, 'get', `/units?serial=${line.unit}&design=DBS-A`, auditor)).body
+    .items[0]
+  expect(unit.current).not.toEqual([])
+  const record = (await api(harness.url, 'get', `/trims/${line.id}`, auditor)).body
+  expect(record.ledger.index).toBeGreaterThan(0)
+})
