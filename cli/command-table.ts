@@ -89,6 +89,27 @@ export const commandTable: readonly Entry[] = [
     ],
   },
   {
+    name: 'proof',
+    summary: 'Proof that a record stands in the ledger',
+    verbs: [
+      {
+        name: 'get',
+        summary: 'The proof of a record, as one file',
+        load: async () => (await import('./commands/proof/get.ts')).proofGetCommand,
+      },
+      {
+        name: 'check',
+        summary: 'Whether a proof checks, offline',
+        load: async () => (await import('./commands/proof/check.ts')).proofCheckCommand,
+      },
+      {
+        name: 'receipts',
+        summary: 'Whether everything that receipts promise is in the ledger',
+        load: async () => (await import('./commands/proof/receipts.ts')).proofReceiptsCommand,
+      },
+    ],
+  },
+  {
     name: 'whoami',
     summary: 'Who the token stands for, and which server answers',
     load: async () => (await import('./commands/whoami.ts')).whoamiCommand,

@@ -4,13 +4,15 @@ import { copyFileSync, mkdirSync, symlinkSync, writeFileSync } from 'node:fs'
 import { join } from 'node:path'
 import { afterAll, beforeAll, describe, expect, test } from 'vitest'
 import { commandTable } from '../../cli/command-table.ts'
+import { memoryLedger, plainBodies } from '../support/memory-ledger.ts'
 import { revisionLine as lineOf } from '../support/revision-lines.ts'
-import { designBytes, line, me, recordOf, revision, unit } from './support/answers.ts'
+import { designBytes, line, me, recordIds, recordOf, revision, unit } from './support/answers.ts'
 import { builtCli, ended, examples } from './support/built-cli.ts'
 import { FakeServer, json, problem } from './support/fake-server.ts'
 
 const cli = builtCli()
 const server = new FakeServer()
+const ledger = memoryLedger(plainBodies(3).map((body, i) => (i === 0 ? { ...body, id: recordIds[0] } : body)))
 const names = commandTable.flatMap((entry) =>
   'verbs' in entry ? entry.verbs.map(({ name }) => `${entry.name} ${name}`) : [entry.name],
 )
@@ -38,6 +40,7 @@ function answerEverything(): void {
     [/\/units\?/, () => ({ items: [unit], next: null })],
     [/\/trims\?/, () => ({ items: [line(7), line(6)], next: null })],
     [/\/trims$/, recordOf],
+    [/\/ledger\/proof\//, () => ledger.proofOf(0)],
   ]
   server.willAnswer((seen, response) => {
     const route = routes.find(([path]) => path.test(seen.path))
@@ -56,6 +59,10 @@ beforeAll(async () => {
     join(cli.folder, 'as-left.csv'),
     'code,measured,uncertainty\n0,0.000001,1e-6\n131072,5.000002,1e-6\n',
   )
+  writeFileSync(join(cli.folder, 'ogee.pub'), ledger.pub)
+  writeFileSync(join(cli.folder, 'proof.json'), JSON.stringify(ledger.proofOf(0)))
+  mkdirSync(join(cli.folder, 'spool/sent'), { recursive: true })
+  writeFileSync(join(cli.folder, 'spool/sent/1.json'), JSON.stringify(ledger.receiptOf(0)))
   answerEverything()
 })
 afterAll(async () => await server.stop())
