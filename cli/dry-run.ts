@@ -1,5 +1,6 @@
 import type { Design } from '../shared/contract/design.ts'
 import { listLots } from '../shared/contract/designs.ts'
+import { type Instrument, listInstruments } from '../shared/contract/instruments.ts'
 import { getTrim } from '../shared/contract/trims.ts'
 import { findUnits, type Unit } from '../shared/contract/units.ts'
 import { OgeeError } from '../shared/errors.ts'
@@ -21,12 +22,6 @@ type Chain = { follows: string | null; pass: number; learned: PreviousPass | und
  * The record that comes back has no id.
  */
 export async function dryRun(client: Client, body: RequestBody): Promise<AnyRecord> {
-  if (body.conditions?.instrument !== undefined) {
-    throw new OgeeError(
-      'usage',
-      '--dry-run cannot know the limits of an instrument. Leave --instrument out of it.',
-    )
-  }
   const number = await revisionAsked(client, body)
   const { revision, bytes } = await fetchRevision(client, body.design, number)
   const design = designFrom(parseJson(bytes.toString('utf8'), body.design), body.design)
@@ -39,7 +34,13 @@ export async function dryRun(client: Client, body: RequestBody): Promise<AnyReco
   const current = await currentOf(client, body, channel, range)
   const applied = appliedBy(body, current)
   const chain = await chainOf(client, body, current)
-  const result = computeCodes(design, body.points ?? [], { rangeId: range, applied, learned: chain.learned })
+  const instrument = await instrumentNamed(client, body.conditions?.instrument)
+  const result = computeCodes(design, body.points ?? [], {
+    rangeId: range,
+    applied,
+    learned: chain.learned,
+    ...(instrument ? { instrument } : {}),
+  })
   return {
     format: 'ogee.record/1',
     id: null,
@@ -65,6 +66,14 @@ export async function dryRun(client: Client, body: RequestBody): Promise<AnyReco
     measuredAt: body.measuredAt ?? null,
     recordedAt: null,
   }
+}
+
+async function instrumentNamed(client: Client, id: string | undefined): Promise<Instrument | undefined> {
+  if (id === undefined) return undefined
+  const { items } = await client.call(listInstruments, {})
+  const found = items.find((instrument) => instrument.id === id)
+  if (found) return found
+  throw new OgeeError('instrument-unknown', `There is no instrument ${id}.`)
 }
 
 async function revisionAsked(

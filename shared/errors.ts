@@ -92,6 +92,8 @@ export const errorTable = {
   'revision-state': badInput('The revision is in another state', 409),
   'author-cannot-release': { status: 403, title: 'The author does not release', retry: false, exit: 77 },
   'instrument-unknown': badInput('There is no such instrument'),
+  'instrument-retired': badInput('The instrument is retired', 409),
+  'instrument-overdue': badInput('The calibration of the instrument is overdue'),
   'kind-not-served': badInput('This version does not record that kind yet'),
   // Identity
   'sign-in-required': { status: 401, title: 'Sign in first', retry: false, exit: 77 },

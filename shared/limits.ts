@@ -33,6 +33,9 @@ export const limits = {
   reasonMin: 10,
   reasonMax: 500,
   instrumentIdMax: 32,
+  instrumentTitleMax: 80,
+  /** A calibration due within so many days is said to be due soon. */
+  calibrationSoonDays: 30,
   idempotencyKeyMax: 128,
   /** A bigger points CSV belongs to `ogee batch`. Bytes. */
   benchCsvMaxBytes: 10 * 1024 * 1024,

@@ -12,6 +12,7 @@ const changeable: Readonly<Record<string, string>> = {
   lots: 'SELECT, INSERT, UPDATE',
   units: 'SELECT, INSERT, UPDATE',
   unit_codes: 'SELECT, INSERT, UPDATE',
+  instruments: 'SELECT, INSERT, UPDATE',
   counters: 'SELECT, INSERT, UPDATE',
   settings: 'SELECT, INSERT, UPDATE, DELETE',
   ledger_head: 'SELECT, UPDATE',

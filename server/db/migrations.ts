@@ -6,6 +6,7 @@ import { recordedTables } from './migrations/001-recorded.ts'
 import { revisionHistory } from './migrations/002-revisions.ts'
 import { ledgerUpkeep } from './migrations/004-ledger.ts'
 import { historyColumns } from './migrations/005-history.ts'
+import { instrumentTables } from './migrations/006-instruments.ts'
 
 /**
  * Every step there is, in order, by static import: a built file and a source file run the same names. Statements can run
@@ -16,6 +17,7 @@ export const migrations: RunnableMigration<Sequelize>[] = [
   step('002-revisions', revisionHistory),
   step('004-ledger', ledgerUpkeep),
   step('005-history', historyColumns),
+  step('006-instruments', instrumentTables),
 ]
 
 function step(name: string, statements: readonly string[]): RunnableMigration<Sequelize> {

@@ -4,6 +4,7 @@ import { codesOn } from '../../shared/solver/codes.ts'
 import { prepareTrim, type TrimChannel } from '../../shared/solver/prepare-trim.ts'
 import type { Applied } from '../../shared/solver/types.ts'
 import { verifyPoints } from '../../shared/solver/verify.ts'
+import { demoInstrument } from './demo-instruments.ts'
 import type { DemoRandom } from './random.ts'
 import { type DemoLot, randomOfLot } from './scenario.ts'
 import { drawChannel, type Meter, measure } from './simulated-channel.ts'
@@ -48,21 +49,22 @@ function buildChannel(bench: Bench): DemoRequest[] {
   const plan = design.measurement.points
   const found = spoiled(bench, measure(random, channel, truth, 'neutral', meter, plan))
   const requests = [request(bench, 'trim', 1, { applied: 'neutral', points: found })]
-  const asFound = codesOn(channel, found, { applied: 'neutral' })
+  const instrument = demoInstrument[lot.station]
+  const asFound = codesOn(channel, found, { applied: 'neutral', instrument })
   const first = asFound.trim
   // Who cannot trim stops here; a suspect unit waits for an engineer.
   if (first.codes === null || first.verdict === 'suspect') return requests
   const verify = (step: number, loaded: Applied): boolean => {
     const left = measure(random, channel, truth, loaded, meter, plan)
     requests.push(request(bench, 'verify', step, { points: left }))
-    return verifyPoints(design, left).outcome === 'pass'
+    return verifyPoints(design, left, { instrument }).outcome === 'pass'
   }
   if (name === '1' ? verify(2, first.codes) : random.next() > 0.03) return requests
   // Back for a second pass, which learns from the first what the adjusters really do.
   const second = measure(random, channel, truth, first.codes, meter, plan)
   const body = { applied: first.codes, points: second, follows: 'last', effects: 'learned' }
   requests.push(request(bench, 'trim', 3, body))
-  const again = codesOn(channel, second, { applied: first.codes, learned: asFound }).trim
+  const again = codesOn(channel, second, { applied: first.codes, learned: asFound, instrument }).trim
   if (again.codes !== null && again.verdict !== 'suspect') verify(4, again.codes)
   return requests
 }
@@ -109,7 +111,10 @@ function request(
       unit: serial,
       lot: lot.key,
       channel: name,
-      conditions: { temperatureC: Math.round((22.5 + random.within(1)) * 10) / 10 },
+      conditions: {
+        temperatureC: Math.round((22.5 + random.within(1)) * 10) / 10,
+        instrument: demoInstrument[lot.station].id,
+      },
       measuredAt,
       ...fields,
     },

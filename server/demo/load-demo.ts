@@ -19,6 +19,7 @@ import { parseTokenText } from '../policies/token-text.ts'
 import { type DemoAccounts, demoAccounts, nameOf } from './accounts.ts'
 import { buildLot } from './build-lot.ts'
 import { demoDesigns } from './demo-designs.ts'
+import { calibrate } from './demo-instruments.ts'
 import { demoLots } from './scenario.ts'
 
 type DemoDeps = Pick<Deps, 'database' | 'signer' | 'now' | 'notifyLedger'>
@@ -39,6 +40,7 @@ export async function loadDemo(deps: DemoDeps, dataDir: string, say: (line: stri
   await loadDesigns(deps, foundedAt)
   await loadToken(deps, accounts, stations.A.id)
   await loadLots(deps, begun, stations)
+  for (const station of ['A', 'B'] as const) await calibrate(deps, station, begun, begun)
   await deps.database.sql.run("UPDATE settings SET value = 'loaded' WHERE name = 'demo'")
   deps.notifyLedger()
   sayAccounts(accounts, dataDir, say)
@@ -127,6 +129,7 @@ async function loadLots(deps: DemoDeps, end: Date, stations: Stations): Promise<
   const recording = { ...deps, numbers: recordNumbers(deps.database) }
   for (const lot of demoLots(end)) {
     const design = demoDesigns.find((candidate) => candidate.key === lot.design)!
+    await calibrate(deps, lot.station, lot.startedAt, end)
     await openLot(deps.database, { design: lot.design, key: lot.key, revision: 1, at: lot.startedAt })
     const principal = stationPrincipal(stations[lot.station])
     const jobs = buildLot(lot, design.document).map(({ key, at, body }) => ({

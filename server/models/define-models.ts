@@ -1,5 +1,6 @@
 import type { Sequelize } from 'sequelize'
 import { designs, lots, revisions } from './design.ts'
+import { instruments } from './instrument.ts'
 import { people } from './person.ts'
 import { records } from './record.ts'
 import { sessions } from './session.ts'
@@ -13,6 +14,7 @@ export function defineModels(sequelize: Sequelize) {
     people: people(sequelize),
     sessions: sessions(sequelize),
     stations: stations(sequelize),
+    instruments: instruments(sequelize),
     tokens: tokens(sequelize),
     designs: designs(sequelize),
     revisions: revisions(sequelize),

@@ -6,6 +6,7 @@ import type { Serve } from '../http/serve.ts'
 import { productVersion } from '../root.ts'
 import { batchRoutes } from './batches.ts'
 import { designRoutes } from './designs.ts'
+import { instrumentRoutes } from './instruments.ts'
 import { ledgerRoutes } from './ledger.ts'
 import { revisionRoutes } from './revisions.ts'
 import type { RouteDeps } from './route-deps.ts'
@@ -32,6 +33,7 @@ export function registerRoutes(serve: Serve, router: Router, deps: RouteDeps): v
     batchRoutes,
     unitRoutes,
     stationRoutes,
+    instrumentRoutes,
     tokenRoutes,
     ledgerRoutes,
   ]) {

@@ -2,6 +2,7 @@ import { postBatch } from './batches.ts'
 import { getDesign, getRevision, listDesigns, listLots, postDesign } from './designs.ts'
 import type { Endpoint } from './endpoint.ts'
 import { getCheckpoint, getConsistency, getLedgerKey, getProof } from './ledger.ts'
+import { listInstruments, patchInstrument, postInstrument, putInstrumentRule } from './instruments.ts'
 import {
   getDifference,
   getUse,
@@ -46,6 +47,10 @@ export const allEndpoints: readonly Endpoint[] = [
   listStations,
   postStation,
   patchStation,
+  listInstruments,
+  postInstrument,
+  patchInstrument,
+  putInstrumentRule,
   listTokens,
   postToken,
   deleteToken,

@@ -31,6 +31,14 @@ export const rangeId = z
   .string()
   .max(limits.rangeIdMax)
   .regex(keyLike, 'Use letters, digits, dot, dash or underscore.')
+export const instrumentId = z
+  .string()
+  .max(limits.instrumentIdMax)
+  .regex(keyLike, 'Use letters, digits, dot, dash or underscore.')
+/** A day of the calendar, such as 2026-11-01; days begin and end in UTC. */
+export const calendarDay = z.iso
+  .date('Write the day as 2026-11-01.')
+  .refine((day) => day >= '1970' && day < '2200', 'Use a day between 1970 and 2200.')
 export const revisionNumber = z.int().positive().max(1_000_000)
 export const recordId = z.uuid()
 

@@ -1,6 +1,7 @@
 import * as z from 'zod'
 import { limits } from '../limits.ts'
 import { codesDocument } from './codes.ts'
+import { instrumentFacts } from './instruments.ts'
 import { point, points } from './point.ts'
 import {
   applied,
@@ -8,6 +9,7 @@ import {
   codePair,
   designKey,
   instant,
+  instrumentId,
   lotKey,
   note,
   outcome,
@@ -30,7 +32,7 @@ export const effectsChoice = z.enum(['design', 'learned'])
 export const conditions = z.strictObject({
   temperatureC: z.number().min(-273.15).max(1000).optional(),
   humidityPercent: z.number().min(0).max(100).optional(),
-  instrument: z.string().min(1).max(limits.instrumentIdMax).optional(),
+  instrument: instrumentId.optional(),
   note: note.optional(),
 })
 
@@ -104,6 +106,7 @@ export const recordBody = z.object({
   effects: effectsChoice.nullable(),
   points: z.array(point).nullable().describe('As given'),
   conditions,
+  instrument: instrumentFacts.optional().describe('The instrument named, as it was at that moment'),
   reason: z.string().nullable(),
   claimed: claimed.nullable(),
   result: z.union([codesDocument, verifyDocument]).nullable(),

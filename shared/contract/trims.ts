@@ -30,6 +30,8 @@ export const postTrim = endpoint({
     'override-not-suspect',
     'already-withdrawn',
     'instrument-unknown',
+    'instrument-retired',
+    'instrument-overdue',
     'kind-not-served',
     'too-few-codes',
     'not-finite',

@@ -62,7 +62,14 @@ function withLearned(
   previous: PreviousPass | undefined,
 ): { trimmers: Trimmers; fit: FitResult } {
   if (previous === undefined) return { trimmers, fit: fitted.result }
-  const { effects, flags } = learnEffects(channel, trimmers, fitted.line, nowV, previous)
+  const { effects, flags } = learnEffects(
+    channel,
+    trimmers,
+    fitted.line,
+    nowV,
+    previous,
+    fitted.result.instrument,
+  )
   return {
     trimmers: {
       gain: prepareTrimmer(channel, 'gain', effects.gain),

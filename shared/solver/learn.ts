@@ -17,6 +17,7 @@ type Row = { o: number; g: number }
  * @param trimmers adjusters with the design's effects
  * @param line the fit of this pass; @param nowV node voltages while it was measured
  * @param previous the pass before, with its fit and its applied node voltages
+ * @param instrument limits of this pass's instrument; only the same one (by id) cancels in the difference
  * @returns effects to use: learned where well enough known, else the design's with `why` (`no-uncertainty`,
  *   `not-moved`, `too-uncertain`, `effect-off`); the flag `effect-off` for a factor outside its tolerance
  * @throws adjusters-not-independent
@@ -29,11 +30,12 @@ export function learnEffects(
   line: Line,
   nowV: { gain: number; offset: number },
   previous: PreviousPass,
+  instrument: FitResult['instrument'] = previous.fit.instrument,
 ): Learned {
   const before = previous.fit
   const dO = line.offset - before.offsetErrorV
   const dG = line.gain - before.gainErrorPpm / 1e6
-  const cov = sumOfCovariances(channel, line, before)
+  const cov = sumOfCovariances(channel, line, before, instrument)
   const effects: PerAdjuster<UsedEffect> = {}
   const flags: Flag[] = []
   for (const which of ['gain', 'offset'] as const) {
@@ -93,19 +95,30 @@ function inverseRow(channel: Channel, trimmers: Trimmers, which: Which): Row {
   return lever === 0 ? { o: 0, g: 0 } : { o: 1 / lever, g: z / lever }
 }
 
-/** Sum of both fits' covariances without the instrument's common part, which cancels in the difference. */
-function sumOfCovariances(channel: Channel, line: Line, before: FitResult): Line['variance'] {
+/**
+ * Sum of both fits' covariances without the instrument's common part, which cancels in the difference; two different
+ * instruments have nothing in common, so both their parts stay.
+ */
+function sumOfCovariances(
+  channel: Channel,
+  line: Line,
+  before: FitResult,
+  instrument: FitResult['instrument'],
+): Line['variance'] {
   const std = before.standardUncertainty
   if (line.variance === null || std === null) return null
   const { x0 } = channel.range
-  const instr: InstrumentU = instrumentU(before.instrument)
+  const isSame = (before.instrument?.id ?? null) === (instrument?.id ?? null)
+  const added: InstrumentU = instrumentU(isSame ? null : instrument)
+  const addedG2 = added.gain * added.gain
+  const instr: InstrumentU = instrumentU(isSame ? before.instrument : null)
   const g2 = instr.gain * instr.gain
   const uGain = std.gainPpm / 1e6
   const least = (v: number): number => Math.max(v, 0)
+  const was2 = least(std.offsetV * std.offsetV - instr.offset * instr.offset - x0 * x0 * g2)
   return {
-    offset:
-      line.variance.offset + least(std.offsetV * std.offsetV - instr.offset * instr.offset - x0 * x0 * g2),
-    gain: line.variance.gain + least(uGain * uGain - g2),
-    cov: line.variance.cov + std.covarianceVPpm / 1e6 - x0 * g2,
+    offset: line.variance.offset + was2 + (added.offset * added.offset + x0 * x0 * addedG2),
+    gain: line.variance.gain + least(uGain * uGain - g2) + addedG2,
+    cov: line.variance.cov + std.covarianceVPpm / 1e6 - x0 * g2 + x0 * addedG2,
   }
 }

@@ -4,6 +4,7 @@ import { join } from 'node:path'
 import { afterAll, beforeAll, describe, expect, it } from 'vitest'
 import { loadDemo } from '../../server/demo/load-demo.ts'
 import { demoLots } from '../../server/demo/scenario.ts'
+import { calibrationState } from '../../shared/calibration.ts'
 import { api, signIn } from '../support/server-client.ts'
 import { addPerson, type Harness, serverHarness } from '../support/server-harness.ts'
 
@@ -52,6 +53,25 @@ describe('demo data', () => {
         (SELECT COUNT(*) FROM ledger_leaves WHERE kind = 'record') - (SELECT COUNT(*) FROM records) AS loose`,
     )
     expect(count).toEqual({ people: 4, stations: 2, tokens: 1, designs: 2, lots: 40, units: 80, loose: 0 })
+  })
+
+  it('have two instruments, calibrated each year, one due soon, and records that keep what was true then', async () => {
+    const { items } = (await api(harness.url, 'get', '/instruments', { token: accounts().token })).body
+    const state = items.map((item: { id: string; dueOn: string }) => [
+      item.id,
+      calibrationState(item.dueOn, Date.now()),
+    ])
+    expect(state).toEqual([
+      ['DMM-07', 'good'],
+      ['DMM-12', 'soon'],
+    ])
+    const bodies = await rows<{ body: Buffer }>("SELECT body FROM ledger_leaves WHERE kind = 'record'")
+    const kept = bodies.map(({ body }) => JSON.parse(body.toString('utf8')))
+    expect(new Set(kept.map(({ instrument }) => instrument.dueOn)).size).toBeGreaterThanOrEqual(4)
+    for (const { instrument, measuredAt } of kept) {
+      expect(measuredAt.slice(0, 10) >= instrument.calibratedOn).toBe(true)
+      expect(measuredAt.slice(0, 10) <= instrument.dueOn).toBe(true)
+    }
   })
 
   it('tell the scenario: two years, a lot out of reach, second passes, suspects, verifications', async () => {

@@ -14,16 +14,6 @@ function checkMeasurement(request: RecordRequest): void {
   if (request.kind === 'verify' && request.effects === 'learned') {
     refuse('/effects', 'A verification computes no codes, so there is nothing to learn effects for.')
   }
-  const { instrument } = request.conditions ?? {}
-  if (instrument !== undefined) {
-    throw new OgeeError(
-      'instrument-unknown',
-      `There is no instrument ${instrument}. Leave it out: the design's limits apply.`,
-      {
-        errors: [{ path: '/conditions/instrument', message: 'There is no such instrument.' }],
-      },
-    )
-  }
 }
 
 function checkStatement(request: RecordRequest, { by, role }: Recorder): void {
@@ -39,6 +29,9 @@ function checkStatement(request: RecordRequest, { by, role }: Recorder): void {
   for (const field of ['points', 'applied', 'claimed'] as const) {
     if (request[field] !== undefined)
       refuse(`/${field}`, `A record of kind ${request.kind} takes no ${field}.`)
+  }
+  if (request.conditions?.instrument !== undefined) {
+    refuse('/conditions/instrument', `A record of kind ${request.kind} measures nothing.`)
   }
   if (request.follows === undefined) refuse('/follows', 'Say which record is meant.')
   if ([...(request.reason ?? '').trim()].length < limits.reasonMin) {

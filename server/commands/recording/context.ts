@@ -2,6 +2,7 @@ import type { RecordBody } from '../../../shared/contract/record.ts'
 import { canonicalText } from '../../../shared/ledger/canonical.ts'
 import type { RevisionInPlay } from './catalogue.ts'
 import type { Known } from './followed.ts'
+import type { Used } from './instrument.ts'
 import type { Job } from './job.ts'
 import type { CurrentCodes, Place, PlaceState } from './place.ts'
 
@@ -16,6 +17,7 @@ export type Context = {
   place: Place
   state: PlaceState
   known: Known
+  instrument: Used | null
 }
 
 /** A record to be, and how its place stands after it. */
@@ -25,6 +27,7 @@ type NoticeCode =
   | 'newer-record'
   | 'revision-withdrawn'
   | 'released-by-author'
+  | 'instrument-overdue'
   | 'clock-skew'
   | 'claimed-codes-differ'
   | 'overridden'
@@ -33,7 +36,7 @@ type NoticeCode =
 
 /** The fields that every record has, whatever its kind. */
 export function commonBody(context: Context) {
-  const { job, id, number, recordedAt, revision, place } = context
+  const { job, id, number, recordedAt, revision, place, instrument } = context
   const { request, recorder } = job
   return {
     format: 'ogee.record/1',
@@ -48,6 +51,7 @@ export function commonBody(context: Context) {
     revision: revision.number,
     designHash: revision.hash,
     conditions: request.conditions ?? {},
+    ...(instrument === null ? {} : { instrument: instrument.facts }),
     reason: request.reason ?? null,
     claimed: request.claimed ?? null,
     by: recorder.by,

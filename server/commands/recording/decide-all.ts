@@ -5,6 +5,7 @@ import type { Context, Decision } from './context.ts'
 import { decideMeasurement } from './decide-measurement.ts'
 import { decideOverride, decideWithdrawal } from './decide-statement.ts'
 import { type Known, readFollowed } from './followed.ts'
+import { type Instruments, readInstruments, usedInstrument } from './instrument.ts'
 import type { Job } from './job.ts'
 import { requireUsableRevision } from './notices.ts'
 import { type Place, Places } from './place.ts'
@@ -37,10 +38,14 @@ export async function decideAll(sql: Sql, jobs: readonly Job[], assigned: Assign
     [...units.values()].filter((unit) => !unit.fresh).map((unit) => unit.id),
   )
   const known = await readFollowed(sql, idsToRead(resolved, units, places))
+  const instruments = await readInstruments(
+    sql,
+    jobs.flatMap((job) => job.request.conditions?.instrument ?? []),
+  )
   const decisions: Decision[] = []
   for (const one of resolved) {
     try {
-      const decision = await decide(sql, one, { units, places, known, assigned })
+      const decision = await decide(sql, one, { units, places, known, instruments, assigned })
       places.put(decision.context.place, decision.state)
       note(known, decision)
       decisions.push(decision)
@@ -80,7 +85,13 @@ function idsToRead(
   })
 }
 
-type World = { units: ReadonlyMap<string, LockedUnit>; places: Places; known: Known; assigned: Assigned }
+type World = {
+  units: ReadonlyMap<string, LockedUnit>
+  places: Places
+  known: Known
+  instruments: Instruments
+  assigned: Assigned
+}
 
 async function decide(sql: Sql, { job, revision, i }: Resolved, world: World): Promise<Decision> {
   const { request } = job
@@ -88,16 +99,18 @@ async function decide(sql: Sql, { job, revision, i }: Resolved, world: World): P
   if (!unit) throw new Error(`Unit ${request.unit} was not locked.`)
   const place = { unitId: unit.id, ...placeOf(job, revision, world.known) }
   const state = world.places.at(place)
+  const recordedAt = (job.at ?? world.assigned.at).toISOString()
   const context: Context = {
     job,
     id: world.assigned.ids[i]!,
     number: world.assigned.numbers[i]!,
-    recordedAt: (job.at ?? world.assigned.at).toISOString(),
+    recordedAt,
     revision,
     unit,
     place,
     state,
     known: world.known,
+    instrument: usedInstrument(world.instruments, request, recordedAt),
   }
   if (request.kind === 'override') return decideOverride(context)
   if (request.kind === 'withdraw') return decideWithdrawal(sql, context)

@@ -55,16 +55,22 @@ function countOn({ recordedAt, kind }: RecordBody, before: PlaceState['day']): P
 function trim(context: Context, points: Point[], applied: Applied, before: Followed | null): Judged {
   const { revision, place, job } = context
   const learned = job.request.effects === 'learned' ? previousPass(context, before) : undefined
-  const result = codesOn(channelOf(revision.hash, place.range), points, { applied, learned }) as CodesDocument
+  const channel = channelOf(revision.hash, place.range)
+  const result = codesOn(channel, points, { applied, learned, ...limitsOf(context) }) as CodesDocument
   const { verdict } = result.trim
   return { result, verdict, accepted: verdict === 'ok' || verdict === 'too-coarse' }
 }
 
-function verify({ revision, place }: Context, points: Point[], applied: Applied): Judged {
+/** A named instrument's limits as they are at this moment; without one, the design's. */
+const limitsOf = ({ instrument }: Context) => (instrument === null ? {} : { instrument: instrument.facts })
+
+function verify(context: Context, points: Point[], applied: Applied): Judged {
+  const { revision, place } = context
   const design = designOf(revision.hash)
   // Codes that the design cannot have are refused here too, although judging does not use them.
   if (applied !== 'neutral') appliedVoltages(channelOf(revision.hash, place.range).trimmers, applied)
-  const result = verifyPoints(design, points, { rangeId: place.range }) as VerifyDocument
+  const options = { rangeId: place.range, ...limitsOf(context) }
+  const result = verifyPoints(design, points, options) as VerifyDocument
   const { outcome } = result
   return { result, verdict: outcome, accepted: outcome === 'pass' || outcome === 'conditional-pass' }
 }

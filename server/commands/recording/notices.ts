@@ -1,3 +1,4 @@
+import { overdueSentence } from '../../../shared/calibration.ts'
 import type { RecordBody } from '../../../shared/contract/record.ts'
 import { OgeeError } from '../../../shared/errors.ts'
 import { limits } from '../../../shared/limits.ts'
@@ -9,6 +10,7 @@ export function measurementNotices(context: Context, body: RecordBody): NoticeLi
     ...newerRecord(context, body),
     ...withdrawnRevision(context),
     ...releasedByAuthor(context),
+    ...overdueInstrument(context),
     ...clockSkew(context, body),
     ...claimedCodes(context, body),
   ]
@@ -58,6 +60,13 @@ function releasedByAuthor({ revision }: Context): NoticeList {
   if (!revision.releasedByAuthor) return []
   const message = `Revision ${revision.number} of ${revision.design} was released by its author.`
   return [{ code: 'released-by-author', message }]
+}
+
+/** Only where the site allows it: otherwise it was refused. */
+function overdueInstrument({ instrument }: Context): NoticeList {
+  if (!instrument?.isOverdue) return []
+  const { id, dueOn } = instrument.facts
+  return [{ code: 'instrument-overdue', message: `${overdueSentence(id, dueOn)} The site allows it.` }]
 }
 
 /** A clock ahead of ours is wrong; one behind may belong to a measurement that waited. */

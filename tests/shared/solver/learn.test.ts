@@ -74,6 +74,24 @@ describe('effects learned from a move (secant)', () => {
     expect(metered[1].trim.effects.offset!.tolerance).toBeCloseTo(second.trim.effects.offset!.tolerance, 8)
   })
 
+  test('two different instruments have nothing in common: both their parts stay', () => {
+    const meter = (id: string) => ({ id, gainPpm: 3, offsetV: 2e-6 })
+    const points = pointsOnLine(design, codes, 4e-3, -6e-4, calm)
+    const first = computeCodes(design, points, { applied: 'neutral', instrument: meter('A') })
+    const { gain: movedG = 0, offset: movedO = 0 } = first.trim.nodeV!
+    const left = pointsOnLine(design, codes, 4e-3 + 0.01 * movedO, -6e-4 + 0.0021 * movedG, calm)
+    const effectWith = (id: string) => {
+      const options = { applied: first.trim.codes!, learned: first, instrument: meter(id) }
+      return computeCodes(design, left, options).trim.effects.gain!
+    }
+    const [known, other] = [effectWith('A'), effectWith('B')]
+    expect(other.factor).toBe(known.factor)
+    // Tolerance is 2u(f)/f; u² grows by the limit/√3 of both meters, in what the move shows of the gain.
+    const u = ({ tolerance, factor }: typeof known) => (tolerance * factor) / 2
+    const added = (2 * 3e-6 ** 2) / 3 / (0.002 * movedG) ** 2
+    expect((u(other) ** 2 - u(known) ** 2) / added).toBeCloseTo(1, 6)
+  })
+
   test('a factor outside its tolerance is flagged effect-off and not used', () => {
     const [, second] = twoPasses(1.6, 1)
     expect(second.trim.effects.gain).toMatchObject({
