@@ -16,6 +16,7 @@ const History = lazy(load.history)
 const RecordPage = lazy(load.record)
 const Ledger = lazy(load.ledger)
 const Preferences = lazy(load.preferences)
+const Instruments = lazy(load.instruments)
 const Stations = lazy(load.stations)
 const Tokens = lazy(load.tokens)
 
@@ -36,6 +37,7 @@ export function AppRoutes() {
           <Route path="/records/:id" element={<RecordPage />} />
           <Route path="/ledger" element={<Ledger />} />
           <Route path="/settings" element={<Preferences />} />
+          <Route path="/settings/instruments" element={<Instruments />} />
           <Route path="/settings/stations" element={<Stations />} />
           <Route path="/settings/tokens" element={<Tokens />} />
           <Route path="*" element={<NotFoundPage />} />

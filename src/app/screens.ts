@@ -7,6 +7,7 @@ export const load = {
   record: () => import('../screens/record/record-screen.tsx'),
   ledger: () => import('../screens/ledger/ledger-screen.tsx'),
   preferences: () => import('../screens/settings/preferences-screen.tsx'),
+  instruments: () => import('../screens/settings/instruments-screen.tsx'),
   stations: () => import('../screens/settings/stations-screen.tsx'),
   tokens: () => import('../screens/settings/tokens-screen.tsx'),
 }
@@ -18,6 +19,7 @@ const byPath: readonly (readonly [RegExp, () => Promise<unknown>])[] = [
   [/^\/history$/, load.history],
   [/^\/records\//, load.record],
   [/^\/ledger$/, load.ledger],
+  [/^\/settings\/instruments$/, load.instruments],
   [/^\/settings\/stations$/, load.stations],
   [/^\/settings\/tokens$/, load.tokens],
 ]

@@ -15,6 +15,7 @@ export const paths = {
   record: (id: string) => `/records/${id}`,
   ledger: '/ledger',
   settings: '/settings',
+  instruments: '/settings/instruments',
   stations: '/settings/stations',
   tokens: '/settings/tokens',
 } as const

@@ -1,6 +1,7 @@
 import { expect, test } from 'vitest'
 import type * as z from 'zod'
 import { designLine, revision } from '../../shared/contract/designs.ts'
+import { instrument } from '../../shared/contract/instruments.ts'
 import { record, recordLine } from '../../shared/contract/record.ts'
 import { me } from '../../shared/contract/session.ts'
 import { station } from '../../shared/contract/stations.ts'
@@ -18,6 +19,7 @@ const cases: [string, z.ZodType, unknown][] = [
   ['verification', record, fixtures.record(4, { kind: 'verify', result: results.verifyResult })],
   ['new token', postToken.reply.schema, { ...fixtures.tokens[0], token: fixtures.tokenText }],
   ...fixtures.stations.map((one): [string, z.ZodType, unknown] => [one.name, station, one]),
+  ...fixtures.instruments.map((one): [string, z.ZodType, unknown] => [one.id, instrument, one]),
   ...fixtures.tokens.map((one): [string, z.ZodType, unknown] => [one.name, token, one]),
   ...[1, 4, 5].map((n): [string, z.ZodType, unknown] => [`line ${n}`, recordLine, fixtures.recordLine(n)]),
 ]

@@ -94,12 +94,17 @@ test('a refused name stands at its field and is not lost', async () => {
 })
 
 test.each(['engineer', 'operator', 'auditor'] as const)(
-  '%s sees preferences only, and whom to ask',
+  '%s sees preferences and instruments only, and whom to ask',
   async (role) => {
     const server = fakeServer({ role })
     const { unmount } = open('/settings', server)
     await screen.findByRole('heading', { level: 1, name: 'This browser' })
-    expect(screen.queryByRole('navigation', { name: 'Settings' })).toBeNull()
+    const nav = screen.getByRole('navigation', { name: 'Settings' })
+    expect(
+      within(nav)
+        .getAllByRole('link')
+        .map((link) => link.textContent),
+    ).toEqual(['This browser', 'Instruments'])
     unmount()
     open('/settings/tokens', server)
     await screen.findByText(

@@ -1,5 +1,6 @@
 import { designDocument } from '../../shared/contract/design.ts'
 import type { DesignLine, Revision } from '../../shared/contract/designs.ts'
+import type { Instrument } from '../../shared/contract/instruments.ts'
 import type { Role } from '../../shared/contract/primitives.ts'
 import type { RecordLine, Record as TrimRecord } from '../../shared/contract/record.ts'
 import type { Me } from '../../shared/contract/session.ts'
@@ -179,6 +180,34 @@ export function recordLine(n: number): RecordLine {
     recordedAt: new Date(Date.UTC(2026, 10, 25, 14, 0, 0) + n * 19_000).toISOString(),
   }
 }
+
+/** A day so many days from today: what is due is judged by today's date. */
+export const day = (fromToday: number) =>
+  new Date(Date.now() + fromToday * 86_400_000).toISOString().slice(0, 10)
+
+function instrument(id: string, dueInDays: number, change: Partial<Instrument> = {}): Instrument {
+  return {
+    id,
+    serial: `QX-${id}`,
+    title: 'Reference voltmeter, 8½ digits',
+    gainPpm: 4,
+    offsetV: 1e-6,
+    calibratedOn: day(dueInDays - 365),
+    dueOn: day(dueInDays),
+    createdAt: '2025-03-02T10:00:00Z',
+    changedAt: '2026-03-02T10:00:00Z',
+    changedBy: 'S. Brandt',
+    retiredAt: null,
+    etag: '"3"',
+    ...change,
+  }
+}
+export const instruments: Instrument[] = [
+  instrument('DMM-07', 200),
+  instrument('DMM-08', -1, { offsetV: 2.5e-6 }),
+  instrument('DMM-12', 12),
+  instrument('DMM-02', -400, { retiredAt: '2026-01-09T10:00:00Z' }),
+]
 
 export const stations: Station[] = [
   {

@@ -103,6 +103,7 @@ function answers(state: State): [string, Answer][] {
     ['GET /trims', inside(listRecords)],
     ['GET /trims/:id', inside((asked) => oneRecord(state, asked))],
     ['GET /stations', inside(() => json({ items: fixtures.stations }))],
+    ['GET /instruments', inside(() => json({ items: fixtures.instruments, overdueAllowed: false }))],
     ['GET /tokens', inside(() => json({ items: fixtures.tokens }))],
     ['POST /tokens', inside(() => json({ ...fixtures.tokens[0], token: fixtures.tokenText }, 201))],
     ['GET /lots', inside(() => json({ items: [], next: null }))],

@@ -1,5 +1,6 @@
 import { readStored, writeStored } from '../../lib/storage.ts'
 import { hasReadings, type Row, type RowExtra } from './grid-state.ts'
+import { rememberedInstrument } from './instrument.ts'
 
 /** Where a measurement stands. That it is on its way to the server is known to the outbox and not written twice. */
 export type DraftStatus =
@@ -12,6 +13,8 @@ export type Draft = {
   hasU: boolean
   temperature: string
   note: string
+  /** Its short name; empty: the limits of the design. */
+  instrument: string
   reason: string
   /** One idempotency key a filled form: kept for the same body, made anew for another. */
   attempt: { body: string; key: string } | null
@@ -43,6 +46,7 @@ export const newDraft = (rows: readonly Row[]): Draft => ({
   hasU: false,
   temperature: '',
   note: '',
+  instrument: rememberedInstrument(),
   reason: '',
   attempt: null,
   status: { is: 'open' },
@@ -70,6 +74,7 @@ function draftFrom(stored: unknown): Draft | null {
     hasU: stored.hasU === true,
     temperature: textOf(stored, 'temperature'),
     note: textOf(stored, 'note'),
+    instrument: textOf(stored, 'instrument'),
     reason: textOf(stored, 'reason'),
     attempt: attempt ? { body: textOf(attempt, 'body'), key: textOf(attempt, 'key') } : null,
     status: statusFrom(stored.status),

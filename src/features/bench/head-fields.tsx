@@ -69,12 +69,18 @@ type ChoiceProps = {
   options: readonly (readonly [string, string])[]
   onChange: (value: string) => void
   error?: ReactNode
+  isFixed?: boolean
 }
 
-export function Choice({ label, value, options, onChange, error }: ChoiceProps) {
+export function Choice({ label, value, options, onChange, error, isFixed = false }: ChoiceProps) {
   return (
     <Field label={label} layout="inline" error={error}>
-      <Select className={narrowSelect} value={value} onChange={(event) => onChange(event.target.value)}>
+      <Select
+        className={narrowSelect}
+        value={value}
+        disabled={isFixed}
+        onChange={(event) => onChange(event.target.value)}
+      >
         {options.map(([name, text]) => (
           <option key={name} value={name}>
             {text}

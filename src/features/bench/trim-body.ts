@@ -18,14 +18,16 @@ export type Measured = {
   points: readonly Point[]
   temperatureC: number | null
   note: string
+  instrument: string
 }
 
 /** The body of POST /trims. Everything is said outright, `applied` above all: codes not said would be corrected twice. */
 export function trimBody(measured: Measured): TrimBody {
-  const { applied, follows, lot, temperatureC } = measured
+  const { applied, follows, lot, temperatureC, instrument } = measured
   const note = measured.note.trim()
   const conditions = {
     ...(temperatureC === null ? {} : { temperatureC }),
+    ...(instrument === '' ? {} : { instrument }),
     ...(note === '' ? {} : { note }),
   }
   return {

@@ -90,6 +90,9 @@ const fieldOfCode: Readonly<Partial<{ [code: string]: string }>> = {
   'applied-unknown': '/applied',
   'unit-serial': '/unit',
   'reason-required': '/reason',
+  'instrument-unknown': '/conditions/instrument',
+  'instrument-retired': '/conditions/instrument',
+  'instrument-overdue': '/conditions/instrument',
 }
 
 /** The sentence of a refusal for one field of the form; its own pointer first, else what its code is about. */
@@ -100,7 +103,15 @@ export function refusedAt(error: OgeeError | null, path: string): string | null 
   return error.errors.length === 0 && fieldOfCode[error.code] === path ? error.message : null
 }
 
-const shownAtFields = ['/points', '/lot', '/applied', '/unit', '/reason', '/conditions/temperatureC']
+const shownAtFields = [
+  '/points',
+  '/lot',
+  '/applied',
+  '/unit',
+  '/reason',
+  '/conditions/temperatureC',
+  '/conditions/instrument',
+]
 
 /** True when every place of a refusal is shown at a field; otherwise it is shown whole as well. */
 export function isPlaced(error: OgeeError): boolean {

@@ -58,9 +58,12 @@ function conditionsText({ temperatureC, humidityPercent }: TrimRecord['condition
     .join(', ')
 }
 
-function instrumentText({ conditions, result }: TrimRecord): string {
-  const limits = result?.fit?.instrument
-  const name = conditions.instrument ?? limits?.id ?? null
-  const text = limits ? `${limits.gainPpm} ppm and ${exact(limits.offsetV, 'V')}` : null
-  return [name, text].filter(Boolean).join(', ') || 'not stated'
+function instrumentText({ instrument, conditions, result }: TrimRecord): string {
+  const limits = instrument ?? result?.fit?.instrument
+  const name = instrument
+    ? `${instrument.id}, ${instrument.title}, serial ${instrument.serial}`
+    : conditions.instrument
+  const text = limits ? `limits ${limits.gainPpm} ppm and ${exact(limits.offsetV, 'V')}` : null
+  const due = instrument ? `calibrated ${instrument.calibratedOn}, due ${instrument.dueOn}` : null
+  return [name, text, due].filter(Boolean).join('; ') || 'not stated'
 }

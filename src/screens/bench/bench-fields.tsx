@@ -2,6 +2,7 @@ import { lotKey, serial } from '../../../shared/contract/primitives.ts'
 import { limits } from '../../../shared/limits.ts'
 import { AppliedField } from '../../features/bench/applied-field.tsx'
 import { Choice, DesignFields, LineField } from '../../features/bench/head-fields.tsx'
+import { rememberInstrument } from '../../features/bench/instrument.ts'
 import { refusedAt } from '../../features/bench/use-recording.ts'
 import type { BenchPageProps } from './bench-props.ts'
 import { findStop } from './stops.ts'
@@ -42,6 +43,7 @@ export function BenchFields(props: FieldsProps) {
           ]}
         />
       ) : null}
+      <InstrumentField page={page} />
       <LineField
         label="temperature"
         chars={6}
@@ -58,6 +60,26 @@ export function BenchFields(props: FieldsProps) {
         onCommit={(text) => page.setField('note', text)}
       />
     </div>
+  )
+}
+
+/** Remembered on this computer: a bench has its meter. */
+function InstrumentField({ page }: Pick<FieldsProps, 'page'>) {
+  const { instrument, fields, recording } = page
+  if (instrument.choices.length === 1) return null
+  return (
+    <Choice
+      label="instrument"
+      value={fields.instrument}
+      options={instrument.choices}
+      isFixed={page.isFixed}
+      error={refusedAt(recording.refusal, '/conditions/instrument')}
+      onChange={(id) => {
+        recording.forgetRefusal()
+        rememberInstrument(id)
+        page.setField('instrument', id)
+      }}
+    />
   )
 }
 

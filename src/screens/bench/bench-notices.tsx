@@ -19,6 +19,11 @@ export function BenchNotices(props: BenchPageProps & { page: BenchPageState }) {
           <Caution>{page.shut}</Caution>
         </div>
       ) : null}
+      {page.instrument.caution ? (
+        <div className="mt-1" role="status">
+          <Caution>{page.instrument.caution}</Caution>
+        </div>
+      ) : null}
       {bench.noTrim ? (
         <div className="mt-2">
           <Problem error={bench.noTrim} />

@@ -22,8 +22,9 @@ import { useBenchPage } from './use-bench-page.ts'
 const BenchPlots = lazy(() => import('./bench-plots.tsx'))
 
 /** One measurement: three steps from left to right as the hand works, plots below. */
-export function BenchPage(props: BenchPageProps) {
-  const page = useBenchPage(props)
+export function BenchPage(given: BenchPageProps) {
+  const page = useBenchPage(given)
+  const props = { ...given, bench: page.bench }
   const [asTable, setTable] = useState(false)
   const [idealShown, setIdealShown] = useState(false)
   const file = usePointsFile(props, page)
@@ -123,10 +124,13 @@ function usePointsFile(props: BenchPageProps, page: ReturnType<typeof useBenchPa
     }
     const isSame = group.unit === undefined || group.unit === props.search.unit
     const target = nameFor(isSame ? place : { ...place, follows: null })
-    if (target === name && !page.isFixed) page.dispatch({ do: 'rows', rows, hasU })
-    else {
+    const { instrument = null } = group
+    if (target === name && !page.isFixed) {
+      page.dispatch({ do: 'rows', rows, hasU })
+      if (instrument !== null) page.setField('instrument', instrument)
+    } else {
       page.flush()
-      onIncoming({ name: target, rows, hasU })
+      onIncoming({ name: target, rows, hasU, instrument })
     }
     const lot = group.lot === undefined ? {} : { lot: group.lot }
     const applied = group.applied === undefined ? {} : { applied: group.applied }
@@ -143,13 +147,14 @@ function usePointsFile(props: BenchPageProps, page: ReturnType<typeof useBenchPa
     }
     read().catch(setTrouble)
   }
-  const { dispatch } = page
+  const { dispatch, setField } = page
   const arrived = useRef<Incoming | null>(null)
   useEffect(() => {
     if (!incoming || arrived.current === incoming) return
     arrived.current = incoming
     dispatch({ do: 'rows', rows: incoming.rows, hasU: incoming.hasU })
+    if (incoming.instrument !== null) setField('instrument', incoming.instrument)
     onIncoming(null)
-  }, [incoming, dispatch, onIncoming])
+  }, [incoming, dispatch, setField, onIncoming])
   return { open, take, dismiss, trouble, chosen }
 }

@@ -8,7 +8,13 @@ import type { BenchSearch } from '../../features/bench/search.ts'
 import type { Bench } from '../../features/bench/solve.ts'
 
 /** Points that a file brought for a measurement whose page is about to open. */
-export type Incoming = { name: string; rows: readonly Row[]; hasU: boolean }
+export type Incoming = {
+  name: string
+  rows: readonly Row[]
+  hasU: boolean
+  /** Named by the file. */
+  instrument: string | null
+}
 
 export type BenchPageProps = {
   name: string

@@ -2,8 +2,11 @@ import { useMemo, useState } from 'react'
 import type { Point } from '../../../shared/contract/point.ts'
 import { pointFields } from '../../../shared/quantity/field.ts'
 import type { Applied } from '../../../shared/solver/types.ts'
+import type { DraftFields } from '../../features/bench/draft.ts'
 import { emptyRow, hasReadings } from '../../features/bench/grid-state.ts'
+import { measuredWith, useInstrument } from '../../features/bench/instrument.ts'
 import { readQuantity } from '../../features/bench/read-cells.ts'
+import { prepareBench } from '../../features/bench/solve.ts'
 import { type TrimBody, trimBody } from '../../features/bench/trim-body.ts'
 import { useAnswer } from '../../features/bench/use-answer.ts'
 import { useKeptDraft } from '../../features/bench/use-kept-draft.ts'
@@ -16,18 +19,18 @@ const mayRecord = new Set(['engineer', 'operator'])
 
 /** Everything that the page knows while one measurement is on it. */
 export function useBenchPage(props: BenchPageProps) {
-  const { name, revision, bench, known } = props
+  const { name, revision, known } = props
   const person = usePerson()
-  const document = revision.document
   const chain = known.chain
   const planned = useMemo(
     () =>
-      (chain.at(-1)?.result.fit.residuals.map((point) => point.code) ?? document.measurement.points).map(
-        (code) => emptyRow(String(code)),
-      ),
-    [chain, document],
+      (
+        chain.at(-1)?.result.fit.residuals.map((point) => point.code) ?? revision.document.measurement.points
+      ).map((code) => emptyRow(String(code))),
+    [chain, revision],
   )
   const kept = useKeptDraft(name, chain.length > 0 ? 'left' : 'found', planned)
+  const { instrument, document, bench } = useMeter(props, kept.fields.instrument)
   const applied = appliedNow(props)
   const [effects, setEffects] = useState<'design' | 'learned'>('learned')
   const previous = chain.at(-1)
@@ -57,11 +60,14 @@ export function useBenchPage(props: BenchPageProps) {
     .map((one) => one.number)
   const shut =
     notReleased(revision, released ?? []) ??
-    (mayRecord.has(person.role) ? null : 'Recording is open to engineers and operators.')
+    (mayRecord.has(person.role) ? null : 'Recording is open to engineers and operators.') ??
+    instrument.trouble
   const isFixed = recording.recorded !== null || recording.waiting !== null || recording.isBusy
   return {
     person,
     document,
+    bench,
+    instrument,
     chain,
     pass: (previous?.pass ?? 0) + 1,
     planned,
@@ -75,8 +81,7 @@ export function useBenchPage(props: BenchPageProps) {
     shut,
     isFixed,
     hasReadings: hasReadings(kept.draft.rows),
-    body: () =>
-      bodyOf(props, { applied, effects, points: answer.read.points, temperature, note: kept.fields.note }),
+    body: () => bodyOf(props, kept.fields, { applied, effects, points: answer.read.points, temperature }),
   }
 }
 
@@ -85,12 +90,23 @@ type Typed = {
   effects: 'design' | 'learned'
   points: readonly Point[]
   temperature: ReturnType<typeof readQuantity>
-  note: string
 }
 
-function bodyOf(props: BenchPageProps, typed: Typed): TrimBody | null {
+/** The instrument that was named, and the design and range as they are measured with it. */
+function useMeter({ revision, bench, range }: BenchPageProps, id: string) {
+  const instrument = useInstrument(id)
+  const { named } = instrument
+  const document = useMemo(() => measuredWith(revision.document, named), [revision, named])
+  const prepared = useMemo(
+    () => (named === null ? bench : prepareBench(document, range)),
+    [named, bench, document, range],
+  )
+  return { instrument, document, bench: prepared }
+}
+
+function bodyOf(props: BenchPageProps, { note, instrument }: DraftFields, typed: Typed): TrimBody | null {
   const { revision, channel, range, search, known } = props
-  const { applied, effects, points, temperature, note } = typed
+  const { applied, effects, points, temperature } = typed
   if (applied === null || search.unit === null) return null
   return trimBody({
     design: revision.key,
@@ -105,6 +121,7 @@ function bodyOf(props: BenchPageProps, typed: Typed): TrimBody | null {
     points,
     temperatureC: temperature.is === 'value' ? temperature.value : null,
     note,
+    instrument,
   })
 }
 

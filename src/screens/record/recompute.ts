@@ -40,7 +40,7 @@ export function recompute(record: TrimRecord, design: Design): Recomputed {
 }
 
 function solveAgain(record: TrimRecord, design: Design, points: readonly Point[]): Result {
-  const limits = record.result?.fit?.instrument
+  const limits = record.instrument ?? record.result?.fit?.instrument
   const options = {
     rangeId: record.range,
     // The limits that were in force then, copied into the record; without any, the design's.
