@@ -91,6 +91,21 @@ describe('the line from points to recorded codes', () => {
     expect(JSON.parse(second.stdout)).toMatchObject({ pass: 2, follows: stored.id })
   })
 
+  test('a named instrument: the same numbers dry and recorded, its facts in the record, unknown ones refused', async () => {
+    const named = (unit: string, ...more: string[]) => trim(unit, '--instrument', 'DMM-07', ...more)
+    const dry = await run(named('CLI-3', '--dry-run'), { input: points })
+    const first = await run(named('CLI-3'), { input: points })
+    expect([dry.code, first.code]).toEqual([0, 0])
+    const stored = record.parse(JSON.parse(first.stdout))
+    expect(stored.instrument).toMatchObject({ id: 'DMM-07', dueOn: expect.stringMatching(/^20\d\d-/) })
+    expect(stored.result?.fit?.instrument?.id).toBe('DMM-07')
+    expect((JSON.parse(dry.stdout) as { result: unknown }).result).toEqual(stored.result)
+    for (const more of [[], ['--dry-run']]) {
+      const ran = await run(trim('CLI-4', '--instrument', 'NONE', ...more), { input: points })
+      expect(problemOf(ran)).toMatchObject({ code: 'instrument-unknown', exit: 65 })
+    }
+  })
+
   test('the same key with another body is refused', async () => {
     await run(trim('CLI-2', '--key', 'K2'), { input: points })
     const ran = await run(trim('CLI-2', '--key', 'K2', '--note', 'other'), { input: points })

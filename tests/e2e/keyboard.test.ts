@@ -110,7 +110,10 @@ test('U3: from sign-in to recorded codes without a mouse', async () => {
 })
 
 test.each([
-  ['administrator', ['/settings/stations', '/settings/tokens', '/settings', '/ledger']],
+  [
+    'administrator',
+    ['/settings/instruments', '/settings/stations', '/settings/tokens', '/settings', '/ledger'],
+  ],
   [
     'engineer',
     ['/designs', '/designs/DBS-A/revisions/1', '/history', '/bench?design=DBS-A&channel=1&unit=U3-2'],

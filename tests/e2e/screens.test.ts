@@ -33,7 +33,14 @@ describe.each(looks)('$theme at $width px', ({ theme, width }) => {
     await page.getByLabel('E-mail').waitFor()
     await judge(page, width, '/sign-in')
     await stage.signIn(page, 'administrator')
-    for (const path of ['/settings', '/settings/stations', '/settings/tokens', '/ledger', '/nowhere']) {
+    for (const path of [
+      '/settings',
+      '/settings/instruments',
+      '/settings/stations',
+      '/settings/tokens',
+      '/ledger',
+      '/nowhere',
+    ]) {
       await page.goto(`${stage.server.url}${path}`)
       await page.getByRole('heading', { level: 1 }).waitFor()
       await page.waitForLoadState('networkidle')

@@ -35,6 +35,7 @@ test.each([
   [`/records/${record.id}`, /^Unit DBS-24170-031/],
   ['/ledger', 'Newest checkpoint'],
   ['/settings', 'This browser'],
+  ['/settings/instruments', 'Instruments'],
   ['/settings/stations', 'Stations'],
   ['/settings/tokens', 'Tokens'],
   ['/no/such', 'There is no such page'],
