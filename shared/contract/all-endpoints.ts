@@ -1,8 +1,8 @@
 import { postBatch } from './batches.ts'
 import { getDesign, getRevision, listDesigns, listLots, postDesign } from './designs.ts'
 import type { Endpoint } from './endpoint.ts'
-import { getCheckpoint, getConsistency, getLedgerKey, getProof } from './ledger.ts'
 import { listInstruments, patchInstrument, postInstrument, putInstrumentRule } from './instruments.ts'
+import { getCheckpoint, getConsistency, getLedgerKey, getProof } from './ledger.ts'
 import {
   getDifference,
   getUse,
