@@ -11,6 +11,7 @@ const modules = import.meta.glob<Record<string, unknown>>(
   [
     '../../../shared/solver/*.ts',
     '../../../shared/solver/distribution/*.ts',
+    '../../../shared/solver/lots/*.ts',
     '../../../shared/quantity/*.ts',
     '../../../shared/points/*.ts',
   ],
