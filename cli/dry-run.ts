@@ -1,6 +1,6 @@
 import type { Design } from '../shared/contract/design.ts'
-import { listLots } from '../shared/contract/designs.ts'
 import { type Instrument, listInstruments } from '../shared/contract/instruments.ts'
+import { listLots } from '../shared/contract/lots.ts'
 import { getTrim } from '../shared/contract/trims.ts'
 import { findUnits, type Unit } from '../shared/contract/units.ts'
 import { OgeeError } from '../shared/errors.ts'

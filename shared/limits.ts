@@ -21,6 +21,8 @@ export const limits = {
   designKeyMax: 32,
   lotKeyMax: 32,
   serialMax: 64,
+  /** Serials that a lot may expect. */
+  lotExpectedMax: 20_000,
   stationNameMax: 64,
   personNameMax: 80,
   tokenNameMax: 64,

@@ -1,5 +1,5 @@
-import { listLots } from '../../shared/contract/designs.ts'
 import { verdictExit } from '../../shared/contract/exit.ts'
+import { listLots } from '../../shared/contract/lots.ts'
 import { postTrim } from '../../shared/contract/trims.ts'
 import { OgeeError } from '../../shared/errors.ts'
 import type { Client } from '../client.ts'

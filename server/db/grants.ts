@@ -1,6 +1,10 @@
 import type { Sequelize } from 'sequelize'
-import { recordedNames } from './migrations/001-recorded.ts'
+import { recordedNames as firstRecordedNames } from './migrations/001-recorded.ts'
+import { lotRecordedNames } from './migrations/003-lots.ts'
 import { sqlOver } from './sql.ts'
+
+/** Every table whose rows are written once, whichever step made it. */
+export const recordedNames: readonly string[] = [...firstRecordedNames, ...lotRecordedNames]
 
 const changeable: Readonly<Record<string, string>> = {
   people: 'SELECT, INSERT, UPDATE',
@@ -50,7 +54,7 @@ export async function revocationsNeeded(app: Sequelize, schema: string): Promise
 function coversRecorded(target: string, schema: string): boolean {
   const [database = '', table = ''] = target.split('.')
   if (database !== '*' && !patternCovers(unquoted(database), schema)) return false
-  return table === '*' || (recordedNames as readonly string[]).includes(unquoted(table))
+  return table === '*' || recordedNames.includes(unquoted(table))
 }
 
 /** Grants on a whole schema are patterns: `_` and `%` are wild unless escaped. */

@@ -4,6 +4,7 @@ import { guards } from './migrations/001-guards.ts'
 import { mutableTables } from './migrations/001-mutable.ts'
 import { recordedTables } from './migrations/001-recorded.ts'
 import { revisionHistory } from './migrations/002-revisions.ts'
+import { lotHistory } from './migrations/003-lots.ts'
 import { ledgerUpkeep } from './migrations/004-ledger.ts'
 import { historyColumns } from './migrations/005-history.ts'
 import { instrumentTables } from './migrations/006-instruments.ts'
@@ -15,6 +16,7 @@ import { instrumentTables } from './migrations/006-instruments.ts'
 export const migrations: RunnableMigration<Sequelize>[] = [
   step('001-tables', [...mutableTables, ...recordedTables, ...guards]),
   step('002-revisions', revisionHistory),
+  step('003-lots', lotHistory),
   step('004-ledger', ledgerUpkeep),
   step('005-history', historyColumns),
   step('006-instruments', instrumentTables),

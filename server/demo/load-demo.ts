@@ -3,7 +3,7 @@ import { createDesign } from '../commands/create-design.ts'
 import { createPerson } from '../commands/create-person.ts'
 import { createStation } from '../commands/create-station.ts'
 import { createToken } from '../commands/create-token.ts'
-import { openLot } from '../commands/open-lot.ts'
+import { openLot } from '../commands/lots/open-lot.ts'
 import { readDesign } from '../commands/read-design.ts'
 import { recordTrims } from '../commands/record-trims.ts'
 import { jobOf } from '../commands/recorder.ts'
@@ -130,7 +130,8 @@ async function loadLots(deps: DemoDeps, end: Date, stations: Stations): Promise<
   for (const lot of demoLots(end)) {
     const design = demoDesigns.find((candidate) => candidate.key === lot.design)!
     await calibrate(deps, lot.station, lot.startedAt, end)
-    await openLot(deps.database, { design: lot.design, key: lot.key, revision: 1, at: lot.startedAt })
+    const dated = { ...deps, now: () => lot.startedAt }
+    await openLot(dated, { design: lot.design, key: lot.key, revision: 1, by: 'Station script' })
     const principal = stationPrincipal(stations[lot.station])
     const jobs = buildLot(lot, design.document).map(({ key, at, body }) => ({
       ...jobOf({ principal, request: recordRequest.parse(body), rawBody: body, key }),

@@ -45,6 +45,9 @@ export type LotRow = {
   revision: number
   state: 'open' | 'closed' | 'signed-off'
   createdAt: Date
+  openedBy: string | null
+  closedBy: string | null
+  closedAt: Date | null
 }
 
 export const designs = (sequelize: Sequelize): Table<DesignRow> =>
@@ -93,6 +96,9 @@ export const lots = (sequelize: Sequelize): Table<LotRow> =>
     revision: whole,
     state: text,
     createdAt: time,
+    openedBy: text,
+    closedBy: text,
+    closedAt: time,
   })
 
 /** What `If-Match` takes: no two states of a design's revisions share it. */

@@ -1,8 +1,7 @@
-import { getDesign, listDesigns, listLots, postDesign } from '../../shared/contract/designs.ts'
+import { getDesign, listDesigns, postDesign } from '../../shared/contract/designs.ts'
 import type { Json } from '../../shared/ledger/canonical.ts'
 import { createDesign } from '../commands/create-design.ts'
 import { readDesign, readDesigns } from '../commands/read-design.ts'
-import { readLots } from '../commands/read-lots.ts'
 import type { Serve } from '../http/serve.ts'
 import { designNotOpen, requireDesign } from '../policies/may-see.ts'
 import type { RouteDeps } from './route-deps.ts'
@@ -28,10 +27,5 @@ export function designRoutes(serve: Serve, deps: RouteDeps): void {
     const found = await readDesign(database, params.key)
     if (!found) throw designNotOpen()
     return found
-  })
-
-  serve(listLots, async ({ query, principal }) => {
-    const only = principal.kind === 'token' ? principal.designs : null
-    return readLots(database, { ...query, only })
   })
 }

@@ -8,6 +8,7 @@ import { batchRoutes } from './batches.ts'
 import { designRoutes } from './designs.ts'
 import { instrumentRoutes } from './instruments.ts'
 import { ledgerRoutes } from './ledger.ts'
+import { lotRoutes } from './lots.ts'
 import { revisionRoutes } from './revisions.ts'
 import type { RouteDeps } from './route-deps.ts'
 import { sessionRoutes } from './session.ts'
@@ -29,6 +30,7 @@ export function registerRoutes(serve: Serve, router: Router, deps: RouteDeps): v
     setupRoutes,
     designRoutes,
     revisionRoutes,
+    lotRoutes,
     trimRoutes,
     batchRoutes,
     unitRoutes,

@@ -1,8 +1,10 @@
 import { postBatch } from './batches.ts'
-import { getDesign, getRevision, listDesigns, listLots, postDesign } from './designs.ts'
+import { getDesign, getRevision, listDesigns, postDesign } from './designs.ts'
 import type { Endpoint } from './endpoint.ts'
 import { listInstruments, patchInstrument, postInstrument, putInstrumentRule } from './instruments.ts'
 import { getCheckpoint, getConsistency, getLedgerKey, getProof } from './ledger.ts'
+import { postClose, postExpected, postLot, postReference, postSignOff } from './lot-acts.ts'
+import { getLot, listLots, listLotUnits, listMissing, listStationMonths } from './lots.ts'
 import {
   getDifference,
   getUse,
@@ -39,6 +41,15 @@ export const allEndpoints: readonly Endpoint[] = [
   getUse,
   getDifference,
   listLots,
+  postLot,
+  getLot,
+  listLotUnits,
+  listMissing,
+  postExpected,
+  postClose,
+  postSignOff,
+  postReference,
+  listStationMonths,
   postTrim,
   postBatch,
   listTrims,

@@ -1,5 +1,4 @@
 import * as z from 'zod'
-import { limits } from '../limits.ts'
 import { designDocument } from './design.ts'
 import { endpoint, everyRole } from './endpoint.ts'
 import { designKey, instant, page, pageQuery, revisionNumber, sha256Hex } from './primitives.ts'
@@ -116,24 +115,4 @@ export const getRevision = endpoint({
   params: z.strictObject({ key: designKey, number: numberOrReleased }),
   reply: { status: 200, schema: revision },
   refusals: ['not-found'],
-})
-
-export const lot = z
-  .object({
-    key: z.string().max(limits.lotKeyMax),
-    design: designKey,
-    revision: revisionNumber,
-    state: z.enum(['open', 'closed', 'signed-off']),
-  })
-  .meta({ id: 'Lot' })
-
-export const listLots = endpoint({
-  id: 'listLots',
-  method: 'GET',
-  path: '/lots',
-  summary: 'Lots, newest first',
-  access: { roles: everyRole, scopes: ['trims:read', 'trims:read-all', 'trims:write'] },
-  query: z.strictObject({ design: designKey.optional(), ...pageQuery }),
-  reply: { status: 200, schema: page(lot) },
-  refusals: [],
 })

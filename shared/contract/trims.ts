@@ -22,6 +22,7 @@ export const postTrim = endpoint({
     'range-required',
     'range-unknown',
     'lot-unknown',
+    'lot-closed',
     'applied-required',
     'applied-unknown',
     'follows-unknown',

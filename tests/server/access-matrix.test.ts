@@ -105,7 +105,7 @@ function permits(endpoint: Endpoint, list: 'roles' | 'scopes', value: Role | Sco
 function requestTo(endpoint: Endpoint, send: Caller['send']) {
   const id =
     endpoint.id === 'readRecord' ? recordOfA : endpoint.path.startsWith('/tokens') ? 'AAAAAAAA' : unknownId
-  const params = { id, recordId: recordOfA, key: 'U18', number: 'released' }
+  const params = { id, recordId: recordOfA, key: 'U18', number: 'released', lot: 'L-1' }
   const queries: Record<string, object> = {
     findUnits: { serial: 'M-1' },
     compareRevisions: { to: 'released' },

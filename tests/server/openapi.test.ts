@@ -1,6 +1,7 @@
 import fc from 'fast-check'
 import request from 'supertest'
 import { afterAll, beforeAll, describe, expect, it } from 'vitest'
+import { openLot } from '../../server/commands/lots/open-lot.ts'
 import { allEndpoints } from '../../shared/contract/all-endpoints.ts'
 import { runSeed } from '../support/random.ts'
 import { newKey, signIn } from '../support/server-client.ts'
@@ -36,6 +37,7 @@ beforeAll(async () => {
     quotas: { failedSignInsPerAccountAndAddress: 1e9, failedSignInsPerAddress: 1e9 },
   })
   await addDesign(harness, 'U18')
+  await openLot(harness.deps, { design: 'U18', key: 'FUZZ', revision: 1, by: 'tests' })
   for (const role of ['administrator', 'engineer', 'operator', 'auditor'] as const)
     await addPerson(harness, role)
   cookies = await Promise.all(
@@ -159,7 +161,7 @@ describe('S3 fuzzing by the document', () => {
     changeStation: { name: 'S2' },
     createToken: { name: 'T', station: null, scopes: ['designs:read'], days: 1 },
   }
-  const known: Record<string, string> = { key: 'U18', number: '2' }
+  const known: Record<string, string> = { key: 'U18', number: '2', lot: 'FUZZ' }
   const anyRequest = fc.record({
     pick: fc.nat(),
     part: odd,

@@ -193,6 +193,7 @@ describe('problems (S4)', () => {
         .replace(':id', '01a230b2-a46d-7315-89af-a51980fdfb2a')
         .replace(':key', 'U18')
         .replace(':number', '1')
+        .replace(':lot', 'L-1')
       const verb = endpoint.method.toLowerCase() as 'post' | 'put' | 'patch'
       const sent = api(url, verb, path, { ...who, key: newKey() }).buffer(true)
       if (endpoint.ndjson) sent.set('Content-Type', 'application/x-ndjson')

@@ -1,5 +1,5 @@
 import { afterAll, beforeAll, describe, expect, it } from 'vitest'
-import { openLot } from '../../server/commands/open-lot.ts'
+import { openLot } from '../../server/commands/lots/open-lot.ts'
 import { type Calls, createBy, goodReason, revisionCalls, titled } from '../support/revision-calls.ts'
 import { api, post, signIn } from '../support/server-client.ts'
 import { trimBody, unipolar } from '../support/server-factories.ts'
@@ -127,7 +127,7 @@ describe('withdrawal', () => {
     await calls.release(second, 'USED', 1)
     for (let i = 1; i <= 7; i++)
       await post(scene.url, scene.station, trimBody({ unit: `W-${i}`, design: 'USED' }))
-    await openLot(harness.database, { design: 'USED', key: 'LOT-1', revision: 1, at: new Date() })
+    await openLot(harness.deps, { design: 'USED', key: 'LOT-1', revision: 1, by: 'tests' })
     await calls.start(author, 'USED', { document: titled('Next') })
     const use = {
       revision: 1,

@@ -14,7 +14,10 @@ export type RevisionInPlay = {
 }
 export type LotInPlay = { designId: number; lotKey: string; revision: number; state: string }
 
-/** Designs and lots that some requests name, as they stand in the transaction. */
+/**
+ * Designs and lots that some requests name, as they stand in the transaction. Lots stay as they are until it ends: their rows
+ * are locked, shared with other recordings, before any unit is, so that closing one waits for what is under way.
+ */
 export type Catalogue = { revisions: readonly RevisionInPlay[]; lots: readonly LotInPlay[] }
 
 export async function readCatalogue(
@@ -35,7 +38,7 @@ export async function readCatalogue(
     revisions,
     lots: await sql.rows<LotInPlay>(
       `SELECT design_id AS designId, lot_key AS lotKey, revision, state FROM lots
-        WHERE design_id IN (?) AND lot_key IN (?)`,
+        WHERE design_id IN (?) AND lot_key IN (?) ORDER BY id LOCK IN SHARE MODE`,
       [designIds, [...new Set(lots)]],
     ),
   }

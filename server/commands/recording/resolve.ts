@@ -37,10 +37,17 @@ function resolveLot(lots: readonly LotInPlay[], request: RecordRequest, designId
   if (request.lot === undefined) return null
   const lot = lots.find((candidate) => candidate.designId === designId && candidate.lotKey === request.lot)
   if (lot?.state === 'open') return lot
-  const what = lot
-    ? `Lot ${request.lot} is ${lot.state}`
-    : `There is no lot ${request.lot} of design ${request.design}`
-  throw new OgeeError('lot-unknown', `${what}.`, { errors: [{ path: '/lot', message: 'No open lot.' }] })
+  if (lot) {
+    const state = lot.state === 'closed' ? 'closed' : 'signed off'
+    throw new OgeeError(
+      'lot-closed',
+      `Lot ${request.lot} is ${state} and takes no further record. Record under an open lot, or without one.`,
+      { errors: [{ path: '/lot', message: `The lot is ${state}.` }] },
+    )
+  }
+  throw new OgeeError('lot-unknown', `There is no lot ${request.lot} of design ${request.design}.`, {
+    errors: [{ path: '/lot', message: 'There is no such lot.' }],
+  })
 }
 
 /** The channel and range, which default to the only one. */

@@ -7,7 +7,7 @@ export type Difference = { value: number; standard: number; expanded: number; k:
 /**
  * Mean of one station less that of another, the spread from unit to unit included.
  * @param a, b what two stations read of comparable units, one unit of measure
- * @returns null where a spread does not exist, or neither has any
+ * @returns null where a spread does not exist, or both are zero
  * Source: NIST/SEMATECH e-Handbook of Statistical Methods, 7.3.1 (two means, unequal variances: Welch-Satterthwaite).
  * @example stationDifference({ n: 2, mean: 3, s: 1 }, { n: 2, mean: 1, s: 1 })?.value // 2
  */
