@@ -81,13 +81,9 @@ async function revisionAsked(
   { design, lot, revision }: RequestBody,
 ): Promise<number | 'released'> {
   if (lot === undefined) return revision ?? 'released'
-  let after: string | undefined
-  do {
-    const page = await client.call(listLots, { query: { design, ...(after ? { after } : {}) } })
-    const found = page.items.find(({ key }) => key === lot)
-    if (found) return found.revision
-    after = page.next ?? undefined
-  } while (after !== undefined)
+  const { items } = await client.call(listLots, { query: { design, key: lot } })
+  const found = items.find(({ key }) => key === lot)
+  if (found) return found.revision
   throw new OgeeError('lot-unknown', `Design ${design} has no lot ${lot}.`)
 }
 

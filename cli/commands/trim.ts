@@ -1,10 +1,8 @@
 import { verdictExit } from '../../shared/contract/exit.ts'
-import { listLots } from '../../shared/contract/lots.ts'
 import { postTrim } from '../../shared/contract/trims.ts'
-import { OgeeError } from '../../shared/errors.ts'
-import type { Client } from '../client.ts'
 import { type Command, type Context, everyFormat, type Given } from '../command.ts'
 import type { ConnectionOptions } from '../config.ts'
+import { designOfLot } from '../design-of-lot.ts'
 import { dryRun } from '../dry-run.ts'
 import { readMeasurement } from '../measurement.ts'
 import { pointsAbout, pointsOption } from '../measurement-options.ts'
@@ -57,23 +55,4 @@ async function finish(record: AnyRecord, context: Context): Promise<number> {
   for (const { message } of record.notices) context.io.say(`ogee: ${message}`)
   if (record.result?.format === 'ogee.codes/1' && record.result.trim.codes) sayCaution(context)
   return record.verdict === null ? 0 : verdictExit[record.verdict]
-}
-
-/** A lot belongs to one design; where two designs have a lot of that name, --design says which. */
-async function designOfLot(client: Client, lot: string): Promise<string> {
-  const designs = new Set<string>()
-  let after: string | undefined
-  do {
-    const page = await client.call(listLots, { query: after === undefined ? {} : { after } })
-    for (const { key, design } of page.items) if (key === lot) designs.add(design)
-    after = page.next ?? undefined
-  } while (after !== undefined)
-  const [first, ...others] = designs
-  if (first === undefined)
-    throw new OgeeError('lot-unknown', `There is no lot ${lot}, or it is not open to this token.`)
-  if (others.length === 0) return first
-  throw new OgeeError(
-    'lot-unknown',
-    `Lot ${lot} stands under ${[...designs].join(', ')}: name one with --design.`,
-  )
 }

@@ -4,6 +4,7 @@ import { join } from 'node:path'
 import { afterAll, beforeAll, beforeEach, describe, expect, test } from 'vitest'
 import { record } from '../../shared/contract/record.ts'
 import { canonicalBytes, type Json } from '../../shared/ledger/canonical.ts'
+import { lotLine } from '../support/lot-fixtures.ts'
 import {
   designBytes,
   examplePoints,
@@ -119,7 +120,7 @@ describe('trim', () => {
 
   test('the lot alone says which design', async () => {
     const lots = (design: string) => ({
-      items: [{ key: 'L7', design, revision: 1, state: 'open' }],
+      items: [lotLine({ key: 'L7', design })],
       next: null,
     })
     server.willAnswer(json(200, lots('DBS-C')), recorded)
