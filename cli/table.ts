@@ -1,8 +1,8 @@
-import { guarded } from '../shared/points/formula-guard.ts'
+import { type CsvCell, csvLine } from '../shared/points/csv-line.ts'
 
 /** Plain text tables: columns aligned, numbers to the right, two spaces between. */
 
-export type Cell = string | number | null | undefined
+export type Cell = CsvCell
 export type Column = { head: string; right?: boolean }
 
 const shown = (cell: Cell) => (cell === null || cell === undefined ? '–' : String(cell))
@@ -31,14 +31,7 @@ export function pairs(rows: readonly (readonly [string, string])[]): string {
   return rows.map(([name, value]) => `${name.padEnd(width)}  ${value}\n`).join('')
 }
 
-/** RFC 4180 with a header row. A text that a spreadsheet would run as a formula is kept from it; numbers are left alone. */
+/** RFC 4180 with a header row. */
 export function csv(heads: readonly string[], rows: readonly (readonly Cell[])[]): string {
-  return [heads, ...rows].map((row) => `${row.map(csvCell).join(',')}\n`).join('')
-}
-
-function csvCell(cell: Cell): string {
-  if (cell === null || cell === undefined) return ''
-  if (typeof cell === 'number') return String(cell)
-  const text = guarded(cell)
-  return /[",\r\n]/.test(text) ? `"${text.replaceAll('"', '""')}"` : text
+  return [heads, ...rows].map((row) => `${csvLine(row)}\n`).join('')
 }

@@ -32,8 +32,9 @@ export async function call<E extends Endpoint>(
   const response = await send(caller, endpoint, request)
   if (!response.ok) throw await problemOf(response)
   if (endpoint.reply.status === 204) return null as ReplyOf<E>
-  const reply: unknown =
-    endpoint.reply.mediaType === 'text/plain' ? await response.text() : await response.json()
+  const reply: unknown = endpoint.reply.mediaType?.startsWith('text/')
+    ? await response.text()
+    : await response.json()
   const checked = endpoint.reply.schema.safeParse(reply)
   if (!checked.success) {
     const where = checked.error.issues.map((issue) => `/${issue.path.join('/')}`).slice(0, 3)

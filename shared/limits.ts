@@ -47,6 +47,12 @@ export const limits = {
   batchMaxBytes: 8 * 1024 * 1024,
   pageDefault: 50,
   pageMax: 500,
+  /** Values of one filter of History, and their text in an address. */
+  filterValuesMax: 20,
+  filterTextMax: 1_000,
+  /** More matching records than this are not counted, and units beginning with a text not told one by one. */
+  countMax: 100_000,
+  unitsByTextMax: 500,
   /** A cell with arithmetic. Characters. */
   expressionMax: 200,
   passwordMin: 12,

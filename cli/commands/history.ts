@@ -1,6 +1,8 @@
+import type { InputOf } from '../../shared/contract/endpoint.ts'
 import { outcome, verdict } from '../../shared/contract/primitives.ts'
 import { type RecordLine, kind as recordKind } from '../../shared/contract/record.ts'
 import { listTrims } from '../../shared/contract/trims.ts'
+import { recordCells, recordHeads } from '../../shared/history/record-cells.ts'
 import { limits } from '../../shared/limits.ts'
 import type { Client } from '../client.ts'
 import { type Command, type Context, everyFormat, type Given } from '../command.ts'
@@ -15,25 +17,26 @@ import {
   text,
   wholeNumber,
 } from '../server-options.ts'
-import { type Cell, textTable } from '../table.ts'
+import { textTable } from '../table.ts'
 
 const verdicts = [...verdict.options, ...outcome.options]
-type Filters = {
-  unit?: string
-  design?: string
-  kind?: (typeof recordKind.options)[number]
-  verdict?: (typeof verdicts)[number]
-  after?: string
-}
-type Options = ConnectionOptions & { filters: Filters; limit: number }
+type Options = ConnectionOptions & { query: InputOf<typeof listTrims>['query']; limit: number }
 
 export const historyCommand: Command<Options> = {
   about: serverAbout,
   options: [
     { flags: '--unit <serial>', says: 'records of this unit' },
-    { flags: '--design <key>', says: 'records of this design' },
+    { flags: '--serial <text>', says: 'of units whose serial, or a part of it, begins so' },
+    { flags: '--lot <lots>', says: 'of these lots, separated by commas' },
+    { flags: '--design <keys>', says: 'of these designs' },
+    { flags: '--revision <number>', says: 'of this revision of the design' },
+    { flags: '--station <names>', says: 'of these stations, by name or id' },
+    { flags: '--by <ids>', says: 'recorded by these people or tokens' },
     { flags: '--kind <kind>', says: 'records of this kind', choices: recordKind.options },
     { flags: '--verdict <verdict>', says: 'records with this verdict', choices: verdicts },
+    { flags: '--attempt <count>', says: 'measured at least so often on that day' },
+    { flags: '--from <time>', says: 'since a day (UTC) or a time' },
+    { flags: '--to <time>', says: 'until a day (UTC, whole) or a time' },
     { flags: '--limit <count>', says: `how many at most (default ${limits.pageDefault})` },
     { flags: '--after <mark>', says: 'go on behind the `next` of an earlier answer' },
     ...serverOptions,
@@ -50,18 +53,25 @@ export const historyCommand: Command<Options> = {
   run: history,
 }
 
+/** Passed on as they were typed: the contract says what each may be. */
+const plainFilters = ['unit', 'serial', 'lot', 'design', 'station', 'by', 'from', 'to', 'after'] as const
+
 function readHistory(given: Given): Options {
   const { options } = given
-  const filters: Filters = {}
-  const [unit, design, after] = [text(options.unit), text(options.design), text(options.after)]
-  if (unit !== undefined) filters.unit = unit
-  if (design !== undefined) filters.design = design
-  if (after !== undefined) filters.after = after
+  const query: Options['query'] = {}
+  for (const name of plainFilters) {
+    const value = text(options[name])
+    if (value !== undefined) query[name] = value
+  }
+  for (const name of ['revision', 'attempt'] as const) {
+    const value = text(options[name])
+    if (value !== undefined) query[name] = wholeNumber(`--${name}`, value, 1, 1_000_000)
+  }
   const [kind, found] = [text(options.kind), text(options.verdict)]
-  if (kind !== undefined) filters.kind = oneOf('--kind', kind, recordKind.options)
-  if (found !== undefined) filters.verdict = oneOf('--verdict', found, verdicts)
+  if (kind !== undefined) query.kind = oneOf('--kind', kind, recordKind.options)
+  if (found !== undefined) query.verdict = oneOf('--verdict', found, verdicts)
   const limit = wholeNumber('--limit', text(options.limit) ?? String(limits.pageDefault), 1, 1_000_000)
-  return { ...readConnection(given), filters, limit }
+  return { ...readConnection(given), query, limit }
 }
 
 async function history(options: Options, context: Context): Promise<number> {
@@ -90,67 +100,22 @@ async function stream(client: Client, options: Options, { io, format }: Context)
 }
 
 /** Follows the pages until there are enough records. */
-async function* pages(client: Client, { filters, limit }: Options) {
+async function* pages(client: Client, { query, limit }: Options) {
   let left = limit
-  let after = filters.after
+  let { after } = query
   while (left > 0) {
-    const query = {
-      ...filters,
+    const asked = {
+      ...query,
       limit: Math.min(limits.pageMax, left),
       ...(after === undefined ? {} : { after }),
     }
-    const page = await client.call(listTrims, { query })
+    const page = await client.call(listTrims, { query: asked })
     yield page
     if (page.next === null) return
     left -= page.items.length
     after = page.next
   }
 }
-
-const heads = [
-  'number',
-  'recorded_at',
-  'unit',
-  'channel',
-  'range',
-  'lot',
-  'design',
-  'revision',
-  'kind',
-  'pass',
-  'verdict',
-  'accepted',
-  'gain_code',
-  'offset_code',
-  'gain_error_ppm',
-  'offset_error_v',
-  'worst_lsb',
-  'station',
-  'by',
-  'record',
-]
-const row = (line: RecordLine): Cell[] => [
-  line.number,
-  line.recordedAt,
-  line.unit,
-  line.channel,
-  line.range,
-  line.lot,
-  line.design,
-  line.revision,
-  line.kind,
-  line.pass,
-  line.verdict,
-  String(line.accepted),
-  line.gainCode,
-  line.offsetCode,
-  line.gainErrorPpm,
-  line.offsetErrorV,
-  line.worstLsb,
-  line.station,
-  line.by,
-  line.id,
-]
 
 function rendering(items: readonly RecordLine[], next: string | null): Rendering {
   const columns = [
@@ -191,6 +156,6 @@ function rendering(items: readonly RecordLine[], next: string | null): Rendering
               line.station,
             ]),
           ),
-    csv: { heads, rows: items.map(row) },
+    csv: { heads: recordHeads, rows: items.map(recordCells) },
   }
 }

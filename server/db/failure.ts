@@ -2,10 +2,12 @@ import { ConnectionError, UniqueConstraintError } from 'sequelize'
 import { OgeeError } from '../../shared/errors.ts'
 
 /** What went wrong below us, as far as anything depends on it. */
-export type Failure = 'duplicate' | 'lock-wait' | 'conflict' | 'lost' | 'unavailable' | 'other'
+export type Failure = 'duplicate' | 'lock-wait' | 'too-long' | 'conflict' | 'lost' | 'unavailable' | 'other'
 
 const duplicateKey = 1062
 const lockWait = 1205
+/** Longer than the statement itself allowed. */
+const statementTime = 1969
 /** Deadlock; record changed since last read (snapshot and Galera); node not ready (Galera). */
 const conflicts = new Set([1213, 1020, 1047])
 /** Server gone, shutting down, connection killed; the connector's own codes for a socket that closed. */
@@ -19,6 +21,7 @@ export function failureOf(error: unknown): Failure {
   const cause = causeOf(error)
   if (cause.errno === duplicateKey) return 'duplicate'
   if (cause.errno === lockWait) return 'lock-wait'
+  if (cause.errno === statementTime) return 'too-long'
   if (conflicts.has(cause.errno)) return 'conflict'
   if (unavailable.has(cause.errno)) return 'unavailable'
   if (lost.has(cause.errno) || cause.fatal || isSocketCode(cause.code)) return 'lost'

@@ -72,7 +72,7 @@ export function createServe(router: Router, deps: Deps, gates: Gates): Serve {
       endpoint.path,
       ...(needsIdentity(endpoint) ? [gates.identify, gates.throttleToken] : []),
       guard(endpoint, deps),
-      ...(endpoint.ndjson ? [gates.limitBatches, ndjsonBody] : endpoint.body ? [jsonBody] : []),
+      ...bodyReaders(endpoint, gates),
       ...(endpoint.id === 'signIn' ? [gates.throttleSignIn] : []),
       async (request, response) => {
         const work = handler(inputOf(endpoint, request, response))
@@ -83,6 +83,11 @@ export function createServe(router: Router, deps: Deps, gates: Gates): Serve {
       },
     )
   }
+}
+
+function bodyReaders(endpoint: Endpoint, gates: Gates): RequestHandler[] {
+  if (!endpoint.body) return []
+  return endpoint.ndjson ? [gates.limitBatches, ndjsonBody] : [jsonBody]
 }
 
 /** Hashing waits its turn by design, so these bound their use of the database themselves. */
@@ -165,9 +170,10 @@ async function sendLines(
 ): Promise<void> {
   response.statusCode = endpoint.reply.status
   response.setHeader('Cache-Control', 'no-store')
-  response.setHeader('Content-Type', 'application/x-ndjson; charset=utf-8')
+  const type = endpoint.ndjson ? 'application/x-ndjson' : endpoint.reply.mediaType
+  response.setHeader('Content-Type', `${type}; charset=utf-8`)
   for await (const some of lines) {
-    if (check) for (const line of some) requireAsAgreed(endpoint, JSON.parse(line))
+    if (check && endpoint.ndjson) for (const line of some) requireAsAgreed(endpoint, JSON.parse(line))
     if (response.closed) return
     if (!response.write(`${some.join('\n')}\n`)) await drained(response)
   }

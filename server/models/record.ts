@@ -72,7 +72,17 @@ export const records = (sequelize: Sequelize): Table<RecordRow> =>
     notices: longText,
   })
 
-export function recordLineReply(row: RecordRow): RecordLine {
+/** What a list reads of a record. */
+export type RecordLineRow = Omit<
+  RecordRow,
+  'unitId' | 'follows' | 'byId' | 'stationId' | 'leafId' | 'receiptKey' | 'receiptSignature' | 'notices'
+>
+export const lineColumns = `r.id, r.number, r.kind, r.unit, r.channel, r.range_id AS rangeId, r.lot, r.design, r.revision,
+  r.pass, r.verdict, r.accepted, r.gain_error_ppm AS gainErrorPpm, r.offset_error_v AS offsetErrorV,
+  r.gain_code AS gainCode, r.offset_code AS offsetCode, r.worst_lsb AS worstLsb, r.attempt, r.by_name AS byName,
+  r.station, r.measured_at AS measuredAt, r.recorded_at AS recordedAt`
+
+export function recordLineReply(row: RecordLineRow): RecordLine {
   return {
     id: row.id,
     number: row.number,

@@ -1,6 +1,7 @@
 import { postBatch } from './batches.ts'
 import { getDesign, getRevision, listDesigns, postDesign } from './designs.ts'
 import type { Endpoint } from './endpoint.ts'
+import { countRecords, exportRecords, exportRecordsCsv, listRecorders } from './history.ts'
 import { listInstruments, patchInstrument, postInstrument, putInstrumentRule } from './instruments.ts'
 import { getCheckpoint, getConsistency, getLedgerKey, getProof } from './ledger.ts'
 import { postClose, postExpected, postLot, postReference, postSignOff } from './lot-acts.ts'
@@ -54,6 +55,10 @@ export const allEndpoints: readonly Endpoint[] = [
   postBatch,
   listTrims,
   getTrim,
+  countRecords,
+  listRecorders,
+  exportRecords,
+  exportRecordsCsv,
   findUnits,
   listStations,
   postStation,

@@ -29,13 +29,17 @@ export type Endpoint<
   params?: Params
   query?: Query
   body?: Body
-  /** Body and reply are NDJSON: their schemas describe one line of them. */
+  /** Body, if any, and reply are NDJSON: their schemas describe one line of them. */
   ndjson?: boolean
   /** Takes `Idempotency-Key`. */
   idempotent?: boolean
   /** Takes `If-Match`: the `etag` of what the caller saw. */
   conditional?: boolean
-  reply: { status: 200 | 201 | 204; schema: Reply; mediaType?: 'application/json' | 'text/plain' }
+  reply: {
+    status: 200 | 201 | 204
+    schema: Reply
+    mediaType?: 'application/json' | 'text/plain' | 'text/csv'
+  }
   /** Refusals of its own, beside those that every route can give. */
   refusals: readonly ErrorCode[]
 }

@@ -64,12 +64,17 @@ function securityOf({ roles, scopes }: Exclude<Endpoint['access'], 'open'>): Jso
 
 function parametersOf(endpoint: Endpoint, schemas: JsonObject): JsonObject[] {
   const fields = (fields: z.ZodObject | undefined, where: 'path' | 'query'): JsonObject[] =>
-    Object.entries(fields?.shape ?? {}).map(([name, schema]) => ({
-      name,
-      in: where,
-      required: where === 'path' || !(schema as z.ZodType).safeParse(undefined).success,
-      schema: toSchema(schema as z.ZodType, 'output', schemas),
-    }))
+    Object.entries(fields?.shape ?? {}).map(([name, field]) => {
+      const schema = toSchema(field as z.ZodType, 'output', schemas)
+      return {
+        name,
+        in: where,
+        required: where === 'path' || !(field as z.ZodType).safeParse(undefined).success,
+        // Several values stand in one parameter, with commas between.
+        ...(schema.type === 'array' ? { style: 'form', explode: false } : {}),
+        schema,
+      }
+    })
   const key = {
     name: 'Idempotency-Key',
     in: 'header',

@@ -1,7 +1,8 @@
 import * as z from 'zod'
 import { endpoint, everyRole } from './endpoint.ts'
-import { designKey, outcome, page, pageQuery, recordId, serial, verdict } from './primitives.ts'
-import { kind, record, recordLine, recordRequest } from './record.ts'
+import { recordFilters } from './history.ts'
+import { page, pageQuery, recordId } from './primitives.ts'
+import { record, recordLine, recordRequest } from './record.ts'
 
 /** Records one measurement: solved again here, stored with its leaf and receipt, all or nothing. */
 export const postTrim = endpoint({
@@ -57,13 +58,7 @@ export const listTrims = endpoint({
   path: '/trims',
   summary: 'Records, newest first',
   access: { roles: everyRole, scopes: ['trims:read', 'trims:read-all'] },
-  query: z.strictObject({
-    unit: serial.optional(),
-    design: designKey.optional(),
-    kind: kind.optional(),
-    verdict: z.union([verdict, outcome]).optional(),
-    ...pageQuery,
-  }),
+  query: z.strictObject({ ...recordFilters, ...pageQuery }),
   reply: { status: 200, schema: page(recordLine) },
   refusals: [],
 })

@@ -7,6 +7,7 @@ const benches: Record<string, () => Promise<readonly BenchRow[]>> = {
   yield: async () => (await import('./yield.ts')).benchYield(),
   cli: async () => (await import('./cli-start.ts')).benchCliStart(),
   recording: async () => (await import('./recording.ts')).benchRecording(),
+  history: async () => (await import('./history.ts')).benchHistory(),
   keystroke: async () => (await import('./keystroke.ts')).benchKeystroke(),
   'first-load': async () => (await import('./first-load.ts')).benchFirstLoad(),
 }

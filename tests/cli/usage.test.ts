@@ -112,7 +112,7 @@ describe('arguments to options', () => {
 
   test('history', async () => {
     expect(await read('history --unit 031 --verdict ok --limit 7')).toMatchObject({
-      filters: { unit: '031', verdict: 'ok' },
+      query: { unit: '031', verdict: 'ok' },
       limit: 7,
     })
   })

@@ -1,6 +1,4 @@
-import { type Connection, createConnection } from 'mariadb'
-import { afterAll, beforeAll, expect, inject, it } from 'vitest'
-import { loadDemo } from '../../server/demo/load-demo.ts'
+import { afterAll, beforeAll, expect, it } from 'vitest'
 import { sha256 } from '../../server/ledger/crypto.ts'
 import { designDocument } from '../../shared/contract/design.ts'
 import { type RecordBody, recordBody } from '../../shared/contract/record.ts'
@@ -8,8 +6,8 @@ import { canonicalText } from '../../shared/ledger/canonical.ts'
 import { leafBytes, leafHash } from '../../shared/ledger/leaf.ts'
 import { codesOn } from '../../shared/solver/codes.ts'
 import { prepareTrim } from '../../shared/solver/prepare-trim.ts'
-import { fillRecords } from '../bench/fill/fill.ts'
 import { mth } from '../shared/ledger/reference-tree.ts'
+import { fillHarness } from '../support/filled.ts'
 import { api, signIn } from '../support/server-client.ts'
 import { addPerson, type Harness, serverHarness } from '../support/server-harness.ts'
 
@@ -17,29 +15,15 @@ import { addPerson, type Harness, serverHarness } from '../support/server-harnes
 
 const count = 3_000
 let harness: Harness
-let roots: [Connection, Connection]
 let auditor: { cookie: string }
 
 beforeAll(async () => {
   harness = await serverHarness()
-  await loadDemo({ ...harness.deps, notifyLedger: () => undefined }, harness.dir, () => undefined)
-  await harness.sequencer.drain()
-  const asRoot = () =>
-    createConnection({
-      socketPath: inject('mariadbSocket'),
-      user: 'root',
-      database: harness.test.name,
-      permitLocalInfile: true,
-    })
-  roots = [await asRoot(), await asRoot()]
-  await fillRecords({ roots, signer: harness.deps.signer, count, seed: 7, end: new Date() })
+  await fillHarness(harness, count, 7)
   await addPerson(harness, 'auditor')
   auditor = { cookie: await signIn(harness.url, 'auditor@example.org') }
 })
-afterAll(async () => {
-  for (const root of roots) await root.end()
-  await harness.close()
-})
+afterAll(() => harness.close())
 
 type Leaf = { idx: number; kind: 'record'; at: Date; hash: Buffer; body: Buffer }
 const leaves = () =>

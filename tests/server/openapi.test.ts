@@ -162,16 +162,14 @@ describe('S3 fuzzing by the document', () => {
     createToken: { name: 'T', station: null, scopes: ['designs:read'], days: 1 },
   }
   const known: Record<string, string> = { key: 'U18', number: '2', lot: 'FUZZ' }
+  const queryNames = ['unit', 'design', 'serial', 'after', 'limit', 'kind', 'verdict', 'to', 'from', 'lot']
+  queryNames.push('station', 'by', 'attempt', 'revision', 'x')
   const anyRequest = fc.record({
     pick: fc.nat(),
     part: odd,
     /** Half of the requests go to things that are there. */
     known: fc.boolean(),
-    query: fc.dictionary(
-      fc.constantFrom('unit', 'design', 'serial', 'after', 'limit', 'kind', 'verdict', 'to', 'x'),
-      fc.string(),
-      { maxKeys: 3 },
-    ),
+    query: fc.dictionary(fc.constantFrom(...queryNames), fc.string(), { maxKeys: 3 }),
     who: fc.nat(7),
     key: fc.option(fc.string(), { freq: 5 }),
     mutation: fc.nat(),

@@ -135,6 +135,7 @@ export function line(number: number) {
     gainCode: 2593,
     offsetCode: 2048,
     worstLsb: 0.05,
+    attempt: 1,
     by: 'line 1',
     station: 'Station A',
     measuredAt: null,

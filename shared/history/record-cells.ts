@@ -1,0 +1,51 @@
+import type { RecordLine } from '../contract/record.ts'
+import type { CsvCell } from '../points/csv-line.ts'
+
+/** The columns of records as CSV, the same from the server and the command line. New ones come last. */
+export const recordHeads = [
+  'number',
+  'recorded_at',
+  'unit',
+  'channel',
+  'range',
+  'lot',
+  'design',
+  'revision',
+  'kind',
+  'pass',
+  'verdict',
+  'accepted',
+  'gain_code',
+  'offset_code',
+  'gain_error_ppm',
+  'offset_error_v',
+  'worst_lsb',
+  'station',
+  'by',
+  'record',
+  'attempt',
+] as const
+
+export const recordCells = (line: RecordLine): CsvCell[] => [
+  line.number,
+  line.recordedAt,
+  line.unit,
+  line.channel,
+  line.range,
+  line.lot,
+  line.design,
+  line.revision,
+  line.kind,
+  line.pass,
+  line.verdict,
+  String(line.accepted),
+  line.gainCode,
+  line.offsetCode,
+  line.gainErrorPpm,
+  line.offsetErrorV,
+  line.worstLsb,
+  line.station,
+  line.by,
+  line.id,
+  line.attempt,
+]
