@@ -53,6 +53,32 @@ export const commandTable: readonly Entry[] = [
     load: async () => (await import('./commands/history.ts')).historyCommand,
   },
   {
+    name: 'lot',
+    summary: 'Lots: open, look, close, codes of every unit',
+    verbs: [
+      {
+        name: 'open',
+        summary: 'Open a lot of a released revision',
+        load: async () => (await import('./commands/lot/open.ts')).lotOpenCommand,
+      },
+      {
+        name: 'show',
+        summary: 'State and yield of a lot',
+        load: async () => (await import('./commands/lot/show.ts')).lotShowCommand,
+      },
+      {
+        name: 'close',
+        summary: 'Close a lot to further records',
+        load: async () => (await import('./commands/lot/close.ts')).lotCloseCommand,
+      },
+      {
+        name: 'codes',
+        summary: 'Accepted codes of every unit of a lot',
+        load: async () => (await import('./commands/lot/codes.ts')).lotCodesCommand,
+      },
+    ],
+  },
+  {
     name: 'design',
     summary: 'Designs that the server keeps',
     verbs: [

@@ -4,6 +4,7 @@ import { copyFileSync, mkdirSync, symlinkSync, writeFileSync } from 'node:fs'
 import { join } from 'node:path'
 import { afterAll, beforeAll, describe, expect, test } from 'vitest'
 import { commandTable } from '../../cli/command-table.ts'
+import { lotCounts, lotDetail, lotLine, lotUnit } from '../support/lot-fixtures.ts'
 import { memoryLedger, plainBodies } from '../support/memory-ledger.ts'
 import { revisionLine as lineOf } from '../support/revision-lines.ts'
 import { designBytes, line, me, recordIds, recordOf, revision, unit } from './support/answers.ts'
@@ -31,6 +32,9 @@ function answerEverything(): void {
   }
   const routes: [RegExp, (seen: Parameters<typeof recordOf>[0]) => unknown][] = [
     [/\/me$/, () => me],
+    [/\/lots\?/, () => ({ items: [lotLine()], next: null })],
+    [/\/lots$|\/close$|\/lots\/2417$/, () => lotDetail({ counts: lotCounts({ 'ok-first': 2 }) })],
+    [/\/lots\/2417\/units/, () => ({ items: [lotUnit(1), lotUnit(2)], next: null, newest: 2, records: 2 })],
     [/\/designs\/DBS-A\/revisions\/2\/review$/, () => ({ ...draft, key: 'DBS-A', state: 'in-review' })],
     [/\/designs\/DBS-A\/revisions$/, () => ({ ...draft, key: 'DBS-A' })],
     [/\/designs\/DBS-A\/revisions\//, () => revision(hash)],
@@ -59,6 +63,7 @@ beforeAll(async () => {
     join(cli.folder, 'as-left.csv'),
     'code,measured,uncertainty\n0,0.000001,1e-6\n131072,5.000002,1e-6\n',
   )
+  writeFileSync(join(cli.folder, 'serials.csv'), 'unit\n031\n032\n')
   writeFileSync(join(cli.folder, 'ogee.pub'), ledger.pub)
   writeFileSync(join(cli.folder, 'proof.json'), JSON.stringify(ledger.proofOf(0)))
   mkdirSync(join(cli.folder, 'spool/sent'), { recursive: true })

@@ -1,6 +1,6 @@
 import { type LotCounts, type LotPlace, type Standing, standing } from '../../shared/contract/lot-standing.ts'
 import type { Lot, LotDetail, LotUnit } from '../../shared/contract/lots.ts'
-import { recordIdOf } from './record-ids.ts'
+import { recordId } from './web-fixtures.ts'
 
 /** Lots as the server answers them, for the command line's and the page's tests. */
 
@@ -68,7 +68,7 @@ export function lotDetail(change: Partial<LotDetail> = {}): LotDetail {
 
 export function lotPlace(n: number, change: Partial<LotPlace> = {}): LotPlace {
   const said = {
-    record: recordIdOf(n),
+    record: recordId(n),
     station: n % 2 === 0 ? 'Station A' : 'Station B',
     at: new Date(Date.parse(at) + n * 120_000).toISOString(),
   }
