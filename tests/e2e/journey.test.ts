@@ -10,6 +10,9 @@ const cli = join(import.meta.dirname, '../../dist/cli/ogee.mjs')
 const points =
   'code,measured\n0,1.3e-6\n65536,2.4994998\n131072,4.9989783\n196608,7.4984718\n262143,9.9979342\n'
 
+/** The same codes read again once the trim is loaded, all within tolerance. */
+const left = ['0.0000010', '2.5000089', '4.9999957', '7.4999972', '9.9999688']
+
 let stage: Stage
 beforeAll(async () => {
   stage = await openStage()
@@ -42,9 +45,26 @@ describe('from measured points to recorded codes', () => {
       .waitFor({ timeout: 20_000 })
     expect(new URL(page.url()).searchParams.get('unit')).toBe('E2E-0001')
 
+    // The codes are loaded and the same codes read again, with the bench's own meter: as left.
+    await page.getByRole('button', { name: /Second pass/ }).first().click()
+    await page.getByRole('grid', { name: 'Points as left, pass 2' }).waitFor()
+    await page.getByLabel('instrument').selectOption('DMM-07')
+    await page.locator('[data-cell="0-measured"]').click()
+    await page.evaluate((text) => navigator.clipboard.writeText(text), left.join('\r\n'))
+    await page.keyboard.press('Control+V')
+    await page.getByText(/Probability of conforming/).waitFor()
+    await page.keyboard.press('Control+Enter')
+    await page.getByText(/^Recorded as left, as/).waitFor()
+
     await page.goto(`${stage.server.url}/history?unit=E2E-0001`)
     await page.getByRole('link', { name: /\d/ }).filter({ hasText: /\d/ }).first().waitFor()
     await page.locator('tbody tr').first().getByRole('link').first().click()
+    await page.getByRole('heading', { name: /E2E-0001/ }).waitFor()
+    await page.getByText(/DMM-07, Reference voltmeter/).waitFor()
+
+    await page.goto(`${stage.server.url}/history?unit=E2E-0001`)
+    await page.getByRole('link', { name: /\d/ }).filter({ hasText: /\d/ }).first().waitFor()
+    await page.locator('tbody tr').last().getByRole('link').first().click()
     await page.getByRole('heading', { name: /E2E-0001/ }).waitFor()
     expect(await page.locator('main').textContent()).toMatch(/2593/)
     expect(complaints).toEqual([])

@@ -74,6 +74,23 @@ describe('a trim', () => {
     expect(again).toMatchObject({ pass: 2, follows: first.id, applied })
   })
 
+  it('learns through a verification measured with the same codes from what was measured before them', async () => {
+    const unit = 'T-10'
+    const first = await post(url, station, trimBody({ unit, points: pointsOf({ gainPpm: -300 }) }))
+    const applied = first.result.trim.codes
+    const left = { unit, points: pointsOf({ gainPpm: 12 }) }
+    const verified = await post(url, station, trimBody({ ...left, kind: 'verify' }))
+    const again = await post(url, station, trimBody({ ...left, kind: 'verify', applied }))
+    expect([verified.follows, again.follows]).toEqual([first.id, verified.id])
+    const learned = { ...left, applied, follows: 'last', effects: 'learned' }
+    const second = await post(url, station, trimBody(learned))
+    expect(second).toMatchObject({ follows: again.id, pass: 2 })
+    const direct = await post(url, station, trimBody({ ...learned, follows: first.id }))
+    expect(second.result.trim.effects).toEqual(direct.result.trim.effects)
+    expect(second.result.trim.effects.gain).toMatchObject({ source: 'learned' })
+    expect(second.notices).toEqual([])
+  })
+
   it('learns effects from the measurement that it follows', async () => {
     const first = await post(
       url,

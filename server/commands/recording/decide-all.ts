@@ -4,7 +4,7 @@ import { type Catalogue, designOf, loadDesigns, type RevisionInPlay, readCatalog
 import type { Context, Decision } from './context.ts'
 import { decideMeasurement } from './decide-measurement.ts'
 import { decideOverride, decideWithdrawal } from './decide-statement.ts'
-import { type Known, readFollowed } from './followed.ts'
+import { type Known, readBefore, readFollowed } from './followed.ts'
 import { type Instruments, readInstruments, usedInstrument } from './instrument.ts'
 import type { Job } from './job.ts'
 import { requireUsableRevision } from './notices.ts'
@@ -38,6 +38,7 @@ export async function decideAll(sql: Sql, jobs: readonly Job[], assigned: Assign
     [...units.values()].filter((unit) => !unit.fresh).map((unit) => unit.id),
   )
   const known = await readFollowed(sql, idsToRead(resolved, units, places))
+  if (jobs.some((job) => job.request.effects === 'learned')) await readBefore(sql, known)
   const instruments = await readInstruments(
     sql,
     jobs.flatMap((job) => job.request.conditions?.instrument ?? []),

@@ -8,8 +8,8 @@ import { codesOn } from '../../../shared/solver/codes.ts'
 import type { PreviousPass } from '../../../shared/solver/learn.ts'
 import { verifyPoints } from '../../../shared/solver/verify.ts'
 import { channelOf, designOf } from './catalogue.ts'
-import { type Context, commonBody, currentFrom, type Decision, lastOf } from './context.ts'
-import { type Followed, measurementBefore } from './followed.ts'
+import { type Context, commonBody, currentFrom, type Decision, lastOf, sameJson } from './context.ts'
+import { type Followed, type Known, measurementBefore } from './followed.ts'
 import { measurementNotices } from './notices.ts'
 import type { PlaceState } from './place.ts'
 
@@ -54,7 +54,7 @@ function countOn({ recordedAt, kind }: RecordBody, before: PlaceState['day']): P
 
 function trim(context: Context, points: Point[], applied: Applied, before: Followed | null): Judged {
   const { revision, place, job } = context
-  const learned = job.request.effects === 'learned' ? previousPass(context, before) : undefined
+  const learned = job.request.effects === 'learned' ? previousPass(context, before, applied) : undefined
   const channel = channelOf(revision.hash, place.range)
   const result = codesOn(channel, points, { applied, learned, ...limitsOf(context) }) as CodesDocument
   const { verdict } = result.trim
@@ -93,14 +93,29 @@ function codesAfter(body: RecordBody): Applied {
   return given ?? body.applied ?? 'neutral'
 }
 
-function previousPass({ revision, place }: Context, before: Followed | null): PreviousPass {
-  const result = before?.body.result
+function previousPass(context: Context, before: Followed | null, applied: Applied): PreviousPass {
+  const { revision, place, known } = context
+  const teacher = before === null ? null : teacherOf(before, applied, known)
+  const result = teacher?.body.result
   if (result?.format === 'ogee.codes/1') return result
-  if (before && result?.format === 'ogee.verify/1' && result.fit !== null) {
+  if (teacher && result?.format === 'ogee.verify/1' && result.fit !== null) {
     const { trimmers } = channelOf(revision.hash, place.range)
-    const { gain, offset } = appliedVoltages(trimmers, before.body.applied ?? 'neutral')
+    const { gain, offset } = appliedVoltages(trimmers, teacher.body.applied ?? 'neutral')
     return { fit: result.fit, trim: { appliedNodeV: { gain, offset } } }
   }
   const message = 'Effects are learned from the measurement before: follow one that has a fit.'
   throw new OgeeError('follows-unknown', message, { errors: [{ path: '/follows', message }] })
 }
+
+/** A verification measured with the same codes shows no move, so the measurement that it stands on teaches. */
+function teacherOf(before: Followed, applied: Applied, known: Known): Followed {
+  let teacher = before
+  while (teacher.body.kind === 'verify' && sameJson(asObject(teacher.body.applied), asObject(applied))) {
+    const earlier = known.get(teacher.body.follows ?? '')
+    if (!earlier || earlier.withdrawn) break
+    teacher = earlier
+  }
+  return teacher
+}
+
+const asObject = (applied: RecordBody['applied']) => ({ applied }) as object

@@ -41,6 +41,21 @@ export async function readFollowed(sql: Sql, ids: readonly string[]): Promise<Kn
   )
 }
 
+const mostBefore = 8
+
+/** The records before verifications, down to a trim: what effects are learned from when a verification is followed. */
+export async function readBefore(sql: Sql, known: Known): Promise<void> {
+  for (let step = 0; step < mostBefore; step++) {
+    const missing = [...known.values()].flatMap(({ body: { kind, follows } }) =>
+      kind === 'verify' && follows !== null && !known.has(follows) ? follows : [],
+    )
+    if (missing.length === 0) return
+    const found = await readFollowed(sql, missing)
+    if (found.size === 0) return
+    for (const [id, record] of found) known.set(id, record)
+  }
+}
+
 /** The record meant by `follows`, which must be of the same unit, channel and range. */
 export function followedBy(follows: string, known: Known, state: PlaceState, place: Place): Followed {
   const id = follows === 'last' ? state.measurement : follows

@@ -5,7 +5,14 @@ import { rememberedInstrument } from './instrument.ts'
 /** Where a measurement stands. That it is on its way to the server is known to the outbox and not written twice. */
 export type DraftStatus =
   | { is: 'open' }
-  | { is: 'recorded'; id: string; number: number; recordedAt: string; accepted: boolean }
+  | {
+      is: 'recorded'
+      id: string
+      number: number
+      recordedAt: string
+      accepted: boolean
+      kind: 'trim' | 'verify'
+    }
 
 /** Everything typed for one measurement of one unit. The typed text, not the numbers. */
 export type Draft = {
@@ -102,6 +109,7 @@ function statusFrom(stored: unknown): DraftStatus {
     number: stored.number,
     recordedAt: textOf(stored, 'recordedAt'),
     accepted: stored.accepted === true,
+    kind: stored.kind === 'verify' ? 'verify' : 'trim',
   }
 }
 

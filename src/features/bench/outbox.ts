@@ -22,7 +22,13 @@ export type Waiting = {
   refused: { code: ErrorCode; message: string; errors: readonly FieldError[] } | null
 }
 
-export type RecordedTrim = { id: string; number: number; recordedAt: string; accepted: boolean }
+export type RecordedTrim = {
+  id: string
+  number: number
+  recordedAt: string
+  accepted: boolean
+  kind: 'trim' | 'verify'
+}
 
 const name = 'bench.outbox'
 const listeners = new Set<() => void>()

@@ -58,19 +58,23 @@ export const placedRecordOptions = (id: string) =>
 export type TrimRecord = Record & { result: CodesDocument }
 const chainMost = 20
 
-/** The trims that a record stands on, oldest first, itself the last. Overrides between them are passed over. */
+/** A record that is followed, and the trims that it stands on, oldest first. Overrides and verifications are passed over. */
+export type Chain = { followed: Record | null; trims: readonly TrimRecord[] }
+
 export const chainOptions = (id: string) =>
   queryOptions({
     queryKey: ['chain', id],
-    queryFn: async ({ signal }) => {
+    queryFn: async ({ signal }): Promise<Chain> => {
       const chain: TrimRecord[] = []
+      let followed: Record | null = null
       let next: string | null = id
       for (let i = 0; next !== null && i < chainMost; i++) {
         const record: Record = await api(getTrim, { params: { id: next } }, signal)
+        followed ??= record
         if (isTrim(record)) chain.unshift(record)
         next = record.follows
       }
-      return chain
+      return { followed, trims: chain }
     },
     staleTime: 60_000,
   })

@@ -39,12 +39,12 @@ export function RecordedStatus({ status }: { status: Extract<DraftStatus, { is: 
     <>
       <div role="status" className="mt-2">
         <Caution tone="plain">
-          Recorded as{' '}
+          {status.kind === 'verify' ? 'Recorded as left, as' : 'Recorded as'}{' '}
           <LinkButton to={paths.record(status.id)}>
             <Whole value={status.number} />
           </LinkButton>{' '}
           at {clock(status.recordedAt)}. {placeOf(status.recordedAt, seenFirst.current)}
-          {status.accepted ? null : ' Its codes are not accepted.'}
+          {status.accepted || status.kind === 'verify' ? null : ' Its codes are not accepted.'}
         </Caution>
       </div>
       <Notices notices={data?.notices ?? []} />

@@ -72,7 +72,7 @@ function settle(item: Waiting, sent: Sent): void {
 async function sendOne(item: Waiting): Promise<Sent> {
   let trim = item.done
   try {
-    const { id, number, recordedAt, accepted } = await api(postTrim, {
+    const { id, number, recordedAt, accepted, kind } = await api(postTrim, {
       body: item.body,
       idempotencyKey: item.key,
     })
@@ -80,7 +80,7 @@ async function sendOne(item: Waiting): Promise<Sent> {
       takeFromOutbox(item.key)
       return { is: 'recorded', trim: { ...trim, accepted: true }, overrideRefused: null }
     }
-    trim = { id, number, recordedAt, accepted }
+    trim = { id, number, recordedAt, accepted, kind: kind === 'verify' ? 'verify' : 'trim' }
   } catch (error) {
     // No answer, or one cut short: what the server did is not known, so the same request goes again.
     if (!isOgeeError(error) || comesBack(error)) return { is: 'waiting', error }

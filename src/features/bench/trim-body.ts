@@ -23,6 +23,13 @@ export type Measured = {
 
 /** The body of POST /trims. Everything is said outright, `applied` above all: codes not said would be corrected twice. */
 export function trimBody(measured: Measured): TrimBody {
+  return { ...measurementBody(measured), kind: 'trim', effects: measured.effects }
+}
+
+/** The same points as a verification of the codes that were loaded: judged, and no codes computed. */
+export const verifyBody = (measured: Measured): TrimBody => ({ ...measurementBody(measured), kind: 'verify' })
+
+function measurementBody(measured: Measured): TrimBody {
   const { applied, follows, lot, temperatureC, instrument } = measured
   const note = measured.note.trim()
   const conditions = {
@@ -31,7 +38,6 @@ export function trimBody(measured: Measured): TrimBody {
     ...(note === '' ? {} : { note }),
   }
   return {
-    kind: 'trim',
     design: measured.design,
     revision: measured.revision,
     unit: measured.unit,
@@ -39,7 +45,6 @@ export function trimBody(measured: Measured): TrimBody {
     range: measured.range,
     ...(lot === '' ? {} : { lot }),
     applied: applied === 'neutral' ? applied : codesOnly(applied),
-    effects: measured.effects,
     points: [...measured.points],
     ...(Object.keys(conditions).length === 0 ? {} : { conditions }),
     ...(follows === null ? {} : { follows }),

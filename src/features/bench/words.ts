@@ -106,6 +106,28 @@ export function effectSentences(effects: PerAdjuster<UsedEffect>, fromPass: numb
 const scientific = (value: number): string =>
   value.toExponential(3).replace(/e\+?/, 'e').replaceAll('-', minus)
 
+/** What the decision rests on: the rule, the chance of conforming at the worst point, and whether U is small enough. */
+export function decisionSentences(verify: VerifyResult): string[] {
+  const { rule, points, notes, tur } = verify
+  const known = points.flatMap(({ conformanceProbability: p }) => p ?? [])
+  const by = rule === 'guarded' ? 'Tolerance less U decides.' : 'Tolerance alone decides.'
+  const sentences = known.length === 0 ? [by] : [`${by} Probability of conforming ${chance(known)}.`]
+  if (notes.includes('tur-under-4') && tur !== null) {
+    const remedy = 'take more readings or a better instrument'
+    sentences.push(`Test uncertainty ratio ${fixed(tur, 1)}, under 4: ${remedy}.`)
+  }
+  if (notes.includes('guard-band-too-wide')) {
+    sentences.push('U is over the tolerance: such a point can never pass.')
+  }
+  return sentences
+}
+
+/** Of the least certain point, never rounded up to certainty. */
+function chance(probabilities: readonly number[]): string {
+  const least = Math.floor(Math.min(...probabilities) * 1000) / 10
+  return least >= 99.9 ? 'over 99.9 %' : `at least ${fixed(least, 1)} %`
+}
+
 const counts = ['no', 'one', 'two', 'three', 'four', 'five', 'six', 'seven', 'eight', 'nine', 'ten']
 
 /** "at all five codes. Worst 0.23 LSB at 2.5 V, target 0.5 LSB met." */

@@ -29,7 +29,7 @@ export function BenchHead(props: HeadProps) {
 }
 
 function State({ known, page }: HeadProps) {
-  const last = known.chain.at(-1)
+  const last = known.followed
   const { current } = known
   const draft = page.hasReadings && !page.isFixed ? ' · draft kept on this computer' : ''
   if (last) {
@@ -93,8 +93,7 @@ function PrimaryAct({ page, acts }: { page: BenchPageState; acts: BenchActs }): 
       </Button>
     )
   }
-  const trim = answer.answer?.trim
-  const verdict = answer.isStale ? undefined : trim?.verdict
+  const verdict = answer.isStale ? undefined : answer.answer?.trim?.verdict
   const code = answer.answer ? doubtfulCode(answer.answer.fit.flags) : null
   if (verdict === 'suspect' && code !== null && !page.isFixed) {
     const row = answer.views.findIndex((view) => view.code === code)
@@ -104,20 +103,40 @@ function PrimaryAct({ page, acts }: { page: BenchPageState; acts: BenchActs }): 
       </Button>
     )
   }
-  const what =
-    verdict === 'out-of-reach' ? 'Record out of reach' : page.pass > 1 ? `Record pass ${page.pass}` : 'Record'
-  const isReady = answer.isReady && Boolean(trim) && page.shut === null && !page.isFixed
-  return (
-    <Button
-      look="primary"
-      disabled={!isReady || verdict === 'suspect'}
-      aria-describedby={acts.missing ? 'record-missing' : undefined}
-      onClick={() => acts.record(null)}
-    >
-      {recording.isBusy ? 'Recording' : what}
-      <KeyHint keys="Ctrl Enter" className="!text-paper" />
-    </Button>
-  )
+  return <RecordActs page={page} acts={acts} />
+}
+
+/** Measured with codes loaded there are two: as left, and the codes that these points lead to. */
+function RecordActs({ page, acts }: { page: BenchPageState; acts: BenchActs }) {
+  const { recording, answer } = page
+  const trim = answer.answer?.trim
+  const verdict = answer.isStale ? undefined : trim?.verdict
+  const isOpen = page.shut === null && !page.isFixed
+  const pass = page.pass > 1 ? `Record pass ${page.pass}` : 'Record'
+  const codes = {
+    as: 'trim',
+    text: verdict === 'out-of-reach' ? 'Record out of reach' : pass,
+    isReady: isOpen && answer.isReady && Boolean(trim) && verdict !== 'suspect',
+    run: () => acts.record(null),
+  }
+  const left = { as: 'verify', text: 'Record as left', isReady: isOpen, run: acts.recordLeft }
+  const offered = page.left === null ? [codes] : [codes, left]
+  const inOrder = [...offered].sort((a, b) => Number(a.as === acts.primary) - Number(b.as === acts.primary))
+  return inOrder.map(({ as, text, isReady, run }) => {
+    const isPrimary = as === acts.primary
+    return (
+      <Button
+        key={as}
+        look={isPrimary ? 'primary' : 'plain'}
+        disabled={!isReady}
+        aria-describedby={isPrimary && acts.missing ? 'record-missing' : undefined}
+        onClick={run}
+      >
+        {isPrimary && recording.isBusy ? 'Recording' : text}
+        {isPrimary ? <KeyHint keys="Ctrl Enter" className="!text-paper" /> : null}
+      </Button>
+    )
+  })
 }
 
 function OpenFile({ onOpen }: { onOpen: (file: File) => void }) {

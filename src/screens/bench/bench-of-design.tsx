@@ -6,7 +6,7 @@ import { currentOf } from '../../features/bench/current.ts'
 import { draftName, readDraft, writeDraft } from '../../features/bench/draft.ts'
 import { hasReadings } from '../../features/bench/grid-state.ts'
 import { Choice } from '../../features/bench/head-fields.tsx'
-import { chainOptions, revisionOptions, type TrimRecord, unitOptions } from '../../features/bench/queries.ts'
+import { type Chain, chainOptions, revisionOptions, unitOptions } from '../../features/bench/queries.ts'
 import type { BenchSearch } from '../../features/bench/search.ts'
 import { prepareBench } from '../../features/bench/solve.ts'
 import { Loading } from '../../ui/loading.tsx'
@@ -63,7 +63,7 @@ function OtherDesign({ design, designs, change }: Pick<OfDesignProps, 'design' |
   )
 }
 
-const noChain: readonly TrimRecord[] = []
+const noChain: Chain = { followed: null, trims: [] }
 
 type OfUnitProps = { revision: Revision; designs: readonly DesignLine[]; search: BenchSearch; change: Change }
 
@@ -122,7 +122,8 @@ function BenchOfUnit({ revision, designs, search, change }: OfUnitProps) {
         unit: unit.data ?? null,
         current: currentOf(unit.data, channel, range),
         isKnown: search.unit === null || unit.isSuccess,
-        chain: chain.data ?? noChain,
+        chain: (chain.data ?? noChain).trims,
+        followed: (chain.data ?? noChain).followed,
         trouble: unit.error ?? chain.error,
       }}
       incoming={incoming?.name === name ? incoming : null}

@@ -3,7 +3,7 @@ import type { Unit } from '../../../shared/contract/units.ts'
 import type { CurrentCodes } from '../../features/bench/current.ts'
 import type { DraftPlace } from '../../features/bench/draft.ts'
 import type { Row } from '../../features/bench/grid-state.ts'
-import type { TrimRecord } from '../../features/bench/queries.ts'
+import type { Chain, TrimRecord } from '../../features/bench/queries.ts'
 import type { BenchSearch } from '../../features/bench/search.ts'
 import type { Bench } from '../../features/bench/solve.ts'
 
@@ -32,6 +32,8 @@ export type BenchPageProps = {
     current: CurrentCodes | null
     isKnown: boolean
     chain: readonly TrimRecord[]
+    /** The record that this measurement goes on from, a verification perhaps. */
+    followed: Chain['followed']
     trouble: unknown
   }
   incoming: Incoming | null

@@ -1,7 +1,14 @@
+import type { VerifyResult } from '../../../shared/solver/types.ts'
 import { noteSentences } from '../../features/bench/flag-sentences.ts'
 import { ShortfallTable, SuspectPanel } from '../../features/bench/panels.tsx'
 import { refusedAt } from '../../features/bench/use-recording.ts'
-import { effectSentences, outcomeSentence, passName, predictionSentence } from '../../features/bench/words.ts'
+import {
+  decisionSentences,
+  effectSentences,
+  outcomeSentence,
+  passName,
+  predictionSentence,
+} from '../../features/bench/words.ts'
 import { Button } from '../../ui/button.tsx'
 import { KeyHint } from '../../ui/key-hint.tsx'
 import { Section } from '../../ui/section.tsx'
@@ -116,6 +123,14 @@ function GoOn({ page, acts }: StepProps) {
 const numerals = ['no', 'one', 'two', 'three', 'four', 'five', 'six', 'seven', 'eight', 'nine', 'ten']
 const words = (count: number): string => numerals[count] ?? String(count)
 
+function DecisionNotes({ verify }: { verify: VerifyResult }) {
+  return decisionSentences(verify).map((sentence) => (
+    <p key={sentence} className="mt-0.5 text-body text-ink-2">
+      {sentence}
+    </p>
+  ))
+}
+
 /** A pass measured with codes loaded: each point against the tolerance, and the codes that the pass leads to. */
 function AsLeft(props: StepProps) {
   const { page, bench } = props
@@ -134,6 +149,7 @@ function AsLeft(props: StepProps) {
           <Verdict verdict={answer.verify.outcome} /> {outcomeSentence(answer.verify, range, targetV)}
         </p>
       ) : null}
+      {page.left ? <DecisionNotes verify={page.left} /> : null}
       {trim && !answer.isStale
         ? effectSentences(trim.effects, page.pass - 1).map((sentence) => (
             <p key={sentence} className="mt-0.5 text-body text-ink-2">

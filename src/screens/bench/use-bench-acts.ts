@@ -16,14 +16,16 @@ export function useBenchActs(props: BenchPageProps, page: BenchPageState, shown:
   const { search, change, known } = props
   const client = useQueryClient()
   const [unitTrouble, setUnitTrouble] = useState<string | null>(null)
-  const missing = missingForRecord(page, search.unit)
   const { recording, answer } = page
+  const primary = primaryRecord(page)
+  const missing = missingForRecord(page, search.unit, primary)
 
-  const record = (reason: string | null) => {
+  const recordAs = (as: 'trim' | 'verify', reason: string | null) => {
     if (recording.recorded !== null || recording.waiting !== null) return
-    const body = page.body()
-    if (missing !== null || body === null) {
-      announce(missing ?? 'Nothing to record yet.')
+    const body = page.body(as)
+    const lacks = missingForRecord(page, search.unit, as)
+    if (lacks !== null || body === null) {
+      announce(lacks ?? 'Nothing to record yet.')
       setUnitTrouble(search.unit === null && page.shut === null ? 'Unit is missing.' : null)
       if (search.unit === null && page.shut === null) findStop('unit')?.focus()
       return
@@ -33,6 +35,8 @@ export function useBenchActs(props: BenchPageProps, page: BenchPageState, shown:
     if (search.applied === null) change({ applied: page.applied })
     void recording.record(body, reason)
   }
+  const record = (reason: string | null) => recordAs('trim', reason)
+  const recordLeft = () => recordAs('verify', null)
   /** The pass after this one: measured with the codes that were just recorded, or with those that the unit has. */
   const next = nextPass(props, page, (id) => client.getQueryData(recordOptions(id).queryKey))
   const goNext = () => {
@@ -57,7 +61,7 @@ export function useBenchActs(props: BenchPageProps, page: BenchPageState, shown:
     { keys: copyKeys.gain, does: 'copy the gain code', run: copy('gain') },
     { keys: copyKeys.offset, does: 'copy the offset code', run: copy('offset') },
     { keys: 'o', does: 'copy the offset code', run: copy('offset') },
-    { keys: 'Ctrl+Enter', does: 'record', run: () => record(null) },
+    { keys: 'Ctrl+Enter', does: 'record', run: () => recordAs(primary, null) },
     { keys: 'p', does: 'next pass', run: goNext },
     { keys: 'i', does: 'ideal values', run: shown.showIdeal },
     { keys: 't', does: 'plots as tables', run: shown.toggleTable },
@@ -68,6 +72,8 @@ export function useBenchActs(props: BenchPageProps, page: BenchPageState, shown:
   useScan(changeUnit)
   return {
     record,
+    recordLeft,
+    primary,
     missing,
     next,
     goNext,
@@ -80,12 +86,23 @@ export function useBenchActs(props: BenchPageProps, page: BenchPageState, shown:
 
 export type BenchActs = ReturnType<typeof useBenchActs>
 
+/** As left while it passes; where it does not, the codes that these points lead to. */
+function primaryRecord({ left }: BenchPageState): 'trim' | 'verify' {
+  return left?.outcome === 'pass' || left?.outcome === 'conditional-pass' ? 'verify' : 'trim'
+}
+
 function nextPass(
   { known, search }: BenchPageProps,
   page: BenchPageState,
   stored: (id: string) => { result: unknown } | undefined,
 ) {
   const { recorded } = page.recording
+  if (recorded?.kind === 'verify') {
+    const { applied } = page
+    return applied === null || applied === 'neutral'
+      ? null
+      : { follows: recorded.id, applied, pass: page.pass }
+  }
   if (recorded) {
     const result = stored(recorded.id)?.result as
       | { trim?: { codes?: { gain?: number; offset?: number } | null } }

@@ -5,9 +5,10 @@ import type { Applied } from '../../../shared/solver/types.ts'
 import type { DraftFields } from '../../features/bench/draft.ts'
 import { emptyRow, hasReadings } from '../../features/bench/grid-state.ts'
 import { measuredWith, useInstrument } from '../../features/bench/instrument.ts'
+import { previousPass } from '../../features/bench/previous.ts'
 import { readQuantity } from '../../features/bench/read-cells.ts'
 import { prepareBench } from '../../features/bench/solve.ts'
-import { type TrimBody, trimBody } from '../../features/bench/trim-body.ts'
+import { type Measured, trimBody, verifyBody } from '../../features/bench/trim-body.ts'
 import { useAnswer } from '../../features/bench/use-answer.ts'
 import { useKeptDraft } from '../../features/bench/use-kept-draft.ts'
 import { useRecording } from '../../features/bench/use-recording.ts'
@@ -35,8 +36,8 @@ export function useBenchPage(props: BenchPageProps) {
   const [effects, setEffects] = useState<'design' | 'learned'>('learned')
   const previous = chain.at(-1)
   const answerPrevious = useMemo(
-    () => (previous && effects === 'learned' ? previous.result : null),
-    [previous, effects],
+    () => (effects === 'learned' ? previousPass(known.followed, chain, applied, bench) : null),
+    [effects, known.followed, chain, applied, bench],
   )
   const recording = useRecording({
     draftName: name,
@@ -81,7 +82,15 @@ export function useBenchPage(props: BenchPageProps) {
     shut,
     isFixed,
     hasReadings: hasReadings(kept.draft.rows),
-    body: () => bodyOf(props, kept.fields, { applied, effects, points: answer.read.points, temperature }),
+    /** Measured with codes loaded, so that it can be judged as left; null where the design cannot judge. */
+    left: chain.length > 0 && !answer.isStale ? answer.verify : null,
+    /** What is recorded: new codes from these points, or these points as left. */
+    body: (as: 'trim' | 'verify') => {
+      const read = { applied, effects, points: answer.read.points, temperature }
+      const measured = measuredOf(props, kept.fields, read)
+      if (measured === null) return null
+      return as === 'trim' ? trimBody(measured) : verifyBody(measured)
+    },
   }
 }
 
@@ -104,11 +113,11 @@ function useMeter({ revision, bench, range }: BenchPageProps, id: string) {
   return { instrument, document, bench: prepared }
 }
 
-function bodyOf(props: BenchPageProps, { note, instrument }: DraftFields, typed: Typed): TrimBody | null {
+function measuredOf(props: BenchPageProps, { note, instrument }: DraftFields, typed: Typed): Measured | null {
   const { revision, channel, range, search, known } = props
   const { applied, effects, points, temperature } = typed
   if (applied === null || search.unit === null) return null
-  return trimBody({
+  return {
     design: revision.key,
     revision: revision.number,
     unit: search.unit,
@@ -122,7 +131,7 @@ function bodyOf(props: BenchPageProps, { note, instrument }: DraftFields, typed:
     temperatureC: temperature.is === 'value' ? temperature.value : null,
     note,
     instrument,
-  })
+  }
 }
 
 const none = [] as const
@@ -141,13 +150,17 @@ function appliedNow({ search, known }: BenchPageProps) {
 }
 
 /** What still stands between the readings and a record; null when it can be recorded. */
-export function missingForRecord(page: BenchPageState, unit: string | null): string | null {
+export function missingForRecord(
+  page: BenchPageState,
+  unit: string | null,
+  as: 'trim' | 'verify',
+): string | null {
   if (page.shut !== null) return page.shut
   if (unit === null) return 'Unit is missing.'
   if (page.applied === null) return 'Say which codes were applied while measuring.'
   if (page.temperatureTrouble !== null) return page.temperatureTrouble
   if (page.answer.isStale || page.answer.problems.length > 0) return 'A cell is in error.'
-  if (page.answer.answer?.trim) return null
+  if (as === 'verify' ? page.left !== null : page.answer.answer?.trim) return null
   return page.answer.solved.is === 'refused'
     ? page.answer.solved.error.message
     : 'Two different codes are the least that gives a line.'

@@ -5,6 +5,11 @@ import { conformance, decide, verifyPoints } from '../../../shared/solver/verify
 import { plainDesign, vector } from '../../support/solver-fixtures.ts'
 
 type Rules = {
+  jcgm106: {
+    table1_z: { pc: string; z: string }[]
+    guarded_acceptance_w_equals_U: { published_min_pc: string }
+  }
+} & {
   jcgm106: { one_sided_upper: Record<'y' | 'u' | 'T_U' | 'published_pc', string> }
   ilac_g8: { rows: { w_over_U: string; published: string }[] }
 }
@@ -36,6 +41,17 @@ describe('decision', () => {
     // One-sided: |y| under T_U seen from a centre so far off that the second limit plays no part.
     const centre = Number(T_U) - 100
     expect(conformance(Number(y) - centre, 100, Number(u)).toFixed(2)).toBe(published_pc)
+  })
+
+  test('the z of each conformance probability of Table 1, and 0.977 at the edge of a guard band of 2u', () => {
+    const { table1_z, guarded_acceptance_w_equals_U } = rules.jcgm106
+    expect(table1_z).toHaveLength(5)
+    // (T - e)/u = z: the printed z has two decimals, and the probability lies within half of the last one.
+    for (const { pc, z } of table1_z) {
+      expect(conformance(100 - Number(z) - 0.005, 100, 1)).toBeGreaterThanOrEqual(Number(pc))
+      expect(conformance(100 - Number(z) + 0.005, 100, 1)).toBeLessThanOrEqual(Number(pc))
+    }
+    expect(conformance(100 - 2, 100, 1).toFixed(3)).toBe(guarded_acceptance_w_equals_U.published_min_pc)
   })
 
   test('a guard band of U keeps the false accept under 2.5 %, as ILAC-G8:09/2019 says (decision-rules.json)', () => {

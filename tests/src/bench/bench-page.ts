@@ -1,6 +1,8 @@
 import { act, fireEvent, screen, within } from '@testing-library/react'
 import type { RecordRequest } from '../../../shared/contract/record.ts'
 import { computeCodes } from '../../../shared/solver/codes.ts'
+import type { PreviousPass } from '../../../shared/solver/learn.ts'
+import { verifyPoints } from '../../../shared/solver/verify.ts'
 import { loadPaste } from '../../../src/features/bench/on-demand.ts'
 import { design, record, recordId } from '../../support/web-fixtures.ts'
 import { type FakeServer, fakeServer, json } from '../../support/web-server.ts'
@@ -27,23 +29,18 @@ export function benchServer(role: 'engineer' | 'operator' = 'engineer'): FakeSer
     const id = recordId(state.recorded)
     const before = server.state.records.get(String(asked.follows))
     const learned = asked.effects === 'learned' && before ? (before.result as never) : undefined
-    const result = asked.points
-      ? computeCodes(design, asked.points, {
-          applied: asked.applied,
-          ...(learned ? { learned } : {}),
-        })
-      : null
-    const verdict = result?.trim.verdict ?? null
+    const result = asked.points ? solved(asked, asked.points, learned) : null
+    const verdict = result === null ? null : 'trim' in result ? result.trim.verdict : result.outcome
     const answer = record(state.recorded, {
       kind: asked.kind,
       unit: asked.unit,
       applied: asked.applied ?? null,
       points: asked.points ?? null,
       follows: typeof asked.follows === 'string' ? asked.follows : null,
-      pass: (before?.pass ?? 0) + 1,
+      pass: (before?.pass ?? 0) + (asked.kind === 'verify' ? 0 : 1),
       result: result as never,
       verdict,
-      accepted: verdict === 'ok' || verdict === 'too-coarse',
+      accepted: verdict !== null && ['ok', 'too-coarse', 'pass', 'conditional-pass'].includes(verdict),
       recordedAt: new Date().toISOString(),
     })
     server.state.records.set(id, answer)
@@ -51,6 +48,11 @@ export function benchServer(role: 'engineer' | 'operator' = 'engineer'): FakeSer
     return json(answer, 201)
   })
   return state
+}
+
+function solved(asked: RecordRequest, points: NonNullable<RecordRequest['points']>, learned?: PreviousPass) {
+  if (asked.kind === 'verify') return verifyPoints(design, points)
+  return computeCodes(design, points, { applied: asked.applied, ...(learned ? { learned } : {}) })
 }
 
 export const grid = () => screen.findByRole('grid')
