@@ -46,7 +46,10 @@ describe('from measured points to recorded codes', () => {
     expect(new URL(page.url()).searchParams.get('unit')).toBe('E2E-0001')
 
     // The codes are loaded and the same codes read again, with the bench's own meter: as left.
-    await page.getByRole('button', { name: /Second pass/ }).first().click()
+    await page
+      .getByRole('button', { name: /Second pass/ })
+      .first()
+      .click()
     await page.getByRole('grid', { name: 'Points as left, pass 2' }).waitFor()
     await page.getByLabel('instrument').selectOption('DMM-07')
     await page.locator('[data-cell="0-measured"]').click()

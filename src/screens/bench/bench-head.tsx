@@ -79,19 +79,20 @@ function Acts({ page, acts, onOpenFile }: HeadProps) {
 function PrimaryAct({ page, acts }: { page: BenchPageState; acts: BenchActs }): ReactNode {
   const { recording, answer } = page
   if (recording.recorded) {
-    return acts.next ? (
-      <>
-        <Button onClick={() => acts.changeUnit('')}>Next unit</Button>
-        <Button look="primary" onClick={acts.goNext}>
-          {passName(acts.next.pass)}
-          <KeyHint keys="p" className="!text-paper" />
-        </Button>
-      </>
-    ) : (
-      <Button look="primary" onClick={() => acts.changeUnit('')}>
+    // What passed as left is done; everything else goes on with the next pass.
+    const isDone = acts.next === null || (recording.recorded.kind === 'verify' && recording.recorded.accepted)
+    const unit = (
+      <Button key="unit" look={isDone ? 'primary' : 'plain'} onClick={() => acts.changeUnit('')}>
         Next unit
       </Button>
     )
+    const pass = acts.next ? (
+      <Button key="pass" look={isDone ? 'plain' : 'primary'} onClick={acts.goNext}>
+        {passName(acts.next.pass)}
+        <KeyHint keys="p" className={isDone ? '' : '!text-paper'} />
+      </Button>
+    ) : null
+    return isDone ? [pass, unit] : [unit, pass]
   }
   const verdict = answer.isStale ? undefined : answer.answer?.trim?.verdict
   const code = answer.answer ? doubtfulCode(answer.answer.fit.flags) : null

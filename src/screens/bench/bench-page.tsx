@@ -91,7 +91,7 @@ function Plots({ page, bench, asTable, onTable }: PlotsProps) {
         design={page.document}
         bench={bench}
         points={answer.plotted?.points ?? []}
-        answer={answer.answer}
+        answer={page.loaded && answer.answer ? { ...answer.answer, trim: null } : answer.answer}
         bars={answer.plotted?.bars ?? null}
         chain={chain}
         asTable={asTable}

@@ -1,3 +1,4 @@
+import { CodesLeft } from '../../features/bench/codes-left.tsx'
 import { CodesMissing, CodesPanel } from '../../features/bench/codes-panel.tsx'
 import { Section } from '../../ui/section.tsx'
 import type { BenchPageProps } from './bench-props.ts'
@@ -8,6 +9,13 @@ import type { BenchPageState } from './use-bench-page.ts'
 export function StepCodes({ page, bench }: BenchPageProps & { page: BenchPageState }) {
   const { answer, applied } = page
   const trim = answer.answer?.trim ?? null
+  if (page.loaded && bench.trim) {
+    return (
+      <Section heavy title={<Numbered n={2}>Codes loaded</Numbered>}>
+        <CodesLeft codes={page.loaded} trimmers={bench.trim.trimmers} />
+      </Section>
+    )
+  }
   return (
     <Section heavy title={<Numbered n={2}>Codes to load</Numbered>}>
       {trim && bench.trim && applied !== null ? (

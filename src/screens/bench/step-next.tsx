@@ -150,7 +150,7 @@ function AsLeft(props: StepProps) {
         </p>
       ) : null}
       {page.left ? <DecisionNotes verify={page.left} /> : null}
-      {trim && !answer.isStale
+      {trim && !answer.isStale && page.loaded === null
         ? effectSentences(trim.effects, page.pass - 1).map((sentence) => (
             <p key={sentence} className="mt-0.5 text-body text-ink-2">
               {sentence}
@@ -162,9 +162,11 @@ function AsLeft(props: StepProps) {
           <Doubt {...props} />
         </div>
       ) : null}
-      <div className="mt-2">
-        <Prediction {...props} />
-      </div>
+      {page.loaded === null ? (
+        <div className="mt-2">
+          <Prediction {...props} />
+        </div>
+      ) : null}
       <FitOfPage {...props} />
       {trim?.verdict === 'out-of-reach' && answer.answer && bench.trim ? (
         <div className="mt-3">

@@ -48,7 +48,8 @@ export function useBenchActs(props: BenchPageProps, page: BenchPageState, shown:
     props.changeUnit(serial)
   }
   const copy = (which: 'gain' | 'offset') => () => {
-    const code = answer.isStale ? undefined : answer.answer?.trim?.codes?.[which]
+    const codes = page.loaded ?? (answer.isStale ? null : answer.answer?.trim?.codes)
+    const code = codes?.[which]
     if (code === undefined) announce(`There is no ${which} code yet.`)
     else void copyText(String(code), `Copied ${which} code ${code}.`)
   }

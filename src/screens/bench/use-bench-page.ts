@@ -84,6 +84,8 @@ export function useBenchPage(props: BenchPageProps) {
     hasReadings: hasReadings(kept.draft.rows),
     /** Measured with codes loaded, so that it can be judged as left; null where the design cannot judge. */
     left: chain.length > 0 && !answer.isStale ? answer.verify : null,
+    /** The codes that were loaded and stay, once these points are recorded as left. */
+    loaded: recording.recorded?.kind === 'verify' && applied !== 'neutral' ? applied : null,
     /** What is recorded: new codes from these points, or these points as left. */
     body: (as: 'trim' | 'verify') => {
       const read = { applied, effects, points: answer.read.points, temperature }

@@ -1,11 +1,11 @@
-import { screen } from '@testing-library/react'
+import { screen, waitFor } from '@testing-library/react'
 import { expect, test } from 'vitest'
 import type { VerifyResult } from '../../../shared/solver/types.ts'
 import { decisionSentences } from '../../../src/features/bench/words.ts'
 import { recordId } from '../../support/web-fixtures.ts'
 import { open } from '../../support/web-render.tsx'
 import { verifyResult } from '../../support/web-results.ts'
-import { address, benchServer, column, focusCell, found, pasteBlock } from './bench-page.ts'
+import { address, benchServer, column, focusCell, found, pasteBlock, step } from './bench-page.ts'
 
 const good = ['0.0000010', '2.5000089', '4.9999957', '7.4999972', '9.9999688']
 const off = ['0.0000010', '2.5000289', '5.0000457', '7.5000672', '10.0000488']
@@ -41,6 +41,11 @@ test('what passes is recorded as left by Ctrl Enter: a verification of the codes
   expect(body).not.toHaveProperty('effects')
   expect(screen.queryByText(/Its codes are not accepted/)).toBeNull()
   expect(await button(/Next unit/)).toBeEnabled()
+  // The codes that these points would lead to were not recorded; the ones that are loaded stay, large.
+  expect(step(/Codes loaded/).getByRole('status', { name: 'gain code' })).toHaveTextContent('2593')
+  expect(screen.queryByText(/Loading codes moves a live output/)).toBeNull()
+  await user.keyboard('{Shift>}G{/Shift}')
+  await waitFor(async () => expect(await navigator.clipboard.readText()).toBe('2593'))
 
   // Going on from there: the same codes are still loaded, and the verification is what is followed.
   await user.click(screen.getAllByRole('button', { name: /Second pass/ })[0] as HTMLElement)
