@@ -1,4 +1,4 @@
-import { screen, waitFor } from '@testing-library/react'
+import { act, screen, waitFor } from '@testing-library/react'
 import { expect, test } from 'vitest'
 import type { VerifyResult } from '../../../shared/solver/types.ts'
 import { decisionSentences } from '../../../src/features/bench/words.ts'
@@ -44,7 +44,9 @@ test('what passes is recorded as left by Ctrl Enter: a verification of the codes
   // The codes that these points would lead to were not recorded; the ones that are loaded stay, large.
   expect(step(/Codes loaded/).getByRole('status', { name: 'gain code' })).toHaveTextContent('2593')
   expect(screen.queryByText(/Loading codes moves a live output/)).toBeNull()
-  await user.keyboard('{Shift>}G{/Shift}')
+  const main = screen.getByRole('main')
+  act(() => main.focus())
+  await user.keyboard('G')
   await waitFor(async () => expect(await navigator.clipboard.readText()).toBe('2593'))
 
   // Going on from there: the same codes are still loaded, and the verification is what is followed.
