@@ -46,16 +46,29 @@ export async function call<E extends Endpoint>(
   return reply as ReplyOf<E>
 }
 
+/** A reply that is read while it comes, such as an export: the response as it is, or the OgeeError that the server meant. */
+export async function openStream(caller: Caller, path: string): Promise<Response> {
+  const response = await reach(caller, path, { method: 'GET', headers: { ...caller.headers } })
+  if (!response.ok) throw await problemOf(response)
+  return response
+}
+
 async function send(caller: Caller, endpoint: Endpoint, request: AnyInput): Promise<Response> {
   const headers: Record<string, string> = { accept: 'application/json', ...caller.headers }
   if (request.body !== undefined) headers['content-type'] = 'application/json'
   if (request.idempotencyKey !== undefined) headers['idempotency-key'] = request.idempotencyKey
   if (request.ifMatch !== undefined) headers['if-match'] = request.ifMatch
+  return await reach(caller, pathOf(endpoint, request), {
+    method: endpoint.method,
+    headers,
+    ...(request.body === undefined ? {} : { body: JSON.stringify(request.body) }),
+  })
+}
+
+async function reach(caller: Caller, path: string, init: RequestInit): Promise<Response> {
   try {
-    return await caller.fetch(`${caller.baseUrl}/api/v1${pathOf(endpoint, request)}`, {
-      method: endpoint.method,
-      headers,
-      ...(request.body === undefined ? {} : { body: JSON.stringify(request.body) }),
+    return await caller.fetch(`${caller.baseUrl}/api/v1${path}`, {
+      ...init,
       ...(caller.signal ? { signal: caller.signal } : {}),
     })
   } catch (cause) {

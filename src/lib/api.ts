@@ -1,4 +1,4 @@
-import { type Caller, call } from '../../shared/call.ts'
+import { type Caller, call, openStream } from '../../shared/call.ts'
 import type { Endpoint, InputOf, ReplyOf } from '../../shared/contract/endpoint.ts'
 import { isOgeeError } from '../../shared/errors.ts'
 import { setConnection } from './connection.ts'
@@ -23,6 +23,16 @@ export async function api<E extends Endpoint>(
     const reply = await call(signal ? { ...caller, signal } : caller, endpoint, input)
     setConnection({ outage: null })
     return reply
+  } catch (error) {
+    note(error)
+    throw error
+  }
+}
+
+/** For what is read while it comes; refusals and outages are noted in the same way. */
+export async function apiStream(path: string, signal: AbortSignal): Promise<Response> {
+  try {
+    return await openStream({ ...caller, signal }, path)
   } catch (error) {
     note(error)
     throw error

@@ -1,5 +1,5 @@
 import { screen, waitFor, within } from '@testing-library/react'
-import { expect, test } from 'vitest'
+import { expect, test, vi } from 'vitest'
 import { recordId, recordLine } from '../support/web-fixtures.ts'
 import { open } from '../support/web-render.tsx'
 import { fakeServer, json, refusal } from '../support/web-server.ts'
@@ -34,8 +34,8 @@ test('filters stand in the address and are asked of the server; the page starts 
   await link(117)
   expect(server.sent('GET /trims').at(-1)?.query.toString()).toContain('verdict=suspect')
   await user.type(screen.getByLabelText('unit'), 'none such{Enter}')
-  await screen.findByText(/No record matches\. Unit none such has none/)
-  expect(window.location.search).toBe('?verdict=suspect&unit=none+such')
+  await screen.findByText(/No record matches\. No serial here, .* begins with none such/)
+  expect(window.location.search).toBe('?verdict=suspect&serial=none+such')
   await user.click(screen.getByRole('button', { name: 'clear 2 filters' }))
   await link(120)
   expect(window.location.search).toBe('')
@@ -86,4 +86,74 @@ test('a refusal stands in the place of the list with its sentence', async () => 
   open('/history', server)
   await screen.findByRole('heading', { level: 1, name: 'Records: not open to you' })
   expect(screen.getByText(/An administrator can/)).toBeVisible()
+})
+
+test('every filter goes through the address to the server as the contract has it', async () => {
+  const { user, server } = open('/history?unit=DBS-24170-031&attempt=2')
+  await screen.findByText(/120 match · newest first/)
+  expect(screen.getByLabelText('unit')).toHaveValue('DBS-24170-031')
+  await user.type(screen.getByLabelText('lot'), '2409, 2417{Enter}')
+  await user.selectOptions(screen.getByLabelText('design'), 'DBS-A')
+  await user.type(await screen.findByLabelText('revision'), '2{Enter}')
+  await user.selectOptions(screen.getByLabelText('station'), 'station A')
+  await user.selectOptions(screen.getByLabelText('by'), 'T. Ruiz')
+  await user.type(screen.getByLabelText('from'), '2026-11-24{Enter}')
+  await user.clear(screen.getByLabelText('unit'))
+  await user.type(screen.getByLabelText('unit'), '031{Enter}')
+  const expected = {
+    attempt: '2',
+    lot: '2409,2417',
+    design: 'DBS-A',
+    revision: '2',
+    station: '11111111-1111-4111-8111-111111111111',
+    by: '33333333-3333-4333-8333-333333333333',
+    from: '2026-11-24',
+    serial: '031',
+  }
+  await waitFor(() =>
+    expect(Object.fromEntries(new URLSearchParams(window.location.search))).toEqual(expected),
+  )
+  for (const route of ['GET /trims', 'GET /history/count']) {
+    await waitFor(() =>
+      expect(Object.fromEntries(server.sent(route).at(-1)?.query ?? [])).toMatchObject(expected),
+    )
+  }
+  await user.selectOptions(screen.getByLabelText('design'), '')
+  await waitFor(() => expect(window.location.search).not.toContain('revision'))
+})
+
+test('a day that is none is said at its field and asked of nobody', async () => {
+  const { user, server } = open('/history')
+  await link(120)
+  await user.type(screen.getByLabelText('from'), 'yesterday{Enter}')
+  expect(screen.getByLabelText('from')).toHaveAccessibleDescription('A day, UTC, such as 2026-11-24.')
+  expect(server.asked.some((one) => one.query.has('from'))).toBe(false)
+})
+
+test('an export asks for exactly what is filtered, shows how far it is, and a cut one makes no file', async () => {
+  const made: Blob[] = []
+  vi.stubGlobal(
+    'URL',
+    Object.assign(URL, {
+      createObjectURL: (blob: Blob) => made.push(blob),
+      revokeObjectURL: () => undefined,
+    }),
+  )
+  const { user, server } = open('/history?verdict=suspect')
+  await link(117)
+  server.on('GET /history/export.csv', () => new Response('number,unit\n1,A\n2,B\n'))
+  focusPage()
+  await user.keyboard('e')
+  await user.click(await screen.findByRole('button', { name: /^CSV, about 23 kB/ }))
+  await screen.findByText('2 records, 20 B, handed to the browser.')
+  expect(server.sent('GET /history/export.csv').at(-1)?.query.toString()).toBe('verdict=suspect')
+  expect(made).toHaveLength(1)
+  const cut = new ReadableStream({
+    start: (controller) => controller.enqueue(new TextEncoder().encode('{}\n')),
+    pull: (controller) => controller.error(new TypeError('terminated')),
+  })
+  server.on('GET /history/export.ndjson', () => new Response(cut))
+  await user.click(screen.getByRole('button', { name: /^JSON lines/ }))
+  await screen.findByText('The export was cut on its way; no file was made. Start it again.')
+  expect(made).toHaveLength(1)
 })

@@ -209,6 +209,11 @@ export const instruments: Instrument[] = [
   instrument('DMM-02', -400, { retiredAt: '2026-01-09T10:00:00Z' }),
 ]
 
+export const recorders = [
+  { id: 'demoA000', name: 'Station A script' },
+  { id: '33333333-3333-4333-8333-333333333333', name: 'T. Ruiz' },
+]
+
 export const stations: Station[] = [
   {
     id: '11111111-1111-4111-8111-111111111111',

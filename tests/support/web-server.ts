@@ -101,6 +101,8 @@ function answers(state: State): [string, Answer][] {
     ['GET /designs/DBS-A/revisions/2', inside(() => json(fixtures.revision(2)))],
     ['GET /designs/DBS-A/revisions/:number', inside(() => json(fixtures.revision(1)))],
     ['GET /trims', inside(listRecords)],
+    ['GET /history/count', inside(() => json({ count: total, more: false }))],
+    ['GET /history/recorders', inside(() => json({ items: fixtures.recorders, next: null }))],
     ['GET /trims/:id', inside((asked) => oneRecord(state, asked))],
     ['GET /stations', inside(() => json({ items: fixtures.stations }))],
     ['GET /instruments', inside(() => json({ items: fixtures.instruments, overdueAllowed: false }))],
@@ -116,6 +118,7 @@ function listRecords({ query }: Asked): Response {
   const lines = Array.from({ length: total }, (_, i) => fixtures.recordLine(total - i)).filter(
     (line) =>
       (!query.has('unit') || line.unit === query.get('unit')) &&
+      line.unit.startsWith(query.get('serial') ?? '') &&
       (!query.has('design') || line.design === query.get('design')) &&
       (!query.has('kind') || line.kind === query.get('kind')) &&
       (!query.has('verdict') || line.verdict === query.get('verdict')),

@@ -1,57 +1,114 @@
-import { type KeyboardEvent, type Ref, useEffect, useState } from 'react'
-import { limits } from '../../../shared/limits.ts'
+import type { Ref } from 'react'
 import { Button } from '../../ui/button.tsx'
-import { Field } from '../../ui/field.tsx'
-import { Select, TextInput } from '../../ui/input.tsx'
 import { KeyHint } from '../../ui/key-hint.tsx'
 import { verdictWord } from '../../ui/verdict.tsx'
-import { type Filters, kindChoices, verdictChoices } from './filters.ts'
+import { ChoiceFilter, type ChoiceOption, TextFilter } from './filter-fields.tsx'
+import {
+  attemptChoices,
+  type FilterName,
+  type Filters,
+  isFilterValue,
+  kindChoices,
+  verdictChoices,
+} from './filters.ts'
 import { kindWord } from './words.ts'
 
-const inForce = 'border-b-2! border-ink! font-semibold'
+/** What the lists of choices hold, as far as it has been read. */
+export type FilterChoices = {
+  designs: readonly string[]
+  stations: readonly ChoiceOption[]
+  recorders: readonly ChoiceOption[]
+}
 
 /** A row of filters that reads as a sentence; the ones in force are underlined in ink. */
 export function FilterRow({
   filters,
-  designs,
+  choices,
   onChange,
   onClear,
   unitRef,
 }: {
   filters: Filters
-  designs: readonly string[]
-  onChange: (name: keyof Filters, value: string) => void
+  choices: FilterChoices
+  onChange: (change: Filters) => void
   onClear: () => void
   unitRef: Ref<HTMLInputElement>
 }) {
   const count = Object.keys(filters).length
-  // A design of the address that is not in the list (not loaded, or not open to this person) stays choosable.
-  const choices = filters.design && !designs.includes(filters.design) ? [filters.design, ...designs] : designs
+  const given = (name: FilterName) => filters[name] ?? ''
+  const set = (name: FilterName) => (value: string) => onChange({ [name]: value })
   return (
     <form
       aria-label="Filters"
       onSubmit={(event) => event.preventDefault()}
-      className="flex flex-wrap items-baseline gap-x-5 gap-y-1.5 py-2 print:hidden"
+      className="flex flex-wrap items-baseline gap-x-4 gap-y-1.5 py-2 print:hidden"
     >
-      <UnitFilter value={filters.unit ?? ''} onChange={(unit) => onChange('unit', unit)} inputRef={unitRef} />
-      <Choice
+      <TextFilter
+        label="unit"
+        value={filters.unit ?? given('serial')}
+        width="w-28!"
+        isValid={(text) => isFilterValue('serial', text)}
+        wrong="At most 64 characters."
+        onChange={(serial) => onChange({ serial, unit: '' })}
+        inputRef={unitRef}
+      />
+      <TextFilter
+        label="lot"
+        value={given('lot').replaceAll(',', ', ')}
+        width="w-28!"
+        isValid={(text) => isFilterValue('lot', tight(text))}
+        wrong="Lots with commas between, such as 2409, 2417."
+        onChange={(text) => onChange({ lot: tight(text) })}
+      />
+      <ChoiceFilter
         label="design"
-        value={filters.design ?? ''}
-        choices={choices.map((key) => [key, key])}
-        onChange={(value) => onChange('design', value)}
+        value={given('design')}
+        choices={choices.designs.map((key) => [key, key])}
+        onChange={set('design')}
       />
-      <Choice
+      {filters.design && !filters.design.includes(',') ? (
+        <TextFilter
+          label="revision"
+          value={given('revision')}
+          width="w-12!"
+          isValid={(text) => isFilterValue('revision', text)}
+          wrong="A whole number."
+          onChange={set('revision')}
+        />
+      ) : null}
+      <ChoiceFilter
         label="kind"
-        value={filters.kind ?? ''}
+        value={given('kind')}
         choices={kindChoices.map((kind) => [kind, kindWord({ kind, pass: 1 })])}
-        onChange={(value) => onChange('kind', value)}
+        onChange={set('kind')}
       />
-      <Choice
+      <ChoiceFilter
+        label="station"
+        value={given('station')}
+        choices={choices.stations}
+        onChange={set('station')}
+      />
+      <ChoiceFilter
+        label="by"
+        none="anyone"
+        value={given('by')}
+        choices={choices.recorders}
+        onChange={set('by')}
+      />
+      <ChoiceFilter
         label="verdict"
-        value={filters.verdict ?? ''}
+        value={given('verdict')}
         choices={verdictChoices.map((verdict) => [verdict, verdictWord(verdict)])}
-        onChange={(value) => onChange('verdict', value)}
+        onChange={set('verdict')}
       />
+      <ChoiceFilter
+        label="attempt"
+        value={given('attempt')}
+        choices={attemptChoices.map((least) => [least, `${least} or more`])}
+        onChange={set('attempt')}
+      />
+      <DayFilter label="from" none="the first" value={given('from')} onChange={set('from')} />
+      <DayFilter label="to" none="now" value={given('to')} onChange={set('to')} />
       {count > 0 ? (
         <Button look="quiet" className="text-small" onClick={onClear}>
           {count === 1 ? 'clear the filter' : `clear ${count} filters`}
@@ -61,6 +118,30 @@ export function FilterRow({
     </form>
   )
 }
+
+/** Written as the address has it: 2026-11-24, or with a time. */
+function DayFilter(props: {
+  label: 'from' | 'to'
+  none: string
+  value: string
+  onChange: (value: string) => void
+}) {
+  return (
+    <TextFilter
+      {...props}
+      width="w-24!"
+      isValid={(text) => isFilterValue(props.label, text)}
+      wrong="A day, UTC, such as 2026-11-24."
+    />
+  )
+}
+
+const tight = (text: string) =>
+  text
+    .split(',')
+    .map((part) => part.trim())
+    .filter((part) => part !== '')
+    .join(',')
 
 function FilterKeys() {
   return (
@@ -75,72 +156,5 @@ function FilterKeys() {
         <KeyHint keys="Enter" /> open
       </span>
     </span>
-  )
-}
-
-function Choice({
-  label,
-  value,
-  choices,
-  onChange,
-}: {
-  label: string
-  value: string
-  choices: readonly (readonly [string, string])[]
-  onChange: (value: string) => void
-}) {
-  return (
-    <Field label={label} layout="inline">
-      <Select
-        value={value}
-        className={value === '' ? '' : inForce}
-        onChange={(event) => onChange(event.target.value)}
-      >
-        <option value="">any</option>
-        {choices.map(([choice, word]) => (
-          <option key={choice} value={choice}>
-            {word}
-          </option>
-        ))}
-      </Select>
-    </Field>
-  )
-}
-
-/** Taken on Enter and on leaving the field, not on each letter: each change is a page of its own in the history. */
-function UnitFilter({
-  value,
-  onChange,
-  inputRef,
-}: {
-  value: string
-  onChange: (unit: string) => void
-  inputRef: Ref<HTMLInputElement>
-}) {
-  const [typed, setTyped] = useState(value)
-  useEffect(() => setTyped(value), [value])
-  const take = () => {
-    if (typed.trim() !== value) onChange(typed.trim())
-  }
-  const onKeyDown = (event: KeyboardEvent<HTMLInputElement>) => {
-    if (event.key === 'Enter') take()
-    if (event.key === 'Escape') {
-      setTyped(value)
-      event.currentTarget.blur()
-    }
-  }
-  return (
-    <Field label="unit" layout="inline">
-      <TextInput
-        ref={inputRef}
-        value={typed}
-        placeholder="any"
-        maxLength={limits.serialMax}
-        className={`w-36! ${value === '' ? '' : inForce}`}
-        onChange={(event) => setTyped(event.target.value)}
-        onBlur={take}
-        onKeyDown={onKeyDown}
-      />
-    </Field>
   )
 }

@@ -1,35 +1,40 @@
-import { designKey, outcome, serial, verdict } from '../../../shared/contract/primitives.ts'
-import { type Kind, kind, type RecordLine } from '../../../shared/contract/record.ts'
+import { recordFilters } from '../../../shared/contract/history.ts'
+import { outcome, verdict } from '../../../shared/contract/primitives.ts'
+import { kind } from '../../../shared/contract/record.ts'
 
-/** What History can be narrowed to, exactly as it stands in the address. */
-export type Filters = {
-  unit?: string
-  design?: string
-  kind?: Kind
-  verdict?: NonNullable<RecordLine['verdict']>
-}
+export type FilterName = keyof typeof recordFilters
+/** What History is narrowed to, exactly as it stands in the address: the address is the saved view. */
+export type Filters = { [Name in FilterName]?: string }
 
-const known = { unit: serial, design: designKey, kind, verdict: verdict.or(outcome) }
-export const filterNames = ['unit', 'design', 'kind', 'verdict'] as const
+export const filterNames = Object.keys(recordFilters) as FilterName[]
 
 /** Reads the filters of an address; what is no filter value is left out. */
 export function readFilters(search: URLSearchParams): Filters {
-  const filters: { [K in keyof Filters]: unknown } = {}
+  const filters: Filters = {}
   for (const name of filterNames) {
-    const read = known[name].safeParse(search.get(name) ?? undefined)
-    if (read.success) filters[name] = read.data
+    const value = search.get(name)
+    if (value !== null && isFilterValue(name, value)) filters[name] = value
   }
-  return filters as Filters
+  return filters
 }
 
-/** An address with one filter changed; the page starts again at the newest record. */
-export function withFilter(search: URLSearchParams, name: keyof Filters, value: string): URLSearchParams {
+export const isFilterValue = (name: FilterName, value: string): boolean =>
+  recordFilters[name].safeParse(value).success
+
+/** An address with some filters changed, empty ones taken away; the page starts again at the newest record. */
+export function withFilters(search: URLSearchParams, change: Filters): URLSearchParams {
   const next = new URLSearchParams(search)
   next.delete('after')
-  if (value === '') next.delete(name)
-  else next.set(name, value)
+  for (const [name, value] of Object.entries(change)) {
+    if (value === '') next.delete(name)
+    else next.set(name, value)
+  }
+  // A revision is one of a design.
+  if (!next.has('design') || next.get('design')?.includes(',')) next.delete('revision')
   return next
 }
 
 export const verdictChoices = [...verdict.options, ...outcome.options] as const
 export const kindChoices = kind.options
+/** From how many measurements of a unit on one day it is worth a look. */
+export const attemptChoices = ['2', '3', '5', '10'] as const

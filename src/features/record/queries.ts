@@ -6,6 +6,7 @@ import {
   useQueryClient,
 } from '@tanstack/react-query'
 import { useRef } from 'react'
+import { countRecords, listRecorders } from '../../../shared/contract/history.ts'
 import type { Record as TrimRecord } from '../../../shared/contract/record.ts'
 import { getTrim, listTrims, postTrim } from '../../../shared/contract/trims.ts'
 import { isOgeeError } from '../../../shared/errors.ts'
@@ -19,6 +20,20 @@ export const recordsOptions = (filters: Filters, after: string | undefined) =>
     placeholderData: keepPreviousData,
     staleTime: 5_000,
   })
+
+/** How many match: told beside the list when it has been counted, which the list does not wait for. */
+export const countOptions = (filters: Filters) =>
+  queryOptions({
+    queryKey: ['records', 'count', filters],
+    queryFn: ({ signal }) => api(countRecords, { query: filters }, signal),
+    staleTime: 30_000,
+  })
+
+export const recordersOptions = queryOptions({
+  queryKey: ['records', 'recorders'],
+  queryFn: ({ signal }) => api(listRecorders, {}, signal),
+  staleTime: 60_000,
+})
 
 /** A record itself never changes; its notices and its place in the ledger may still come. */
 export const recordOptions = (id: string) =>

@@ -25,6 +25,9 @@ export function RecordTable({ records, row }: { records: readonly RecordLine[]; 
           <Th align="right" className={onlyWide}>
             pass
           </Th>
+          <Th align="right" className={onlyWide}>
+            att.
+          </Th>
           <Th align="right" unit="ppm" className="text-copper">
             gain error
           </Th>
@@ -73,6 +76,9 @@ function RecordRow({ record, index, current }: { record: RecordLine; index: numb
       <Td align="right" className={onlyWide}>
         {record.pass}
       </Td>
+      <Td align="right" className={onlyWide}>
+        <Attempt attempt={record.attempt} />
+      </Td>
       <Td align="right">{numberOr(record.gainErrorPpm, 2, 1, true)}</Td>
       <Td align="right">{numberOr(record.offsetErrorV, 1, 1e6, true)}</Td>
       <Td align="right" className={onlyWide}>
@@ -87,6 +93,17 @@ function RecordRow({ record, index, current }: { record: RecordLine; index: numb
       <Td>{record.verdict ? <Verdict verdict={record.verdict} /> : <None />}</Td>
       <Td className={onlyWide}>{byText(record.by, record.station)}</Td>
     </tr>
+  )
+}
+
+/** Measured once is the rule and stays quiet; again and again on one day is seen. */
+function Attempt({ attempt }: { attempt: number | null }) {
+  if (attempt === null) return <None />
+  if (attempt === 1) return <span className="text-ink-2">1</span>
+  return (
+    <span className="font-semibold" title={`measured ${attempt} times that day`}>
+      {attempt}
+    </span>
   )
 }
 

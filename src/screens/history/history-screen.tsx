@@ -1,10 +1,9 @@
-import { useInfiniteQuery, useQuery } from '@tanstack/react-query'
-import { useEffect, useRef } from 'react'
+import { useQuery } from '@tanstack/react-query'
+import { useEffect, useRef, useState } from 'react'
 import { useSearchParams } from 'react-router-dom'
-import { designsOptions } from '../../features/design/queries.ts'
 import { FilterRow } from '../../features/record/filter-row.tsx'
-import { readFilters, withFilter } from '../../features/record/filters.ts'
-import { recordsOptions } from '../../features/record/queries.ts'
+import { readFilters, withFilters } from '../../features/record/filters.ts'
+import { countOptions, recordsOptions } from '../../features/record/queries.ts'
 import { RecordList, RecordTable } from '../../features/record/record-table.tsx'
 import { useKeys } from '../../lib/keys.ts'
 import { Button } from '../../ui/button.tsx'
@@ -14,8 +13,11 @@ import { PageHead } from '../../ui/page-head.tsx'
 import { PageProblem } from '../../ui/page-problem.tsx'
 import { Problem } from '../../ui/problem.tsx'
 import { useMedia } from '../../ui/use-media.ts'
+import { HistoryExport } from './history-export.tsx'
 import { HistoryFoot } from './history-foot.tsx'
+import { HistoryState } from './history-state.tsx'
 import { NoRecords } from './no-records.tsx'
+import { useChoices } from './use-choices.ts'
 import { usePages } from './use-pages.ts'
 import { useRows } from './use-rows.ts'
 
@@ -27,7 +29,9 @@ export default function HistoryScreen() {
   const filters = readFilters(search)
   const after = search.get('after') ?? undefined
   const records = useQuery(recordsOptions(filters, after))
-  const designs = useInfiniteQuery(designsOptions)
+  const counted = useQuery(countOptions(filters))
+  const choices = useChoices()
+  const [exporting, setExporting] = useState(false)
   const wide = useMedia('(min-width: 48rem)', true)
   const unit = useRef<HTMLInputElement>(null)
   const items = records.data?.items ?? []
@@ -43,6 +47,7 @@ export default function HistoryScreen() {
     { keys: 'Enter', does: 'open the record', run: rows.open },
     { keys: ']', does: 'older records', run: pages.older },
     { keys: '[', does: 'newer records', run: pages.newer },
+    { keys: 'e', does: 'export what is filtered', run: () => setExporting(true) },
     { keys: 'c', does: 'copy the link to this view', run: copyLink },
   ])
   if (records.error && !records.data) {
@@ -61,13 +66,22 @@ export default function HistoryScreen() {
       <PageHead
         place="History"
         title="Records"
-        state={records.isFetching && records.data ? 'reading' : 'newest first'}
-        acts={<Button onClick={copyLink}>Copy link to this view</Button>}
+        state={
+          <HistoryState counted={counted.data} isReading={records.isFetching && records.data !== undefined} />
+        }
+        acts={
+          <>
+            <Button look="quiet" onClick={() => setExporting(true)}>
+              Export
+            </Button>
+            <Button onClick={copyLink}>Copy link to this view</Button>
+          </>
+        }
       />
       <FilterRow
         filters={filters}
-        designs={designs.data?.pages.flatMap((page) => page.items.map((design) => design.key)) ?? []}
-        onChange={(name, value) => setSearch(withFilter(search, name, value))}
+        choices={choices}
+        onChange={(change) => setSearch(withFilters(search, change))}
         onClear={() => setSearch(new URLSearchParams())}
         unitRef={unit}
       />
@@ -78,6 +92,9 @@ export default function HistoryScreen() {
       ) : null}
       {items.length > 0 ? <List records={items} row={rows.row} /> : null}
       <HistoryFoot records={items} pages={pages} />
+      {exporting ? (
+        <HistoryExport filters={filters} counted={counted.data} onClose={() => setExporting(false)} />
+      ) : null}
     </>
   )
 }

@@ -9,7 +9,10 @@ export function NoRecords({ filters, older }: { filters: Filters; older: boolean
     return (
       <Empty>
         No record matches.
-        {filters.unit ? ` Unit ${filters.unit} has none here; serials match whole and case counts.` : ''}
+        {filters.unit ? ` Unit ${filters.unit} has none here; case counts.` : ''}
+        {filters.serial
+          ? ` No serial here, and no part of one behind a dash, begins with ${filters.serial}; case counts.`
+          : ''}
       </Empty>
     )
   }
