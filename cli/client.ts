@@ -1,4 +1,4 @@
-import { call } from '../shared/call.ts'
+import { type Caller, call, callPage } from '../shared/call.ts'
 import type { Endpoint, InputOf, ReplyOf } from '../shared/contract/endpoint.ts'
 import { errorTable, OgeeError } from '../shared/errors.ts'
 import type { Connection } from './config.ts'
@@ -13,19 +13,29 @@ export type Client = {
   url: string
   /** Calls an endpoint, again where that can help. Safe: what writes carries the same idempotency key each time. */
   call: <E extends Endpoint>(endpoint: E, input: InputOf<E>) => Promise<ReplyOf<E>>
+  /** Calls an endpoint that answers lines, and gives them once all have come. */
+  page: <E extends Endpoint>(endpoint: E, input: InputOf<E>) => Promise<Uint8Array[]>
 }
+
+/** One try. */
+type Ask<T> = (caller: Caller) => Promise<T>
 
 /** What is known of the last answer, beside its body. */
 type Seen = { reached: boolean; status: number | undefined; retryAfterMs: number | undefined }
 
 export function makeClient({ url, token }: Connection, io: Io, patience = usualPatience): Client {
-  return { url, call: (endpoint, input) => callPatiently(endpoint, input) }
+  return {
+    url,
+    call: <E extends Endpoint>(endpoint: E, input: InputOf<E>) =>
+      patiently<ReplyOf<E>>((caller) => call(caller, endpoint, input)),
+    page: (endpoint, input) => patiently((caller) => callPage(caller, endpoint, input)),
+  }
 
-  async function callPatiently<E extends Endpoint>(endpoint: E, input: InputOf<E>): Promise<ReplyOf<E>> {
+  async function patiently<T>(ask: Ask<T>): Promise<T> {
     const seen: Seen = { reached: false, status: undefined, retryAfterMs: undefined }
     let waitedMs = 0
     for (let attempt = 1; ; attempt += 1) {
-      const trouble = await once(endpoint, input, seen).catch((error: unknown) => troubleOf(error, seen))
+      const trouble = await once(ask, seen).catch((error: unknown) => troubleOf(error, seen))
       if (!(trouble instanceof OgeeError)) return trouble
       const waitMs = seen.retryAfterMs ?? backoff(patience.firstWaitMs, attempt)
       const again =
@@ -39,17 +49,20 @@ export function makeClient({ url, token }: Connection, io: Io, patience = usualP
     }
   }
 
-  async function once<E extends Endpoint>(endpoint: E, input: InputOf<E>, seen: Seen): Promise<ReplyOf<E>> {
+  async function once<T>(ask: Ask<T>, seen: Seen): Promise<T> {
     seen.status = undefined
     seen.retryAfterMs = undefined
     const limit = AbortSignal.timeout(patience.answerMs)
     const caller = {
       baseUrl: url,
-      headers: { authorization: `Bearer ${token}`, 'user-agent': `ogee/${version}` },
+      headers: {
+        ...(token === null ? {} : { authorization: `Bearer ${token}` }),
+        'user-agent': `ogee/${version}`,
+      },
       fetch: (target: string | URL | Request, init?: RequestInit) =>
         watched(target, { ...init, signal: limit }, seen, io),
     }
-    return await call(caller, endpoint, input)
+    return await ask(caller)
   }
 }
 

@@ -136,6 +136,27 @@ export const commandTable: readonly Entry[] = [
     ],
   },
   {
+    name: 'ledger',
+    summary: 'The ledger as a whole',
+    verbs: [
+      {
+        name: 'checkpoint',
+        summary: 'The newest signed checkpoint, to keep elsewhere',
+        load: async () => (await import('./commands/ledger/checkpoint.ts')).ledgerCheckpointCommand,
+      },
+      {
+        name: 'check',
+        summary: 'Whether anything was changed, removed or put in',
+        load: async () => (await import('./commands/ledger/check.ts')).ledgerCheckCommand,
+      },
+      {
+        name: 'consistency',
+        summary: 'Whether an older checkpoint still stands',
+        load: async () => (await import('./commands/ledger/consistency.ts')).ledgerConsistencyCommand,
+      },
+    ],
+  },
+  {
     name: 'whoami',
     summary: 'Who the token stands for, and which server answers',
     load: async () => (await import('./commands/whoami.ts')).whoamiCommand,

@@ -3,7 +3,7 @@ import { parseJson, readFileText } from './files.ts'
 import type { Io } from './io.ts'
 
 /** Where the server is and what to show it. The token never stands in an argument, a message or a log. */
-export type Connection = { url: string; token: string }
+export type Connection = { url: string; token: string | null }
 export type ConnectionOptions = { url: string | undefined; tokenFile: string | undefined }
 
 const configMaxBytes = 64 * 1024
@@ -16,8 +16,12 @@ export function configFile(env: Io['env']): string {
   return `${given?.startsWith('/') ? given : `${home}/.config`}/ogee/config.json`
 }
 
-/** Flags go before the environment, and that before the config file. */
-export async function connectionFor(options: ConnectionOptions, io: Io): Promise<Connection> {
+/** Flags go before the environment, and that before the config file. What is open to everybody needs no token. */
+export async function connectionFor(
+  options: ConnectionOptions,
+  io: Io,
+  needsToken = true,
+): Promise<Connection> {
   const path = configFile(io.env)
   const config = await readConfig(path)
   const url = options.url ?? (io.env.OGEE_URL || config.url)
@@ -30,15 +34,15 @@ export async function connectionFor(options: ConnectionOptions, io: Io): Promise
   const token = options.tokenFile
     ? usable((await secretText(options.tokenFile)).trim(), options.tokenFile)
     : usable((io.env.OGEE_TOKEN || config.token)?.trim(), io.env.OGEE_TOKEN ? 'OGEE_TOKEN' : path)
-  if (token === undefined) {
+  if (token === undefined && needsToken) {
     throw new OgeeError(
       'configuration',
       `There is no token. Set OGEE_TOKEN, give --token-file, or write "token" into ${path} (mode 0600).`,
     )
   }
   const checked = checkUrl(url)
-  warnInClear(checked, io)
-  return { url: checked.origin, token }
+  if (token !== undefined) warnInClear(checked, io)
+  return { url: checked.origin, token: token ?? null }
 }
 
 async function readConfig(path: string): Promise<{ url?: string; token?: string }> {

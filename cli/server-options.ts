@@ -24,6 +24,11 @@ export function readConnection({ options }: Given): ConnectionOptions {
   return { url: text(options.url), tokenFile: text(options.tokenFile) }
 }
 
+/** For what is open to everybody: a token is used when there is one, and not asked for. */
+export async function connectOpen(options: ConnectionOptions, { io }: Context): Promise<Client> {
+  return makeClient(await connectionFor(options, io, false), io)
+}
+
 export async function connect(options: ConnectionOptions, { io }: Context): Promise<Client> {
   return makeClient(await connectionFor(options, io), io)
 }

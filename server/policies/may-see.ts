@@ -36,6 +36,17 @@ export function requireDesign(principal: Principal, design: string): void {
   if (!maySeeDesign(principal, design)) throw designNotOpen()
 }
 
+/** The whole ledger holds records of every design. */
+export function requireEveryDesign(principal: Principal): void {
+  if (principal.kind === 'person' || principal.designs === null) return
+  const { length } = principal.designs
+  throw new OgeeError(
+    'insufficient-scope',
+    `The token is for ${length === 1 ? 'one design' : `${length} designs`} only. The whole ledger needs one for every design.`,
+    { facts: { scope: 'ledger:read' } },
+  )
+}
+
 /** The same for what is not there and what is not open, so that neither can be told from the other. */
 export const designNotOpen = () =>
   new OgeeError('not-found', 'There is no such design or revision, or it is not open to you.')

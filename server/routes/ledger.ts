@@ -1,10 +1,14 @@
 import { getCheckpoint, getConsistency, getLedgerKey, getProof } from '../../shared/contract/ledger.ts'
+import { listCheckpoints, listEntries, listKeys, listStrays } from '../../shared/contract/ledger-entries.ts'
 import { OgeeError } from '../../shared/errors.ts'
 import { verifierKey } from '../../shared/ledger/checkpoint.ts'
-import type { Serve } from '../http/serve.ts'
+import { ReadyLines, type Serve } from '../http/serve.ts'
+import { readCheckpoints, readKeys } from '../ledger/checkpoints.ts'
 import { sha256 } from '../ledger/crypto.ts'
+import { entryLines } from '../ledger/entries.ts'
 import { newestCheckpoint, proveConsistency, proveRecord } from '../ledger/prove.ts'
-import { mayProveRecord } from '../policies/may-see.ts'
+import { readStrays } from '../ledger/strays.ts'
+import { mayProveRecord, requireEveryDesign } from '../policies/may-see.ts'
 import type { RouteDeps } from './route-deps.ts'
 
 export function ledgerRoutes(serve: Serve, { database, signer }: RouteDeps): void {
@@ -21,5 +25,19 @@ export function ledgerRoutes(serve: Serve, { database, signer }: RouteDeps): voi
       throw new OgeeError('not-found', 'There is no such record, or it is not open to you.')
     }
     return proveRecord(database.sql, params.recordId)
+  })
+
+  serve(listKeys, async () => ({ items: await readKeys(database.sql) }))
+
+  serve(listCheckpoints, async ({ query }) => readCheckpoints(database.sql, query))
+
+  serve(listEntries, async ({ query, principal }) => {
+    requireEveryDesign(principal)
+    return new ReadyLines(entryLines(database, query))
+  })
+
+  serve(listStrays, async ({ query, principal }) => {
+    requireEveryDesign(principal)
+    return readStrays(database.sql, query.after)
   })
 }

@@ -33,10 +33,12 @@ export function sameBytes(a: Uint8Array, b: Uint8Array): boolean {
   return a.length === b.length && a.every((byte, i) => byte === b[i])
 }
 
+const hexOf = Array.from({ length: 256 }, (_, byte) => byte.toString(16).padStart(2, '0'))
+
 /** Lower-case hexadecimal digits of bytes. */
 export function toHex(bytes: Uint8Array): string {
   let text = ''
-  for (const byte of bytes) text += byte.toString(16).padStart(2, '0')
+  for (const byte of bytes) text += hexOf[byte]
   return text
 }
 

@@ -14,6 +14,7 @@ import { FakeServer, json, problem } from './support/fake-server.ts'
 const cli = builtCli()
 const server = new FakeServer()
 const ledger = memoryLedger(plainBodies(3).map((body, i) => (i === 0 ? { ...body, id: recordIds[0] } : body)))
+const lone = memoryLedger([], ledger.signer)
 const names = commandTable.flatMap((entry) =>
   'verbs' in entry ? entry.verbs.map(({ name }) => `${entry.name} ${name}`) : [entry.name],
 )
@@ -45,8 +46,22 @@ function answerEverything(): void {
     [/\/trims\?/, () => ({ items: [line(7), line(6)], next: null })],
     [/\/trims$/, recordOf],
     [/\/ledger\/proof\//, () => ledger.proofOf(0)],
+    [/\/ledger\/keys$/, () => lone.answers.keys],
+    [/\/ledger\/checkpoints\?/, () => lone.answers.checkpoints],
+    [/\/ledger\/consistency\?/, () => lone.answers.consistency],
+    [/\/ledger\/strays\?/, () => ({ items: [], next: null })],
+  ]
+  const texts: [RegExp, string][] = [
+    [/\/ledger\/key$/, lone.pub],
+    [/\/ledger\/checkpoint$/, lone.note],
+    [/\/ledger\/entries\?/, lone.answers.entries],
   ]
   server.willAnswer((seen, response) => {
+    const [, text] = texts.find(([path]) => path.test(seen.path)) ?? []
+    if (text !== undefined) {
+      response.end(text)
+      return
+    }
     const route = routes.find(([path]) => path.test(seen.path))
     if (!route) problem('not-found')(seen, response)
     else json(seen.method === 'POST' ? 201 : 200, route[1](seen))(seen, response)
@@ -66,6 +81,7 @@ beforeAll(async () => {
   writeFileSync(join(cli.folder, 'serials.csv'), 'unit\n031\n032\n')
   writeFileSync(join(cli.folder, 'ogee.pub'), ledger.pub)
   writeFileSync(join(cli.folder, 'proof.json'), JSON.stringify(ledger.proofOf(0)))
+  writeFileSync(join(cli.folder, 'checkpoint.txt'), lone.note)
   mkdirSync(join(cli.folder, 'spool/sent'), { recursive: true })
   writeFileSync(join(cli.folder, 'spool/sent/1.json'), JSON.stringify(ledger.receiptOf(0)))
   answerEverything()

@@ -1,6 +1,7 @@
 import { sha256 } from '../../server/ledger/crypto.ts'
 import type { Proof } from '../../shared/contract/proof.ts'
 import { canonicalBytes, type Json } from '../../shared/ledger/canonical.ts'
+import { entryLine } from '../../shared/ledger/check/entry-line.ts'
 import { signCheckpoint, verifierKey } from '../../shared/ledger/checkpoint.ts'
 import { toBase64, toHex } from '../../shared/ledger/hash.ts'
 import { type LeafKind, leafBytes, leafHash } from '../../shared/ledger/leaf.ts'
@@ -40,6 +41,28 @@ export function memoryLedger(records: readonly RecordBody[], signer = testKey())
     leaves,
     note,
     pub: `${verifierKey(sha256, signer.key)}\n`,
+    /** What a server answers about a ledger that holds its key and nothing else. */
+    answers: {
+      keys: {
+        items: [{ number: 1, key: verifierKey(sha256, signer.key), at: first.at, statement: null }],
+      },
+      checkpoints: {
+        items: [{ number: 1, size, root: toHex(checkpoint.root), at: first.at, note }],
+        next: null,
+      },
+      entries: `${leaves
+        .map(({ kind, at, bytes, hash }, index) => {
+          const text = new TextDecoder().decode(leafBytes(kind, at, bytes))
+          return `${entryLine({ index, nodes: toHex(hash), hash: toHex(hash), row: null }, text)}\n`
+        })
+        .join('')}${JSON.stringify({ end: true, size, next: null })}\n`,
+      consistency: {
+        format: 'ogee.consistency/1',
+        from: { size, root: toHex(checkpoint.root) },
+        to: { size, root: toHex(checkpoint.root) },
+        path: [],
+      },
+    },
     /** Of the record at that place of the list given. */
     proofOf: (record: number): Proof => {
       const index = record + 1

@@ -1,5 +1,5 @@
 import { proofFailsExit } from '../../../shared/contract/exit.ts'
-import { getLedgerKey, getProof } from '../../../shared/contract/ledger.ts'
+import { getProof } from '../../../shared/contract/ledger.ts'
 import type { Receipt } from '../../../shared/contract/receipt.ts'
 import { isOgeeError, OgeeError } from '../../../shared/errors.ts'
 import { type CheckedReceipt, checkIncluded } from '../../../shared/ledger/check-receipt.ts'
@@ -8,7 +8,7 @@ import type { Client } from '../../client.ts'
 import { type Command, type Context, everyFormat } from '../../command.ts'
 import type { ConnectionOptions } from '../../config.ts'
 import { crypto } from '../../ledger/crypto.ts'
-import { keyOf, readKey } from '../../ledger/read-files.ts'
+import { keyFor, keyOption } from '../../ledger/key-options.ts'
 import { type FoundReceipt, findReceipts } from '../../ledger/receipt-files.ts'
 import { print, type Rendering } from '../../output.ts'
 import { connect, readConnection, serverAbout, serverOptions, text } from '../../server-options.ts'
@@ -23,14 +23,7 @@ export const proofReceiptsCommand: Command<Options> = {
     'for the proof that its record stands in the ledger. Ends with 16 when one does not check.\n' +
     `Give --key: a server that lies about its records may lie about its key too.\n\n${serverAbout}`,
   arguments: [{ name: '<folder>', says: 'spool folder, or any folder with receipts' }],
-  options: [
-    {
-      flags: '--key <file>',
-      says: "the ledger's public key, kept from before (default: as the server says)",
-      completes: 'file',
-    },
-    ...serverOptions,
-  ],
+  options: [keyOption, ...serverOptions],
   formats: everyFormat,
   examples: [
     {
@@ -50,10 +43,7 @@ async function receipts(options: Options, context: Context): Promise<number> {
   const found = await findReceipts(options.folder)
   if (found.length === 0) throw new OgeeError('input-missing', `There is no receipt in ${options.folder}.`)
   const client = await connect(options, context)
-  const key =
-    options.key === undefined
-      ? keyOf(await client.call(getLedgerKey, {}), "The server's key")
-      : await readKey(options.key)
+  const key = await keyFor(options.key, client)
   const lines: Line[] = []
   for (const one of found) {
     lines.push({

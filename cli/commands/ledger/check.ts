@@ -1,0 +1,107 @@
+import { proofFailsExit } from '../../../shared/contract/exit.ts'
+import { checkLedger, type LedgerReport } from '../../../shared/ledger/check/check-ledger.ts'
+import type { LedgerFault } from '../../../shared/ledger/check/faults.ts'
+import { type Command, type Context, everyFormat } from '../../command.ts'
+import type { ConnectionOptions } from '../../config.ts'
+import type { Io } from '../../io.ts'
+import { crypto } from '../../ledger/crypto.ts'
+import { readKept } from '../../ledger/kept-notes.ts'
+import { keyFor, keyOption } from '../../ledger/key-options.ts'
+import { serverSource } from '../../ledger/server-source.ts'
+import { verifyAll } from '../../ledger/verify-all.ts'
+import { print, type Rendering } from '../../output.ts'
+import { connect, readConnection, serverAbout, serverOptions, text } from '../../server-options.ts'
+import { pairs } from '../../table.ts'
+
+type Options = ConnectionOptions & {
+  key: string | undefined
+  against: readonly string[]
+  receipts: boolean
+}
+
+export const ledgerCheckCommand: Command<Options> = {
+  about:
+    'Reads everything and computes it again: leaves, tree, checkpoints, records, receipts, revisions. Ends with 16 and\n' +
+    'names the first entry that disagrees. Give the key and a checkpoint that were kept elsewhere: what was rewritten\n' +
+    'together with its checkpoints contradicts only those. Needs the scope ledger:read.\n\n' +
+    serverAbout,
+  options: [
+    {
+      flags: '--against <file...>',
+      says: 'checkpoints kept from before, which the ledger must still contain',
+      completes: 'file',
+    },
+    { flags: '--no-receipts', says: 'leave out the signatures of receipts, which take longest' },
+    keyOption,
+    ...serverOptions,
+  ],
+  formats: everyFormat,
+  examples: [
+    {
+      run: 'ogee ledger check --key ogee.pub --against checkpoint.txt',
+      says: 'Whether anything was changed, removed or put in.',
+    },
+  ],
+  read: (given) => ({
+    ...readConnection(given),
+    key: text(given.options.key),
+    against: Array.isArray(given.options.against) ? given.options.against : [],
+    receipts: given.options.receipts !== false,
+  }),
+  run: check,
+}
+
+async function check(options: Options, context: Context): Promise<number> {
+  const client = await connect(options, context)
+  const key = await keyFor(options.key, client)
+  const kept = (await Promise.all(options.against.map((path) => readKept(context.io, path)))).flat()
+  const report = await checkLedger(serverSource(client), {
+    crypto,
+    key,
+    kept,
+    verifyAll: options.receipts ? verifyAll : null,
+    onProgress: progress(context.io),
+  })
+  await print(rendering(report, key.name), context)
+  return report.ok ? 0 : proofFailsExit
+}
+
+/** A line a second, on a terminal only. */
+function progress(io: Io): (done: number, size: number) => void {
+  let said = io.now()
+  return (done, size) => {
+    if (!io.stderrIsTerminal || io.now() - said < 1_000) return
+    said = io.now()
+    io.say(`ogee: ${done} of ${size} entries`)
+  }
+}
+
+function rendering(report: LedgerReport, ledger: string): Rendering {
+  const [first] = report.faults
+  return {
+    json: { format: 'ogee.ledger-check/1', ledger, first: first ?? null, ...report },
+    lines: first ? report.faults : [{ ok: true, ledger, size: report.size, records: report.records }],
+    table: () => table(report, ledger),
+    csv: {
+      heads: ['what', 'entry', 'to', 'record', 'message'],
+      rows: report.faults.map((fault) => [fault.what, fault.entry, fault.to, fault.record, fault.message]),
+    },
+  }
+}
+
+const shown = 20
+
+function table(
+  { ok, size, records, checkpoints, kept, found, faults }: LedgerReport,
+  ledger: string,
+): string {
+  const facts: [string, string][] = [
+    ['Ledger', ledger],
+    ['Entries', `${size}, of them ${records} records`],
+    ['Checkpoints', `${checkpoints} stored, ${kept} kept elsewhere`],
+  ]
+  if (ok) return `✓ checks: everything agrees\n${pairs(facts)}`
+  const lines = faults.slice(0, shown).map(({ message }: LedgerFault) => `  ${message}\n`)
+  const more = found > shown ? `  and ${found - shown} more\n` : ''
+  return `✕ does not check, first:\n${lines.join('')}${more}${pairs(facts)}Tell whoever keeps the ledger.\n`
+}

@@ -1,0 +1,57 @@
+import { listCheckpoints, listEntries, listKeys, listStrays } from '../../shared/contract/ledger-entries.ts'
+import { OgeeError } from '../../shared/errors.ts'
+import type { LedgerSource } from '../../shared/ledger/check/check-ledger.ts'
+import { limits } from '../../shared/limits.ts'
+import type { Client } from '../client.ts'
+
+/** Entries of a request: some megabytes. */
+const entriesAtOnce = 2_000
+
+/** A server's ledger, read over its interface. */
+export function serverSource(client: Client): LedgerSource {
+  return {
+    keys: async () => (await client.call(listKeys, {})).items,
+    checkpoints: () =>
+      everyPage((after) =>
+        client.call(listCheckpoints, { query: { order: 'oldest', limit: limits.pageMax, ...after } }),
+      ),
+    entries: async (from) => {
+      const lines = await client.page(listEntries, { query: { from, limit: entriesAtOnce } })
+      const last = lines.pop()
+      return { lines, ...endOf(last) }
+    },
+    strays: async () => {
+      const found: Awaited<ReturnType<LedgerSource['strays']>>[number][] = []
+      for (let after: number | null = 0; after !== null; ) {
+        const page: { items: typeof found; next: number | null } = await client.call(listStrays, {
+          query: { after },
+        })
+        found.push(...page.items)
+        after = page.next
+      }
+      return found
+    },
+  }
+}
+
+/** The last line says that nothing was cut. */
+function endOf(line: Uint8Array | undefined): { next: number | null; size: number } {
+  const text = line ? Buffer.from(line).toString('utf8') : ''
+  const { end, next, size } = (text.startsWith('{"end":') ? JSON.parse(text) : {}) as Record<string, unknown>
+  if (end === true && (next === null || typeof next === 'number') && typeof size === 'number') {
+    return { next, size }
+  }
+  throw new OgeeError('answer-cut', 'The answer of the server was cut.')
+}
+
+async function everyPage<Item>(
+  read: (after: { after?: string }) => Promise<{ items: readonly Item[]; next: string | null }>,
+): Promise<Item[]> {
+  const items: Item[] = []
+  for (let after: string | null | undefined; after !== null; ) {
+    const page = await read(after === undefined ? {} : { after })
+    items.push(...page.items)
+    after = page.next
+  }
+  return items
+}

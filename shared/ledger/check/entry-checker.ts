@@ -1,0 +1,211 @@
+import type { RecordBody } from '../../contract/record.ts'
+import { canonicalBytes } from '../canonical.ts'
+import { keyName, type LedgerKey } from '../checkpoint.ts'
+import { fromBase64, type LedgerCrypto, sameBytes, toHex } from '../hash.ts'
+import { leafHash } from '../leaf.ts'
+import { restoreReceipt } from '../receipt.ts'
+import type { Entry } from './entry-line.ts'
+import type { FaultKind, Faults } from './faults.ts'
+import { type GrowingTree, growingTree } from './growing-tree.ts'
+import { rowDifference } from './record-row.ts'
+
+/** A root that was signed over so many entries. `name` says which one, in a sentence. */
+export type SignedRoot = {
+  size: number
+  root: Uint8Array
+  name: string
+  /** Kept outside of the server, and not only stored beside what it signs. */
+  kept: boolean
+}
+
+/** A signature that somebody has to check: that takes longest, and can be done aside. */
+export type SignatureTask = {
+  entry: number
+  record: string
+  publicKey: Uint8Array
+  bytes: Uint8Array
+  signature: Uint8Array
+}
+
+type Leaf = { at: string; body: unknown; kind: string }
+const decoder = new TextDecoder()
+
+/**
+ * Checks entries one after another: bytes against hash, hash against tree, tree against signed roots, row and receipt
+ * against bytes. Signatures of receipts are handed out, not checked here.
+ *
+ * Source: contract.md, Ledger; RFC 9162. Throws nothing for bad entries.
+ * @example new EntryChecker(crypto, keys, roots, collectFaults()).finish() // { size: 0, records: 0 }
+ */
+export class EntryChecker {
+  readonly #crypto: LedgerCrypto
+  readonly #keys: ReadonlyMap<string, LedgerKey>
+  readonly #roots: readonly SignedRoot[]
+  readonly #faults: Faults
+  readonly #tree: GrowingTree
+  #next = 0
+  #records = 0
+  /** Once one entry is wrong, every hash above it is too: the first says it all. */
+  #treeHolds = true
+  #root = 0
+  /** Entries up to here lead to a signed root; and to one that was kept. */
+  #signedTo = 0
+  #keptTo = 0
+  /** Verifier keys that leaves speak of, and when they came into force. */
+  readonly keysSeen: { key: string; at: string }[] = []
+
+  /**
+   * @param crypto SHA-256 and Ed25519.
+   * @param keys that the ledger was signed with, all of them vouched for.
+   * @param roots signed, in the order of their sizes.
+   * @param faults where to report.
+   */
+  constructor(
+    crypto: LedgerCrypto,
+    keys: readonly LedgerKey[],
+    roots: readonly SignedRoot[],
+    faults: Faults,
+  ) {
+    this.#crypto = crypto
+    this.#keys = new Map(keys.map((key) => [keyName(crypto.sha256, key), key]))
+    this.#roots = roots
+    this.#faults = faults
+    this.#tree = growingTree(crypto.sha256)
+    this.#compareRoots()
+  }
+
+  /** Takes the next entry; null for a line that could not be read. Gives the signature that has to be verified for it. */
+  take(entry: Entry | null): SignatureTask | null {
+    if (entry === null) {
+      this.#treeHolds = false
+      this.#fault('entry-unreadable', `Entry ${this.#next} cannot be read.`)
+      this.#next++
+      return null
+    }
+    if (entry.index !== this.#next) this.#missing(entry.index)
+    const task = this.#check(entry)
+    this.#next++
+    return task
+  }
+
+  /** What came of a signature. */
+  verified({ entry, record }: SignatureTask, isGood: boolean): void {
+    if (isGood) return
+    const message = `Entry ${entry}: the receipt of record ${record} is not signed by the ledger.`
+    this.#faults.add({ what: 'receipt', entry, to: entry, record, message })
+  }
+
+  /** All entries were taken: a root over more of them is over some that are gone. */
+  finish(): { size: number; records: number } {
+    const size = this.#next
+    const beyond = this.#roots.slice(this.#root).find((one) => one.size > size)
+    if (beyond) {
+      const message = `The ledger ends after ${size} entries; ${beyond.name} is over ${beyond.size}.`
+      this.#fault('cut', message, null, size, beyond.size - 1)
+    }
+    return { size, records: this.#records }
+  }
+
+  #fault(
+    what: FaultKind,
+    message: string,
+    record: string | null = null,
+    entry = this.#next,
+    to = entry,
+  ): null {
+    this.#faults.add({ what, entry, to, record, message })
+    return null
+  }
+
+  #missing(until: number): void {
+    this.#treeHolds = false
+    const to = until - 1
+    const which = to === this.#next ? `Entry ${to} is` : `Entries ${this.#next} to ${to} are`
+    this.#fault('entry-missing', `${which} missing.`, null, this.#next, to)
+    this.#next = until
+  }
+
+  #check(entry: Entry): SignatureTask | null {
+    const record = entry.row?.id ?? null
+    const at = `Entry ${this.#next}`
+    const hash = entry.leaf && leafHash(this.#crypto.sha256, entry.leaf)
+    if (!entry.leaf || !hash || toHex(hash) !== entry.hash) {
+      this.#treeHolds = false
+      return entry.leaf
+        ? this.#fault('hash', `${at}: its bytes do not have the hash that is stored.`, record)
+        : this.#fault('leaf-missing', `${at} has no leaf any more.`, record)
+    }
+    this.#grow(hash, entry)
+    try {
+      const leaf = JSON.parse(decoder.decode(entry.leaf)) as Leaf
+      return leaf.kind === 'record' ? this.#checkRecord(entry, leaf) : this.#checkOther(entry, leaf)
+    } catch {
+      return this.#fault('hash', `${at}: its bytes are no leaf of this format.`, record)
+    }
+  }
+
+  #grow(hash: Uint8Array, entry: Entry): void {
+    if (!this.#treeHolds) return
+    const level = this.#tree.add(hash, entry.nodes)
+    if (level === null) {
+      this.#compareRoots()
+      return
+    }
+    this.#treeHolds = false
+    const to = this.#next
+    const from = to + 1 - 2 ** level
+    const which = level === 0 ? `Entry ${to} has` : `Entries ${from} to ${to} have`
+    this.#fault('tree', `${which} another hash in the stored tree.`, entry.row?.id ?? null, from, to)
+  }
+
+  #compareRoots(): void {
+    const size = this.#tree.size
+    for (let one = this.#roots[this.#root]; one && one.size <= size; one = this.#roots[++this.#root]) {
+      if (one.size < size) continue
+      if (!sameBytes(this.#tree.root(), one.root)) {
+        this.#treeHolds = false
+        // What is stored may have been signed anew after history was rewritten: it vouches for nothing that was kept.
+        const first = one.kept ? this.#keptTo : this.#signedTo
+        const which = first + 1 === size ? `Entry ${first} does` : `Entries ${first} to ${size - 1} do`
+        this.#fault('root', `${which} not lead to the root of ${one.name}.`, null, first, size - 1)
+        return
+      }
+      this.#signedTo = size
+      if (one.kept) this.#keptTo = size
+    }
+  }
+
+  #checkRecord(entry: Entry, leaf: Leaf): SignatureTask | null {
+    const { row } = entry
+    const body = leaf.body as RecordBody
+    const at = `Entry ${this.#next}, record`
+    this.#records++
+    if (!row) return this.#fault('row-missing', `${at} ${body.id}: the table of records lacks it.`, body.id)
+    const differs = rowDifference(row, body)
+    if (differs !== null) return this.#fault('row', `${at} ${row.number}: ${differs}.`, body.id)
+    const key = this.#keys.get(row.receipt.key)
+    const signature = fromBase64(row.receipt.signature)
+    if (!key || signature?.length !== 64) {
+      const message = `${at} ${row.number}: ${row.receipt.key}, named by its receipt, is no key of the ledger.`
+      return this.#fault('receipt', message, row.id)
+    }
+    const promised = { record: row.id, leaf: entry.hash ?? '', recordedAt: row.recordedAt }
+    const { signature: _, ...rest } = restoreReceipt(promised, row.receipt.key, signature)
+    const bytes = canonicalBytes(rest)
+    return { entry: this.#next, record: row.id, publicKey: key.publicKey, bytes, signature }
+  }
+
+  #checkOther(entry: Entry, { kind, body, at: time }: Leaf): null {
+    const at = `Entry ${this.#next}`
+    if (entry.row) {
+      this.#fault('row', `${at} is a ${kind}, and record ${entry.row.number} stands on it.`, entry.row.id)
+    }
+    if (kind === 'key') this.keysSeen.push({ key: (body as { key: string }).key, at: time })
+    if (kind !== 'release') return null
+    const { design, revision, hash } = body as { design: string; revision: number; hash: string }
+    const bytes = entry.document ? fromBase64(entry.document) : null
+    if (bytes && toHex(this.#crypto.sha256(bytes)) === hash) return null
+    const how = bytes ? 'are not those that were released' : 'are gone'
+    return this.#fault('document', `${at}: the bytes of ${design}, revision ${revision}, ${how}.`)
+  }
+}
