@@ -26,7 +26,7 @@ export function createApp(deps: Deps): App {
   app.set('trust proxy', deps.config.trustedHops)
   app.use(requestLog(deps.logger), securityHeaders(deps.config), oneHost)
   app.get('/healthz', healthz)
-  app.get('/readyz', readyz(deps.database))
+  app.get('/readyz', readyz(deps))
   app.get('/problems/:code', problemPage)
   const sessions = createSessions(deps)
   const tokens = tokenFinder(deps.database, deps.now)

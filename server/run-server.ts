@@ -2,6 +2,7 @@ import { readFileSync } from 'node:fs'
 import type { RequestListener, Server } from 'node:http'
 import type { AddressInfo } from 'node:net'
 import type { RequestHandler } from 'express'
+import type { Logger } from 'pino'
 import { OgeeError } from '../shared/errors.ts'
 import { createApp } from './app.ts'
 import { isSetupOpen } from './commands/create-first-administrator.ts'
@@ -11,8 +12,9 @@ import { migrate, missingSteps } from './db/migrate.ts'
 import { loadDemo } from './demo/load-demo.ts'
 import { type Deps, defaultQuotas } from './http/deps.ts'
 import { createServer } from './http/http-server.ts'
-import { openLedger } from './ledger/open-ledger.ts'
-import { startSequencer } from './ledger/sequencer.ts'
+import { appendKept, compareWithKept, keptFileOf } from './ledger/kept-file.ts'
+import { type OpenedLedger, openLedger, reloadSigner } from './ledger/open-ledger.ts'
+import { type Sequencer, startSequencer } from './ledger/sequencer.ts'
 import { createLogger } from './log.ts'
 import { newSetupSecret, type SetupSecret } from './policies/setup-secret.ts'
 
@@ -25,21 +27,23 @@ export async function runServer(config: Config, say: (line: string) => void): Pr
   const database = openDatabase(config.databaseUrl)
   await requireSchema(database)
   const now = () => new Date()
-  const { signer, sessionSecret } = await openLedger(database, { ...config, now })
-  const sequencer = startSequencer(database, signer, now, logger)
+  const opened = await openLedger(database, { ...config, now })
+  const historyFault = await compareWithKept(database.sql, opened.signer, keptFileOf(config.dataDir))
+  if (historyFault !== null) logger.fatal(historyFault)
+  const sequencer = historyFault === null ? sequencerOf(database, opened, now, logger, config) : null
   const setup = newSetupSecret()
   const deps: Deps = {
+    ...opened,
     database,
-    signer,
-    sessionSecret,
-    notifyLedger: sequencer.notify,
+    historyFault,
+    notifyLedger: () => sequencer?.notify(),
     now,
     logger,
     config,
     setup,
     quotas: defaultQuotas,
   }
-  if (config.demo) await loadDemo(deps, config.dataDir, say)
+  if (config.demo && historyFault === null) await loadDemo(deps, config.dataDir, say)
   let listener: RequestListener = () => undefined
   const server = createServer(
     (request, response) => listener(request, response),
@@ -64,10 +68,24 @@ export async function runServer(config: Config, say: (line: string) => void): Pr
       server.closeAllConnections()
       app.stop()
       await vite?.close()
-      await sequencer.stop()
+      await sequencer?.stop()
       await database.close()
     },
   }
+}
+
+/** Gives places, keeps what it signs outside of the database too, and takes up a key that another server made. */
+function sequencerOf(
+  database: Database,
+  { signer, keyFile }: OpenedLedger,
+  now: () => Date,
+  logger: Logger,
+  { dataDir }: Config,
+): Sequencer {
+  return startSequencer(database, signer, now, logger, {
+    onCheckpoint: (note) => appendKept(keptFileOf(dataDir), note),
+    reload: () => reloadSigner(database, signer, keyFile),
+  })
 }
 
 function readTls({ cert, key }: { cert: string; key: string }): { cert: Buffer; key: Buffer } {

@@ -22,6 +22,10 @@ export const defaultQuotas: Quotas = {
 export type Deps = {
   database: Database
   signer: Signer
+  /** File of the ledger's private key. */
+  keyFile: string
+  /** How the database contradicts the checkpoints that were kept outside of it; then nothing is recorded or signed. */
+  historyFault?: string | null
   /** Signs session cookies; stands in no database. */
   sessionSecret: string
   /** Tells the sequencer that something was recorded. */

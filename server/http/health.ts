@@ -1,20 +1,33 @@
 import type { RequestHandler } from 'express'
-import { OgeeError } from '../../shared/errors.ts'
+import { isOgeeError, OgeeError } from '../../shared/errors.ts'
 import type { Database } from '../db/connection.ts'
 import { revocationsNeeded } from '../db/grants.ts'
 import { missingSteps } from '../db/migrate.ts'
+import { requireInForce } from '../ledger/keys.ts'
 import { within } from './deadline.ts'
+import type { Deps } from './deps.ts'
 
 /** The process answers. */
 export const healthz: RequestHandler = (_, response) => {
   response.set('Cache-Control', 'no-store').json({ status: 'ok' })
 }
 
-/** The process can do its work: database there, as durable as we promise, and our account unable to change what is recorded. */
-export function readyz(database: Database): RequestHandler {
+/**
+ * The process can do its work: database there, with the history that was signed, as durable as we promise, our key in force,
+ * and our account unable to change what is recorded.
+ */
+export function readyz({
+  database,
+  signer,
+  historyFault,
+}: Pick<Deps, 'database' | 'signer' | 'historyFault'>): RequestHandler {
   return async (_, response) => {
-    const obstacle = await within(obstacleOf(database))
+    const obstacle = historyFault ?? (await within(obstacleOf(database)))
     if (obstacle !== null) throw new OgeeError('not-ready', obstacle, { facts: { retryAfterSeconds: 5 } })
+    await within(requireInForce(database.sql, signer)).catch((error: unknown) => {
+      if (!isOgeeError(error, 'ledger-key-differs')) throw error
+      throw new OgeeError('not-ready', error.message, { facts: { retryAfterSeconds: 5 } })
+    })
     response.set('Cache-Control', 'no-store').json({ status: 'ready' })
   }
 }

@@ -93,6 +93,9 @@ function bodyReaders(endpoint: Endpoint, gates: Gates): RequestHandler[] {
 /** Hashing waits its turn by design, so these bound their use of the database themselves. */
 const takesPassword = new Set(['signIn', 'setUp'])
 
+/** People may look around while the ledger contradicts itself; nothing is written. */
+const aboutSessions = new Set(['signIn', 'signOut'])
+
 /** Open reads answer whoever asks, whatever they send along; open writes deal with the session. */
 const needsIdentity = (endpoint: Endpoint) => endpoint.access !== 'open' || isUnsafe(endpoint)
 const isUnsafe = (endpoint: Endpoint) => endpoint.method !== 'GET'
@@ -109,6 +112,9 @@ function guard(endpoint: Endpoint, deps: Deps): RequestHandler {
       return
     }
     if (isUnsafe(endpoint) && principal?.kind !== 'token') requireSameSite(request, deps.config.baseUrl)
+    if (isUnsafe(endpoint) && deps.historyFault && !aboutSessions.has(endpoint.id)) {
+      throw new OgeeError('not-ready', deps.historyFault)
+    }
     next()
   }
 }

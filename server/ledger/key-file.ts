@@ -1,7 +1,9 @@
 import { createPrivateKey, generateKeyPairSync, hkdfSync, type KeyObject } from 'node:crypto'
-import { mkdir, open, readFile } from 'node:fs/promises'
+import { mkdir, open, readFile, rename, rm } from 'node:fs/promises'
 import { dirname } from 'node:path'
 import { OgeeError } from '../../shared/errors.ts'
+import { sameBytes } from '../../shared/ledger/hash.ts'
+import { rawPublicKey } from './crypto.ts'
 
 /** Reads the private key (PKCS 8, PEM); null when there is no file. */
 export async function readKeyFile(path: string): Promise<KeyObject | null> {
@@ -33,6 +35,28 @@ export async function writeKeyFile(path: string): Promise<KeyObject> {
     await file.close()
   }
   return privateKey
+}
+
+const nextOf = (path: string) => `${path}.next`
+
+/** Makes the key that is to come into force, beside the one that is; one that never did is written over. */
+export async function writeNextKey(path: string): Promise<KeyObject> {
+  await rm(nextOf(path), { force: true })
+  return writeKeyFile(nextOf(path))
+}
+
+/**
+ * The private key in the file. When the key in force is the one that was to come, because the process died between the
+ * database and the file, it takes its place now. A key that is replaced is not kept: what it signed still checks.
+ */
+export async function adoptKeyFile(path: string, inForce: Uint8Array): Promise<KeyObject | null> {
+  const next = await readKeyFile(nextOf(path))
+  if (!next || !sameBytes(rawPublicKey(next), inForce)) return readKeyFile(path)
+  // Another process that shares the folder may do the same at this moment: then it is done.
+  await rename(nextOf(path), path).catch((cause: NodeJS.ErrnoException) => {
+    if (cause.code !== 'ENOENT') throw cause
+  })
+  return next
 }
 
 /**

@@ -7,13 +7,13 @@ import type { Database } from '../db/connection.ts'
 import { type Sql, sqlTime } from '../db/sql.ts'
 import { transaction } from '../db/transaction.ts'
 import { sha256 } from './crypto.ts'
-import { derivedSecret, readKeyFile, writeKeyFile } from './key-file.ts'
+import { adoptKeyFile, derivedSecret, readKeyFile, writeKeyFile } from './key-file.ts'
+import { type KeyInForce, keyInForce } from './keys.ts'
 import { insertLeaves, newLeaf } from './leaves.ts'
 import { lockHead, writeCheckpoint } from './sequence.ts'
 import { type Signer, signerOf } from './signer.ts'
 
-export type OpenedLedger = { signer: Signer; sessionSecret: string }
-type KeyInForce = { number: number; name: string; publicKey: Buffer }
+export type OpenedLedger = { signer: Signer; sessionSecret: string; keyFile: string }
 
 /**
  * Finds the key in force, or makes the first one.
@@ -27,7 +27,9 @@ export async function openLedger(
   const { signer, privateKey } = await transaction(database, async (sql) => {
     const head = await lockHead(sql)
     const inForce = await keyInForce(sql)
-    const onDisk = await readKeyFile(options.keyFile)
+    const onDisk = inForce
+      ? await adoptKeyFile(options.keyFile, inForce.publicKey)
+      : await readKeyFile(options.keyFile)
     if (inForce) return existing(inForce, onDisk, options)
     const made = onDisk ?? (await writeKeyFile(options.keyFile))
     const signer = signerOf(options.ledgerName ?? `ogee-${randomBytes(4).toString('hex')}/ledger`, made)
@@ -35,14 +37,18 @@ export async function openLedger(
     await writeCheckpoint(sql, head, signer, options.now())
     return { signer, privateKey: made }
   })
-  return { signer, sessionSecret: derivedSecret(privateKey, 'session cookie') }
+  return { signer, sessionSecret: derivedSecret(privateKey, 'session cookie'), keyFile: options.keyFile }
 }
 
-export async function keyInForce(sql: Sql): Promise<KeyInForce | null> {
-  const [key] = await sql.rows<KeyInForce>(
-    'SELECT number, name, public_key AS publicKey FROM ledger_keys ORDER BY number DESC LIMIT 1',
-  )
-  return key ?? null
+/**
+ * Takes up the key that another process put in force, once its file is here. Those that hold the signer sign with it from
+ * then on. Throws `ledger-key-differs` until then.
+ */
+export async function reloadSigner(database: Database, signer: Signer, keyFile: string): Promise<void> {
+  const inForce = await keyInForce(database.sql)
+  if (!inForce) return
+  const onDisk = await adoptKeyFile(keyFile, inForce.publicKey)
+  Object.assign(signer, existing(inForce, onDisk, { keyFile, ledgerName: null }).signer)
 }
 
 function existing(

@@ -4,6 +4,7 @@ import type { Database } from '../db/connection.ts'
 import { type Sql, sqlTime } from '../db/sql.ts'
 import { transaction } from '../db/transaction.ts'
 import { sha256 } from './crypto.ts'
+import { requireInForce } from './keys.ts'
 import { readNodes } from './nodes.ts'
 import type { Signer } from './signer.ts'
 
@@ -18,7 +19,8 @@ type Head = {
   checkpointAt: Date | null
 }
 
-export type PassResult = { sequenced: number; more: boolean }
+/** `note`: the checkpoint that was signed, if one was due. */
+export type PassResult = { sequenced: number; more: boolean; note: string | null }
 
 /**
  * One pass: gives committed leaves their places and signs a checkpoint when one is due.
@@ -37,8 +39,9 @@ export function sequencePass(database: Database, signer: Signer, now: () => Date
       next.size > next.checkpointSize &&
       (next.checkpointAt === null ||
         Math.abs(now().getTime() - next.checkpointAt.getTime()) >= checkpointEveryMs)
-    if (due) await writeCheckpoint(sql, next, signer, now())
-    return { sequenced: pending.length, more: pending.length === leavesAPass }
+    if (due) await requireInForce(sql, signer)
+    const note = due ? await writeCheckpoint(sql, next, signer, now()) : null
+    return { sequenced: pending.length, more: pending.length === leavesAPass, note }
   })
 }
 
@@ -74,13 +77,13 @@ async function append(
   return { ...head, size: grown.size, root }
 }
 
-/** Signs the head as it stands. The caller holds its lock. */
+/** Signs the head as it stands and gives the note. The caller holds its lock. */
 export async function writeCheckpoint(
   sql: Sql,
   head: Pick<Head, 'size' | 'root' | 'checkpointNumber'>,
   signer: Signer,
   at: Date,
-): Promise<void> {
+): Promise<string> {
   const checkpoint = { origin: signer.key.name, size: head.size, root: head.root }
   const note = signCheckpoint(sha256, checkpoint, signer.key, signer.sign)
   const number = head.checkpointNumber + 1
@@ -91,4 +94,5 @@ export async function writeCheckpoint(
     'UPDATE ledger_head SET checkpoint_number = ?, checkpoint_size = ?, checkpoint_at = ? WHERE id = 1',
     [number, head.size, sqlTime(at)],
   )
+  return note
 }

@@ -1,4 +1,5 @@
 import type { Logger } from 'pino'
+import { isOgeeError } from '../../shared/errors.ts'
 import type { Database } from '../db/connection.ts'
 import { type PassResult, sequencePass } from './sequence.ts'
 import type { Signer } from './signer.ts'
@@ -17,12 +18,21 @@ export type Sequencer = {
   stop: () => Promise<void>
 }
 
+/** What else is done about a pass, where a server does more than give places. */
+export type Aside = {
+  /** A checkpoint was signed and committed. */
+  onCheckpoint?: (note: string) => Promise<void>
+  /** The key was replaced elsewhere: take up the new one. */
+  reload?: () => Promise<void>
+}
+
 /** Runs passes one after another: soon after each notice, and now and then without one. */
 export function startSequencer(
   database: Database,
   signer: Signer,
   now: () => Date,
   logger: Logger,
+  { onCheckpoint, reload }: Aside = {},
 ): Sequencer {
   let timer: NodeJS.Timeout | undefined
   let dueAt = Number.POSITIVE_INFINITY
@@ -41,10 +51,12 @@ export function startSequencer(
   }
   const onePass = async () => {
     try {
-      const { more } = await sequencePass(database, signer, now)
+      const { more, note } = await sequencePass(database, signer, now)
       schedule(more ? 0 : pollMs)
+      if (note !== null) await onCheckpoint?.(note)
     } catch (error) {
       logger.warn({ err: error }, 'A pass of the ledger failed; the next follows.')
+      if (isOgeeError(error, 'ledger-key-differs')) await reload?.().catch(() => undefined)
       schedule(afterFailureMs)
     }
   }

@@ -1,7 +1,14 @@
 import { getCheckpoint, getConsistency, getLedgerKey, getProof } from '../../shared/contract/ledger.ts'
-import { listCheckpoints, listEntries, listKeys, listStrays } from '../../shared/contract/ledger-entries.ts'
+import {
+  listCheckpoints,
+  listEntries,
+  listKeys,
+  listStrays,
+  postKey,
+} from '../../shared/contract/ledger-entries.ts'
 import { OgeeError } from '../../shared/errors.ts'
 import { verifierKey } from '../../shared/ledger/checkpoint.ts'
+import { changeKey } from '../commands/change-key.ts'
 import { ReadyLines, type Serve } from '../http/serve.ts'
 import { readCheckpoints, readKeys } from '../ledger/checkpoints.ts'
 import { sha256 } from '../ledger/crypto.ts'
@@ -11,7 +18,9 @@ import { readStrays } from '../ledger/strays.ts'
 import { mayProveRecord, requireEveryDesign } from '../policies/may-see.ts'
 import type { RouteDeps } from './route-deps.ts'
 
-export function ledgerRoutes(serve: Serve, { database, signer }: RouteDeps): void {
+export function ledgerRoutes(serve: Serve, deps: RouteDeps): void {
+  const { database, signer } = deps
+
   serve(getCheckpoint, async () => (await newestCheckpoint(database.sql)).note)
 
   serve(getLedgerKey, async () => `${verifierKey(sha256, signer.key)}\n`)
@@ -28,6 +37,8 @@ export function ledgerRoutes(serve: Serve, { database, signer }: RouteDeps): voi
   })
 
   serve(listKeys, async () => ({ items: await readKeys(database.sql) }))
+
+  serve(postKey, async ({ body, principal }) => changeKey(deps, { by: principal.name, reason: body.reason }))
 
   serve(listCheckpoints, async ({ query }) => readCheckpoints(database.sql, query))
 

@@ -4,7 +4,7 @@ import type { Endpoint } from './endpoint.ts'
 import { countRecords, exportRecords, exportRecordsCsv, listRecorders } from './history.ts'
 import { listInstruments, patchInstrument, postInstrument, putInstrumentRule } from './instruments.ts'
 import { getCheckpoint, getConsistency, getLedgerKey, getProof } from './ledger.ts'
-import { listCheckpoints, listEntries, listKeys, listStrays } from './ledger-entries.ts'
+import { listCheckpoints, listEntries, listKeys, listStrays, postKey } from './ledger-entries.ts'
 import { postClose, postExpected, postLot, postReference, postSignOff } from './lot-acts.ts'
 import { getLot, listLots, listLotUnits, listMissing, listStationMonths } from './lots.ts'
 import {
@@ -76,6 +76,7 @@ export const allEndpoints: readonly Endpoint[] = [
   getConsistency,
   getProof,
   listKeys,
+  postKey,
   listCheckpoints,
   listEntries,
   listStrays,

@@ -3,6 +3,7 @@ import { endpoint } from './endpoint.ts'
 import { instant, page, pageQuery, recordId, sha256Hex } from './primitives.ts'
 import { keyStatement } from './proof.ts'
 import { recordLine } from './record.ts'
+import { reason } from './revisions.ts'
 
 /** What checking all of the ledger reads: everything as it is stored, wrong or right. */
 
@@ -115,4 +116,16 @@ export const listKeys = endpoint({
   access: 'open',
   reply: { status: 200, schema: z.object({ items: z.array(ledgerKey) }) },
   refusals: [],
+})
+
+export const postKey = endpoint({
+  id: 'changeLedgerKey',
+  method: 'POST',
+  path: '/ledger/keys',
+  summary:
+    'Put a new key in the place of the one that signs the ledger; what the old one signed still checks',
+  access: { roles: ['administrator'], scopes: [] },
+  body: z.strictObject({ reason }),
+  reply: { status: 201, schema: ledgerKey },
+  refusals: ['ledger-key-differs'],
 })

@@ -128,7 +128,8 @@ function problemsOf(endpoint: Endpoint): JsonObject {
   if (closed)
     codes.push('sign-in-required', 'token-invalid', 'token-malformed', 'insufficient-scope', 'forbidden')
   // A write looks at whatever credentials come with it, also where none are needed.
-  if (unsafe) codes.push('cross-site-refused', 'token-invalid', 'token-malformed', 'insufficient-scope')
+  if (unsafe)
+    codes.push('not-ready', 'cross-site-refused', 'token-invalid', 'token-malformed', 'insufficient-scope')
   if (endpoint.params || endpoint.query || endpoint.body) codes.push('invalid-request')
   if (endpoint.params) codes.push('not-found')
   if (endpoint.body) codes.push('malformed-json', 'unsupported-media-type', 'body-too-large')

@@ -16,7 +16,7 @@ const ofRevision = z.strictObject({
   key: designKey,
   number: z.coerce.number().int().positive().max(1_000_000),
 })
-const reason = plainText(limits.reasonMax).min(
+export const reason = plainText(limits.reasonMax).min(
   limits.reasonMin,
   `Give a reason of at least ${limits.reasonMin} characters.`,
 )
