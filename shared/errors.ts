@@ -96,6 +96,7 @@ export const errorTable = {
   'revision-withdrawn': badInput('The revision was withdrawn'),
   'revision-state': badInput('The revision is in another state', 409),
   'author-cannot-release': { status: 403, title: 'The author does not release', retry: false, exit: 77 },
+  'finding-closed': badInput('The finding is closed', 409),
   'instrument-unknown': badInput('There is no such instrument'),
   'instrument-retired': badInput('The instrument is retired', 409),
   'instrument-overdue': badInput('The calibration of the instrument is overdue'),

@@ -34,6 +34,7 @@ export const limits = {
   noteMax: 500,
   reasonMin: 10,
   reasonMax: 500,
+  findingMax: 2_000,
   instrumentIdMax: 32,
   instrumentTitleMax: 80,
   /** A calibration due within so many days is said to be due soon. */

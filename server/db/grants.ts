@@ -1,10 +1,15 @@
 import type { Sequelize } from 'sequelize'
 import { recordedNames as firstRecordedNames } from './migrations/001-recorded.ts'
 import { lotRecordedNames } from './migrations/003-lots.ts'
+import { findingRecordedNames } from './migrations/005-findings.ts'
 import { sqlOver } from './sql.ts'
 
 /** Every table whose rows are written once, whichever step made it. */
-export const recordedNames: readonly string[] = [...firstRecordedNames, ...lotRecordedNames]
+export const recordedNames: readonly string[] = [
+  ...firstRecordedNames,
+  ...lotRecordedNames,
+  ...findingRecordedNames,
+]
 
 const changeable: Readonly<Record<string, string>> = {
   people: 'SELECT, INSERT, UPDATE',

@@ -6,6 +6,7 @@ import { recordedTables } from './migrations/001-recorded.ts'
 import { revisionHistory } from './migrations/002-revisions.ts'
 import { lotHistory } from './migrations/003-lots.ts'
 import { ledgerUpkeep } from './migrations/004-ledger.ts'
+import { findingTables } from './migrations/005-findings.ts'
 import { historyColumns } from './migrations/005-history.ts'
 import { instrumentTables } from './migrations/006-instruments.ts'
 
@@ -19,6 +20,7 @@ export const migrations: RunnableMigration<Sequelize>[] = [
   step('003-lots', lotHistory),
   step('004-ledger', ledgerUpkeep),
   step('005-history', historyColumns),
+  step('005-findings', findingTables),
   step('006-instruments', instrumentTables),
 ]
 

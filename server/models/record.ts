@@ -76,11 +76,13 @@ export const records = (sequelize: Sequelize): Table<RecordRow> =>
 export type RecordLineRow = Omit<
   RecordRow,
   'unitId' | 'follows' | 'byId' | 'stationId' | 'leafId' | 'receiptKey' | 'receiptSignature' | 'notices'
->
+> & { finding: RecordLine['finding'] }
 export const lineColumns = `r.id, r.number, r.kind, r.unit, r.channel, r.range_id AS rangeId, r.lot, r.design, r.revision,
   r.pass, r.verdict, r.accepted, r.gain_error_ppm AS gainErrorPpm, r.offset_error_v AS offsetErrorV,
   r.gain_code AS gainCode, r.offset_code AS offsetCode, r.worst_lsb AS worstLsb, r.attempt, r.by_name AS byName,
-  r.station, r.measured_at AS measuredAt, r.recorded_at AS recordedAt`
+  r.station, r.measured_at AS measuredAt, r.recorded_at AS recordedAt,
+  (SELECT IF(COUNT(*) > COUNT(c.id), 'open', 'closed') FROM findings f LEFT JOIN finding_answers c ON c.closes = f.id
+    WHERE f.record_id = r.id HAVING COUNT(*) > 0) AS finding`
 
 export function recordLineReply(row: RecordLineRow): RecordLine {
   return {
@@ -106,5 +108,6 @@ export function recordLineReply(row: RecordLineRow): RecordLine {
     station: row.station,
     measuredAt: row.measuredAt?.toISOString() ?? null,
     recordedAt: row.recordedAt.toISOString(),
+    finding: row.finding,
   }
 }

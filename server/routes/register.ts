@@ -6,6 +6,7 @@ import type { Serve } from '../http/serve.ts'
 import { productVersion } from '../root.ts'
 import { batchRoutes } from './batches.ts'
 import { designRoutes } from './designs.ts'
+import { findingRoutes } from './findings.ts'
 import { historyRoutes } from './history.ts'
 import { instrumentRoutes } from './instruments.ts'
 import { ledgerRoutes } from './ledger.ts'
@@ -32,6 +33,7 @@ export function registerRoutes(serve: Serve, router: Router, deps: RouteDeps): v
     designRoutes,
     revisionRoutes,
     lotRoutes,
+    findingRoutes,
     historyRoutes,
     trimRoutes,
     batchRoutes,

@@ -1,6 +1,7 @@
 import { postBatch } from './batches.ts'
 import { getDesign, getRevision, listDesigns, postDesign } from './designs.ts'
 import type { Endpoint } from './endpoint.ts'
+import { listFindings, postAnswer, postClosing, postFinding } from './findings.ts'
 import { countRecords, exportRecords, exportRecordsCsv, listRecorders } from './history.ts'
 import { listInstruments, patchInstrument, postInstrument, putInstrumentRule } from './instruments.ts'
 import { getCheckpoint, getConsistency, getLedgerKey, getProof } from './ledger.ts'
@@ -56,6 +57,10 @@ export const allEndpoints: readonly Endpoint[] = [
   postBatch,
   listTrims,
   getTrim,
+  listFindings,
+  postFinding,
+  postAnswer,
+  postClosing,
   countRecords,
   listRecorders,
   exportRecords,

@@ -55,6 +55,11 @@ export const recordFilters = {
     .max(1_000_000)
     .optional()
     .describe('At least this many measurements of the kind for unit, channel and range on the UTC day'),
+  finding: z
+    .string()
+    .pipe(z.enum(['open', 'any']))
+    .optional()
+    .describe('With a finding on the record itself'),
   from: dayOrInstant.optional(),
   to: dayOrInstant.optional(),
 }

@@ -72,6 +72,7 @@ export const notice = z.object({
     'replayed',
     'overridden',
     'withdrawn',
+    'finding-open',
   ]),
   message: z.string(),
   record: recordId.optional(),
@@ -160,6 +161,7 @@ export const recordLine = z
     station: z.string().nullable(),
     measuredAt: instant.nullable(),
     recordedAt: instant,
+    finding: z.enum(['open', 'closed']).nullable().describe('Findings on the record itself'),
   })
   .meta({ id: 'RecordLine' })
 export type RecordLine = z.output<typeof recordLine>

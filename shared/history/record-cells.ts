@@ -24,6 +24,7 @@ export const recordHeads = [
   'by',
   'record',
   'attempt',
+  'finding',
 ] as const
 
 export const recordCells = (line: RecordLine): CsvCell[] => [
@@ -48,4 +49,5 @@ export const recordCells = (line: RecordLine): CsvCell[] => [
   line.by,
   line.id,
   line.attempt,
+  line.finding,
 ]

@@ -154,7 +154,7 @@ async function casesOf({ socket }: FilledDatabase): Promise<Case[]> {
       [`${begins}%`],
       'records_place',
     ),
-    by('lot', { lot }, 'r.lot = ?', [lot], 'records_lot'),
+    by('lot', { lot }, 'r.lot = ?', [lot], 'records_in_lot'),
     by('design', { design: 'DBC-16' }, 'r.design = ?', ['DBC-16'], 'records_design'),
     by(
       'revision',

@@ -155,6 +155,9 @@ describe('S3 fuzzing by the document', () => {
     saveDraft: { document: unipolar({ title: 'Fuzzed' }) },
     returnRevision: { reason: 'a reason long enough' },
     withdrawRevision: { reason: 'a reason long enough' },
+    writeFinding: { subject: { kind: 'lot', design: 'U18', lot: 'FUZZ' }, text: 'words enough' },
+    answerFinding: { text: 'words enough' },
+    closeFinding: { text: 'words enough' },
     signIn: { email: 'a@example.org', password: 'b' },
     setUp: { secret: 's', name: 'N', email: 'a@example.org', password: 'p' },
     createStation: { name: 'S' },
@@ -163,7 +166,7 @@ describe('S3 fuzzing by the document', () => {
   }
   const known: Record<string, string> = { key: 'U18', number: '2', lot: 'FUZZ' }
   const queryNames = ['unit', 'design', 'serial', 'after', 'limit', 'kind', 'verdict', 'to', 'from', 'lot']
-  queryNames.push('station', 'by', 'attempt', 'revision', 'x')
+  queryNames.push('station', 'by', 'attempt', 'revision', 'record', 'state', 'finding', 'x')
   const anyRequest = fc.record({
     pick: fc.nat(),
     part: odd,

@@ -174,6 +174,7 @@ export function recordLine(n: number): RecordLine {
     offsetCode: none ? null : 2048,
     worstLsb: none ? null : 0.05 + (n % 7) / 10,
     attempt: 1 + (n % 5 === 0 ? 1 : 0),
+    finding: n % 40 === 0 ? 'open' : null,
     by: n % 2 === 0 ? 'T. Ruiz' : 'station B',
     station: n % 2 === 0 ? 'station A' : 'station B',
     measuredAt: null,

@@ -31,7 +31,7 @@ export function timeOf({ from, to }: Filters): Piece[] {
  * they usually leave. Null when nothing can match.
  */
 export async function conditionsOf(sql: Sql, filters: Filters, sight: Sight): Promise<Condition[] | null> {
-  const { unit, serial, lot, design, revision, by, kind, verdict, attempt } = filters
+  const { unit, serial, lot, design, revision, by, kind, verdict, attempt, finding } = filters
   const stations = await stationsOf(sql, filters.station, sight)
   const designs = sight.designs === null ? design : narrowed(design, sight.designs)
   if (stations?.length === 0 || designs?.length === 0) return null
@@ -40,7 +40,8 @@ export async function conditionsOf(sql: Sql, filters: Filters, sight: Sight): Pr
   return [
     ...(unit === undefined ? [] : [among('unit', [unit], 'records_unit')]),
     ...(units ?? []),
-    ...(lot ? [among('lot', lot, 'records_lot')] : []),
+    ...(finding === undefined ? [] : [withFinding(finding)]),
+    ...(lot ? [among('lot', lot, 'records_in_lot')] : []),
     ...(attempt === undefined ? [] : [atLeast(attempt)]),
     ...(kind ? [among('kind', kind, 'records_kind')] : []),
     ...(by ? [among('by_id', by, 'records_by')] : []),
@@ -66,6 +67,14 @@ function ofDesigns(designs: readonly string[], revision: number | undefined): Co
     finder: { index: 'records_revision', alternatives },
     implied: true,
   }
+}
+
+/** Findings are few beside records, so those lead to their records. */
+function withFinding(finding: 'open' | 'any'): Condition {
+  const open = 'WHERE NOT EXISTS (SELECT 1 FROM finding_answers c WHERE c.closes = f.id)'
+  const sql = `id IN (SELECT f.record_id FROM findings f ${finding === 'open' ? open : ''})`
+  const piece = { sql, values: [] }
+  return { piece, finder: { index: 'PRIMARY', alternatives: [piece] }, implied: true }
 }
 
 /** The last band of attempts that the index tells apart holds all from there on. */

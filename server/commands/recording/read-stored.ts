@@ -29,12 +29,18 @@ export async function readStored(sql: Sql, ids: readonly string[]): Promise<Map<
       ORDER BY recorded_at, id`,
     [ids],
   )
-  return new Map(rows.map((row) => [row.id, storedOf(row, later)]))
+  const open = await sql.rows<{ recordId: string; at: Date }>(
+    `SELECT f.record_id AS recordId, MIN(f.at) AS at FROM findings f WHERE f.record_id IN (?)
+      AND NOT EXISTS (SELECT 1 FROM finding_answers c WHERE c.closes = f.id) GROUP BY f.record_id`,
+    [ids],
+  )
+  const found = new Map(open.map(({ recordId, at }) => [recordId, findingNotice(at)]))
+  return new Map(rows.map((row) => [row.id, storedOf(row, later, found.get(row.id))]))
 }
 
 type Said = { id: string; follows: string; kind: string; number: number }
 
-function storedOf(row: Row, later: readonly Said[]): StoredRecord {
+function storedOf(row: Row, later: readonly Said[], finding: Notice | undefined): StoredRecord {
   const promised = {
     record: row.id,
     leaf: row.leaf.toString('hex'),
@@ -43,7 +49,7 @@ function storedOf(row: Row, later: readonly Said[]): StoredRecord {
   const said = later.filter((one) => one.follows === row.id).map(noticeOf)
   return {
     text: row.body.toString('utf8'),
-    notices: [...(JSON.parse(row.notices) as Notice[]), ...said],
+    notices: [...(JSON.parse(row.notices) as Notice[]), ...said, ...(finding ? [finding] : [])],
     receipt: restoreReceipt(promised, row.receiptKey, row.receiptSignature),
     index: row.idx,
   }
@@ -54,6 +60,11 @@ function noticeOf({ id, kind, number }: Said): Notice {
     ? { code: 'overridden', message: `Its codes were accepted by record ${number}.`, record: id }
     : { code: 'withdrawn', message: `It was withdrawn by record ${number} and no longer counts.`, record: id }
 }
+
+const findingNotice = (at: Date): Notice => ({
+  code: 'finding-open',
+  message: `A finding of ${at.toISOString().slice(0, 10)} on it is open.`,
+})
 
 /** The reply: the canonical bytes as they are, and what may change around them. */
 export function recordJson(record: StoredRecord, replayed = false): string {

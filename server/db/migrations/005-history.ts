@@ -24,7 +24,7 @@ const rowsFromBefore = [
 
 /** Each ends in time and id, so that a page of what it finds needs no sorting. */
 const indexes = `ALTER TABLE records
-  ADD INDEX IF NOT EXISTS records_lot (lot, recorded_at, id),
+  ADD INDEX IF NOT EXISTS records_in_lot (lot, recorded_at, id),
   ADD INDEX IF NOT EXISTS records_by (by_id, recorded_at, id),
   ADD INDEX IF NOT EXISTS records_revision (design, revision, recorded_at, id),
   ADD INDEX IF NOT EXISTS records_attempt (attempt_band, recorded_at, id)`

@@ -136,6 +136,7 @@ export function line(number: number) {
     offsetCode: 2048,
     worstLsb: 0.05,
     attempt: 1,
+    finding: null,
     by: 'line 1',
     station: 'Station A',
     measuredAt: null,

@@ -1,0 +1,50 @@
+import type { Finding } from '../../../shared/contract/findings.ts'
+import { OgeeError } from '../../../shared/errors.ts'
+import { sqlTime } from '../../db/sql.ts'
+import type { Deps } from '../../http/deps.ts'
+import { insertLeaves, newLeaf } from '../../ledger/leaves.ts'
+import { readFinding } from './read-findings.ts'
+import { requireSame, type Writing, writeOnce } from './written.ts'
+
+type Asked = Writing & { finding: string; act: 'answer' | 'close' }
+
+/**
+ * Answers a finding, or closes it.
+ * Guarantee: the words exist exactly when their `answer` leaf does, once for their key; a finding is closed once, and what
+ * is closed takes no further answer.
+ */
+export function answerFinding(
+  deps: Pick<Deps, 'database' | 'now' | 'notifyLedger'>,
+  asked: Asked,
+): Promise<Finding> {
+  const { finding, act, by } = asked
+  return writeOnce(deps, asked, {
+    find: () => finding,
+    insert: async (sql, id, text) => {
+      const found = await readFinding(sql, finding)
+      if (!found) throw new OgeeError('not-found', 'There is no such finding.')
+      if (found.state === 'closed') throw closed(found)
+      const at = deps.now()
+      const body = { format: 'ogee.answer/1', id, finding, act, text, by }
+      const [leafId] = await insertLeaves(sql, [newLeaf('answer', at.toISOString(), body)])
+      await sql.run(
+        'INSERT INTO finding_answers (id, finding_id, closes, body, by_id, by_name, at, leaf_id) VALUES ?',
+        [[[id, finding, act === 'close' ? finding : null, text, by.id, by.name, sqlTime(at), leafId!]]],
+      )
+    },
+    repeats: (stored, id) => {
+      const answer = stored.answers.find((one) => one.id === id)
+      // Closed by somebody else at this moment.
+      if (!answer) throw closed(stored)
+      requireSame(answer.text === asked.text.trim() && answer.act === act)
+    },
+  })
+}
+
+function closed({ answers }: Finding): OgeeError {
+  const closing = answers.find(({ act }) => act === 'close')
+  return new OgeeError(
+    'finding-closed',
+    `The finding was closed by ${closing?.by.name ?? 'somebody'}. What is found later is a new finding.`,
+  )
+}
