@@ -13,7 +13,7 @@ const wholeLedger = {
 } as const
 
 /** A row of the table of records, with what no list shows. */
-export const storedRow = recordLine.extend({
+export const storedRow = recordLine.omit({ finding: true }).extend({
   follows: recordId.nullable(),
   byId: z.string().nullable(),
   receipt: z.object({ key: z.string(), signature: z.string() }),
