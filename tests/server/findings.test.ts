@@ -210,8 +210,7 @@ describe('where findings are seen', () => {
     expect(all.map(({ at }) => at)).toEqual(
       all
         .map(({ at }) => at)
-        .sort()
-        .reverse(),
+        .sort((a, b) => (a < b ? 1 : -1)),
     )
   })
 })
