@@ -207,10 +207,6 @@ describe('where findings are seen', () => {
       next = page.next
     } while (next !== null)
     expect(ids).toEqual(all.map(({ id }) => id))
-    expect(all.map(({ at }) => at)).toEqual(
-      all
-        .map(({ at }) => at)
-        .sort((a, b) => (a < b ? 1 : -1)),
-    )
+    expect(all.map(({ at }) => at)).toEqual(all.map(({ at }) => at).sort((a, b) => (a < b ? 1 : -1)))
   })
 })
