@@ -48,6 +48,22 @@ export const commandTable: readonly Entry[] = [
     load: async () => (await import('./commands/unit.ts')).unitCommand,
   },
   {
+    name: 'spool',
+    summary: 'Measurements put down while the server was away',
+    verbs: [
+      {
+        name: 'list',
+        summary: 'What waits, what was sent, what was refused',
+        load: async () => (await import('./commands/spool/list.ts')).spoolListCommand,
+      },
+      {
+        name: 'send',
+        summary: 'Send what waits, in order, and let go of what is proven to be in the ledger',
+        load: async () => (await import('./commands/spool/send.ts')).spoolSendCommand,
+      },
+    ],
+  },
+  {
     name: 'history',
     summary: 'Records, newest first',
     load: async () => (await import('./commands/history.ts')).historyCommand,

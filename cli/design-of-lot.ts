@@ -3,7 +3,7 @@ import { OgeeError } from '../shared/errors.ts'
 import type { Client } from './client.ts'
 
 /** A lot belongs to one design; where two designs have a lot of that name, --design says which. */
-export async function designOfLot(client: Client, lot: string): Promise<string> {
+export async function designOfLot(client: Pick<Client, 'call'>, lot: string): Promise<string> {
   const { items } = await client.call(listLots, { query: { key: lot } })
   const designs = [...new Set(items.filter(({ key }) => key === lot).map(({ design }) => design))]
   const [first, ...others] = designs

@@ -10,10 +10,12 @@ import type { Client } from './client.ts'
 import { designFrom } from './design-file.ts'
 import { parseJson } from './files.ts'
 import { previousFrom } from './previous.ts'
-import type { AnyRecord } from './record-rendering.ts'
+import type { DryRecord } from './record-rendering.ts'
 import type { RequestBody } from './request.ts'
 import { fetchRevision } from './revision.ts'
 
+/** Nothing is sent but questions. */
+type Asking = Pick<Client, 'call'>
 type Current = Unit['current'][number]
 type Chain = { follows: string | null; pass: number; learned: PreviousPass | undefined }
 
@@ -21,7 +23,7 @@ type Chain = { follows: string | null; pass: number; learned: PreviousPass | und
  * What recording would give, computed here under the same revision and by the same rules; nothing is sent but questions.
  * The record that comes back has no id.
  */
-export async function dryRun(client: Client, body: RequestBody): Promise<AnyRecord> {
+export async function dryRun(client: Asking, body: RequestBody): Promise<DryRecord> {
   const number = await revisionAsked(client, body)
   const { revision, bytes } = await fetchRevision(client, body.design, number)
   const design = designFrom(parseJson(bytes.toString('utf8'), body.design), body.design)
@@ -68,7 +70,7 @@ export async function dryRun(client: Client, body: RequestBody): Promise<AnyReco
   }
 }
 
-async function instrumentNamed(client: Client, id: string | undefined): Promise<Instrument | undefined> {
+async function instrumentNamed(client: Asking, id: string | undefined): Promise<Instrument | undefined> {
   if (id === undefined) return undefined
   const { items } = await client.call(listInstruments, {})
   const found = items.find((instrument) => instrument.id === id)
@@ -76,8 +78,9 @@ async function instrumentNamed(client: Client, id: string | undefined): Promise<
   throw new OgeeError('instrument-unknown', `There is no instrument ${id}.`)
 }
 
-async function revisionAsked(
-  client: Client,
+/** Under which revision a request is computed: its lot's, else the one it names, else the released one. */
+export async function revisionAsked(
+  client: Asking,
   { design, lot, revision }: RequestBody,
 ): Promise<number | 'released'> {
   if (lot === undefined) return revision ?? 'released'
@@ -102,7 +105,7 @@ function theOne(what: 'channel' | 'range', asked: string | undefined, known: Des
 }
 
 async function currentOf(
-  client: Client,
+  client: Asking,
   { unit, design }: RequestBody,
   channel: string,
   range: string,
@@ -125,7 +128,7 @@ function appliedBy(
 }
 
 async function chainOf(
-  client: Client,
+  client: Asking,
   { follows, effects }: RequestBody,
   current: Current | undefined,
 ): Promise<Chain> {

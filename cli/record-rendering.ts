@@ -1,5 +1,5 @@
 import type { Record as StoredRecord } from '../shared/contract/record.ts'
-import type { CodesResult } from '../shared/solver/types.ts'
+import type { CodesResult, VerifyResult } from '../shared/solver/types.ts'
 import { codesCsv, codesTable } from './codes-rendering.ts'
 import type { Rendering } from './output.ts'
 import type { Cell } from './table.ts'
@@ -27,9 +27,16 @@ type Known = Pick<
 >
 
 /** A record as the server stored it, or one of the same shape that stands nowhere yet: its id is null. */
-export type AnyRecord =
-  | StoredRecord
-  | (Known & { id: null; dryRun: true; number: null; result: CodesResult; recordedAt: null })
+export type AnyRecord = StoredRecord | DryRecord | SpooledRecord
+export type DryRecord = Known & {
+  id: null
+  dryRun: true
+  number: null
+  result: CodesResult | VerifyResult
+  recordedAt: null
+}
+/** On disk and not yet sent: `spooled` is its file. Of a chain that only the server knows there is no pass. */
+export type SpooledRecord = Omit<DryRecord, 'dryRun' | 'pass'> & { pass: number | null; spooled: string }
 
 const heads = ['unit', 'channel', 'range', 'pass', 'verdict', 'accepted', ...codesCsv.heads, 'record']
 
@@ -53,8 +60,11 @@ export function recordRendering(record: AnyRecord): Rendering {
   }
 }
 
-function headLines({ unit, channel, range, design, revision, pass, number, recordedAt }: AnyRecord): string {
-  const where = `Unit ${unit}, channel ${channel}, range ${range}, design ${design} revision ${revision}, pass ${pass}.`
+function headLines(record: AnyRecord): string {
+  const { unit, channel, range, design, revision, pass, number, recordedAt } = record
+  const chain = pass === null ? '' : `, pass ${pass}`
+  const where = `Unit ${unit}, channel ${channel}, range ${range}, design ${design} revision ${revision}${chain}.`
+  if ('spooled' in record) return `${where}\nSaved on this computer in ${record.spooled}. Not yet sent.`
   if (number === null || recordedAt === null) return `${where}\nNot recorded: a dry run.`
   return `${where}\nRecorded as ${grouped(number)} at ${recordedAt.replace(/\.\d+/, '')}.`
 }

@@ -8,7 +8,7 @@ export const readRevision = (word: string, flag = '--revision'): number | 'relea
 
 /** A revision and its exact bytes, whose hash has been checked. */
 export async function fetchRevision(
-  client: Client,
+  client: Pick<Client, 'call'>,
   key: string,
   number: number | 'released',
 ): Promise<{ revision: Revision; bytes: Buffer }> {

@@ -23,6 +23,7 @@ export type UnitOptions = {
   note: string | undefined
   measuredAt: string | undefined
   key: string | undefined
+  spool: string | undefined
   dryRun: boolean
 }
 
@@ -43,6 +44,11 @@ export const unitOptions: readonly OptionSpec[] = [
   {
     flags: '--key <key>',
     says: 'idempotency key (default: made from the request, so a repeat doubles nothing)',
+  },
+  {
+    flags: '--spool <folder>',
+    says: 'while the server is away: codes from what is kept here, put down in this folder, sent later',
+    completes: 'folder',
   },
   { flags: '--dry-run', says: 'compute and print; record nothing' },
 ]
@@ -70,8 +76,16 @@ export function readUnitOptions({ options }: Given): UnitOptions {
     note: text(options.note),
     measuredAt: text(options.measuredAt),
     key: readKey(text(options.key)),
-    dryRun: options.dryRun === true,
+    ...readSpool(text(options.spool), options.dryRun === true),
   }
+}
+
+function readSpool(spool: string | undefined, dryRun: boolean): Pick<UnitOptions, 'spool' | 'dryRun'> {
+  if (spool === '') throw new OgeeError('usage', '--spool takes a folder.')
+  if (spool !== undefined && dryRun) {
+    throw new OgeeError('usage', 'Give --spool or --dry-run: a dry run puts nothing down.')
+  }
+  return { spool, dryRun }
 }
 
 function readKey(key: string | undefined): string | undefined {

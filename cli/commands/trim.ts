@@ -11,6 +11,7 @@ import { celsius } from '../quantities.ts'
 import { type AnyRecord, recordRendering } from '../record-rendering.ts'
 import { defaultKey, requestBody } from '../request.ts'
 import { connect, readConnection, serverAbout, serverOptions, text } from '../server-options.ts'
+import { openSpooler } from '../spool/open-spooler.ts'
 import { readUnitOptions, type UnitOptions, unitOptions } from '../unit-options.ts'
 
 type Options = UnitOptions & ConnectionOptions & { points: string }
@@ -42,9 +43,11 @@ export const trimCommand: Command<Options> = {
 async function trim(options: Options, context: Context): Promise<number> {
   const measured = await readMeasurement(context.io, options.points, options)
   const temperatureC = options.temperature === undefined ? undefined : await celsius(options.temperature)
-  const client = await connect(options, context)
+  const spooler = options.spool === undefined ? null : await openSpooler(options, options.spool, context)
+  const client = spooler?.client ?? (await connect(options, context))
   const design = options.design ?? (await designOfLot(client, options.lot ?? ''))
   const body = requestBody(options, design, measured, temperatureC)
+  if (spooler) return await finish(await spooler.record(body, options.key ?? measured.key), context)
   if (options.dryRun) return await finish(await dryRun(client, body), context)
   const idempotencyKey = options.key ?? measured.key ?? (await defaultKey(body))
   return await finish(await client.call(postTrim, { body, idempotencyKey }), context)

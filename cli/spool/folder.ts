@@ -1,0 +1,185 @@
+import { createHash } from 'node:crypto'
+import fs from 'node:fs'
+import { join } from 'node:path'
+import { OgeeError } from '../../shared/errors.ts'
+import { clearParts, diskTrouble, isAlive, makeFolder, putDown, type Trouble, takeAway } from './disk.ts'
+import { type Entry, readEntry } from './entry.ts'
+
+/**
+ * A spool folder. `pending/` holds what is to be sent, `sent/` what was sent and is not yet seen in the ledger,
+ * `refused/` what the server did not take, with the problem beside each. An entry's name begins with its number, so
+ * names sort in the order of writing whatever any clock says; several processes share the folder.
+ */
+export const places = ['pending', 'sent', 'refused'] as const
+export type SpoolPlace = (typeof places)[number]
+
+/** Numbers have as many digits, so that names sort like them. */
+const digits = 12
+const entryName = /^(\d{12})-([0-9a-f]{16})-([0-9a-f]{16})-[0-9a-z]+\.json$/
+/** What other processes put down is looked for at most so often. */
+const lookAgainMs = 1_000
+
+export class Spool {
+  readonly dir: string
+  #next: number | null = null
+  #written = 0
+  #known = { atMs: Number.NEGATIVE_INFINITY, hashes: new Set<string>() }
+
+  private constructor(dir: string) {
+    this.dir = dir
+  }
+
+  /** Opens a folder, and makes it where it is not there yet. */
+  static open(dir: string): Spool {
+    for (const place of [...places, 'parts']) makeFolder(join(dir, place))
+    return new Spool(dir)
+  }
+
+  /** Opens a folder that must be there. */
+  static find(dir: string): Spool {
+    if (!fs.statSync(join(dir, 'pending'), { throwIfNoEntry: false })?.isDirectory()) {
+      throw new OgeeError('input-missing', `${dir} is no spool folder: it has no pending/.`)
+    }
+    return Spool.open(dir)
+  }
+
+  /** Names of the entries there, in order. */
+  names(place: SpoolPlace): string[] {
+    return fs
+      .readdirSync(join(this.dir, place))
+      .filter((name) => entryName.test(name))
+      .sort()
+  }
+
+  path(place: SpoolPlace, name: string): string {
+    return join(this.dir, place, name)
+  }
+
+  /** An entry, or null when another process has moved it meanwhile. */
+  read(place: SpoolPlace, name: string): Entry | null {
+    const path = this.path(place, name)
+    try {
+      return readEntry(fs.readFileSync(path, 'utf8'), path)
+    } catch (error) {
+      if ((error as Trouble).code === 'ENOENT') return null
+      if (error instanceof OgeeError) throw error
+      throw new OgeeError('read-failed', `${path} cannot be read: ${(error as Trouble).code ?? 'unknown'}.`)
+    }
+  }
+
+  /** The entry of that idempotency key where there is one: the same measurement is kept once. */
+  withKey(key: string): { path: string; entry: Entry } | null {
+    const hash = hashOf(key)
+    if (!this.#knows(hash)) return null
+    for (const place of ['pending', 'sent'] as const) {
+      for (const name of this.names(place)) {
+        if (entryName.exec(name)?.[2] !== hash) continue
+        const entry = this.read(place, name)
+        if (entry?.key === key) return { path: this.path(place, name), entry }
+      }
+    }
+    return null
+  }
+
+  /** Whether something of that name (a unit's channel and range) was put down here and is not yet let go. */
+  hasOf(what: string): boolean {
+    return this.#knows(hashOf(what))
+  }
+
+  /** Puts an entry down at the end of `pending/`, under what it is of; it is durable when this returns its path. */
+  add(entry: Entry, what: string): string {
+    this.#next ??= this.#afterAll()
+    const number = String(this.#next++).padStart(digits, '0')
+    const own = `${process.pid.toString(36)}${(this.#written++).toString(36).padStart(4, '0')}`
+    const hashes = [hashOf(entry.key), hashOf(what)]
+    const path = this.path('pending', `${[number, ...hashes, own].join('-')}.json`)
+    this.#write(path, entry)
+    for (const hash of hashes) this.#known.hashes.add(hash)
+    return path
+  }
+
+  #knows(hash: string): boolean {
+    if (performance.now() - this.#known.atMs > lookAgainMs) {
+      const names = (['pending', 'sent'] as const).flatMap((place) => this.names(place))
+      const hashes = names.flatMap((name) => entryName.exec(name)?.slice(2) ?? [])
+      this.#known = { atMs: performance.now(), hashes: new Set(hashes) }
+    }
+    return this.#known.hashes.has(hash)
+  }
+
+  /** Moves an entry on: written whole at its new place first, so that at no moment it is nowhere. */
+  move(name: string, to: SpoolPlace, entry: Entry): void {
+    this.#write(this.path(to, name), entry)
+    takeAway(this.path('pending', name))
+  }
+
+  /** As it stands, with the problem beside it. */
+  refuse(name: string, problem: object): void {
+    const beside = this.path('refused', name.replace(/\.json$/, '.problem.json'))
+    putDown(beside, `${JSON.stringify(problem, null, 2)}\n`, join(this.dir, 'parts'))
+    try {
+      fs.renameSync(this.path('pending', name), this.path('refused', name))
+    } catch (error) {
+      throw diskTrouble(beside, error)
+    }
+  }
+
+  drop(place: SpoolPlace, name: string): void {
+    takeAway(this.path(place, name))
+  }
+
+  clear(): void {
+    clearParts(join(this.dir, 'parts'))
+  }
+
+  #write(path: string, entry: Entry): void {
+    putDown(path, `${JSON.stringify(entry, null, 2)}\n`, join(this.dir, 'parts'))
+  }
+
+  #afterAll(): number {
+    const last = places.flatMap((place) => this.names(place).at(-1) ?? [])
+    return Math.max(0, ...last.map((name) => Number(name.slice(0, digits)))) + 1
+  }
+
+  /**
+   * Runs work while no other process sends from this folder, so that entries go in order; null when another one is at
+   * it. A sender that was killed holds nothing up.
+   */
+  async alone<T>(work: () => Promise<T>): Promise<T | null> {
+    const lock = join(this.dir, 'sending.lock')
+    if (!takeLock(lock)) return null
+    try {
+      return await work()
+    } finally {
+      fs.rmSync(lock, { force: true })
+    }
+  }
+}
+
+const hashOf = (key: string) => createHash('sha256').update(key).digest('hex').slice(0, 16)
+
+function takeLock(lock: string): boolean {
+  for (let look = 0; look < 3; look++) {
+    try {
+      fs.writeFileSync(lock, String(process.pid), { flag: 'wx', mode: 0o600 })
+      return true
+    } catch (error) {
+      if ((error as Trouble).code !== 'EEXIST') throw diskTrouble(lock, error)
+    }
+    if (isHeld(lock)) return false
+    // Its holder is gone. Should two take it at once, both send the same requests with the same keys: no harm.
+    fs.rmSync(lock, { force: true })
+  }
+  return false
+}
+
+function isHeld(lock: string): boolean {
+  try {
+    const pid = Number(fs.readFileSync(lock, 'utf8'))
+    // Written a moment ago by somebody who has not come to say who it is.
+    if (!Number.isInteger(pid) || pid === 0) return Date.now() - fs.statSync(lock).mtimeMs < 1_000
+    return pid !== process.pid && isAlive(pid)
+  } catch {
+    return false
+  }
+}
