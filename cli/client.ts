@@ -52,7 +52,9 @@ export function makeClient({ url, token }: Connection, io: Io, patience = usualP
   async function once<T>(ask: Ask<T>, seen: Seen): Promise<T> {
     seen.status = undefined
     seen.retryAfterMs = undefined
-    const limit = AbortSignal.timeout(patience.answerMs)
+    // A timer of our own keeps the process waiting; AbortSignal.timeout lets it end in the middle, as 13.
+    const silence = new AbortController()
+    const tooLong = setTimeout(() => silence.abort(new Error('no answer in time')), patience.answerMs)
     const caller = {
       baseUrl: url,
       headers: {
@@ -60,9 +62,13 @@ export function makeClient({ url, token }: Connection, io: Io, patience = usualP
         'user-agent': `ogee/${version}`,
       },
       fetch: (target: string | URL | Request, init?: RequestInit) =>
-        watched(target, { ...init, signal: limit }, seen, io),
+        watched(target, { ...init, signal: silence.signal }, seen, io),
     }
-    return await ask(caller)
+    try {
+      return await ask(caller)
+    } finally {
+      clearTimeout(tooLong)
+    }
   }
 }
 

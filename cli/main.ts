@@ -9,6 +9,11 @@ async function main(argv: readonly string[]): Promise<void> {
     process.stdout.write(`${version}\n`)
     return
   }
+  let isDone = false
+  process.on('exit', () => {
+    // Ending before it is done is a defect and no verdict; Node itself would end with 13, which says that a unit failed.
+    if (!isDone && process.exitCode === 13) process.exitCode = 70
+  })
   const { runCommandLine } = await import('./run.ts')
   const { processIo, sayNow } = await import('./io.ts')
   const { interruption } = await import('./trouble.ts')
@@ -19,6 +24,7 @@ async function main(argv: readonly string[]): Promise<void> {
     process.exit(130)
   })
   process.exitCode = await runCommandLine(argv, io)
+  isDone = true
 }
 
 await main(process.argv.slice(2))

@@ -37,8 +37,11 @@ export class Spool {
 
   /** Opens a folder that must be there. */
   static find(dir: string): Spool {
-    if (!fs.statSync(join(dir, 'pending'), { throwIfNoEntry: false })?.isDirectory()) {
-      throw new OgeeError('input-missing', `${dir} is no spool folder: it has no pending/.`)
+    if (!places.some((place) => fs.existsSync(join(dir, place)))) {
+      throw new OgeeError(
+        'input-missing',
+        `${dir} is no spool folder: it has no pending/, sent/ or refused/.`,
+      )
     }
     return Spool.open(dir)
   }

@@ -2,8 +2,12 @@ import { once } from 'node:events'
 import fs from 'node:fs'
 import { join } from 'node:path'
 import { afterAll, beforeAll, beforeEach, describe, expect, test } from 'vitest'
+import { sha256 } from '../../server/ledger/crypto.ts'
+import { startSequencer } from '../../server/ledger/sequencer.ts'
 import type { Record as StoredRecord } from '../../shared/contract/record.ts'
+import { verifierKey } from '../../shared/ledger/checkpoint.ts'
 import { seededRandom } from '../support/random.ts'
+import { testKey } from '../support/server-crypto.ts'
 import { pointsOf, suspectPoints, unipolar } from '../support/server-factories.ts'
 import { addDesign, addStation, addToken, type Harness, serverHarness } from '../support/server-harness.ts'
 import { type Fate, startProxy, type TcpProxy } from '../support/tcp-proxy.ts'
@@ -208,7 +212,6 @@ describe('spool send', () => {
       expect(told).toMatchObject({ dropped: 0, waiting: 3, left: { pending: 0, sent: 3 } })
       expect(entries('sent').every(({ receipt }) => receipt.format === 'ogee.receipt/1')).toBe(true)
     } finally {
-      const { startSequencer } = await import('../../server/ledger/sequencer.ts')
       const { deps, database } = harness
       const sequencer = startSequencer(database, deps.signer, deps.now, deps.logger)
       harness.sequencer.notify = sequencer.notify
@@ -228,14 +231,13 @@ describe('spool send', () => {
     fate = 'reset'
     await trim('T-4')
     fate = 'pass'
-    fs.writeFileSync(
-      join(spool, 'ogee.pub'),
-      'test/ledger+1d3a9a2f+AaV6Nw2zdmjUsaH7Yy0sJrgV3ZpkLlTj6i5v0m6Nq0VX\n',
-    )
+    const { key } = testKey('test/ledger')
+    fs.writeFileSync(join(spool, 'ogee.pub'), `${verifierKey(sha256, key)}\n`)
     const ran = await send()
-    expect([ran.code, ran.stderr].join(' ')).toMatch(/^(16|65) /)
+    expect(ran.code).toBe(16)
+    expect(ran.stderr).toContain('Signed with another key than the one kept here.')
     expect(await recordsOf('T-4')).toHaveLength(1)
-    expect([...names('sent'), ...names('pending')]).toHaveLength(1)
+    expect([names('pending'), names('sent')].map((all) => all.length)).toEqual([0, 1])
   })
 
   test('what the server refuses stands in refused/ with its problem, and holds nothing else up', async () => {
@@ -249,7 +251,7 @@ describe('spool send', () => {
     fate = 'pass'
     const ran = await send()
     expect(ran.code).toBe(20)
-    expect(names('refused')).toEqual([bad, bad.replace('.json', '.problem.json')].sort())
+    expect(new Set(names('refused'))).toEqual(new Set([bad, bad.replace('.json', '.problem.json')]))
     const problem = JSON.parse(
       fs.readFileSync(join(spool, 'refused', bad.replace('.json', '.problem.json')), 'utf8'),
     )
