@@ -32,7 +32,7 @@ export function AdjustersPart({ doc, said }: { doc: FormDoc; said: Said }) {
             {both.map((which) => {
               const asking = row[which]
               return asking ? (
-                <AdjusterCell key={which} which={which} asking={asking} doc={doc} said={said} />
+                <AdjusterCell key={which} which={which} asking={asking} said={said} />
               ) : (
                 <span key={which} className="px-1 pt-[4px] text-small text-ink-3">
                   none
@@ -52,19 +52,16 @@ export function AdjustersPart({ doc, said }: { doc: FormDoc; said: Said }) {
 function AdjusterCell({
   which,
   asking: { name, label, options, placeholder },
-  doc,
   said,
 }: {
   which: Which
   asking: Asking
-  doc: FormDoc
   said: Said
 }) {
   const field = `${which}.${name}`
   const shared = {
     field,
     label: `${label}, ${which}`,
-    text: doc.values[field] ?? '',
     problem: said.problems.get(field),
     remark: said.remarks.get(field),
   }

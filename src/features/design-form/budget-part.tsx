@@ -14,7 +14,15 @@ const none: Partial<Record<LineField, string>> = {}
 /** "390 ppm / 321 ppm", of the last answer; null while there is none. */
 export type Sums = Readonly<Record<Which, string | null>>
 
-export function BudgetPart({ doc, said, sums }: { doc: FormDoc; said: Said; sums: Sums }) {
+export const BudgetPart = memo(function BudgetPart({
+  lines,
+  said,
+  sums,
+}: {
+  lines: FormDoc['lines']
+  said: Said
+  sums: Sums
+}) {
   const { isReadOnly } = useFormLinks()
   const side = isReadOnly ? null : (
     <span>
@@ -33,11 +41,11 @@ export function BudgetPart({ doc, said, sums }: { doc: FormDoc; said: Said; sums
         <span className="px-1">when</span>
       </div>
       {both.map((which) => (
-        <Lines key={which} which={which} lines={doc.lines[which]} said={said} sum={sums[which]} />
+        <Lines key={which} which={which} lines={lines[which]} said={said} sum={sums[which]} />
       ))}
     </Part>
   )
-}
+})
 
 function Lines({
   which,
@@ -50,7 +58,7 @@ function Lines({
   said: Said
   sum: string | null
 }) {
-  const { dispatch, isReadOnly } = useFormLinks()
+  const { store, isReadOnly } = useFormLinks()
   const [shown, setShown] = useState(firstShown)
   const [withBias, setWithBias] = useState(false)
   const hasBias = withBias || lines.some((line) => line.nominal !== '' || line.pivot !== '')
@@ -61,7 +69,7 @@ function Lines({
         <LineRow
           key={line.id}
           which={which}
-          line={line}
+          id={line.id}
           number={i + 1}
           hasBias={hasBias}
           problems={problemsOf(problems, which, line.id)}
@@ -82,7 +90,7 @@ function Lines({
                 look="quiet"
                 className="text-small"
                 onClick={() => {
-                  dispatch({ do: 'add-line', which, after: null })
+                  store.dispatch({ do: 'add-line', which, after: null })
                   focusNewest(which)
                 }}
               >
@@ -129,35 +137,34 @@ function focusNewest(which: Which, after?: number): void {
 
 const LineRow = memo(function LineRow({
   which,
-  line,
+  id,
   number,
   hasBias,
   problems,
 }: {
   which: Which
-  line: Line
+  id: number
   number: number
   hasBias: boolean
   problems: Partial<Record<LineField, string>>
 }) {
-  const { dispatch, isReadOnly } = useFormLinks()
+  const { store, isReadOnly } = useFormLinks()
   const cell = (name: LineField, label: string) => ({
-    field: lineField(which, line.id, name),
+    field: lineField(which, id, name),
     label: `${label}, ${which} line ${number}`,
-    text: line[name],
     problem: problems[name],
   })
-  const remove = () => dispatch({ do: 'remove-line', which, id: line.id })
+  const remove = () => store.dispatch({ do: 'remove-line', which, id })
   const onKeyDown = (event: KeyboardEvent<HTMLElement>) => {
     const target = event.target as HTMLElement
     if (isReadOnly) return
     if (event.key === 'Enter' && target instanceof HTMLInputElement && !event.ctrlKey) {
       event.preventDefault()
-      dispatch({ do: 'add-line', which, after: line.id })
-      focusNewest(which, line.id)
+      store.dispatch({ do: 'add-line', which, after: id })
+      focusNewest(which, id)
     } else if (event.altKey && (event.key === 'ArrowUp' || event.key === 'ArrowDown')) {
       event.preventDefault()
-      dispatch({ do: 'move-line', which, id: line.id, by: event.key === 'ArrowUp' ? -1 : 1 })
+      store.dispatch({ do: 'move-line', which, id, by: event.key === 'ArrowUp' ? -1 : 1 })
       // The row keeps its element, and moving an element takes the focus from it.
       requestAnimationFrame(() => target.focus())
     }
@@ -167,7 +174,7 @@ const LineRow = memo(function LineRow({
     <div
       role="group"
       aria-label={`${which} line ${number}`}
-      data-line={`${which}.${line.id}`}
+      data-line={`${which}.${id}`}
       onKeyDown={onKeyDown}
       className="mb-1 grid grid-cols-[1fr_1fr_1fr_1.25rem] items-start gap-x-1.5 narrow:mb-0 narrow:grid-cols-[minmax(0,1fr)_4.25rem_5.5rem_4.25rem_1.25rem] print:mb-1 print:grid-cols-3"
     >

@@ -1,6 +1,6 @@
 import { memo, type ReactNode, useId } from 'react'
 import { minus } from '../../ui/number-format.ts'
-import { useFormLinks } from './form-context.ts'
+import { useFieldText, useFormLinks } from './form-context.ts'
 
 /** Field ground, one rule below, no box; 25 px as the form's rows; in error a 2 px rule in bad. */
 const look =
@@ -11,22 +11,21 @@ type CellProps = {
   field: string
   /** Spoken; what stands beside the cell says it to the eye. */
   label: string
-  text: string
   problem?: string | undefined
   remark?: string | undefined
   placeholder?: string
 }
 
-/** One text of the form. Memoised: a key in one field draws no other. */
+/** One text of the form, which it reads itself: a key in one field draws no other. */
 export const TextCell = memo(function TextCell({
   field,
   label,
-  text,
   problem,
   remark,
   placeholder = 'not stated',
 }: CellProps) {
-  const { dispatch, isReadOnly } = useFormLinks()
+  const { store, isReadOnly } = useFormLinks()
+  const text = useFieldText(field)
   const id = useId()
   if (isReadOnly) return <Printed text={text} remark={remark} />
   return (
@@ -41,9 +40,9 @@ export const TextCell = memo(function TextCell({
         spellCheck={false}
         placeholder={placeholder}
         value={text}
-        onChange={(event) => dispatch({ do: 'set', field, text: event.target.value })}
+        onChange={(event) => store.dispatch({ do: 'set', field, text: event.target.value })}
         onFocus={(event) => event.target.select()}
-        onBlur={() => dispatch({ do: 'leave' })}
+        onBlur={() => store.dispatch({ do: 'leave' })}
         className={look}
       />
       <PrintedText text={text} />
@@ -58,12 +57,12 @@ export type Options = readonly (readonly [value: string, word: string])[]
 export const SelectCell = memo(function SelectCell({
   field,
   label,
-  text,
   problem,
   remark,
   options,
 }: Omit<CellProps, 'placeholder'> & { options: Options }) {
-  const { dispatch, isReadOnly } = useFormLinks()
+  const { store, isReadOnly } = useFormLinks()
+  const text = useFieldText(field)
   const id = useId()
   const word = options.find(([value]) => value === text)?.[1] ?? text
   if (isReadOnly) return <Printed text={word} remark={remark} />
@@ -75,8 +74,8 @@ export const SelectCell = memo(function SelectCell({
         aria-invalid={problem ? true : undefined}
         aria-describedby={problem || remark ? id : undefined}
         value={text}
-        onChange={(event) => dispatch({ do: 'set', field, text: event.target.value })}
-        onBlur={() => dispatch({ do: 'leave' })}
+        onChange={(event) => store.dispatch({ do: 'set', field, text: event.target.value })}
+        onBlur={() => store.dispatch({ do: 'leave' })}
         className={`${look} pl-0`}
       >
         {options.every(([value]) => value !== text) ? <option value={text}>{word}</option> : null}

@@ -1,34 +1,33 @@
+import { memo } from 'react'
 import { Button } from '../../ui/button.tsx'
 import { engineering, exact } from '../../ui/number-format.ts'
 import { Row, SelectCell, TextCell } from './cells.tsx'
 import { type Said, useFormLinks } from './form-context.ts'
-import { type FormDoc, type RangeTexts, rangeField } from './form-doc.ts'
+import { type RangeTexts, rangeField } from './form-doc.ts'
 import { Part } from './part.tsx'
 import { codings, offsetPlaces } from './words.ts'
 
 /** What of a range is understood: stands at the right of its fields. */
 export type RangeHint = { fsrV: number; lsbV: number; inlV: number | null }
 
-export function ChannelPart({
-  doc,
+export const ChannelPart = memo(function ChannelPart({
+  ranges,
   said: { problems, remarks },
   hints,
 }: {
-  doc: FormDoc
+  ranges: readonly RangeTexts[]
   said: Said
   hints: readonly (RangeHint | null)[]
 }) {
-  const { dispatch, isReadOnly } = useFormLinks()
-  const { values } = doc
+  const { store, isReadOnly } = useFormLinks()
   const cell = (field: string, label: string) => ({
     field,
     label,
-    text: values[field] ?? '',
     problem: problems.get(field),
     remark: remarks.get(field),
   })
   const [first] = hints
-  const several = doc.ranges.length > 1
+  const several = ranges.length > 1
   const range = (one: RangeTexts, i: number) => (
     <RangeRows
       key={one.id}
@@ -43,32 +42,36 @@ export function ChannelPart({
       <Row label="Resolution" hint={first ? `FSR ${exact(first.fsrV, 'V')}` : null}>
         <TextCell {...cell('bits', 'Resolution')} placeholder="18 bits" />
       </Row>
-      {doc.ranges.slice(0, 1).map(range)}
+      {ranges.slice(0, 1).map(range)}
       <Row label="Coding">
         <SelectCell {...cell('coding', 'Coding')} options={codings} />
       </Row>
-      {several ? null : <OffsetRow range={doc.ranges[0]} problems={problems} />}
+      {several ? null : <OffsetRow range={ranges[0]} problems={problems} />}
       <Row label="INL limit" hint={first?.inlV ? engineering(first.inlV, 'V') : null}>
         <TextCell {...cell('inl', 'INL limit')} />
       </Row>
       <Row label="Channels">
         <TextCell {...cell('channels', 'Channels')} placeholder="1" />
       </Row>
-      {several ? <OffsetRow range={doc.ranges[0]} problems={problems} /> : null}
-      {doc.ranges.slice(1).map((one, i) => (
+      {several ? <OffsetRow range={ranges[0]} problems={problems} /> : null}
+      {ranges.slice(1).map((one, i) => (
         <div key={one.id}>
           {range(one, i + 1)}
           <OffsetRow range={one} problems={problems} />
         </div>
       ))}
       {isReadOnly ? null : (
-        <Button look="quiet" className="mt-0.5 text-small" onClick={() => dispatch({ do: 'add-range' })}>
+        <Button
+          look="quiet"
+          className="mt-0.5 text-small"
+          onClick={() => store.dispatch({ do: 'add-range' })}
+        >
           add a range
         </Button>
       )}
     </Part>
   )
-}
+})
 
 function OffsetRow({ range, problems }: { range: RangeTexts | undefined; problems: Said['problems'] }) {
   if (!range) return null
@@ -78,7 +81,6 @@ function OffsetRow({ range, problems }: { range: RangeTexts | undefined; problem
       <SelectCell
         field={field}
         label={`Offset read at, ${range.name}`}
-        text={range.offsetAt}
         problem={problems.get(field)}
         options={offsetPlaces}
       />
@@ -98,11 +100,10 @@ function RangeRows({
   /** Its number where there are several; they then have names of their own. */
   name: number | null
 }) {
-  const { dispatch, isReadOnly } = useFormLinks()
+  const { store, isReadOnly } = useFormLinks()
   const cell = (which: 'name' | 'ends' | 'sharedWith', label: string) => ({
     field: rangeField(range.id, which),
     label: name === null ? label : `${label} ${name}`,
-    text: range[which],
     problem: problems.get(rangeField(range.id, which)),
   })
   return (
@@ -115,7 +116,7 @@ function RangeRows({
               <Button
                 look="quiet"
                 className="-my-1 text-small"
-                onClick={() => dispatch({ do: 'remove-range', id: range.id })}
+                onClick={() => store.dispatch({ do: 'remove-range', id: range.id })}
               >
                 {`take range ${name} away`}
               </Button>

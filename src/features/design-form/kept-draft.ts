@@ -1,6 +1,7 @@
 import { useCallback, useEffect, useRef } from 'react'
 import { readStored, writeStored } from '../../lib/storage.ts'
 import type { FormDoc } from './form-doc.ts'
+import type { FormStore } from './form-store.ts'
 import { withWhatIf } from './what-if.ts'
 
 /** What this computer keeps of a draft, and the state at the server that it was typed over. */
@@ -22,22 +23,41 @@ export function readDraft(name: string): KeptDraft | null {
   return { doc: whole, etag: typeof etag === 'string' ? etag : null }
 }
 
-/** Kept at most a third of a second after a key, and at once when the page goes away. Null takes it away. */
-export function useKeptDraft(name: string, draft: KeptDraft | null): void {
-  const pending = useRef<{ name: string; draft: KeptDraft | null } | null>(null)
+type Keeping = {
+  isEditable: boolean
+  /** What the server has; null while it has something else, or something is tried. */
+  saved: FormDoc | null
+  etag: string | null
+}
+
+/**
+ * Kept at most a third of a second after a key, straight from the form, however busy the page is with drawing; and at
+ * once when the page goes away. What the server has is kept no longer.
+ */
+export function useKeptDraft(name: string, store: FormStore, keeping: Keeping): void {
+  const latest = useRef({ name, keeping })
+  latest.current = { name, keeping }
+  const written = useRef(name)
   const timer = useRef<ReturnType<typeof setTimeout> | undefined>(undefined)
   const flush = useCallback(() => {
+    if (timer.current === undefined) return
     clearTimeout(timer.current)
     timer.current = undefined
-    if (pending.current) writeStored(pending.current.name, pending.current.draft)
-    pending.current = null
-  }, [])
-  const doc = draft?.doc
-  const etag = draft?.etag ?? null
-  useEffect(() => {
-    pending.current = { name, draft: doc === undefined ? null : { doc, etag } }
+    const { name: to, keeping: now } = latest.current
+    // A new design has another name once the server has it.
+    if (written.current !== to) writeStored(written.current, null)
+    written.current = to
+    const { doc, before } = store.get()
+    const isKept = now.isEditable && (before ?? doc) !== now.saved
+    writeStored(to, isKept ? { doc: before ?? doc, etag: now.etag } : null)
+  }, [store])
+  const schedule = useCallback(() => {
     timer.current ??= setTimeout(flush, writeAfterMs)
-  }, [name, doc, etag, flush])
+  }, [flush])
+  const { isEditable, saved, etag } = keeping
+  // biome-ignore lint/correctness/useExhaustiveDependencies: each of them changes what is to be kept
+  useEffect(schedule, [name, isEditable, saved, etag, schedule])
+  useEffect(() => store.subscribe(schedule), [store, schedule])
   useEffect(() => {
     window.addEventListener('pagehide', flush)
     document.addEventListener('visibilitychange', flush)

@@ -1,13 +1,12 @@
-import type { ReactNode } from 'react'
+import { memo, type ReactNode } from 'react'
 import { type Options, Row, SelectCell, TextCell } from './cells.tsx'
 import type { Said } from './form-context.ts'
-import type { FormDoc } from './form-doc.ts'
 import { Part } from './part.tsx'
 import { methods, rules, sums } from './words.ts'
 
 type Asking = { field: string; label: string; options?: Options; placeholder?: string }
 export type Hints = Readonly<Record<string, ReactNode>>
-type Props = { doc: FormDoc; said: Said; hints: Hints }
+type Props = { said: Said; hints: Hints }
 
 const sizing: readonly Asking[] = [
   { field: 'combine', label: 'Reach from', options: sums },
@@ -28,27 +27,31 @@ const measurement: readonly Asking[] = [
   { field: 'tolerance', label: 'Tolerance', placeholder: '1 LSB' },
 ]
 
-export const SizingPart = (props: Props) => (
-  <Part number={4} title="Sizing and target">
-    <Rows asked={sizing} {...props} />
-  </Part>
-)
-
-export function MeasurementPart(props: Props) {
-  const ruled = (props.doc.values.rule ?? '') !== ''
+export const SizingPart = memo(function SizingPart(props: Props) {
   return (
-    <Part number={5} title="Measurement and decision">
-      <Rows asked={ruled ? measurement : measurement.slice(0, -1)} {...props} />
+    <Part number={4} title="Sizing and target">
+      <Rows asked={sizing} {...props} />
     </Part>
   )
-}
+})
 
-function Rows({ asked, doc, said: { problems, remarks }, hints }: Props & { asked: readonly Asking[] }) {
+/** A tolerance is asked for where a rule judges by it. */
+export const MeasurementPart = memo(function MeasurementPart({
+  isRuled,
+  ...props
+}: Props & { isRuled: boolean }) {
+  return (
+    <Part number={5} title="Measurement and decision">
+      <Rows asked={isRuled ? measurement : measurement.slice(0, -1)} {...props} />
+    </Part>
+  )
+})
+
+function Rows({ asked, said: { problems, remarks }, hints }: Props & { asked: readonly Asking[] }) {
   return asked.map(({ field, label, options, placeholder }) => {
     const cell = {
       field,
       label,
-      text: doc.values[field] ?? '',
       problem: problems.get(field),
       remark: remarks.get(field),
     }

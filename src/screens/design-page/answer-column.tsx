@@ -1,11 +1,16 @@
-import { Suspense, useCallback, useDeferredValue, useRef } from 'react'
+import { Suspense, useCallback } from 'react'
 import { fieldAt } from '../../features/design-form/field-at.ts'
 import { withTexts } from '../../features/design-form/form-doc.ts'
 import { Segmented } from '../../ui/segmented.tsx'
 import { utcText } from '../../ui/time-text.tsx'
+import type { Answered } from './live-answer.ts'
 import { LadderAndTables, Lower, RevisionsPanel, Verdicts } from './on-demand.ts'
 import type { DesignPageState } from './use-design-page.ts'
+import { useAnswerNow } from './use-form-answer.ts'
 import type { RevisionActs } from './use-revision-acts.ts'
+
+type Texts = Readonly<Record<string, string>>
+const greyed = 'opacity-60 [&_*]:!text-ink-3'
 
 /** The answer in the order of decision: verdicts, ladder with resolution × span, residual, resistors, yield; then revisions. */
 export function AnswerColumn({
@@ -19,38 +24,32 @@ export function AnswerColumn({
   compared: number | null
   onCompare: (number: number | null) => void
 }) {
+  // What is drawn follows the sentences of the verdict, and gives way to the next key.
   const { answer, isStale, refusal } = page.answered
-  // The sentences come with the key; what is drawn follows them, and gives way to the next key.
-  const drawn = useDeferredValue(answer)
-  const latest = useRef(page)
-  latest.current = page
-  const onField = useCallback((path: string) => {
-    const field = fieldAt(latest.current.form.doc, path)
-    document.querySelector<HTMLElement>(`[data-field="${CSS.escape(field)}"]`)?.focus()
-  }, [])
-  const onTry = useCallback((texts: Readonly<Record<string, string>>) => {
-    const { form, dispatch } = latest.current
-    dispatch({ do: 'try', doc: withTexts(form.doc, texts) })
-  }, [])
-  const onUse = useCallback((texts: Readonly<Record<string, string>>) => {
-    latest.current.dispatch({ do: 'set-all', texts })
-  }, [])
-  const grey = isStale ? 'opacity-60 [&_*]:!text-ink-3' : ''
+  const { store } = page
+  const onField = useCallback(
+    (path: string) => {
+      const field = fieldAt(store.get().doc, path)
+      document.querySelector<HTMLElement>(`[data-field="${CSS.escape(field)}"]`)?.focus()
+    },
+    [store],
+  )
+  const onTry = useCallback(
+    (texts: Texts) => store.dispatch({ do: 'try', doc: withTexts(store.get().doc, texts) }),
+    [store],
+  )
+  const onUse = useCallback((texts: Texts) => store.dispatch({ do: 'set-all', texts }), [store])
+  const grey = isStale ? greyed : ''
   return (
     <div className="contents wide:block wide:overflow-y-auto wide:pr-2 print:contents">
       <div className="sticky top-0 z-1 order-1 -mx-4 bg-paper px-4 pb-1.5 medium:mx-0 medium:px-0 wide:static print:static">
         <Ranges page={page} />
-        <AnswerState page={page} />
-        <div className={grey}>
-          <Suspense fallback={null}>
-            {answer ? <Verdicts answer={answer} onField={onField} /> : null}
-          </Suspense>
-        </div>
+        <Now page={page} onField={onField} />
       </div>
       <div className={`order-2 min-w-0 wide:mt-3 ${grey}`}>
         <Suspense fallback={null}>
           <LadderAndTables
-            answer={drawn}
+            answer={answer}
             problem={refusal?.code === 'adjusters-not-independent' ? refusal.message : undefined}
             onTry={onTry}
           />
@@ -58,9 +57,9 @@ export function AnswerColumn({
       </div>
       <div className={`order-4 min-w-0 wide:mt-3.5 ${grey}`}>
         <Suspense fallback={null}>
-          {drawn ? (
+          {answer ? (
             <Lower
-              answer={drawn}
+              answer={answer}
               isReady={!isStale}
               onUse={page.isEditable ? onUse : undefined}
               onField={onField}
@@ -76,6 +75,21 @@ export function AnswerColumn({
         </Suspense>
       </div>
     </div>
+  )
+}
+
+/** The answer in words, with each key. */
+function Now({ page, onField }: { page: DesignPageState; onField: (path: string) => void }) {
+  const answered = useAnswerNow(page.live, page.range, page.answered)
+  return (
+    <>
+      <AnswerState answered={answered} />
+      <div className={answered.isStale ? greyed : ''}>
+        <Suspense fallback={null}>
+          {answered.answer ? <Verdicts answer={answered.answer} onField={onField} /> : null}
+        </Suspense>
+      </div>
+    </>
   )
 }
 
@@ -95,9 +109,9 @@ function Ranges({ page }: { page: DesignPageState }) {
 }
 
 /** What the answer is of: nothing yet, or the last good values. */
-function AnswerState({ page }: { page: DesignPageState }) {
-  const { answer, answeredAt, isStale, said, refusal } = page.answered
-  const { values, ranges } = page.form.doc
+function AnswerState({ answered }: { answered: Answered }) {
+  const { answer, answeredAt, isStale, said, refusal } = answered
+  const { values, ranges } = answered.of.doc
   if (answer === null && ((values.bits ?? '') === '' || (ranges[0]?.ends ?? '') === '')) {
     return (
       <p className="text-text">

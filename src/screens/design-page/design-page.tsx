@@ -1,4 +1,4 @@
-import { useEffect, useMemo, useState } from 'react'
+import { useEffect, useMemo, useRef, useState } from 'react'
 import { stateWord } from '../../features/design/design-table.tsx'
 import { TextCell } from '../../features/design-form/cells.tsx'
 import { FormContext } from '../../features/design-form/form-context.ts'
@@ -21,16 +21,21 @@ export function DesignPage({ start }: { start: Start }) {
   const acts = useRevisionActs(page.designKey, page.number)
   const [compared, setCompared] = useState<number | null>(null)
   const links = useMemo(
-    () => ({ dispatch: page.dispatch, isReadOnly: !page.isEditable }),
-    [page.dispatch, page.isEditable],
+    () => ({ store: page.store, isReadOnly: !page.isEditable }),
+    [page.store, page.isEditable],
   )
   const isNew = start.revision === null
   useEffect(() => {
     if (isNew) jumpToPart(1)
   }, [isNew])
+  const latest = useRef(page)
+  latest.current = page
   const submit = async () => {
-    if (!page.isEditable || page.isTried || acts.isBusy) return
-    const saved = await page.draft.saveNow()
+    // The last keys belong to it.
+    page.catchUp()
+    const { isEditable, isTried, draft } = latest.current
+    if (!isEditable || isTried || acts.isBusy) return
+    const saved = await draft.saveNow()
     if (saved) await acts.submit(saved.etag)
   }
   const differences = () => {
@@ -107,7 +112,7 @@ function Title({ page }: { page: DesignPageState }) {
   }
   return (
     <span className="block w-80 text-body">
-      <TextCell field="title" label="Title" text={title} problem={problem} placeholder="Title" />
+      <TextCell field="title" label="Title" problem={problem} placeholder="Title" />
     </span>
   )
 }

@@ -19,7 +19,7 @@ export function FormColumn({ page }: { page: DesignPageState }) {
   return (
     <div className="grid grid-cols-1 gap-x-7 gap-y-3.5 medium:grid-cols-2 wide:grid-cols-1 print:grid-cols-2">
       <div className="min-w-0 space-y-3.5">
-        <ChannelPart doc={doc} said={said} hints={hints.ranges} />
+        <ChannelPart ranges={doc.ranges} said={said} hints={hints.ranges} />
         <AdjustersPart doc={doc} said={said} />
       </div>
       <div className="min-w-0 space-y-3.5">
@@ -33,9 +33,9 @@ export function FormColumn({ page }: { page: DesignPageState }) {
 function Rest({ doc, said, hints, sums }: { doc: FormDoc; said: Said; hints: Hints; sums: Sums }) {
   return (
     <>
-      <BudgetPart doc={doc} said={said} sums={sums} />
-      <SizingPart doc={doc} said={said} hints={hints} />
-      <MeasurementPart doc={doc} said={said} hints={hints} />
+      <BudgetPart lines={doc.lines} said={said} sums={sums} />
+      <SizingPart said={said} hints={hints} />
+      <MeasurementPart isRuled={(doc.values.rule ?? '') !== ''} said={said} hints={hints} />
     </>
   )
 }

@@ -1,15 +1,17 @@
 import { useQuery } from '@tanstack/react-query'
-import { useEffect, useMemo, useReducer, useState } from 'react'
+import { useEffect, useMemo, useState } from 'react'
 import { useSearchParams } from 'react-router-dom'
 import type { Revision } from '../../../shared/contract/designs.ts'
 import { designOptions, revisionOptions } from '../../features/design/queries.ts'
 import { countDifferences, type FormDoc } from '../../features/design-form/form-doc.ts'
 import { formReducer, startForm } from '../../features/design-form/form-state.ts'
+import { createFormStore } from '../../features/design-form/form-store.ts'
 import { draftName, readDraft, useKeptDraft } from '../../features/design-form/kept-draft.ts'
 import { toForm } from '../../features/design-form/to-form.ts'
 import { differenceOf, hashOf, whatIfOf, withWhatIf } from '../../features/design-form/what-if.ts'
 import { usePerson } from '../../features/session/use-person.ts'
 import { paths } from '../../lib/paths.ts'
+import { createLiveAnswer } from './live-answer.ts'
 import { useFormAnswer } from './use-form-answer.ts'
 import { useServerDraft } from './use-server-draft.ts'
 
@@ -28,13 +30,10 @@ export function useDesignPage(start: Start) {
   const revision = asked.data ?? start.revision
   const isEditable = person.role === 'engineer' && (revision === null || revision.state === 'draft')
 
-  const opened = useState(() => openedWith(start, isEditable))[0]
-  const [form, dispatch] = useReducer(formReducer, opened, (first) => {
-    const begun = startForm(first.doc)
-    return first.tried ? formReducer(begun, { do: 'try', doc: first.tried }) : begun
-  })
+  const { opened, store, live } = useState(() => begun(openedWith(start, isEditable)))[0]
   const [search, setSearch] = useSearchParams()
-  const answered = useFormAnswer(form.doc, search.get('range'))
+  const range = search.get('range')
+  const { view: form, answered, catchUp } = useFormAnswer(live, range)
   const isTried = form.before !== null
   const draft = useServerDraft({
     designKey,
@@ -51,11 +50,11 @@ export function useDesignPage(start: Start) {
   }, [number, created, designKey])
 
   const isSaved = draft.saved !== null && draft.saved.text === JSON.stringify(answered.document)
-  const kept = form.before ?? form.doc
-  useKeptDraft(
-    draftName(designKey, number),
-    isEditable && !(isSaved && !isTried) ? { doc: kept, etag: draft.saved?.etag ?? null } : null,
-  )
+  useKeptDraft(draftName(designKey, number), store, {
+    isEditable,
+    saved: isSaved && !isTried ? form.doc : null,
+    etag: draft.saved?.etag ?? null,
+  })
   useWhatIfAddress(form.before, form.doc)
   const differs = useDiffersFromReleased(designKey, line?.released ?? null, number, form.doc)
   return {
@@ -68,8 +67,12 @@ export function useDesignPage(start: Start) {
     isTried,
     isSaved,
     form,
-    dispatch,
+    store,
+    dispatch: store.dispatch,
+    live,
+    range,
     answered,
+    catchUp,
     draft,
     differs,
     setRange: (range: string) => setSearch({ range }, { replace: true }),
@@ -77,6 +80,12 @@ export function useDesignPage(start: Start) {
 }
 
 export type DesignPageState = ReturnType<typeof useDesignPage>
+
+function begun(opened: ReturnType<typeof openedWith>) {
+  const first = startForm(opened.doc)
+  const store = createFormStore(opened.tried ? formReducer(first, { do: 'try', doc: opened.tried }) : first)
+  return { opened, store, live: createLiveAnswer(store) }
+}
 
 /** What was typed here and not saved goes first; then what the server has; a tried change of the address on top. */
 function openedWith(start: Start, isEditable: boolean) {
