@@ -120,6 +120,9 @@ function leaveField({ key, target }: KeyboardEvent): void {
 function onKeyDown(event: KeyboardEvent): void {
   if (event.defaultPrevented || event.isComposing || event.altKey || event.metaKey) return
   if (event.key === 'Shift' || event.key === 'CapsLock') return
+  // What is typed into a field is looked at no further: it must be quick.
+  const isTyped = !event.ctrlKey && event.key !== 'Escape' && inField(event.target)
+  if (isTyped) return
   if (document.querySelector('dialog[open]')) return
   if (event.ctrlKey) {
     const binding = find(`Ctrl+${event.key.length === 1 ? event.key.toUpperCase() : event.key}`)

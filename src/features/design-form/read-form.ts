@@ -4,7 +4,7 @@ import { limits } from '../../../shared/limits.ts'
 import { parseCode } from '../../../shared/quantity/code.ts'
 import { evenCodes } from './even-codes.ts'
 import { fieldAt } from './field-at.ts'
-import { type FormDoc, type RangeTexts, rangeField } from './form-doc.ts'
+import { type FormDoc, type RangeTexts, rangeField, type Which } from './form-doc.ts'
 import { readAdjuster } from './read-adjuster.ts'
 import { readLines } from './read-lines.ts'
 import {
@@ -20,6 +20,7 @@ import {
   stated,
   wrong,
 } from './reader.ts'
+import { remembered, textsUnder } from './remembered.ts'
 
 export type Reading = {
   /** As read and not yet checked against the contract; null while anything is in error or not yet computed. */
@@ -73,6 +74,8 @@ function readDocument(reader: Reader, doc: FormDoc): object {
   const gain = readLines(reader, doc, 'gain')
   const offset = readLines(reader, doc, 'offset')
   const hasBudget = text('hasBudget') === 'yes' || gain.length + offset.length > 0
+  const adjuster = (which: Which) =>
+    remembered(reader, which, textsUnder(values, `${which}.`), (own) => readAdjuster(own, doc, which))
   const inl = { label: 'INL limit', unit: 'LSB', optional: true, rule: 'not-negative' } as const
   return stated({
     format: 'ogee.design/1',
@@ -83,15 +86,16 @@ function readDocument(reader: Reader, doc: FormDoc): object {
       inlLsb: readNumber(reader, 'inl', text('inl'), inl),
     }),
     channels: names(text('channels') || '1'),
-    ranges: doc.ranges.map((range) => readRange(reader, range)),
-    adjusters: stated({
-      gain: readAdjuster(reader, doc, 'gain'),
-      offset: readAdjuster(reader, doc, 'offset'),
-    }),
+    ranges: doc.ranges.map((range) =>
+      remembered(reader, `range.${range.id}`, Object.values(range), (own) => readRange(own, range)),
+    ),
+    adjusters: stated({ gain: adjuster('gain'), offset: adjuster('offset') }),
     budget: hasBudget ? { gain, offset } : undefined,
     sizing: readSizing(reader, text),
     target: { residual: readLimit(reader, 'target', text('target'), 'Residual target') },
-    measurement: readMeasurement(reader, text, bits),
+    measurement: remembered(reader, 'measurement', [bits, ...planned.map(text)], (own) =>
+      readMeasurement(own, text, bits),
+    ),
     decision: readDecision(reader, text),
   })
 }
@@ -137,6 +141,18 @@ function readSizing(reader: Reader, text: Text): object | undefined {
 function readLimit(reader: Reader, field: string, text: string, label: string): object | undefined {
   return readQuantity(reader, field, text, { label, unit: 'LSB', also: ['ppm', 'V'], rule: 'positive' })
 }
+
+/** The fields of `readMeasurement`. */
+const planned = [
+  'method',
+  'points',
+  'readings',
+  'noise',
+  'meterResolution',
+  'plausible',
+  'settle',
+  'instrument',
+] as const
 
 function readMeasurement(reader: Reader, text: Text, bits: number | undefined): object {
   const number = (name: string, label: string, unit: string) =>

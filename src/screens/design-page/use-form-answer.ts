@@ -27,7 +27,20 @@ export function useFormAnswer(live: LiveAnswer, range: string | null) {
   useEffect(() => {
     const follow = () => setView(live.view())
     follow()
-    return live.subscribe((isKey) => (isKey ? startTransition(follow) : follow()))
+    let timer: ReturnType<typeof setTimeout> | undefined
+    const followLater = () => {
+      timer = undefined
+      startTransition(follow)
+    }
+    const leave = live.subscribe((isKey) => {
+      if (!isKey) return follow()
+      // The frame of the key goes first.
+      timer ??= setTimeout(followLater)
+    })
+    return () => {
+      leave()
+      clearTimeout(timer)
+    }
   }, [live])
   const catchUp = useCallback(() => flushSync(() => setView(live.view())), [live])
   const answered = live.answered(view, range)

@@ -1,4 +1,4 @@
-import { screen, waitFor, within } from '@testing-library/react'
+import { act, fireEvent, screen, waitFor, within } from '@testing-library/react'
 import { expect, test } from 'vitest'
 import { designLine, revision } from '../../support/web-fixtures.ts'
 import { open } from '../../support/web-render.tsx'
@@ -28,7 +28,9 @@ test('the answer follows the keys, an error greys it and names its field, undo b
   const margin = box('margin')
   await user.clear(margin)
   await user.type(margin, '30 uV')
-  expect(margin).toHaveAccessibleDescription('Margin takes ppm or %. 30 uV is a voltage.')
+  await waitFor(() =>
+    expect(margin).toHaveAccessibleDescription('Margin takes ppm or %. 30 uV is a voltage.'),
+  )
   await screen.findByText(/Answer for the last good values, \d\d:\d\d:\d\d UTC\. Margin takes/)
   expect(screen.getByText('gain covers')).toBeVisible()
   await user.keyboard('{Control>}z{/Control}')
@@ -48,6 +50,30 @@ test('a draft is saved after a pause with the etag it was typed over', async () 
   const [sent] = server.sent('PUT /designs/DBS-A/revisions/2')
   expect(sent?.headers.get('if-match')).toBe(revision(2).etag)
   expect(sent?.body).toMatchObject({ document: { sizing: { margin: 0.3 } } })
+})
+
+test('sent to review with the last key in it, however soon after it', async () => {
+  const server = draftServer()
+  server.on('POST /designs/DBS-A/revisions/2/review', () => reply(2, { state: 'in-review' }))
+  open(draft, server)
+  await ready()
+  act(() => {
+    fireEvent.change(box('margin'), { target: { value: '31 %' } })
+    fireEvent.keyDown(box('margin'), { key: 'Enter', ctrlKey: true })
+  })
+  await waitFor(() => expect(server.sent('POST /designs/DBS-A/revisions/2/review')).toHaveLength(1))
+  expect(server.sent('PUT /designs/DBS-A/revisions/2')[0]?.body).toMatchObject({
+    document: { sizing: { margin: 0.31 } },
+  })
+})
+
+test('what is typed is kept on this computer from the form itself, at once when the page goes', async () => {
+  open(draft, draftServer())
+  await ready()
+  fireEvent.change(box('margin'), { target: { value: '32.0 %' } })
+  fireEvent(window, new Event('pagehide'))
+  const kept = localStorage.getItem('ogee.design.draft.DBS-A.2')
+  expect(JSON.parse(kept ?? '{}')).toMatchObject({ doc: { values: { margin: '32.0 %' } } })
 })
 
 test('opening and looking saves nothing', async () => {
