@@ -8,10 +8,18 @@ const basePackages =
 const startModules =
   /shared\/(?:call|errors|limits|contract\/(?:endpoint|ledger|primitives|problem|session))\.ts|src\/(?:lib\/(?:api|connection|leave|paths|query-client|storage)|features\/(?:ledger\/(?:note|public-facts|queries)|session\/(?:queries|sign-in-form))|ui\/(?:button|caution|clipboard|field|input|loading|mark|number-format|number-text|problem|status|use-countdown|word-mark))\./
 
+// What the Design page draws by itself: two dozen pieces that only it uses pack smaller as one.
+const designModules =
+  /src\/(?:screens\/design-page\/(?!conflict|document-acts|choices|network-texts|revisions-panel)|screens\/designs\/design-screen|features\/design-form\/(?!template|document-file)|features\/sizing\/(?:explain|explained-sentence|ladder|pass|residual|span|spoken|trim-ladder|verdict)[^/]*$|ui\/when-near)|shared\/(?:solver\/sizing\/|design-words\/(?:reach-remedy|verdict-sentences|words)\.)/
+
+// The frame of every plot, on Design, Bench and a record's page.
+const plotModules =
+  /src\/ui\/(?:plot\/(?:axes|end-labels|plot-figure|plot-numbers|plot-svg|use-width|walk-points)|segmented)\./
+
 /** The web application. In development the server mounts Vite in middleware mode, so there is no proxy here. */
 export default defineConfig({
   publicDir: 'src/public',
-  plugins: [react(), tailwind(), zodWithoutJsonSchema()],
+  plugins: [react(), tailwind(), zodWithoutUnused(), routerWithoutFramework()],
   build: {
     outDir: 'dist/web',
     emptyOutDir: true,
@@ -24,9 +32,12 @@ export default defineConfig({
     rolldownOptions: {
       output: {
         codeSplitting: {
+          includeDependenciesRecursively: false,
           groups: [
             { name: 'base', test: basePackages },
             { name: 'start', test: startModules },
+            { name: 'design', test: designModules },
+            { name: 'plots', test: plotModules },
           ],
         },
       },
@@ -35,18 +46,51 @@ export default defineConfig({
 })
 
 /**
- * Each zod schema can write itself as JSON Schema, and so each drags that code along (about 7 kB gzip). Only the server
- * writes OpenAPI; pages only parse. Where zod's text changes and nothing is found, the bundle is bigger and not wrong.
+ * Each zod schema can write itself as JSON Schema and has a method for each kind of text and each way to wrap it, and so
+ * drags all that code along (about 10 kB gzip). Only the server writes OpenAPI, and our schemas use none of the methods
+ * cut here (`tests/source.test.ts` sees to it). Where zod's text changes and nothing is found, the bundle is bigger and not
+ * wrong.
  */
-function zodWithoutJsonSchema(): Plugin {
+function zodWithoutUnused(): Plugin {
   return {
-    name: 'zod-without-json-schema',
+    name: 'zod-without-unused',
     apply: 'build',
     transform(code, id) {
       if (!/zod\/v4\/classic\/schemas\.js$/.test(id)) return null
       const cut = code
         .replaceAll(/^\s*inst\._zod\.processJSONSchema = \(.*\) => processors\.\w+\(.*\);$/gm, '')
         .replaceAll(/create(?:Standard|To)JSONSchemaMethod\(this, [^)]*\)/g, 'undefined')
+        .replaceAll(/processors\.aggregateChecks\(inst\)\.\w+/g, 'undefined')
+        .replaceAll(
+          /^ {4}\w+\(params\) \{\n {8}return this\.check\(core\._\w+\(Zod\w+, params\)\);\n {4}\},$/gm,
+          '',
+        )
+        .replaceAll(unusedWrappers, '')
+      return { code: cut, map: null }
+    },
+  }
+}
+const unusedWrappers =
+  /^ {4}(?:exactOptional|nonoptional|and|prefault|readonly|slugify|normalize|spa)\([^)]*\) \{\n.*\n {4}\},$/gm
+
+/**
+ * Links of the router can prefetch for its server framework, and its parts carry names for a debugger that keep unused
+ * ones in the bundle: together about 5 kB gzip. We have neither. Where its text changes, the bundle is bigger and not wrong.
+ */
+function routerWithoutFramework(): Plugin {
+  return {
+    name: 'router-without-framework',
+    apply: 'build',
+    transform(code, id) {
+      if (!/react-router\/dist\/.*\.mjs$/.test(id)) return null
+      const cut = code
+        .replaceAll(/^ *\w+\.displayName = "\w+";$/gm, '')
+        .replaceAll(
+          /^var (\w+) = (React\d*\.(?:forwardRef|createContext)\()/gm,
+          'var $1 = /* @__PURE__ */ $2',
+        )
+        .replace(/return shouldPrefetch && !isAbsolute \? .* : link;/, 'return link;')
+        .replace('var ENABLE_DEV_WARNINGS = true', 'var ENABLE_DEV_WARNINGS = false')
       return { code: cut, map: null }
     },
   }

@@ -170,6 +170,14 @@ describe('habits', () => {
     expect(hits(outsideGrants, /new RegExp\((?!['`][^$]*['`])/)).toEqual([])
   })
 
+  test('no schema of a page uses a method of zod that the web build cuts out (vite.config.ts)', () => {
+    const files = product.filter((file) => /^(src|shared)\//.test(file) && /from 'zod'/.test(text(file)))
+    const kinds =
+      /string\(\)[^/]*\.(email|url|jwt|emoji|guid|uuid\w*|nanoid|x?k?s?uid2?|cuid2?|ulid|base64(url)?|ipv[46]|cidrv[46]|e164|datetime|date|time|duration)\(/
+    const wrappers = /\)\.(exactOptional|nonoptional|and|prefault|readonly|slugify|normalize|spa)\(/
+    expect([...hits(files, kinds), ...hits(files, wrappers)]).toEqual([])
+  })
+
   test('no path of a machine and no registry host is committed', () => {
     const pattern = new RegExp(['/wo' + 'rk/', 'registry' + '\\.npm', 'deb' + '\\.debian'].join('|'))
     const files = tracked.filter((file) => !/\.(png|woff2?|ico)$/.test(file))

@@ -1,6 +1,6 @@
 import { type ConverterRange, converterRange, limitInVolts, rangeOf } from './converter.ts'
 import type { PlannedNoise } from './line.ts'
-import { type PointRules, pointRules } from './points.ts'
+import { type PointRules, pointRules } from './point-rules.ts'
 import type { Design, InstrumentLimits, Method } from './types.ts'
 
 /** A range of a design, checked once and ready to fit any number of units. Adjusters are prepared apart. */

@@ -2,8 +2,9 @@ import { type ErrorCode, type FieldError, OgeeError } from '../errors.ts'
 import { limits } from '../limits.ts'
 import { type ConverterRange, idealV } from './converter.ts'
 import { codeOf, type Refuse } from './point-code.ts'
+import type { PointRules } from './point-rules.ts'
 import { type Pooled, pooledReadings } from './readings.ts'
-import type { Design, MeasuredPoint } from './types.ts'
+import type { MeasuredPoint } from './types.ts'
 
 /** Points as the fit reads them: sorted by code, then y, then u. Parallel arrays, volts. */
 export type PointSet = {
@@ -36,17 +37,6 @@ type Taken = {
 }
 
 type Refusal = FieldError & { code: ErrorCode }
-
-/** What the plan of measurement says about points. */
-export type PointRules = { plausiblePercent: number; resolutionV: number; minCodes: number }
-
-export function pointRules(measurement: Design['measurement'], minCodes = 2): PointRules {
-  return {
-    plausiblePercent: measurement.plausiblePercent ?? 5,
-    resolutionV: measurement.resolutionV ?? 0,
-    minCodes,
-  }
-}
 
 /**
  * Checks points, settles their codes and uncertainties and sorts them. Every bad point is named at once.

@@ -1,7 +1,16 @@
 import { type ReactNode, useEffect, useRef, useState } from 'react'
 
 /** Draws its content once it is about to be seen, or printed, and from then on; until then it keeps a place for it. */
-export function WhenNear({ minHeight, children }: { minHeight: number; children: ReactNode }) {
+export function WhenNear({
+  name,
+  minHeight,
+  children,
+}: {
+  /** By which an act finds the place and scrolls to it. */
+  name: string
+  minHeight: number
+  children: ReactNode
+}) {
   const place = useRef<HTMLDivElement>(null)
   const [isNear, setNear] = useState(typeof IntersectionObserver === 'undefined')
   useEffect(() => {
@@ -19,7 +28,7 @@ export function WhenNear({ minHeight, children }: { minHeight: number; children:
     }
   }, [isNear])
   return (
-    <div ref={place} data-when-near style={isNear ? undefined : { minHeight }}>
+    <div ref={place} data-when-near={name} style={isNear ? undefined : { minHeight }}>
       {isNear ? children : null}
     </div>
   )

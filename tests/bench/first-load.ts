@@ -17,11 +17,6 @@ const routes: readonly [name: string, chunks: readonly RegExp[], limitKb: number
   ['record', [frame, /^record-screen-.*\.js$/, /^record-drawn-.*\.js$/], 185],
   ['designs', [frame, /^designs-screen-.*\.js$/], 185],
   ['design', [frame, /^design-screen-.*\.js$/], 185],
-  [
-    'design, with what it draws by itself',
-    [frame, /^design-screen-.*\.js$/, /^answer-parts-.*\.js$/, /^lower-.*\.js$/, /^revisions-panel-.*\.js$/],
-    185,
-  ],
   ['ledger', [frame, /^ledger-screen-.*\.js$/], 185],
   ['tokens', [frame, /^tokens-screen-.*\.js$/], 185],
   ['stations', [frame, /^stations-screen-.*\.js$/], 185],

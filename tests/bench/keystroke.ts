@@ -31,7 +31,7 @@ export async function benchKeystroke(): Promise<BenchRow[]> {
     await page.goto(`${origin}/designs/DBS-A/revisions/2`)
     await page.getByText('gain covers').waitFor()
     // All panels open: what waits until it is near is brought near.
-    await page.locator('[data-when-near]').scrollIntoViewIfNeeded()
+    await page.locator('[data-when-near=choices]').scrollIntoViewIfNeeded()
     await page.getByText('Simulated yield').waitFor()
     const session = await page.context().newCDPSession(page)
     await session.send('Emulation.setCPUThrottlingRate', { rate: slowDown })

@@ -13,7 +13,7 @@ test('yield is simulated in a worker of the build, under its own content securit
   page.setDefaultTimeout(90_000)
   await page.goto(`${stage.server.url}/designs/DBS-A`)
   await stage.signIn(page, 'engineer')
-  await page.locator('[data-when-near]').scrollIntoViewIfNeeded()
+  await page.locator('[data-when-near=choices]').scrollIntoViewIfNeeded()
   const started = page.waitForEvent('worker')
   await page.getByLabel('trials').fill('20 000')
   await page.getByRole('button', { name: 'Simulate' }).click()

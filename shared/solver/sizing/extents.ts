@@ -1,8 +1,7 @@
 import { OgeeError } from '../../errors.ts'
 import type { ConverterRange } from '../converter.ts'
 import { sums, type Term, type Terms, toReach } from './budget.ts'
-import { type ToleranceRule, toleranceFactor, usualTolerance } from './tolerance-factor.ts'
-import type { Extents, UnitError } from './types.ts'
+import type { Extents, MeasuredUnits } from './types.ts'
 
 /** What must be trimmed away, as terms for the reach and as the numbers to show. */
 export type ToTrim = { terms: Terms; extents: Extents }
@@ -27,8 +26,8 @@ export function extentsFromBudget(terms: Terms, combine: 'worst-case' | 'rss'): 
 /**
  * As `extentsFromBudget`, with measured units in the place of the initial lines: mean ± k·s by the tolerance factor.
  * The budget's drift lines stay, for fresh units know nothing of drift.
- * @param units at least two, measured with nothing loaded
- * @throws too-few-units, not-finite
+ * @param measured at least two units, with nothing loaded, as `measuredUnits` makes it
+ * @throws not-finite
  * Source: solver.md section 6; NIST/SEMATECH e-Handbook of Statistical Methods, 7.2.6.3.
  * @example extentsFromUnits(terms, 'worst-case', range, units).extents.units // 3
  */
@@ -36,13 +35,11 @@ export function extentsFromUnits(
   terms: Terms,
   combine: 'worst-case' | 'rss',
   range: ConverterRange,
-  units: readonly UnitError[],
-  rule: ToleranceRule = usualTolerance,
+  { errors, factor: k }: MeasuredUnits,
 ): ToTrim {
-  const k = toleranceFactor(units.length, rule)
   const drift = (list: readonly Term[]) => list.filter(({ when }) => when === 'drift')
-  const gain = spread(units.map(({ gainErrorPpm }) => gainErrorPpm))
-  const offset = spread(units.map(({ offsetErrorV }) => offsetErrorV))
+  const gain = spread(errors.map(({ gainErrorPpm }) => gainErrorPpm))
+  const offset = spread(errors.map(({ offsetErrorV }) => offsetErrorV))
   const term = ({ mean, s }: Spread, pivotV: number): Term => ({
     name: 'Measured units',
     when: 'initial',
@@ -57,7 +54,7 @@ export function extentsFromUnits(
     gain: [term(gain, range.x0), ...drift(terms.gain)],
     offset: [term(offset, 0), ...drift(terms.offset)],
   }
-  const head = { from: 'measured-units', units: units.length, toleranceFactor: k } as const
+  const head = { from: 'measured-units', units: errors.length, toleranceFactor: k } as const
   return { terms: reach, extents: extentsOf(reach, combine, head) }
 }
 

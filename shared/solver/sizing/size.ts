@@ -13,14 +13,12 @@ import { forecastPasses } from './passes.ts'
 import { remarksOf } from './remarks.ts'
 import { type Reach, recommend, requiredReach } from './required.ts'
 import { residualBudget } from './residual.ts'
-import type { ToleranceRule } from './tolerance-factor.ts'
-import type { AdjusterSize, SizeResult, SizeVerdict, SizingDesign, UnitError } from './types.ts'
+import type { AdjusterSize, MeasuredUnits, SizeResult, SizeVerdict, SizingDesign } from './types.ts'
 
 export type SizeOptions = {
   rangeId?: string | undefined
   /** Take the extents from these units instead of the budget's initial lines. */
-  measuredUnits?: readonly UnitError[] | undefined
-  tolerance?: ToleranceRule | undefined
+  measuredUnits?: MeasuredUnits | undefined
 }
 
 /** An adjuster with everything that its size rests on. */
@@ -42,7 +40,7 @@ export type Prepared = {
  * @param options range; units measured with nothing loaded in the place of the budget's initial lines
  * @returns `ogee.size/1`: extents, required and available reach and step at each node in V, bits, margins, verdicts,
  *   residual after trim, passes
- * @throws budget-empty, budget-line, too-few-units, and as `prepareTrim`: effect-zero, adjusters-not-independent,
+ * @throws budget-empty, budget-line, and as `prepareTrim`: effect-zero, adjusters-not-independent,
  *   tolerance-out-of-bounds, range-reversed, bits-out-of-bounds, no-adjuster and others, with places
  * Source: solver.md section 6.
  * @example sizeDesign(unipolar18).adjusters.gain?.requiredBits // 10
@@ -96,11 +94,11 @@ export function prepare(design: SizingDesign, options: SizeOptions): Prepared {
   if (!(margin >= 0) || !Number.isFinite(margin)) {
     refuse('invalid-document', '/sizing/margin', `The margin is ${margin}; it must be at least 0.`)
   }
-  const { measuredUnits, tolerance } = options
+  const { measuredUnits } = options
   const trim =
     measuredUnits === undefined
       ? extentsFromBudget(terms, combine)
-      : extentsFromUnits(terms, combine, channel.range, measuredUnits, tolerance)
+      : extentsFromUnits(terms, combine, channel.range, measuredUnits)
   if (measuredUnits === undefined && !asksAnything(trim.terms)) {
     refuse(
       'budget-empty',

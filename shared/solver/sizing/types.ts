@@ -33,6 +33,9 @@ export type SizingDesign = Design & {
 /** Errors of a unit with nothing loaded: offset at the offset point in V, slope in ppm. */
 export type UnitError = { offsetErrorV: number; gainErrorPpm: number }
 
+/** Units in the place of a budget's initial lines: mean ± factor · s. Made by `measuredUnits`. */
+export type MeasuredUnits = { errors: readonly UnitError[]; factor: number }
+
 export type Extents = {
   gain: { centrePpm: number; worstCasePpm: number; rssPpm: number; usedPpm: number }
   offset: { centreV: number; worstCaseV: number; rssV: number; usedV: number }

@@ -1,23 +1,6 @@
 import type { FormDoc } from './form-doc.ts'
 import { newLine } from './form-state.ts'
-
-/** Starting points of our own making: usual circuits with round values; resolution and range are left to be typed. */
-export const templates = [
-  {
-    name: 'unipolar',
-    word: 'Unipolar',
-    says: 'From 0 V up. The gain adjuster pulls on the reference, the offset adjuster sums at the output.',
-  },
-  {
-    name: 'bipolar',
-    word: 'Bipolar',
-    says: 'About 0 V, offset read at 0 V. Both adjusters, converter in two\u2019s complement.',
-  },
-  { name: 'gain-only', word: 'Gain only', says: 'One adjuster, for channels whose offset needs no trim.' },
-] as const
-export type TemplateName = (typeof templates)[number]['name']
-export const isTemplate = (name: string | null): name is TemplateName =>
-  templates.some((one) => one.name === name)
+import type { TemplateName } from './template-list.ts'
 
 const gain = {
   'gain.effect': 'measured',

@@ -10,7 +10,7 @@ import { usageOptions } from './queries.ts'
 import { usageSentence } from './usage-words.ts'
 
 /** Asks for the reason of an act that others will read about, and says what still uses what is taken away. */
-export function ReasonDialog({
+export default function ReasonDialog({
   title,
   act,
   usedBy,

@@ -3,8 +3,11 @@ import { fieldAt } from '../../features/design-form/field-at.ts'
 import { withTexts } from '../../features/design-form/form-doc.ts'
 import { Segmented } from '../../ui/segmented.tsx'
 import { utcText } from '../../ui/time-text.tsx'
+import { WhenNear } from '../../ui/when-near.tsx'
+import { LadderAndTables, Verdicts } from './answer-parts.tsx'
 import type { Answered } from './live-answer.ts'
-import { LadderAndTables, Lower, RevisionsPanel, Verdicts } from './on-demand.ts'
+import { Lower } from './lower.tsx'
+import { RevisionsPanel } from './on-demand.ts'
 import type { DesignPageState } from './use-design-page.ts'
 import { useAnswerNow } from './use-form-answer.ts'
 import type { RevisionActs } from './use-revision-acts.ts'
@@ -47,32 +50,30 @@ export function AnswerColumn({
         <Now page={page} onField={onField} />
       </div>
       <div className={`order-2 min-w-0 wide:mt-3 ${grey}`}>
-        <Suspense fallback={null}>
-          <LadderAndTables
-            answer={answer}
-            problem={refusal?.code === 'adjusters-not-independent' ? refusal.message : undefined}
-            onTry={onTry}
-          />
-        </Suspense>
+        <LadderAndTables
+          answer={answer}
+          problem={refusal?.code === 'adjusters-not-independent' ? refusal.message : undefined}
+          onTry={onTry}
+        />
       </div>
       <div className={`order-4 min-w-0 wide:mt-3.5 ${grey}`}>
-        <Suspense fallback={null}>
-          {answer ? (
-            <Lower
-              answer={answer}
-              isReady={!isStale}
-              onUse={page.isEditable ? onUse : undefined}
-              onField={onField}
-            />
-          ) : null}
-        </Suspense>
+        {answer ? (
+          <Lower
+            answer={answer}
+            isReady={!isStale}
+            onUse={page.isEditable ? onUse : undefined}
+            onField={onField}
+          />
+        ) : null}
       </div>
       <div className="order-5 min-w-0 space-y-3.5 pb-6 wide:mt-3.5 print:hidden">
-        <Suspense fallback={null}>
-          {page.number === null ? null : (
-            <RevisionsPanel page={page} acts={acts} compared={compared} onCompare={onCompare} />
-          )}
-        </Suspense>
+        {page.number === null ? null : (
+          <WhenNear name="revisions" minHeight={160}>
+            <Suspense fallback={null}>
+              <RevisionsPanel page={page} acts={acts} compared={compared} onCompare={onCompare} />
+            </Suspense>
+          </WhenNear>
+        )}
       </div>
     </div>
   )
@@ -85,9 +86,7 @@ function Now({ page, onField }: { page: DesignPageState; onField: (path: string)
     <>
       <AnswerState answered={answered} />
       <div className={answered.isStale ? greyed : ''}>
-        <Suspense fallback={null}>
-          {answered.answer ? <Verdicts answer={answered.answer} onField={onField} /> : null}
-        </Suspense>
+        {answered.answer ? <Verdicts answer={answered.answer} onField={onField} /> : null}
       </div>
     </>
   )

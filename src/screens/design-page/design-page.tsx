@@ -81,9 +81,10 @@ function otherRevision({ line, number }: DesignPageState): number | null {
   return released && others.includes(released) ? released : others.length > 0 ? Math.max(...others) : null
 }
 
-/** After React and what loads on demand have drawn it. */
+/** A part of the revisions, which load once they are near; after React has drawn it. */
 function show(selector: string): void {
   let tries = 20
+  document.querySelector('[data-when-near=revisions]')?.scrollIntoView({ block: 'start' })
   const look = () => {
     const found = document.querySelector<HTMLElement>(selector)
     if (found) {

@@ -8,7 +8,7 @@ import { announce } from '../../ui/status.tsx'
 import type { DesignPageState } from './use-design-page.ts'
 
 /** The document as a file: out, and where it may be changed, in. A file may be dropped on the section. */
-export function DocumentActs({ page }: { page: DesignPageState }) {
+export default function DocumentActs({ page }: { page: DesignPageState }) {
   const { answered, designKey, number, isEditable, dispatch } = page
   const input = useRef<HTMLInputElement>(null)
   const [refusal, setRefusal] = useState<string | null>(null)

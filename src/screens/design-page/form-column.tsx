@@ -1,4 +1,4 @@
-import { useMemo } from 'react'
+import { Suspense, useMemo } from 'react'
 import { limitInVolts } from '../../features/design/words.ts'
 import { AdjustersPart } from '../../features/design-form/adjusters-part.tsx'
 import { BudgetPart, type Sums } from '../../features/design-form/budget-part.tsx'
@@ -7,8 +7,9 @@ import type { Said } from '../../features/design-form/form-context.ts'
 import type { FormDoc } from '../../features/design-form/form-doc.ts'
 import { type Hints, MeasurementPart, SizingPart } from '../../features/design-form/plan-parts.tsx'
 import { engineering, significant } from '../../ui/number-format.ts'
+import { WhenNear } from '../../ui/when-near.tsx'
 import type { Answer } from './answer.ts'
-import { DocumentActs } from './document-acts.tsx'
+import { DocumentActs } from './on-demand.ts'
 import type { DesignPageState } from './use-design-page.ts'
 
 /** The form in the order of the signal path, in two columns where there is room for two and one where not. */
@@ -24,7 +25,11 @@ export function FormColumn({ page }: { page: DesignPageState }) {
       </div>
       <div className="min-w-0 space-y-3.5">
         <Rest doc={doc} said={said} hints={hints.plan} sums={hints.sums} />
-        <DocumentActs page={page} />
+        <WhenNear name="document" minHeight={64}>
+          <Suspense fallback={null}>
+            <DocumentActs page={page} />
+          </Suspense>
+        </WhenNear>
       </div>
     </div>
   )

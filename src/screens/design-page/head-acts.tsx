@@ -1,7 +1,7 @@
-import { useState } from 'react'
-import { ReasonDialog } from '../../features/design/reason-dialog.tsx'
+import { Suspense, useState } from 'react'
 import { paths } from '../../lib/paths.ts'
 import { Button, LinkButton } from '../../ui/button.tsx'
+import { ReasonDialog } from './on-demand.ts'
 import type { DesignPageState } from './use-design-page.ts'
 import type { RevisionActs } from './use-revision-acts.ts'
 
@@ -73,15 +73,17 @@ function ReviewActs({ page: { revision, person }, acts }: { page: DesignPageStat
         </Button>
       )}
       {isReturning ? (
-        <ReasonDialog
-          title={`Send revision ${revision.number} back to draft`}
-          act="Send back"
-          onClose={() => setReturning(false)}
-          onReason={async (reason) => {
-            if (await acts.giveBack(revision.etag, reason)) setReturning(false)
-          }}
-          error={acts.error}
-        />
+        <Suspense fallback={null}>
+          <ReasonDialog
+            title={`Send revision ${revision.number} back to draft`}
+            act="Send back"
+            onClose={() => setReturning(false)}
+            onReason={async (reason) => {
+              if (await acts.giveBack(revision.etag, reason)) setReturning(false)
+            }}
+            error={acts.error}
+          />
+        </Suspense>
       ) : null}
     </>
   )
@@ -104,16 +106,18 @@ function ReleasedActs({
         {`Start revision ${next}`}
       </Button>
       {isWithdrawing ? (
-        <ReasonDialog
-          title={`Withdraw revision ${revision.number}`}
-          act="Withdraw"
-          usedBy={{ designKey, revision: revision.number }}
-          onClose={() => setWithdrawing(false)}
-          onReason={async (reason) => {
-            if (await acts.withdraw(revision.etag, reason)) setWithdrawing(false)
-          }}
-          error={acts.error}
-        />
+        <Suspense fallback={null}>
+          <ReasonDialog
+            title={`Withdraw revision ${revision.number}`}
+            act="Withdraw"
+            usedBy={{ designKey, revision: revision.number }}
+            onClose={() => setWithdrawing(false)}
+            onReason={async (reason) => {
+              if (await acts.withdraw(revision.etag, reason)) setWithdrawing(false)
+            }}
+            error={acts.error}
+          />
+        </Suspense>
       ) : null}
     </>
   )

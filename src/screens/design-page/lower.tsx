@@ -9,7 +9,7 @@ const Choices = lazy(() => import('./choices.tsx'))
 type Texts = Readonly<Record<string, string>>
 
 /** Residual and passes; then, once they are near, resistors and yield. */
-export default memo(function Lower({
+export const Lower = memo(function Lower({
   answer,
   isReady,
   onUse,
@@ -25,7 +25,7 @@ export default memo(function Lower({
   return (
     <div className="space-y-3.5">
       <ResidualBars design={design} result={size} unit={unit} onUnit={setUnit} onField={onField} />
-      <WhenNear minHeight={400}>
+      <WhenNear name="choices" minHeight={400}>
         <Suspense fallback={null}>
           <Choices answer={answer} isReady={isReady} onUse={onUse} />
         </Suspense>

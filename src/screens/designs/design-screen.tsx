@@ -1,12 +1,11 @@
 import '../../lib/zod-words.ts'
 import { useQuery } from '@tanstack/react-query'
-import { useState } from 'react'
+import { lazy, Suspense, useState } from 'react'
 import { useParams, useSearchParams } from 'react-router-dom'
 import type { DesignLine } from '../../../shared/contract/designs.ts'
 import { isOgeeError } from '../../../shared/errors.ts'
 import { designOptions, revisionOptions } from '../../features/design/queries.ts'
-import { RevisionTable } from '../../features/design/revision-table.tsx'
-import { fromTemplate, isTemplate } from '../../features/design-form/templates.ts'
+import { isTemplate } from '../../features/design-form/template-list.ts'
 import { usePerson } from '../../features/session/use-person.ts'
 import { Empty } from '../../ui/empty.tsx'
 import { Loading } from '../../ui/loading.tsx'
@@ -14,6 +13,11 @@ import { PageHead } from '../../ui/page-head.tsx'
 import { PageProblem } from '../../ui/page-problem.tsx'
 import { Section } from '../../ui/section.tsx'
 import { DesignPage } from '../design-page/design-page.tsx'
+
+const RevisionTable = lazy(async () => ({
+  default: (await import('../../features/design/revision-table.tsx')).RevisionTable,
+}))
+const NewDesign = lazy(() => import('./new-design.tsx'))
 
 /**
  * One revision of a design: the number in the address, else the released one, else the newest. A key that does not exist
@@ -35,8 +39,11 @@ function OneDesign({ designKey }: { designKey: string }) {
   if (!isNew && mayBegin && !design.data && isOgeeError(design.error, 'not-found')) setNew(true)
   if (isNew && isTemplate(template)) {
     // It stays what it is when the server has it too: whoever types goes on typing.
-    const doc = fromTemplate(template, search.get('title') || designKey)
-    return <DesignPage start={{ designKey, revision: null, doc }} />
+    return (
+      <Suspense fallback={<Loading page>{`Starting design ${designKey}.`}</Loading>}>
+        <NewDesign designKey={designKey} template={template} title={search.get('title') || designKey} />
+      </Suspense>
+    )
   }
   if (design.error && !design.data) {
     return (
@@ -56,7 +63,9 @@ function OneDesign({ designKey }: { designKey: string }) {
         <PageHead place={`Design ${designKey}`} title={design.data.title} />
         <Empty>Design {designKey} has no such revision.</Empty>
         <Section title="Revisions">
-          <RevisionTable design={design.data} shown={0} />
+          <Suspense fallback={null}>
+            <RevisionTable design={design.data} shown={0} />
+          </Suspense>
         </Section>
       </>
     )

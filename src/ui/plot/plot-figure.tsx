@@ -4,7 +4,6 @@ import { copyText } from '../clipboard.ts'
 import { Segmented } from '../segmented.tsx'
 import { announce } from '../status.tsx'
 import { Table } from '../table.tsx'
-import { csvText, svgText } from './copy-plot.ts'
 import { useWidth } from './use-width.ts'
 
 export type PlotTableData = {
@@ -108,6 +107,9 @@ export function PlotTable({ title, table }: { title: string; table: PlotTableDat
   )
 }
 
+/** Wanted by a press only. */
+const load = () => import('./copy-plot.ts')
+
 type CopyPlotProps = {
   figure: { current: HTMLDivElement | null }
   table: PlotTableData
@@ -118,10 +120,15 @@ function CopyPlot({ figure, table, hasDrawing }: CopyPlotProps) {
   const copyDrawing = async () => {
     const svg = figure.current?.querySelector('svg')
     if (!svg) return
+    const { svgText } = await load()
     await navigator.clipboard.writeText(svgText(svg)).then(
       () => announce('Copied as SVG.'),
       () => announce('The browser did not allow copying.'),
     )
+  }
+  const copyTable = async () => {
+    const { csvText } = await load()
+    await copyText(csvText(table.csvHead, table.csvRows), 'Copied as CSV.')
   }
   return (
     <span className="inline-flex items-center gap-1 whitespace-nowrap print:hidden">
@@ -131,11 +138,7 @@ function CopyPlot({ figure, table, hasDrawing }: CopyPlotProps) {
           SVG
         </Button>
       )}
-      <Button
-        look="quiet"
-        className={small}
-        onClick={() => void copyText(csvText(table.csvHead, table.csvRows), 'Copied as CSV.')}
-      >
+      <Button look="quiet" className={small} onClick={() => void copyTable()}>
         CSV
       </Button>
     </span>

@@ -1,5 +1,6 @@
 import { describe, expect, test } from 'vitest'
 import { OgeeError } from '../../../shared/errors.ts'
+import { measuredUnits } from '../../../shared/solver/sizing/measured-units.ts'
 import { sizeDesign } from '../../../shared/solver/sizing/size.ts'
 import type { SizingDesign } from '../../../shared/solver/sizing/types.ts'
 import { adjuster, handDesign } from './designs.ts'
@@ -104,13 +105,14 @@ test.each(cases)('%s', (_, design, code, path) => {
 describe('measured units', () => {
   test('fewer than two show no spread', () => {
     const one = [{ gainErrorPpm: 1, offsetErrorV: 0 }]
-    expect(refusal(handDesign(), { measuredUnits: [] }).code).toBe('too-few-units')
-    expect(refusal(handDesign(), { measuredUnits: one }).code).toBe('too-few-units')
+    for (const few of [[], one]) {
+      expect(() => measuredUnits(few)).toThrow(expect.objectContaining({ code: 'too-few-units', exit: 65 }))
+    }
   })
 
   test('they stand in for a missing budget', () => {
     const units = [1, 2, 4].map((i) => ({ gainErrorPpm: 100 * i, offsetErrorV: 1e-4 * i }))
-    const result = sizeDesign(handDesign({ budget: undefined }), { measuredUnits: units })
+    const result = sizeDesign(handDesign({ budget: undefined }), { measuredUnits: measuredUnits(units) })
     expect(result.adjusters.gain!.requiredBits).toBeGreaterThan(1)
   })
 })

@@ -4,6 +4,7 @@ import { type NetworkRequest, wantedOf } from '../../../shared/solver/network-sy
 import { prepareTrim } from '../../../shared/solver/prepare-trim.ts'
 import { budgetTerms } from '../../../shared/solver/sizing/budget.ts'
 import { ladderOf } from '../../../shared/solver/sizing/ladder.ts'
+import { measuredUnits } from '../../../shared/solver/sizing/measured-units.ts'
 import { sizeDesign } from '../../../shared/solver/sizing/size.ts'
 import { sizingExample } from './designs.ts'
 
@@ -39,7 +40,7 @@ Object.assign(scope, {
   trimmers,
   range: channel.range,
   terms: budgetTerms(unipolar18),
-  units: [1, 2, 3].map((i) => ({ offsetErrorV: i * 1e-6, gainErrorPpm: i })),
+  units: measuredUnits([1, 2, 3].map((i) => ({ offsetErrorV: i * 1e-6, gainErrorPpm: i }))),
   request,
   wanted: wantedOf(unipolar18, 'gain', request),
   size,

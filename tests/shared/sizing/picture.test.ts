@@ -2,6 +2,7 @@ import { describe, expect, test } from 'vitest'
 import { explainSize } from '../../../shared/design-words/explain.ts'
 import { verdictSentences } from '../../../shared/design-words/verdict-sentences.ts'
 import { type Ladder, ladderAxis, ladderOf, octavesAbove } from '../../../shared/solver/sizing/ladder.ts'
+import { measuredUnits } from '../../../shared/solver/sizing/measured-units.ts'
 import { sizeDesign } from '../../../shared/solver/sizing/size.ts'
 import { resolutionSpanTable } from '../../../shared/solver/sizing/span-table.ts'
 import type { SizingDesign } from '../../../shared/solver/sizing/types.ts'
@@ -193,7 +194,7 @@ describe('explanations', () => {
   const lone = handDesign({ adjusters: { gain: adjuster({ beta: 1e-3 }) } })
   const cases: [string, SizingDesign, ReturnType<typeof sizeDesign>][] = [
     ['unipolar-18 with noise', noisy, sizeDesign(noisy)],
-    ['from measured units', noisy, sizeDesign(noisy, { measuredUnits: units })],
+    ['from measured units', noisy, sizeDesign(noisy, { measuredUnits: measuredUnits(units) })],
     ['bipolar-16', sizingExample('bipolar-16'), sizeDesign(sizingExample('bipolar-16'))],
     ['one adjuster', lone, sizeDesign(lone)],
   ]

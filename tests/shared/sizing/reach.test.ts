@@ -1,4 +1,5 @@
 import { describe, expect, test } from 'vitest'
+import { measuredUnits } from '../../../shared/solver/sizing/measured-units.ts'
 import { sizeDesign } from '../../../shared/solver/sizing/size.ts'
 import type { SizingDesign } from '../../../shared/solver/sizing/types.ts'
 import { adjuster, handDesign } from './designs.ts'
@@ -81,7 +82,7 @@ describe('reach', () => {
     const design = handDesign({
       budget: { gain: [gainLine, { ...gainLine, limitPpm: 7, when: 'drift' }], offset: [] },
     })
-    const { extents, adjusters } = sizeDesign(design, { measuredUnits: units })
+    const { extents, adjusters } = sizeDesign(design, { measuredUnits: measuredUnits(units) })
     const k = extents.toleranceFactor!
     expect(extents.from).toBe('measured-units')
     expect(extents.gain.centrePpm).toBeCloseTo(100, 12)

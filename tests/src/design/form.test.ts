@@ -7,7 +7,8 @@ import { type FormDoc, textOf, withText, withTexts } from '../../../src/features
 import { formReducer, startForm } from '../../../src/features/design-form/form-state.ts'
 import { readForm } from '../../../src/features/design-form/read-form.ts'
 import type { Arithmetic } from '../../../src/features/design-form/reader.ts'
-import { fromTemplate, templates } from '../../../src/features/design-form/templates.ts'
+import { templates } from '../../../src/features/design-form/template-list.ts'
+import { fromTemplate } from '../../../src/features/design-form/templates.ts'
 import { toForm } from '../../../src/features/design-form/to-form.ts'
 import { design } from '../../support/web-fixtures.ts'
 

@@ -135,7 +135,7 @@ test('budget lines by the keyboard: Enter adds below, Alt moves, Ctrl Z undoes; 
 test('a file is read in one step; another version and a fault inside are refused by place', async () => {
   const { user } = open(draft, draftServer())
   await ready()
-  const input = screen.getByLabelText('Design document to import')
+  const input = await screen.findByLabelText('Design document to import')
   const file = (value: unknown) =>
     new File([typeof value === 'string' ? value : JSON.stringify(value)], 'd.json', {
       type: 'application/json',
@@ -217,7 +217,7 @@ test('withdrawing says what still uses it and wants a reason', async () => {
   server.on('GET /designs/DBS-A/use', () => json({ items: [one] }))
   const { user } = open(`/designs/${designLine.key}/revisions/1`, server)
   await user.click(await screen.findByRole('button', { name: 'Withdraw' }))
-  const dialog = within(screen.getByRole('dialog'))
+  const dialog = within(await screen.findByRole('dialog'))
   await dialog.findByText('Still used by 2 lots, 1 open: L-7; 1 unit carries its codes: U-1.')
   await user.click(dialog.getByRole('button', { name: 'Withdraw' }))
   expect(dialog.getByLabelText('Reason')).toHaveAccessibleDescription(

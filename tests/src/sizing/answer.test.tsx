@@ -1,4 +1,4 @@
-import { render, screen, within } from '@testing-library/react'
+import { render, screen, waitFor, within } from '@testing-library/react'
 import { userEvent } from '@testing-library/user-event'
 import { useState } from 'react'
 import { describe, expect, test, vi } from 'vitest'
@@ -163,6 +163,7 @@ describe('residual', () => {
     await user.click(screen.getByRole('button', { name: 'Quantising, gain' }))
     expect(screen.getByRole('dialog')).toHaveTextContent('Half a step of the auxiliary DAC, at the output.')
     await user.click(screen.getByRole('button', { name: 'CSV' }))
+    await waitFor(() => expect(write).toHaveBeenCalled())
     const [first] = sizeDesign(noisy).residual.lines
     expect(write.mock.lastCall![0].split('\r\n')[1]).toBe(
       [
