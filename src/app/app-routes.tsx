@@ -12,6 +12,8 @@ const Setup = lazy(() => import('../screens/setup/setup-screen.tsx'))
 const Bench = lazy(load.bench)
 const Designs = lazy(load.designs)
 const Design = lazy(load.design)
+const Lots = lazy(load.lots)
+const Lot = lazy(load.lot)
 const History = lazy(load.history)
 const RecordPage = lazy(load.record)
 const Ledger = lazy(load.ledger)
@@ -33,6 +35,8 @@ export function AppRoutes() {
           <Route path="/designs" element={<Designs />} />
           <Route path="/designs/:key" element={<Design />} />
           <Route path="/designs/:key/revisions/:number" element={<Design />} />
+          <Route path="/lots" element={<Lots />} />
+          <Route path="/lots/:design/:lot" element={<Lot />} />
           <Route path="/history" element={<History />} />
           <Route path="/records/:id" element={<RecordPage />} />
           <Route path="/ledger" element={<Ledger />} />

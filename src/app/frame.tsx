@@ -63,6 +63,7 @@ function useFrameKeys(showKeys: () => void): void {
   useKeys([
     { keys: 'g d', does: 'to Designs', run: go(paths.designs) },
     { keys: 'g b', does: 'to Bench', run: go(paths.bench) },
+    { keys: 'g l', does: 'to Lots', run: go(paths.lots) },
     { keys: 'g h', does: 'to History', run: go(paths.history) },
     { keys: 'g g', does: 'to Ledger', run: go(paths.ledger) },
     { keys: 'g s', does: 'to Settings', run: go(paths.settings) },

@@ -7,6 +7,7 @@ import { WhoMenu } from './who-menu.tsx'
 const places = [
   { to: paths.designs, name: 'Designs', keys: 'g d', narrow: true },
   { to: paths.bench, name: 'Bench', keys: 'g b', narrow: true },
+  { to: paths.lots, name: 'Lots', keys: 'g l', narrow: true },
   { to: paths.history, name: 'History', keys: 'g h', narrow: true },
   { to: paths.ledger, name: 'Ledger', keys: 'g g', narrow: false },
   { to: paths.settings, name: 'Settings', keys: 'g s', narrow: false },

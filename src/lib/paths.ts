@@ -11,6 +11,8 @@ export const paths = {
     `/designs/${encodeURIComponent(key)}${query({ template, title })}`,
   bench: '/bench',
   benchFor: (search: Record<string, string | number | undefined>) => `/bench${query(search)}`,
+  lots: '/lots',
+  lot: (design: string, lot: string) => `/lots/${encodeURIComponent(design)}/${encodeURIComponent(lot)}`,
   history: '/history',
   record: (id: string) => `/records/${id}`,
   ledger: '/ledger',

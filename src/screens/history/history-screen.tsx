@@ -13,13 +13,13 @@ import { PageHead } from '../../ui/page-head.tsx'
 import { PageProblem } from '../../ui/page-problem.tsx'
 import { Problem } from '../../ui/problem.tsx'
 import { useMedia } from '../../ui/use-media.ts'
+import { useRowKeys } from '../../ui/use-row-keys.ts'
 import { HistoryExport } from './history-export.tsx'
 import { HistoryFoot } from './history-foot.tsx'
 import { HistoryState } from './history-state.tsx'
 import { NoRecords } from './no-records.tsx'
 import { useChoices } from './use-choices.ts'
 import { usePages } from './use-pages.ts'
-import { useRows } from './use-rows.ts'
 
 const copyLink = () => void copyText(window.location.href, 'Copied the link to this view.')
 
@@ -36,7 +36,7 @@ export default function HistoryScreen() {
   const unit = useRef<HTMLInputElement>(null)
   const items = records.data?.items ?? []
   const pages = usePages(records.isPlaceholderData ? null : (records.data?.next ?? null))
-  const rows = useRows(items.length)
+  const rows = useRowKeys(items.length)
   const { reset } = rows
   // biome-ignore lint/correctness/useExhaustiveDependencies: another page starts at its first row
   useEffect(reset, [search])

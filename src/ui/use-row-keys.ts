@@ -5,7 +5,7 @@ function link(row: number): HTMLAnchorElement | null {
 }
 
 /** The current row: `j` and `k` move it and the focus with it, Enter opens it. */
-export function useRows(count: number): {
+export function useRowKeys(count: number): {
   row: number
   move: (by: number) => void
   open: () => void

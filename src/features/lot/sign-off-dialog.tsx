@@ -1,0 +1,130 @@
+import { type FormEvent, useState } from 'react'
+import { undecidedStandings } from '../../../shared/contract/lot-standing.ts'
+import type { LotDetail, LotUnit } from '../../../shared/contract/lots.ts'
+import { isOgeeError } from '../../../shared/errors.ts'
+import { limits } from '../../../shared/limits.ts'
+import { Button } from '../../ui/button.tsx'
+import { Dialog } from '../../ui/dialog.tsx'
+import { Field } from '../../ui/field.tsx'
+import { TextArea, TextInput } from '../../ui/input.tsx'
+import { Problem } from '../../ui/problem.tsx'
+import { announce } from '../../ui/status.tsx'
+import { Verdict } from '../../ui/verdict.tsx'
+import { useSignOff } from './queries.ts'
+import { percent, standingLook, unitsText } from './words.ts'
+
+/** Units that get a field of their own; the rest share one reason. */
+const shownMost = 12
+
+type Props = { lot: LotDetail; units: readonly LotUnit[]; onClose: () => void }
+
+/** Every unit that is not right gets a decision: it is left out, for a reason that is kept for good. */
+export function SignOffDialog({ lot, units, onClose }: Props) {
+  const open = units.filter((unit) => isUndecided(unit))
+  const listed = open.slice(0, shownMost)
+  const others = open.length - listed.length + lot.counts.missing
+  const [reasons, setReasons] = useState<Record<string, string>>({})
+  const [rest, setRest] = useState('')
+  const [note, setNote] = useState('')
+  const [tried, setTried] = useState(false)
+  // As it was seen when the dialog was opened: what is recorded meanwhile makes the server refuse.
+  const [etag] = useState(lot.etag)
+  const signOff = useSignOff({ key: lot.design, lot: lot.key }, etag)
+  const short = (reason: string | undefined) => [...(reason ?? '').trim()].length < limits.reasonMin
+  const errorOf = (reason: string | undefined) =>
+    tried && short(reason) ? `At least ${limits.reasonMin} characters.` : undefined
+  const submit = (event: FormEvent) => {
+    event.preventDefault()
+    setTried(true)
+    const isShort = listed.some(({ unit }) => short(reasons[unit])) || (others > 0 && short(rest))
+    if (isShort || signOff.isPending) return
+    signOff.mutate(
+      {
+        ...(note.trim() === '' ? {} : { note: note.trim() }),
+        leaveOut: listed.map(({ unit }) => ({ unit, reason: (reasons[unit] ?? '').trim() })),
+        ...(others > 0 ? { rest: { reason: rest.trim() } } : {}),
+      },
+      {
+        onSuccess: () => {
+          announce(`Lot ${lot.key} is signed off.`)
+          onClose()
+        },
+      },
+    )
+  }
+  const { counts } = lot
+  return (
+    <Dialog title={`Sign off lot ${lot.key}`} onClose={onClose}>
+      <form onSubmit={submit} noValidate className="space-y-3">
+        <p>
+          {`${counts.good} of ${unitsText(counts.units)} good, yield ${percent(counts.share)}. `}
+          {open.length + counts.missing === 0
+            ? 'Nothing needs a decision. '
+            : `Left out of the lot: ${unitsText(open.length + counts.missing)}. `}
+          Signing off closes the lot for good and goes into the ledger with your name.
+        </p>
+        {listed.map(({ unit, standing }) => (
+          <Field
+            key={unit}
+            error={errorOf(reasons[unit])}
+            label={
+              <>
+                {`Unit ${unit}: `}
+                <StandingWord standing={standing} />
+              </>
+            }
+          >
+            <TextInput
+              placeholder="Why it is left out"
+              maxLength={limits.reasonMax}
+              value={reasons[unit] ?? ''}
+              onChange={(event) => setReasons({ ...reasons, [unit]: event.target.value })}
+            />
+          </Field>
+        ))}
+        {others > 0 ? (
+          <Field
+            label={`${unitsText(others)} more${lot.counts.missing > 0 ? `, ${lot.counts.missing} of them expected and not recorded` : ''}`}
+            error={errorOf(rest)}
+          >
+            <TextInput
+              placeholder="Why they are left out"
+              maxLength={limits.reasonMax}
+              value={rest}
+              onChange={(event) => setRest(event.target.value)}
+            />
+          </Field>
+        ) : null}
+        <Field label="Note" hint="May be left out.">
+          <TextArea
+            maxLength={limits.noteMax}
+            value={note}
+            onChange={(event) => setNote(event.target.value)}
+          />
+        </Field>
+        <Problem error={signOff.error} />
+        {isOgeeError(signOff.error, 'precondition-failed') ? (
+          <p>Close this, look again, then sign off.</p>
+        ) : null}
+        <div className="flex gap-3">
+          <Button look="primary" type="submit" disabled={signOff.isPending}>
+            Sign off
+          </Button>
+          <Button onClick={onClose}>Cancel</Button>
+        </div>
+      </form>
+    </Dialog>
+  )
+}
+
+export const isUndecided = ({ reference, standing, places }: LotUnit): boolean =>
+  !reference && places.length > 0 && undecidedStandings.includes(standing)
+
+export function StandingWord({ standing }: { standing: LotUnit['standing'] }) {
+  const { verdict, word } = standingLook[standing]
+  return verdict === null ? (
+    <span className="font-semibold">{word}</span>
+  ) : (
+    <Verdict verdict={verdict} word={word} />
+  )
+}

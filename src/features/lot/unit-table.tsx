@@ -1,0 +1,212 @@
+import { useVirtualizer } from '@tanstack/react-virtual'
+import { memo, useMemo, useRef } from 'react'
+import type { LotUnit } from '../../../shared/contract/lots.ts'
+import { paths } from '../../lib/paths.ts'
+import { Button, LinkButton } from '../../ui/button.tsx'
+import { Field } from '../../ui/field.tsx'
+import { TextInput } from '../../ui/input.tsx'
+import { fixed } from '../../ui/number-format.ts'
+import { NumberText } from '../../ui/number-text.tsx'
+import { Section } from '../../ui/section.tsx'
+import { None, Td, Th } from '../../ui/table.tsx'
+import { utcText } from '../../ui/time-text.tsx'
+import { usePrinting } from '../../ui/use-printing.ts'
+import { StandingWord } from './sign-off-dialog.tsx'
+
+/** Every row is as high as the smallest target; a list of them is measured once. */
+const rowPx = 25
+/** Rows that are drawn when the page is printed; a longer table is for the file. */
+const printedMost = 2_000
+
+type Row = { unit: LotUnit; place: LotUnit['places'][number] | null; key: string }
+
+function rowsOf(units: readonly LotUnit[], find: string): Row[] {
+  const wanted = find.toLowerCase()
+  return units
+    .filter(({ unit, places }) => places.length > 0 && unit.toLowerCase().includes(wanted))
+    .flatMap((unit) =>
+      unit.places.map((place) => ({ unit, place, key: `${unit.unit} ${place.range} ${place.channel}` })),
+    )
+}
+
+type Props = {
+  units: readonly LotUnit[]
+  find: string
+  onFind: (find: string) => void
+  /** Left out where nobody here may mark reference units. */
+  onReference?: ((unit: string, reference: boolean) => void) | undefined
+}
+
+/** All channels of a lot in a window of rows: ten thousand scroll as ten do. */
+export function UnitTable({ units, find, onFind, onReference }: Props) {
+  const rows = useMemo(() => rowsOf(units, find), [units, find])
+  const hasRanges = useMemo(() => new Set(rows.map(({ place }) => place?.range)).size > 1, [rows])
+  return (
+    <Section
+      title="Units"
+      note={`${rows.length} channels`}
+      side={
+        <span className="print:hidden">
+          <Field label="find unit" layout="inline">
+            <TextInput
+              className="!min-h-6 w-40!"
+              value={find}
+              onChange={(event) => onFind(event.target.value)}
+            />
+          </Field>
+        </span>
+      }
+    >
+      {rows.length === 0 ? <p className="py-1 text-ink-2">No unit of this lot is called that.</p> : null}
+      <Window rows={rows} hasRanges={hasRanges} onReference={onReference} />
+    </Section>
+  )
+}
+
+type WindowProps = { rows: readonly Row[]; hasRanges: boolean; onReference: Props['onReference'] }
+
+function Window({ rows, hasRanges, onReference }: WindowProps) {
+  const box = useRef<HTMLDivElement>(null)
+  const isPrinting = usePrinting()
+  const virtual = useVirtualizer({
+    count: rows.length,
+    getScrollElement: () => box.current,
+    estimateSize: () => rowPx,
+    overscan: 12,
+    initialRect: { width: 800, height: 420 },
+  })
+  const shown = virtual.getVirtualItems()
+  const first = isPrinting ? 0 : (shown[0]?.index ?? 0)
+  const end = isPrinting ? Math.min(rows.length, printedMost) : (shown.at(-1)?.index ?? -1) + 1
+  return (
+    <section
+      ref={box}
+      aria-label="Units of the lot, scrolls"
+      // biome-ignore lint/a11y/noNoninteractiveTabindex: what scrolls must be reached by keyboard (WCAG 2.1.1)
+      tabIndex={0}
+      className="relative max-h-[420px] overflow-auto print:max-h-none print:overflow-visible"
+    >
+      <table className="w-full border-collapse text-body" aria-rowcount={rows.length + 1}>
+        <caption className="sr-only">Every channel of every unit: standing, errors, codes</caption>
+        <Head hasRanges={hasRanges} hasActs={onReference !== undefined} />
+        <tbody>
+          <Spacer px={first * rowPx} />
+          {rows.slice(first, end).map((row, i) => (
+            <UnitRow
+              key={row.key}
+              row={row}
+              index={first + i}
+              hasRanges={hasRanges}
+              onReference={onReference}
+            />
+          ))}
+          <Spacer px={(rows.length - end) * rowPx} />
+        </tbody>
+      </table>
+    </section>
+  )
+}
+
+/** Stands for the rows that are not drawn. */
+function Spacer({ px }: { px: number }) {
+  return px > 0 ? (
+    <tr>
+      <td style={{ height: px }} />
+    </tr>
+  ) : null
+}
+
+function Head({ hasRanges, hasActs }: { hasRanges: boolean; hasActs: boolean }) {
+  return (
+    <thead className="sticky top-0 bg-paper print:static">
+      <tr>
+        <Th>unit</Th>
+        <Th align="right">ch.</Th>
+        {hasRanges ? <Th>range</Th> : null}
+        <Th>standing</Th>
+        <Th align="right">pass</Th>
+        <Th align="right" unit="ppm" className="text-copper">
+          gain error
+        </Th>
+        <Th align="right" unit="µV" className="text-tide">
+          offset error
+        </Th>
+        <Th align="right" unit="code">
+          gain
+        </Th>
+        <Th align="right" unit="code">
+          offset
+        </Th>
+        <Th align="right" unit="LSB">
+          as left
+        </Th>
+        <Th>station</Th>
+        <Th unit="UTC">read</Th>
+        {hasActs ? (
+          <Th>
+            <span className="sr-only">reference</span>
+          </Th>
+        ) : null}
+      </tr>
+    </thead>
+  )
+}
+
+type RowProps = { row: Row; index: number; hasRanges: boolean; onReference: Props['onReference'] }
+
+const UnitRow = memo(function UnitRow({ row: { unit, place }, index, hasRanges, onReference }: RowProps) {
+  if (place === null) return null
+  const { found, codes, left } = place
+  const record = codes?.record ?? found?.record ?? left?.record
+  return (
+    <tr aria-rowindex={index + 2} className="h-[25px] hover:bg-shade">
+      <Td className="max-w-56 truncate">
+        {record ? (
+          <LinkButton className="min-h-6" to={paths.record(record)}>
+            {unit.unit}
+          </LinkButton>
+        ) : (
+          unit.unit
+        )}
+      </Td>
+      <Td align="right">{place.channel}</Td>
+      {hasRanges ? <Td>{place.range}</Td> : null}
+      <Td className="whitespace-nowrap">
+        {unit.reference ? (
+          <span className="text-ink-2">reference</span>
+        ) : (
+          <StandingWord standing={place.standing} />
+        )}
+      </Td>
+      <Td align="right">{place.pass}</Td>
+      <Td align="right">{number(found?.gainErrorPpm ?? null, 2, 1)}</Td>
+      <Td align="right">{number(found?.offsetErrorV ?? null, 1, 1e6)}</Td>
+      <Td align="right">{codes?.gain ?? <None />}</Td>
+      <Td align="right">{codes?.offset ?? <None />}</Td>
+      <Td align="right">{number(left === null ? null : Math.abs(left.worstLsb), 2, 1)}</Td>
+      <Td className="whitespace-nowrap">{found?.station ?? left?.station ?? ''}</Td>
+      <Td className="whitespace-nowrap text-ink-2">{utcText(found?.at ?? left?.at ?? '').slice(5, 16)}</Td>
+      {onReference ? (
+        <Td align="right" className="print:hidden">
+          <Button
+            look="quiet"
+            className="!min-h-6"
+            onClick={() => onReference(unit.unit, !unit.reference)}
+            aria-label={`${unit.unit}: ${unit.reference ? 'no longer a reference unit' : 'mark as reference unit'}`}
+          >
+            {unit.reference ? 'no reference' : 'reference'}
+          </Button>
+        </Td>
+      ) : null}
+    </tr>
+  )
+})
+
+function number(value: number | null, decimals: number, factor: number) {
+  if (value === null) return <None />
+  return (
+    <NumberText>
+      {fixed(value * factor, decimals, decimals === 2 && factor === 1 ? 'auto' : 'always')}
+    </NumberText>
+  )
+}

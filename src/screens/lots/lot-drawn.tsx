@@ -1,0 +1,141 @@
+import { useQuery } from '@tanstack/react-query'
+import { useDeferredValue, useMemo } from 'react'
+import type { Design } from '../../../shared/contract/design.ts'
+import type { LotDetail, LotUnit } from '../../../shared/contract/lots.ts'
+import { converterRange, limitInVolts } from '../../../shared/solver/converter.ts'
+import { type Analysis, analyse, type Side, type Which } from '../../features/lot/analyse.ts'
+import { CapabilityTable } from '../../features/lot/capability-table.tsx'
+import { ErrorHistogram } from '../../features/lot/error-histogram.tsx'
+import { IndividualsPlot } from '../../features/lot/individuals-plot.tsx'
+import { LeftPlot } from '../../features/lot/left-plot.tsx'
+import { StationSentence } from '../../features/lot/lot-sentences.tsx'
+import { stationMonthsOptions, useMarkReference } from '../../features/lot/queries.ts'
+import { StationPlot } from '../../features/lot/station-plot.tsx'
+import { compareStations } from '../../features/lot/stations.ts'
+import { UnitTable } from '../../features/lot/unit-table.tsx'
+import { usePerson } from '../../features/session/use-person.ts'
+import { Problem } from '../../ui/problem.tsx'
+import { PlaceChoice } from './place-choice.tsx'
+
+type Props = {
+  lot: LotDetail
+  design: Design
+  units: readonly LotUnit[]
+  search: URLSearchParams
+  onSearch: (change: Record<string, string | null>) => void
+}
+
+/** What is computed and drawn of a lot: distributions, chart, stations, capability, as left, units. */
+export default function LotDrawn({ lot, design, units: newest, search, onSearch }: Props) {
+  const { role } = usePerson()
+  // Ten thousand units take a moment: the page answers keys meanwhile.
+  const units = useDeferredValue(newest)
+  const range = design.ranges.find(({ id }) => id === search.get('range')) ?? mostUsed(design, units)
+  const channel = design.channels.find((name) => name === search.get('channel')) ?? null
+  const analysis = useMemo(
+    () => analyse(design, units, range.id, channel),
+    [design, units, range.id, channel],
+  )
+  const stations = useMemo(
+    () => [...new Set(analysis.points.map(({ station }) => station))].sort((a, b) => (a < b ? -1 : 1)),
+    [analysis],
+  )
+  const which = shownSide(analysis, search.get('chart'))
+  const side = which === null ? null : analysis[which]
+  const reference = useMarkReference(lot.design)
+  return (
+    <>
+      <PlaceChoice design={design} range={range.id} channel={channel} onSearch={onSearch} />
+      {side === null ? (
+        <p className="my-3 text-text">{`Design ${lot.design} has no adjuster in this range: there is no reach.`}</p>
+      ) : null}
+      <div className="mt-3 grid gap-x-7 gap-y-3 wide:grid-cols-2">
+        {analysis.gain ? <ErrorHistogram side={analysis.gain} points={analysis.points} /> : null}
+        {analysis.offset ? <ErrorHistogram side={analysis.offset} points={analysis.points} /> : null}
+      </div>
+      {side !== null && analysis.points.length > 0 ? (
+        <div className="mt-3">
+          <IndividualsPlot
+            side={side}
+            points={analysis.points}
+            stations={stations}
+            choices={choicesOf(analysis)}
+            onChoice={(chart) => onSearch({ chart })}
+          />
+        </div>
+      ) : null}
+      <div className="mt-3 grid gap-x-7 gap-y-3 wide:grid-cols-2">
+        <Stations lot={lot} range={range.id} side={side} />
+        <div className="min-w-0 space-y-3">
+          <CapabilityTable analysis={analysis} />
+          <LeftPlot
+            values={analysis.points.flatMap(({ left }) => left ?? [])}
+            toleranceLsb={toleranceOf(design, range.id)}
+          />
+        </div>
+      </div>
+      <Problem error={reference.error} />
+      <div className="mt-3">
+        <UnitTable
+          units={units}
+          find={search.get('find') ?? ''}
+          onFind={(find) => onSearch({ find })}
+          onReference={
+            role === 'engineer' ? (unit, on) => reference.mutate({ unit, reference: on }) : undefined
+          }
+        />
+      </div>
+    </>
+  )
+}
+
+function mostUsed(design: Design, units: readonly LotUnit[]): Design['ranges'][number] {
+  const counts = new Map<string, number>()
+  for (const { places } of units) {
+    for (const { range } of places) counts.set(range, (counts.get(range) ?? 0) + 1)
+  }
+  const [first] = [...design.ranges].sort((a, b) => (counts.get(b.id) ?? 0) - (counts.get(a.id) ?? 0))
+  if (!first) throw new Error('A design has at least one range.')
+  return first
+}
+
+function shownSide(analysis: Analysis, asked: string | null): Which | null {
+  if (asked === 'offset' && analysis.offset) return 'offset'
+  if (analysis.gain) return 'gain'
+  return analysis.offset ? 'offset' : null
+}
+
+const choicesOf = ({ gain, offset }: Analysis): [string, string][] => [
+  ...(gain ? [['gain', 'gain'] as [string, string]] : []),
+  ...(offset ? [['offset', 'offset'] as [string, string]] : []),
+]
+
+function toleranceOf(design: Design, rangeId: string): number | null {
+  const tolerance = design.decision?.tolerance
+  if (!tolerance) return null
+  const range = converterRange(design, rangeId)
+  return limitInVolts(tolerance, range) / range.lsbV
+}
+
+type StationsProps = { lot: LotDetail; range: string; side: Side | null }
+
+function Stations({ lot, range, side }: StationsProps) {
+  // To the end of the lot's last day: the answer stays the same while the day lasts.
+  const to = lot.state === 'open' || lot.lastAt === null ? null : `${lot.lastAt.slice(0, 10)}T23:59:59.999Z`
+  const months = useQuery(stationMonthsOptions(lot.design, to))
+  const items = months.data?.items
+  const which = side?.which ?? 'gain'
+  const unit = side?.unit ?? 'ppm'
+  const comparison = useMemo(
+    () => (items ? compareStations(items, range, which) : null),
+    [items, range, which],
+  )
+  if (months.error) return <Problem error={months.error} />
+  if (!comparison || comparison.lines.length === 0) return <div />
+  return (
+    <div className="min-w-0">
+      <StationPlot comparison={comparison} which={which} unit={unit} />
+      <StationSentence comparison={comparison} what={which} unit={unit} />
+    </div>
+  )
+}
