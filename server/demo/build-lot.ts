@@ -6,11 +6,11 @@ import type { Applied } from '../../shared/solver/types.ts'
 import { verifyPoints } from '../../shared/solver/verify.ts'
 import { demoInstrument } from './demo-instruments.ts'
 import type { DemoRandom } from './random.ts'
-import { type DemoLot, randomOfLot } from './scenario.ts'
+import { type DemoLot, randomOfLot, serialsOf, stationOf } from './scenario.ts'
 import { drawChannel, type Meter, measure } from './simulated-channel.ts'
 
 /** A request body of the demo, when it was recorded, and a key that makes loading it twice harmless. */
-export type DemoRequest = { key: string; at: Date; body: { [field: string]: unknown } }
+export type DemoRequest = { key: string; at: Date; station: 'A' | 'B'; body: { [field: string]: unknown } }
 
 const minuteMs = 60_000
 
@@ -21,10 +21,10 @@ export function buildLot(lot: DemoLot, document: unknown): DemoRequest[] {
   const channel = prepareTrim(design)
   const clock = { ms: lot.startedAt.getTime() }
   const requests: DemoRequest[] = []
-  for (let i = 1; i <= lot.units; i++) {
-    const serial = `${lot.design}-${lot.key.slice(1)}${String(i).padStart(2, '0')}`
+  for (const [i, serial] of serialsOf(lot).slice(0, lot.units).entries()) {
+    const station = stationOf(lot, i)
     for (const name of design.channels) {
-      requests.push(...buildChannel({ lot, random, design, channel, serial, name, clock }))
+      requests.push(...buildChannel({ lot, random, design, channel, serial, name, clock, station }))
     }
     clock.ms += random.below(20) * minuteMs
   }
@@ -39,6 +39,7 @@ type Bench = {
   serial: string
   name: string
   clock: { ms: number }
+  station: 'A' | 'B'
 }
 
 function buildChannel(bench: Bench): DemoRequest[] {
@@ -49,7 +50,7 @@ function buildChannel(bench: Bench): DemoRequest[] {
   const plan = design.measurement.points
   const found = spoiled(bench, measure(random, channel, truth, 'neutral', meter, plan))
   const requests = [request(bench, 'trim', 1, { applied: 'neutral', points: found })]
-  const instrument = demoInstrument[lot.station]
+  const instrument = demoInstrument[bench.station]
   const asFound = codesOn(channel, found, { applied: 'neutral', instrument })
   const first = asFound.trim
   // Who cannot trim stops here; a suspect unit waits for an engineer.
@@ -77,11 +78,13 @@ function limitsOf({ budget }: Design): { gainPpm: number; offsetV: number } {
   return { gainPpm: 0.7 * gainPpm, offsetV: 0.7 * offsetV }
 }
 
-/** Station B's meter drifts by 4 ppm over the two years; station A's holds. */
-function meterOf({ lot, design }: Bench): Meter {
-  const gain = lot.station === 'B' ? 4e-6 * lot.age : 0.2e-6
-  return { gain, noiseV: design.measurement.noiseV ?? 1e-6 }
-}
+/** Station B's meter drifts by 4 ppm over the two years (`age` 0 to 1); station A's holds. */
+export const meterGain = (station: 'A' | 'B', age: number): number => (station === 'B' ? 4e-6 * age : 0.2e-6)
+
+const meterOf = ({ lot, design, station }: Bench): Meter => ({
+  gain: meterGain(station, lot.age),
+  noiseV: design.measurement.noiseV ?? 1e-6,
+})
 
 /** Now and then a reading is taken before the output has settled. */
 function spoiled({ random, channel, name }: Bench, points: Point[]): Point[] {
@@ -95,7 +98,7 @@ function spoiled({ random, channel, name }: Bench, points: Point[]): Point[] {
 }
 
 function request(
-  { lot, random, serial, name, clock }: Bench,
+  { lot, random, serial, name, clock, station }: Bench,
   kind: 'trim' | 'verify',
   step: number,
   fields: { [field: string]: unknown },
@@ -105,6 +108,7 @@ function request(
   return {
     key: `demo-${serial}-${name}-${step}`,
     at: new Date(clock.ms),
+    station,
     body: {
       kind,
       design: lot.design,
@@ -113,7 +117,7 @@ function request(
       channel: name,
       conditions: {
         temperatureC: Math.round((22.5 + random.within(1)) * 10) / 10,
-        instrument: demoInstrument[lot.station].id,
+        instrument: demoInstrument[station].id,
       },
       measuredAt,
       ...fields,

@@ -1,26 +1,19 @@
-import { recordRequest } from '../../shared/contract/record.ts'
 import { createDesign } from '../commands/create-design.ts'
 import { createPerson } from '../commands/create-person.ts'
 import { createStation } from '../commands/create-station.ts'
 import { createToken } from '../commands/create-token.ts'
-import { openLot } from '../commands/lots/open-lot.ts'
 import { readDesign } from '../commands/read-design.ts'
-import { recordTrims } from '../commands/record-trims.ts'
-import { jobOf } from '../commands/recorder.ts'
-import { recordNumbers } from '../commands/recording/record-numbers.ts'
 import { releaseRevision } from '../commands/revisions/release-revision.ts'
 import { submitRevision } from '../commands/revisions/submit-revision.ts'
 import { transaction } from '../db/transaction.ts'
 import type { Deps } from '../http/deps.ts'
 import { hashPassword } from '../http/passwords.ts'
-import type { TokenPrincipal } from '../http/principal.ts'
 import { foldEmail } from '../models/person.ts'
 import { parseTokenText } from '../policies/token-text.ts'
 import { type DemoAccounts, demoAccounts, nameOf } from './accounts.ts'
-import { buildLot } from './build-lot.ts'
 import { demoDesigns } from './demo-designs.ts'
 import { calibrate } from './demo-instruments.ts'
-import { demoLots } from './scenario.ts'
+import { loadLots } from './load-lots.ts'
 
 type DemoDeps = Pick<Deps, 'database' | 'signer' | 'now' | 'notifyLedger'>
 
@@ -123,28 +116,6 @@ async function loadToken(deps: DemoDeps, accounts: DemoAccounts, station: string
   const scopes = ['designs:read', 'trims:write', 'trims:read', 'trims:read-all', 'ledger:read'] as const
   const asked = { name: 'Demo script', station, scopes: [...scopes], designs: null, days: 366 }
   await createToken(deps, asked, 'demo data', parts)
-}
-
-async function loadLots(deps: DemoDeps, end: Date, stations: Stations): Promise<void> {
-  const recording = { ...deps, numbers: recordNumbers(deps.database) }
-  for (const lot of demoLots(end)) {
-    const design = demoDesigns.find((candidate) => candidate.key === lot.design)!
-    await calibrate(deps, lot.station, lot.startedAt, end)
-    const dated = { ...deps, now: () => lot.startedAt }
-    await openLot(dated, { design: lot.design, key: lot.key, revision: 1, by: 'Station script' })
-    const principal = stationPrincipal(stations[lot.station])
-    const jobs = buildLot(lot, design.document).map(({ key, at, body }) => ({
-      ...jobOf({ principal, request: recordRequest.parse(body), rawBody: body, key }),
-      at,
-    }))
-    for (const outcome of await recordTrims(recording, jobs)) if (!outcome.done) throw outcome.error
-  }
-}
-
-function stationPrincipal(station: { id: string; name: string }): TokenPrincipal {
-  const id = `demo${station.name.slice(-1)}000`
-  const script = { kind: 'token', id, name: `${station.name} script`, scopes: ['trims:write'] } as const
-  return { ...script, station, designs: null, expiresAt: new Date(0) }
 }
 
 function sayAccounts(accounts: DemoAccounts, dataDir: string, say: (line: string) => void): void {

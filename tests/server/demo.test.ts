@@ -52,7 +52,7 @@ describe('demo data', () => {
         (SELECT COUNT(*) FROM lots) AS lots, (SELECT COUNT(DISTINCT unit) FROM records) AS units,
         (SELECT COUNT(*) FROM ledger_leaves WHERE kind = 'record') - (SELECT COUNT(*) FROM records) AS loose`,
     )
-    expect(count).toEqual({ people: 4, stations: 2, tokens: 1, designs: 2, lots: 40, units: 80, loose: 0 })
+    expect(count).toEqual({ people: 4, stations: 2, tokens: 1, designs: 2, lots: 40, units: 107, loose: 0 })
   })
 
   it('have two instruments, calibrated each year, one due soon, and records that keep what was true then', async () => {
@@ -95,6 +95,36 @@ describe('demo data', () => {
       'SELECT COUNT(*) AS n FROM records WHERE recorded_at > UTC_TIMESTAMP(3)',
     )
     expect(late!.n).toBe(0)
+  })
+
+  it('show lots in every state, an expected unit that never came, and a reference unit at both stations', async () => {
+    const states = await rows<{ state: string; n: number }>(
+      'SELECT state, COUNT(*) AS n FROM lots GROUP BY state',
+    )
+    expect(Object.fromEntries(states.map(({ state, n }) => [state, n]))).toEqual({
+      open: 1,
+      closed: 2,
+      'signed-off': 37,
+    })
+    const [signed] = await rows<{ n: number }>(
+      "SELECT COUNT(*) AS n FROM ledger_leaves WHERE kind = 'sign-off'",
+    )
+    expect(signed!.n).toBe(37)
+    const [open] = await rows<{ key: string; design: string }>(
+      "SELECT l.lot_key AS `key`, d.design_key AS design FROM lots l JOIN designs d ON d.id = l.design_id WHERE state = 'open'",
+    )
+    const { token } = accounts()
+    const lot = await api(harness.url, 'get', `/designs/${open!.design}/lots/${open!.key}`, { token })
+    expect(lot.body).toMatchObject({ expected: 26, counts: { units: 24, missing: 2 } })
+    const stations = await api(harness.url, 'get', `/designs/${open!.design}/stations`, { token })
+    const reference = stations.body.items.filter(({ unit }: { unit: string | null }) => unit !== null)
+    expect(new Set(reference.map(({ station }: { station: string }) => station)).size).toBe(2)
+    const drift = (name: string) => {
+      const own = reference.filter(({ station }: { station: string }) => station === name)
+      return own.at(-1).gainMeanPpm - own[0].gainMeanPpm
+    }
+    expect(drift('Station B')).toBeGreaterThan(1)
+    expect(Math.abs(drift('Station A'))).toBeLessThan(0.5)
   })
 
   it('give one person a role, random passwords and a working token, kept for the owner alone', async () => {
