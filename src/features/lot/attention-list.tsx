@@ -38,7 +38,10 @@ type Props = {
 /** What to do now. On wide pages a table; on a phone two lines a unit. Links carry `data-row` for the keys. */
 export function AttentionList({ lot, rows, row, shown, hasChannels, onMore }: Props) {
   return (
-    <Section title="Units needing attention" side={`${rows.length} of ${lot.counts.units}`}>
+    <Section
+      title="Units needing attention"
+      side={`${new Set(rows.map(({ unit }) => unit)).size} of ${lot.counts.units}`}
+    >
       {rows.length === 0 ? (
         <p className="py-1 text-ink-2">None.</p>
       ) : (
@@ -103,7 +106,7 @@ function Row({ lot, one: { unit, place, standing }, index, current, hasChannels 
         <span className="block medium:hidden">{why}</span>
       </Td>
       <Td className="hidden align-top medium:table-cell">{why}</Td>
-      <Td className="hidden align-top medium:table-cell">{attention?.station ?? ''}</Td>
+      <Td className="hidden align-top whitespace-nowrap medium:table-cell">{attention?.station ?? ''}</Td>
       <Td className="hidden align-top whitespace-nowrap text-ink-2 medium:table-cell">
         {attention ? utcText(attention.at).slice(5, 16) : ''}
       </Td>

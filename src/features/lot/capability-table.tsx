@@ -4,7 +4,7 @@ import { CopyCsv } from '../../ui/plot/copy-csv.tsx'
 import { Section } from '../../ui/section.tsx'
 import { None, RowHead, Table, Td, Th } from '../../ui/table.tsx'
 import type { Analysis, Side } from './analyse.ts'
-import { ratioText, shareText } from './words.ts'
+import { ratioText, shareText, usedText } from './words.ts'
 
 const heads = [
   'adjuster',
@@ -74,7 +74,7 @@ function Row({ side }: { side: Side }) {
         {isEven ? '±' : null}
         {isEven ? number(size, 1) : `${fixed(worst.low, 1, 'always')} to ${fixed(worst.high, 1, 'always')}`}
       </Td>
-      <Td align="right">{reachUsed === null ? <None /> : shareText(reachUsed)}</Td>
+      <Td align="right">{reachUsed === null ? <None /> : usedText(reachUsed)}</Td>
       <Td align="right">{ratioText(capability?.cp ?? null)}</Td>
       <Td align="right">{ratioText(capability?.cpk ?? null)}</Td>
       <Td align="right">{shareText(expectedOut)}</Td>

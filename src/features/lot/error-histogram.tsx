@@ -1,11 +1,12 @@
 import { scaleLinear } from 'd3-scale'
 import { type Bars, barsOf } from '../../../shared/solver/lots/histogram.ts'
-import { type Box, PlotText, type Scale, XAxis } from '../../ui/plot/axes.tsx'
+import { type Box, PlotText, type Scale } from '../../ui/plot/axes.tsx'
 import { PlotFigure, type PlotTableData } from '../../ui/plot/plot-figure.tsx'
 import { decimalsFor, numberText } from '../../ui/plot/plot-numbers.ts'
 import { PlotSvg } from '../../ui/plot/plot-svg.tsx'
 import { useWalk } from '../../ui/plot/walk-points.ts'
 import type { LotPoint, Side } from './analyse.ts'
+import { RoundAxis } from './round-axis.tsx'
 
 const looks = {
   gain: { line: 'var(--copper)', fill: 'var(--copper-soft)' },
@@ -55,8 +56,8 @@ function tableOf({ from, width, counts }: Bars, unit: string): PlotTableData {
 type DrawingProps = { side: Side; bars: Bars; width: number; title: string }
 
 function Drawing({ side, bars, width, title }: DrawingProps) {
-  const box: Box = { left: 8, right: width - 8, top: 70, bottom: height - 34 }
-  const x = scaleLinear(domainOf(side, bars), [box.left, box.right]).nice(8)
+  const box: Box = { left: 20, right: width - 20, top: 70, bottom: height - 34 }
+  const x = scaleLinear(domainOf(side, bars), [box.left, box.right])
   const y = scaleLinear([0, Math.max(1, ...bars.counts)], [box.bottom, box.top])
   const { line, fill } = looks[side.which]
   const outline = `M${x(bars.from)} ${y(0)}${bars.counts
@@ -80,7 +81,7 @@ function Drawing({ side, bars, width, title }: DrawingProps) {
       ) : null}
       <BarStops bars={bars} x={x} y={y} box={box} unit={side.unit} />
       <Mean side={side} x={x} box={box} />
-      <XAxis x={x} box={box} label={`${side.which} error as found, ${side.unit}`} />
+      <RoundAxis x={x} box={box} label={`${side.which} error as found, ${side.unit}`} />
     </PlotSvg>
   )
 }

@@ -1,6 +1,6 @@
 import { scaleLinear } from 'd3-scale'
 import { type ReactNode, useState } from 'react'
-import { type Box, PlotText, type Scale, XAxis, YAxis } from '../../ui/plot/axes.tsx'
+import { type Box, PlotText, type Scale, YAxis } from '../../ui/plot/axes.tsx'
 import { EndLabels } from '../../ui/plot/end-labels.tsx'
 import { PlotFigure, type PlotTableData } from '../../ui/plot/plot-figure.tsx'
 import { numberText } from '../../ui/plot/plot-numbers.ts'
@@ -8,6 +8,7 @@ import { PlotSvg } from '../../ui/plot/plot-svg.tsx'
 import { useWalk } from '../../ui/plot/walk-points.ts'
 import type { LotPoint, Side } from './analyse.ts'
 import { PointPages, pageOf, pageSize } from './point-pages.tsx'
+import { RoundAxis } from './round-axis.tsx'
 import { markSentence, StationMark } from './station-mark.tsx'
 
 /** Under this many units the limits say little (patterns.md). */
@@ -134,7 +135,7 @@ function Drawing({ side, points, first, stations, hasLimits, width }: DrawingPro
         stations={stations}
         hasLimits={hasLimits}
       />
-      <XAxis x={x} box={box} label="channel, in order of reading" whole />
+      <RoundAxis x={x} box={box} label="channel, in order of reading" whole />
     </PlotSvg>
   )
 }

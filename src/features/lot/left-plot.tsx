@@ -1,10 +1,11 @@
 import { scaleLinear } from 'd3-scale'
 import { type Bars, barsOf } from '../../../shared/solver/lots/histogram.ts'
-import { type Box, PlotText, XAxis } from '../../ui/plot/axes.tsx'
+import { type Box, PlotText } from '../../ui/plot/axes.tsx'
 import { PlotFigure } from '../../ui/plot/plot-figure.tsx'
 import { decimalsFor, numberText } from '../../ui/plot/plot-numbers.ts'
 import { PlotSvg } from '../../ui/plot/plot-svg.tsx'
 import { useWalk } from '../../ui/plot/walk-points.ts'
+import { RoundAxis } from './round-axis.tsx'
 
 const height = 140
 
@@ -46,7 +47,7 @@ export function LeftPlot({
 }
 
 function Drawing({ bars, toleranceLsb, width }: { bars: Bars; toleranceLsb: number | null; width: number }) {
-  const box: Box = { left: 8, right: width - 8, top: 24, bottom: height - 34 }
+  const box: Box = { left: 12, right: width - 16, top: 24, bottom: height - 34 }
   const end = bars.from + bars.counts.length * bars.width
   const x = scaleLinear([0, Math.max(end, (toleranceLsb ?? 0) * 1.15)], [box.left, box.right]).nice(6)
   const y = scaleLinear([0, Math.max(1, ...bars.counts)], [box.bottom, box.top])
@@ -73,7 +74,7 @@ function Drawing({ bars, toleranceLsb, width }: { bars: Bars; toleranceLsb: numb
         </>
       )}
       <Stops bars={bars} x={x} y={y} box={box} />
-      <XAxis x={x} box={box} label="worst |error| as left, LSB" />
+      <RoundAxis x={x} box={box} label="worst |error| as left, LSB" />
     </PlotSvg>
   )
 }

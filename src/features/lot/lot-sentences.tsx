@@ -45,6 +45,12 @@ export function SignOffSentence({ lot }: { lot: LotDetail }) {
   )
 }
 
+/** Whether there is anything to look into: a difference over its uncertainty, or a clear drift. */
+export function differs({ newest, drift }: Comparison): boolean {
+  if (newest === null) return false
+  return Math.abs(newest.difference.value) > newest.difference.expanded || drift?.isClear === true
+}
+
 /** The second sentence: which station reads differently, and whether it moves. */
 export function StationSentence({
   comparison,
@@ -64,7 +70,7 @@ export function StationSentence({
     drift?.isClear && Math.abs(drift.perStep) > 0
       ? ` It has moved about ${numberText(Math.abs(drift.perStep), Math.abs(drift.perStep) < 1 ? 2 : 1)} ${unit} a month since ${drift.since}.`
       : ''
-  if (Math.abs(value) <= expanded && moving === '') {
+  if (!differs(comparison)) {
     return (
       <p className="text-text text-ink-2">
         {`Stations agree in ${what}: ${newest.second} less ${newest.first} is ${numberText(value, 1, true)} ${unit} in ${newest.month} (U ${numberText(expanded, 1)} ${unit}, k = ${numberText(k, 1)}${spread}).`}

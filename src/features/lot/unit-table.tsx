@@ -183,7 +183,7 @@ const UnitRow = memo(function UnitRow({ row: { unit, place }, index, hasRanges, 
       <Td align="right">{number(found?.offsetErrorV ?? null, 1, 1e6)}</Td>
       <Td align="right">{codes?.gain ?? <None />}</Td>
       <Td align="right">{codes?.offset ?? <None />}</Td>
-      <Td align="right">{number(left === null ? null : Math.abs(left.worstLsb), 2, 1)}</Td>
+      <Td align="right">{number(left === null ? null : Math.abs(left.worstLsb), 2, 1, 'auto')}</Td>
       <Td className="whitespace-nowrap">{found?.station ?? left?.station ?? ''}</Td>
       <Td className="whitespace-nowrap text-ink-2">{utcText(found?.at ?? left?.at ?? '').slice(5, 16)}</Td>
       {onReference ? (
@@ -192,9 +192,9 @@ const UnitRow = memo(function UnitRow({ row: { unit, place }, index, hasRanges, 
             look="quiet"
             className="!min-h-6"
             onClick={() => onReference(unit.unit, !unit.reference)}
-            aria-label={`${unit.unit}: ${unit.reference ? 'no longer a reference unit' : 'mark as reference unit'}`}
+            aria-label={`${unit.reference ? 'unmark' : 'mark reference'}: unit ${unit.unit}`}
           >
-            {unit.reference ? 'no reference' : 'reference'}
+            {unit.reference ? 'unmark' : 'mark reference'}
           </Button>
         </Td>
       ) : null}
@@ -202,11 +202,7 @@ const UnitRow = memo(function UnitRow({ row: { unit, place }, index, hasRanges, 
   )
 })
 
-function number(value: number | null, decimals: number, factor: number) {
+function number(value: number | null, decimals: number, factor: number, sign: 'auto' | 'always' = 'always') {
   if (value === null) return <None />
-  return (
-    <NumberText>
-      {fixed(value * factor, decimals, decimals === 2 && factor === 1 ? 'auto' : 'always')}
-    </NumberText>
-  )
+  return <NumberText>{fixed(value * factor, decimals, sign)}</NumberText>
 }

@@ -34,6 +34,10 @@ export function shareText(share: number | null): string {
   return `${fixed(share * 1e6, share * 1e6 < 10 ? 2 : 0)} ppm`
 }
 
+/** How much of the reach is used: never so small that ppm would help. */
+export const usedText = (share: number | null): string =>
+  share === null ? 'none' : `${fixed(share * 100, share < 0.01 ? 2 : 1)} %`
+
 export const ratioText = (ratio: number | null): string =>
   ratio === null ? 'none' : Math.abs(ratio) > 100 ? 'over 100' : fixed(ratio, 2)
 

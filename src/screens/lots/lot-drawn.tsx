@@ -1,4 +1,3 @@
-import { useQuery } from '@tanstack/react-query'
 import { useDeferredValue, useMemo } from 'react'
 import type { Design } from '../../../shared/contract/design.ts'
 import type { LotDetail, LotUnit } from '../../../shared/contract/lots.ts'
@@ -8,14 +7,15 @@ import { CapabilityTable } from '../../features/lot/capability-table.tsx'
 import { ErrorHistogram } from '../../features/lot/error-histogram.tsx'
 import { IndividualsPlot } from '../../features/lot/individuals-plot.tsx'
 import { LeftPlot } from '../../features/lot/left-plot.tsx'
-import { StationSentence } from '../../features/lot/lot-sentences.tsx'
-import { stationMonthsOptions, useMarkReference } from '../../features/lot/queries.ts'
+import { differs, StationSentence } from '../../features/lot/lot-sentences.tsx'
+import { useMarkReference } from '../../features/lot/queries.ts'
+import { shownRange } from '../../features/lot/shown-range.ts'
 import { StationPlot } from '../../features/lot/station-plot.tsx'
-import { compareStations } from '../../features/lot/stations.ts'
 import { UnitTable } from '../../features/lot/unit-table.tsx'
 import { usePerson } from '../../features/session/use-person.ts'
 import { Problem } from '../../ui/problem.tsx'
 import { PlaceChoice } from './place-choice.tsx'
+import { useComparison } from './use-comparison.ts'
 
 type Props = {
   lot: LotDetail
@@ -30,7 +30,7 @@ export default function LotDrawn({ lot, design, units: newest, search, onSearch 
   const { role } = usePerson()
   // Ten thousand units take a moment: the page answers keys meanwhile.
   const units = useDeferredValue(newest)
-  const range = design.ranges.find(({ id }) => id === search.get('range')) ?? mostUsed(design, units)
+  const range = shownRange(design, units, search.get('range'))
   const channel = design.channels.find((name) => name === search.get('channel')) ?? null
   const analysis = useMemo(
     () => analyse(design, units, range.id, channel),
@@ -89,16 +89,6 @@ export default function LotDrawn({ lot, design, units: newest, search, onSearch 
   )
 }
 
-function mostUsed(design: Design, units: readonly LotUnit[]): Design['ranges'][number] {
-  const counts = new Map<string, number>()
-  for (const { places } of units) {
-    for (const { range } of places) counts.set(range, (counts.get(range) ?? 0) + 1)
-  }
-  const [first] = [...design.ranges].sort((a, b) => (counts.get(b.id) ?? 0) - (counts.get(a.id) ?? 0))
-  if (!first) throw new Error('A design has at least one range.')
-  return first
-}
-
 function shownSide(analysis: Analysis, asked: string | null): Which | null {
   if (asked === 'offset' && analysis.offset) return 'offset'
   if (analysis.gain) return 'gain'
@@ -120,22 +110,16 @@ function toleranceOf(design: Design, rangeId: string): number | null {
 type StationsProps = { lot: LotDetail; range: string; side: Side | null }
 
 function Stations({ lot, range, side }: StationsProps) {
-  // To the end of the lot's last day: the answer stays the same while the day lasts.
-  const to = lot.state === 'open' || lot.lastAt === null ? null : `${lot.lastAt.slice(0, 10)}T23:59:59.999Z`
-  const months = useQuery(stationMonthsOptions(lot.design, to))
-  const items = months.data?.items
-  const which = side?.which ?? 'gain'
+  const { comparison, error } = useComparison(lot, range, side?.which ?? 'gain')
   const unit = side?.unit ?? 'ppm'
-  const comparison = useMemo(
-    () => (items ? compareStations(items, range, which) : null),
-    [items, range, which],
-  )
-  if (months.error) return <Problem error={months.error} />
+  if (error) return <Problem error={error} />
   if (!comparison || comparison.lines.length === 0) return <div />
   return (
     <div className="min-w-0">
-      <StationPlot comparison={comparison} which={which} unit={unit} />
-      <StationSentence comparison={comparison} what={which} unit={unit} />
+      <StationPlot comparison={comparison} which={side?.which ?? 'gain'} unit={unit} />
+      {differs(comparison) && side?.which !== 'offset' ? null : (
+        <StationSentence comparison={comparison} what={side?.which ?? 'gain'} unit={unit} />
+      )}
     </div>
   )
 }

@@ -7,6 +7,7 @@ import { revisionOptions } from '../../features/design/queries.ts'
 import { AttentionList, attentionRows } from '../../features/lot/attention-list.tsx'
 import { SignOffSentence } from '../../features/lot/lot-sentences.tsx'
 import { MissingList } from '../../features/lot/missing-list.tsx'
+import { shownRange } from '../../features/lot/shown-range.ts'
 import { YieldTable } from '../../features/lot/yield-table.tsx'
 import { useKeys } from '../../lib/keys.ts'
 import { paths } from '../../lib/paths.ts'
@@ -18,6 +19,7 @@ import { LotHead } from './lot-head.tsx'
 import { useLotUnits } from './use-lot-units.ts'
 import { useNeighbours } from './use-neighbours.ts'
 
+const StationLine = lazy(() => import('./station-line.tsx'))
 const LotDrawn = lazy(() => import('./lot-drawn.tsx'))
 const UploadPanel = lazy(() => import('../../features/lot/upload/upload-panel.tsx'))
 
@@ -78,6 +80,19 @@ export function LotPage({ lot }: { lot: LotDetail }) {
       ) : null}
       <div className="mt-2">
         <SignOffSentence lot={lot} />
+        {hasUnits ? (
+          // Its place is kept, so that nothing jumps when it is known.
+          <div className="min-h-5 print:min-h-0">
+            {document && units.data ? (
+              <Suspense fallback={null}>
+                <StationLine
+                  lot={lot}
+                  range={shownRange(document, units.data.units, search.get('range')).id}
+                />
+              </Suspense>
+            ) : null}
+          </div>
+        ) : null}
       </div>
       <Problem error={units.error ?? design.error} />
       {hasUnits ? (
