@@ -1,11 +1,12 @@
 import { afterAll, beforeAll, expect, it } from 'vitest'
 import { sha256 } from '../../server/ledger/crypto.ts'
-import { designDocument } from '../../shared/contract/design.ts'
-import { type RecordBody, recordBody } from '../../shared/contract/record.ts'
+import { type Design, designDocument } from '../../shared/contract/design.ts'
+import { type RecordBody, recordBody, type Record as TrimRecord } from '../../shared/contract/record.ts'
 import { canonicalText } from '../../shared/ledger/canonical.ts'
 import { leafBytes, leafHash } from '../../shared/ledger/leaf.ts'
 import { codesOn } from '../../shared/solver/codes.ts'
 import { prepareTrim } from '../../shared/solver/prepare-trim.ts'
+import { recompute } from '../../src/screens/record/recompute.ts'
 import { mth } from '../shared/ledger/reference-tree.ts'
 import { fillHarness } from '../support/filled.ts'
 import { api, signIn } from '../support/server-client.ts'
@@ -58,11 +59,33 @@ it('writes records that are canonical, of the contract, and that the solver comp
     expect(canonicalText(parsed as never)).toBe(text)
     recordBody.parse(parsed)
     if (parsed.design !== 'DBS-A' || parsed.kind !== 'trim' || parsed.effects !== 'design') continue
-    const again = codesOn(channel, parsed.points!, { applied: parsed.applied! })
+    const options = parsed.instrument ? { instrument: parsed.instrument } : {}
+    const again = codesOn(channel, parsed.points!, { ...options, applied: parsed.applied! })
     expect(canonicalText(again as never)).toBe(canonicalText(parsed.result as never))
     compared += 1
   }
   expect(compared).toBeGreaterThan(100)
+})
+
+it('has records whose effects were learned, which the record page computes again bit for bit from their chains', async () => {
+  const bodies = (await leaves())
+    .filter(({ kind }) => kind === 'record')
+    .map(({ body }) => JSON.parse(body.toString('utf8')) as TrimRecord)
+  const byId = new Map(bodies.map((body) => [body.id, body]))
+  const designs = new Map<string, Design>()
+  for (const key of ['DBS-A', 'DBC-16']) {
+    const { document } = (await api(harness.url, 'get', `/designs/${key}/revisions/1`, auditor)).body
+    designs.set(key, designDocument.parse(document))
+  }
+  const learned = bodies.filter(({ effects }) => effects === 'learned')
+  expect(learned.length).toBeGreaterThan(20)
+  for (const record of learned) {
+    const chain: TrimRecord[] = []
+    for (let at = record.follows; at !== null; at = chain[0]!.follows) chain.unshift(byId.get(at)!)
+    const again = recompute(record, designs.get(record.design)!, chain)
+    if (again.is !== 'done') throw new Error(again.why)
+    for (const row of again.rows) expect(row.now, `${record.number} ${row.name}`).toBe(row.stored)
+  }
 })
 
 it('leaves units as recording would: a page reads, and the next record goes on from them', async () => {

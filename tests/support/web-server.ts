@@ -101,6 +101,7 @@ function answers(state: State): [string, Answer][] {
     ['GET /designs/DBS-A/revisions/2', inside(() => json(fixtures.revision(2)))],
     ['GET /designs/DBS-A/revisions/:number', inside(() => json(fixtures.revision(1)))],
     ['GET /trims', inside(listRecords)],
+    ['GET /findings', inside(() => json({ items: [], next: null }))],
     ['GET /history/count', inside(() => json({ count: total, more: false }))],
     ['GET /history/recorders', inside(() => json({ items: fixtures.recorders, next: null }))],
     ['GET /trims/:id', inside((asked) => oneRecord(state, asked))],

@@ -1,5 +1,5 @@
 import { queryOptions } from '@tanstack/react-query'
-import { getCheckpoint, getLedgerKey } from '../../../shared/contract/ledger.ts'
+import { getCheckpoint, getLedgerKey, getProof } from '../../../shared/contract/ledger.ts'
 import { api } from '../../lib/api.ts'
 
 export const checkpointOptions = queryOptions({
@@ -12,3 +12,11 @@ export const ledgerKeyOptions = queryOptions({
   queryKey: ['ledger', 'key'],
   queryFn: ({ signal }) => api(getLedgerKey, {}, signal),
 })
+
+/** Against the newest checkpoint: read again when the page is opened again. */
+export const proofOptions = (recordId: string) =>
+  queryOptions({
+    queryKey: ['ledger', 'proof', recordId],
+    queryFn: ({ signal }) => api(getProof, { params: { recordId } }, signal),
+    staleTime: 60_000,
+  })

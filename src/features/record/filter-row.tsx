@@ -43,15 +43,7 @@ export function FilterRow({
       onSubmit={(event) => event.preventDefault()}
       className="flex flex-wrap items-baseline gap-x-4 gap-y-1.5 py-2 print:hidden"
     >
-      <TextFilter
-        label="unit"
-        value={filters.unit ?? given('serial')}
-        width="w-28!"
-        isValid={(text) => isFilterValue('serial', text)}
-        wrong="At most 64 characters."
-        onChange={(serial) => onChange({ serial, unit: '' })}
-        inputRef={unitRef}
-      />
+      <UnitFilter filters={filters} onChange={onChange} inputRef={unitRef} />
       <TextFilter
         label="lot"
         value={given('lot').replaceAll(',', ', ')}
@@ -107,6 +99,12 @@ export function FilterRow({
         choices={attemptChoices.map((least) => [least, `${least} or more`])}
         onChange={set('attempt')}
       />
+      <ChoiceFilter
+        label="finding"
+        value={given('finding')}
+        choices={findingChoices}
+        onChange={set('finding')}
+      />
       <DayFilter label="from" none="the first" value={given('from')} onChange={set('from')} />
       <DayFilter label="to" none="now" value={given('to')} onChange={set('to')} />
       {count > 0 ? (
@@ -118,6 +116,34 @@ export function FilterRow({
     </form>
   )
 }
+
+/** What is typed is looked for at the beginning of serials and their parts; a whole serial comes by link. */
+function UnitFilter({
+  filters,
+  onChange,
+  inputRef,
+}: {
+  filters: Filters
+  onChange: (change: Filters) => void
+  inputRef: Ref<HTMLInputElement>
+}) {
+  return (
+    <TextFilter
+      label="unit"
+      value={filters.unit ?? filters.serial ?? ''}
+      width="w-28!"
+      isValid={(text) => isFilterValue('serial', text)}
+      wrong="At most 64 characters."
+      onChange={(serial) => onChange({ serial, unit: '' })}
+      inputRef={inputRef}
+    />
+  )
+}
+
+const findingChoices: readonly ChoiceOption[] = [
+  ['open', 'open'],
+  ['any', 'open or closed'],
+]
 
 /** Written as the address has it: 2026-11-24, or with a time. */
 function DayFilter(props: {

@@ -1,11 +1,12 @@
+import type { ReactNode } from 'react'
 import type { Record as TrimRecord } from '../../../shared/contract/record.ts'
 import { CopyButton } from '../../ui/copy-button.tsx'
 import { Whole } from '../../ui/number-text.tsx'
 import { Fact, Facts, Section } from '../../ui/section.tsx'
 import { TimeText } from '../../ui/time-text.tsx'
 
-/** The signed receipt, and where the record stands in the ledger. */
-export function LedgerPlace({ record }: { record: TrimRecord }) {
+/** The signed receipt, and where the record stands in the ledger; `children` show the proof, once there is a place to prove. */
+export function LedgerPlace({ record, children }: { record: TrimRecord; children: ReactNode }) {
   const { receipt, ledger } = record
   return (
     <Section
@@ -31,6 +32,7 @@ export function LedgerPlace({ record }: { record: TrimRecord }) {
           </>
         )}
       </p>
+      {ledger ? <div className="mb-3">{children}</div> : null}
       <Facts>
         <Fact name="leaf hash">
           <span className="font-mono text-small">{receipt.leaf}</span>

@@ -10,6 +10,7 @@ import { countRecords, listRecorders } from '../../../shared/contract/history.ts
 import type { Record as TrimRecord } from '../../../shared/contract/record.ts'
 import { getTrim, listTrims, postTrim } from '../../../shared/contract/trims.ts'
 import { isOgeeError } from '../../../shared/errors.ts'
+import { limits } from '../../../shared/limits.ts'
 import { api } from '../../lib/api.ts'
 import type { Filters } from './filters.ts'
 
@@ -42,6 +43,18 @@ export const recordOptions = (id: string) =>
     queryFn: ({ signal }) => api(getTrim, { params: { id } }, signal),
     // The place in the ledger follows within a second or so: look again until it is there.
     refetchInterval: ({ state }) => (state.data && state.data.ledger === null ? 2_000 : false),
+  })
+
+/** Trims of the record's unit, channel and range, oldest first: as many as one page of the newest holds. */
+export const placeTrimsOptions = ({ unit, design, channel, range }: TrimRecord) =>
+  queryOptions({
+    queryKey: ['records', 'place', design, unit, channel, range],
+    queryFn: async ({ signal }) => {
+      const query = { unit, design, kind: 'trim', limit: limits.pageMax }
+      const { items } = await api(listTrims, { query }, signal)
+      return items.filter((line) => line.channel === channel && line.range === range).reverse()
+    },
+    staleTime: 60_000,
   })
 
 const chainMost = 20

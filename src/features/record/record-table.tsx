@@ -90,9 +90,24 @@ function RecordRow({ record, index, current }: { record: RecordLine; index: numb
       <Td align="right">
         {numberOr(record.worstLsb === null ? null : Math.abs(record.worstLsb), 2, 1, false)}
       </Td>
-      <Td>{record.verdict ? <Verdict verdict={record.verdict} /> : <None />}</Td>
+      <Td>
+        {record.verdict ? <Verdict verdict={record.verdict} /> : <None />}
+        <FindingMark finding={record.finding} />
+      </Td>
       <Td className={onlyWide}>{byText(record.by, record.station)}</Td>
     </tr>
+  )
+}
+
+/** Word and weight: an open finding is seen in the list, a closed one is still told. */
+function FindingMark({ finding }: { finding: RecordLine['finding'] }) {
+  if (finding === null) return null
+  return (
+    <span
+      className={`ml-2 text-small whitespace-nowrap ${finding === 'open' ? 'font-semibold text-caution' : 'text-ink-2'}`}
+    >
+      {finding === 'open' ? 'finding' : 'finding, closed'}
+    </span>
   )
 }
 

@@ -2,7 +2,11 @@ import type { Design } from '../../../shared/contract/design.ts'
 import type { Point } from '../../../shared/contract/point.ts'
 import type { Record as TrimRecord } from '../../../shared/contract/record.ts'
 import { isOgeeError } from '../../../shared/errors.ts'
+import { canonicalText } from '../../../shared/ledger/canonical.ts'
+import { appliedVoltages } from '../../../shared/solver/applied.ts'
 import { computeCodes } from '../../../shared/solver/codes.ts'
+import type { PreviousPass } from '../../../shared/solver/learn.ts'
+import { prepareTrim } from '../../../shared/solver/prepare-trim.ts'
 import { verifyPoints } from '../../../shared/solver/verify.ts'
 import { SOLVER_VERSION } from '../../../shared/solver/version.ts'
 
@@ -13,18 +17,19 @@ export type Recomputed =
 
 type Result = NonNullable<TrimRecord['result']>
 
-/** The solver of this page on the stored points under the stored revision. Nothing of the stored result goes in. */
-export function recompute(record: TrimRecord, design: Design): Recomputed {
+/**
+ * The solver of this page on the stored points under the stored revision. Nothing of the stored result goes in; where
+ * effects were learned, the result of the pass before does: `earlier` are the records that this one follows, oldest first.
+ */
+export function recompute(
+  record: TrimRecord,
+  design: Design,
+  earlier: readonly TrimRecord[] = [],
+): Recomputed {
   const { result, points } = record
   if (result === null || points === null) return { is: 'not-done', why: 'This record has no points.' }
-  if (record.effects === 'learned') {
-    return {
-      is: 'not-done',
-      why: 'Its effects were learned from the pass before; the command line recomputes such a record with --previous.',
-    }
-  }
   try {
-    const now = solveAgain(record, design, points)
+    const now = solveAgain(record, design, points, earlier)
     return {
       is: 'done',
       rows: rowsOf(result, now),
@@ -39,7 +44,12 @@ export function recompute(record: TrimRecord, design: Design): Recomputed {
   }
 }
 
-function solveAgain(record: TrimRecord, design: Design, points: readonly Point[]): Result {
+function solveAgain(
+  record: TrimRecord,
+  design: Design,
+  points: readonly Point[],
+  earlier: readonly TrimRecord[],
+): Result {
   const limits = record.instrument ?? record.result?.fit?.instrument
   const options = {
     rangeId: record.range,
@@ -47,7 +57,26 @@ function solveAgain(record: TrimRecord, design: Design, points: readonly Point[]
     ...(limits ? { instrument: limits } : {}),
   }
   if (record.kind === 'verify') return verifyPoints(design, points, options) as Result
-  return computeCodes(design, points, { ...options, applied: record.applied ?? undefined }) as Result
+  const learned = record.effects === 'learned' ? passBefore(record, design, earlier) : undefined
+  return computeCodes(design, points, { ...options, learned, applied: record.applied ?? undefined }) as Result
+}
+
+/** A verification measured with the same codes shows no move, so the measurement that it stands on teaches. */
+function passBefore(
+  record: TrimRecord,
+  design: Design,
+  earlier: readonly TrimRecord[],
+): PreviousPass | undefined {
+  const before = [...earlier].reverse()
+  const sameCodes = (one: TrimRecord) => canonicalText(one.applied) === canonicalText(record.applied)
+  const teacher = before.find((one) => !(one.kind === 'verify' && sameCodes(one))) ?? before.at(-1)
+  const result = teacher?.result
+  if (!teacher || !result) return undefined
+  if (result.format === 'ogee.codes/1') return result
+  if (result.fit === null) return undefined
+  const { trimmers } = prepareTrim(design, record.range)
+  const { gain, offset } = appliedVoltages(trimmers, teacher.applied ?? 'neutral')
+  return { fit: result.fit, trim: { appliedNodeV: { gain, offset } } }
 }
 
 const verdictOf = (result: Result) =>

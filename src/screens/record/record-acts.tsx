@@ -1,4 +1,4 @@
-import { useState } from 'react'
+import { lazy, Suspense, useState } from 'react'
 import type { Record as TrimRecord } from '../../../shared/contract/record.ts'
 import { AmendDialog } from '../../features/record/amend-dialog.tsx'
 import { usePerson } from '../../features/session/use-person.ts'
@@ -6,10 +6,12 @@ import { paths } from '../../lib/paths.ts'
 import { Button, LinkButton } from '../../ui/button.tsx'
 import { download } from '../../ui/download.ts'
 
+const RecordFind = lazy(() => import('./record-find.tsx'))
+
 /** Acts that are not open to somebody are absent, not grey. */
 export function RecordActs({ record }: { record: TrimRecord }) {
   const { role } = usePerson()
-  const [open, setOpen] = useState<'override' | 'withdraw' | null>(null)
+  const [open, setOpen] = useState<'override' | 'withdraw' | 'find' | null>(null)
   const notice = (code: TrimRecord['notices'][number]['code']) =>
     record.notices.some((one) => one.code === code)
   const measured = record.kind === 'trim' || record.kind === 'verify'
@@ -37,7 +39,15 @@ export function RecordActs({ record }: { record: TrimRecord }) {
           Override
         </Button>
       ) : null}
-      {open ? <AmendDialog record={record} kind={open} onClose={() => setOpen(null)} /> : null}
+      {role === 'auditor' ? <Button onClick={() => setOpen('find')}>Write a finding</Button> : null}
+      {open === 'find' ? (
+        <Suspense fallback={null}>
+          <RecordFind record={record} onClose={() => setOpen(null)} />
+        </Suspense>
+      ) : null}
+      {open === 'override' || open === 'withdraw' ? (
+        <AmendDialog record={record} kind={open} onClose={() => setOpen(null)} />
+      ) : null}
     </>
   )
 }

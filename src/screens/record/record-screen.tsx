@@ -23,6 +23,9 @@ import { RecordResult } from './record-result.tsx'
 const place = 'History'
 // Plot and solver come after the numbers, which are what one opens a record for.
 const RecordDrawn = lazy(() => import('./record-drawn.tsx'))
+const RecordCodes = lazy(() => import('./record-codes.tsx'))
+const RecordProof = lazy(() => import('../../features/ledger/record-proof.tsx'))
+const RecordFindings = lazy(() => import('./record-findings.tsx'))
 
 export default function RecordScreen() {
   const { id = '' } = useParams()
@@ -69,8 +72,16 @@ function RecordPage({ record }: { record: TrimRecord }) {
           <Section title="Made under">
             <RecordFacts record={record} />
           </Section>
-          <LedgerPlace record={record} />
+          <LedgerPlace record={record}>
+            <Suspense fallback={<Loading>Reading the proof.</Loading>}>
+              <RecordProof record={record} />
+            </Suspense>
+          </LedgerPlace>
         </div>
+        <Suspense fallback={<Loading>Reading the findings.</Loading>}>
+          <RecordFindings record={record} />
+          <RecordCodes record={record} />
+        </Suspense>
       </div>
     </>
   )
