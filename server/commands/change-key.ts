@@ -1,4 +1,4 @@
-import type { LedgerKeyRow } from '../../shared/contract/ledger-entries.ts'
+import type { LedgerKeyRow } from '../../shared/contract/ledger-checkpoints.ts'
 import { verifierKey } from '../../shared/ledger/checkpoint.ts'
 import { signKeyChange } from '../../shared/ledger/key-chain.ts'
 import { sqlTime } from '../db/sql.ts'

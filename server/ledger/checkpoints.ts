@@ -1,26 +1,30 @@
-import type { LedgerKeyRow, StoredCheckpoint } from '../../shared/contract/ledger-entries.ts'
+import type { LedgerKeyRow, StoredCheckpoint } from '../../shared/contract/ledger-checkpoints.ts'
 import type { KeyStatement } from '../../shared/contract/proof.ts'
 import { OgeeError } from '../../shared/errors.ts'
 import { verifierKey } from '../../shared/ledger/checkpoint.ts'
 import type { Sql } from '../db/sql.ts'
 import { sha256 } from './crypto.ts'
 
-type Asked = { order: 'newest' | 'oldest'; after?: string | undefined; limit: number }
+type Asked = {
+  order: 'newest' | 'oldest'
+  size?: number | undefined
+  after?: string | undefined
+  limit: number
+}
 type Row = { number: number; size: number; root: Buffer; at: Date; note: string }
 
 /** A page of checkpoints by their number. */
 export async function readCheckpoints(
   sql: Sql,
-  { order, after, limit }: Asked,
+  { order, size, after, limit }: Asked,
 ): Promise<{ items: StoredCheckpoint[]; next: string | null }> {
   const newest = order === 'newest'
   const bound = after === undefined ? (newest ? Number.MAX_SAFE_INTEGER : 0) : numberOf(after)
   const columns = 'SELECT number, size, root, at, note FROM ledger_checkpoints'
   const rows = await sql.rows<Row>(
-    newest
-      ? `${columns} WHERE number < ? ORDER BY number DESC LIMIT ?`
-      : `${columns} WHERE number > ? ORDER BY number LIMIT ?`,
-    [bound, limit + 1],
+    `${columns} WHERE number ${newest ? '<' : '>'} ? ${size === undefined ? '' : 'AND size = ?'}
+      ORDER BY number ${newest ? 'DESC' : ''} LIMIT ?`,
+    [bound, ...(size === undefined ? [] : [size]), limit + 1],
   )
   const items = rows.slice(0, limit).map((row) => ({
     ...row,

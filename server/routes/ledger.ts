@@ -1,11 +1,6 @@
 import { getCheckpoint, getConsistency, getLedgerKey, getProof } from '../../shared/contract/ledger.ts'
-import {
-  listCheckpoints,
-  listEntries,
-  listKeys,
-  listStrays,
-  postKey,
-} from '../../shared/contract/ledger-entries.ts'
+import { listCheckpoints, listKeys, postKey } from '../../shared/contract/ledger-checkpoints.ts'
+import { listEntries, listStrays } from '../../shared/contract/ledger-entries.ts'
 import { OgeeError } from '../../shared/errors.ts'
 import { verifierKey } from '../../shared/ledger/checkpoint.ts'
 import { changeKey } from '../commands/change-key.ts'

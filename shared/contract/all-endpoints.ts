@@ -5,7 +5,8 @@ import { listFindings, postAnswer, postClosing, postFinding } from './findings.t
 import { countRecords, exportRecords, exportRecordsCsv, listRecorders } from './history.ts'
 import { listInstruments, patchInstrument, postInstrument, putInstrumentRule } from './instruments.ts'
 import { getCheckpoint, getConsistency, getLedgerKey, getProof } from './ledger.ts'
-import { listCheckpoints, listEntries, listKeys, listStrays, postKey } from './ledger-entries.ts'
+import { listCheckpoints, listKeys, postKey } from './ledger-checkpoints.ts'
+import { listEntries, listStrays } from './ledger-entries.ts'
 import { postClose, postExpected, postLot, postReference, postSignOff } from './lot-acts.ts'
 import { getLot, listLots, listLotUnits, listMissing, listStationMonths } from './lots.ts'
 import {

@@ -1,9 +1,7 @@
 import * as z from 'zod'
 import { endpoint } from './endpoint.ts'
-import { instant, page, pageQuery, recordId, sha256Hex } from './primitives.ts'
-import { keyStatement } from './proof.ts'
+import { instant, recordId, sha256Hex } from './primitives.ts'
 import { recordLine } from './record.ts'
-import { reason } from './revisions.ts'
 
 /** What checking all of the ledger reads: everything as it is stored, wrong or right. */
 
@@ -73,59 +71,4 @@ export const listStrays = endpoint({
     schema: z.object({ items: z.array(stray), next: z.int().nonnegative().nullable() }),
   },
   refusals: [],
-})
-
-export const storedCheckpoint = z
-  .object({
-    number: z.int().positive(),
-    size: z.int().nonnegative(),
-    root: sha256Hex,
-    at: instant,
-    note: z.string().describe('Signed note'),
-  })
-  .meta({ id: 'Checkpoint' })
-export type StoredCheckpoint = z.output<typeof storedCheckpoint>
-
-const order = z.enum(['newest', 'oldest']).default('newest')
-
-export const listCheckpoints = endpoint({
-  id: 'listCheckpoints',
-  method: 'GET',
-  path: '/ledger/checkpoints',
-  summary: 'Signed checkpoints',
-  access: { roles: ['administrator', 'engineer', 'operator', 'auditor'], scopes: ['ledger:read'] },
-  query: z.strictObject({ order, ...pageQuery }),
-  reply: { status: 200, schema: page(storedCheckpoint) },
-  refusals: [],
-})
-
-export const ledgerKey = z.object({
-  number: z.int().positive(),
-  key: z.string().describe('Verifier key, as in ogee.pub'),
-  at: instant,
-  statement: keyStatement.nullable().describe('That it took the place of the one before, signed by both'),
-})
-
-export type LedgerKeyRow = z.output<typeof ledgerKey>
-
-export const listKeys = endpoint({
-  id: 'listLedgerKeys',
-  method: 'GET',
-  path: '/ledger/keys',
-  summary: 'Every key that the ledger was signed with, oldest first',
-  access: 'open',
-  reply: { status: 200, schema: z.object({ items: z.array(ledgerKey) }) },
-  refusals: [],
-})
-
-export const postKey = endpoint({
-  id: 'changeLedgerKey',
-  method: 'POST',
-  path: '/ledger/keys',
-  summary:
-    'Put a new key in the place of the one that signs the ledger; what the old one signed still checks',
-  access: { roles: ['administrator'], scopes: [] },
-  body: z.strictObject({ reason }),
-  reply: { status: 201, schema: ledgerKey },
-  refusals: ['ledger-key-differs'],
 })

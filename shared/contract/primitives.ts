@@ -58,6 +58,12 @@ export const plainText = (max: number) =>
     .refine(isPlainText, 'Use printable characters with no space at either end.')
     .refine((text) => text === text.normalize('NFC'), 'Use the composed (NFC) form of accented letters.')
 
+/** Why somebody did what cannot be undone. */
+export const reason = plainText(limits.reasonMax).min(
+  limits.reasonMin,
+  `Give a reason of at least ${limits.reasonMin} characters.`,
+)
+
 /** A unit's serial: case matters, nothing is trimmed or folded (contract.md). */
 export const serial = plainText(limits.serialMax)
 export const channel = plainText(limits.channelNameMax)

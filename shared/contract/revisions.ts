@@ -1,9 +1,8 @@
 import * as z from 'zod'
-import { limits } from '../limits.ts'
 import { designDocument } from './design.ts'
 import { numberOrReleased, readsDesigns, revisionLine } from './designs.ts'
 import { endpoint } from './endpoint.ts'
-import { designKey, finite, plainText, revisionNumber, sha256Hex } from './primitives.ts'
+import { designKey, finite, reason, revisionNumber, sha256Hex } from './primitives.ts'
 import { sizeVerdict } from './size.ts'
 
 /** Revisions of a design: draft → in review (and back) → released → withdrawn. Released ones never change. */
@@ -16,10 +15,6 @@ const ofRevision = z.strictObject({
   key: designKey,
   number: z.coerce.number().int().positive().max(1_000_000),
 })
-export const reason = plainText(limits.reasonMax).min(
-  limits.reasonMin,
-  `Give a reason of at least ${limits.reasonMin} characters.`,
-)
 
 /** A revision without its document. */
 export const revisionSummary = revisionLine.extend({ key: designKey }).meta({ id: 'RevisionSummary' })

@@ -1,3 +1,4 @@
+import ledgerWorkerUrl from './ledger-worker.ts?worker&url'
 import networkWorkerUrl from './network-worker.ts?worker&url'
 import yieldWorkerUrl from './yield-worker.ts?worker&url'
 
@@ -8,7 +9,7 @@ type PolicyFactory = {
 }
 
 /** The only addresses that a worker may be started from: those that the build made. */
-const built: ReadonlySet<string> = new Set([yieldWorkerUrl, networkWorkerUrl])
+const built: ReadonlySet<string> = new Set([yieldWorkerUrl, networkWorkerUrl, ledgerWorkerUrl])
 
 export function onlyBuilt(url: string): string {
   if (built.has(url)) return url
@@ -34,4 +35,9 @@ export function startYieldWorker(): Worker {
 /** A new worker that looks for resistors; whoever starts it ends it. */
 export function startNetworkWorker(): Worker {
   return new Worker(trusted(networkWorkerUrl), { type: 'module', name: 'ogee-network' })
+}
+
+/** A new worker that checks the whole ledger; whoever starts it ends it. */
+export function startLedgerWorker(): Worker {
+  return new Worker(trusted(ledgerWorkerUrl), { type: 'module', name: 'ogee-ledger' })
 }

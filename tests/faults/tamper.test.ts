@@ -2,10 +2,10 @@ import type { Connection } from 'mariadb'
 import { afterAll, beforeAll, expect, test } from 'vitest'
 import { makeClient } from '../../cli/client.ts'
 import { crypto } from '../../cli/ledger/crypto.ts'
-import { serverSource } from '../../cli/ledger/server-source.ts'
 import { verifyAll } from '../../cli/ledger/verify-all.ts'
 import { sequencePass } from '../../server/ledger/sequence.ts'
 import { checkLedger } from '../../shared/ledger/check/check-ledger.ts'
+import { serverSource } from '../../shared/ledger/check/server-source.ts'
 import { memoryIo } from '../cli/support/memory-io.ts'
 import { runSeed, seededRandom } from '../support/random.ts'
 import { api, newKey } from '../support/server-client.ts'
@@ -128,7 +128,8 @@ async function check(kept: readonly { size: number; note: string }[]) {
   token ||= (await addToken(scene.harness, ['ledger:read'])).token
   const client = makeClient({ url: served.url, token }, memoryIo())
   return checkLedger(serverSource(client), {
-    crypto,
+    sha256: crypto.sha256,
+    run: async (check) => check(crypto),
     key: scene.harness.deps.signer.key,
     kept: kept.map(({ size, note }) => ({ name: `the checkpoint over ${size}`, note })),
     verifyAll,

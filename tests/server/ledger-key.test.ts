@@ -2,7 +2,6 @@ import { copyFile, readdir, readFile, stat, writeFile } from 'node:fs/promises'
 import { join } from 'node:path'
 import { afterAll, beforeAll, describe, expect, it } from 'vitest'
 import { makeClient } from '../../cli/client.ts'
-import { serverSource } from '../../cli/ledger/server-source.ts'
 import { verifyAll } from '../../cli/ledger/verify-all.ts'
 import { sha256, verifyEd25519 } from '../../server/ledger/crypto.ts'
 import { readKeyFile } from '../../server/ledger/key-file.ts'
@@ -11,6 +10,7 @@ import { sequencePass } from '../../server/ledger/sequence.ts'
 import { startSequencer } from '../../server/ledger/sequencer.ts'
 import { signerOf } from '../../server/ledger/signer.ts'
 import { checkLedger } from '../../shared/ledger/check/check-ledger.ts'
+import { serverSource } from '../../shared/ledger/check/server-source.ts'
 import { checkProof } from '../../shared/ledger/check-proof.ts'
 import { checkIncluded } from '../../shared/ledger/check-receipt.ts'
 import { type LedgerKey, parseVerifierKey } from '../../shared/ledger/checkpoint.ts'
@@ -47,7 +47,14 @@ async function proofOf(id: string, url = scene.url) {
 async function checkAll(kept: LedgerKey) {
   const { token } = await addToken(scene.harness, ['ledger:read'])
   const source = serverSource(makeClient({ url: scene.url, token }, memoryIo()))
-  return checkLedger(source, { crypto, key: kept, kept: [], verifyAll, onProgress: () => undefined })
+  return checkLedger(source, {
+    sha256,
+    run: async (check) => check(crypto),
+    key: kept,
+    kept: [],
+    verifyAll,
+    onProgress: () => undefined,
+  })
 }
 
 describe('a change of the ledger key', () => {

@@ -96,6 +96,8 @@ function answers(state: State): [string, Answer][] {
     ],
     ['GET /ledger/checkpoint', () => new Response(fixtures.checkpointText)],
     ['GET /ledger/key', () => new Response(fixtures.verifierKey)],
+    ['GET /ledger/keys', () => json({ items: [fixtures.ledgerKey] })],
+    ['GET /ledger/checkpoints', inside(() => json({ items: fixtures.checkpoints, next: '2' }))],
     ['GET /designs', inside(() => json({ items: [fixtures.designLine], next: null }))],
     ['GET /designs/DBS-A', inside(() => json(fixtures.designLine))],
     ['GET /designs/DBS-A/revisions/2', inside(() => json(fixtures.revision(2)))],

@@ -1,13 +1,13 @@
 import { proofFailsExit } from '../../../shared/contract/exit.ts'
 import { checkLedger, type LedgerReport } from '../../../shared/ledger/check/check-ledger.ts'
 import type { LedgerFault } from '../../../shared/ledger/check/faults.ts'
+import { serverSource } from '../../../shared/ledger/check/server-source.ts'
 import { type Command, type Context, everyFormat } from '../../command.ts'
 import type { ConnectionOptions } from '../../config.ts'
 import type { Io } from '../../io.ts'
 import { crypto } from '../../ledger/crypto.ts'
 import { readKept } from '../../ledger/kept-notes.ts'
 import { keyFor, keyOption } from '../../ledger/key-options.ts'
-import { serverSource } from '../../ledger/server-source.ts'
 import { verifyAll } from '../../ledger/verify-all.ts'
 import { print, type Rendering } from '../../output.ts'
 import { connect, readConnection, serverAbout, serverOptions, text } from '../../server-options.ts'
@@ -56,7 +56,8 @@ async function check(options: Options, context: Context): Promise<number> {
   const key = await keyFor(options.key, client)
   const kept = (await Promise.all(options.against.map((path) => readKept(context.io, path)))).flat()
   const report = await checkLedger(serverSource(client), {
-    crypto,
+    sha256: crypto.sha256,
+    run: async (check) => check(crypto),
     key,
     kept,
     verifyAll: options.receipts ? verifyAll : null,

@@ -1,6 +1,6 @@
 import { proofFailsExit } from '../../../shared/contract/exit.ts'
 import { getCheckpoint } from '../../../shared/contract/ledger.ts'
-import { listKeys } from '../../../shared/contract/ledger-entries.ts'
+import { listKeys } from '../../../shared/contract/ledger-checkpoints.ts'
 import { checkNote } from '../../../shared/ledger/check-proof.ts'
 import type { Command, Context } from '../../command.ts'
 import type { ConnectionOptions } from '../../config.ts'

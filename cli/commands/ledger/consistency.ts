@@ -1,6 +1,6 @@
 import { proofFailsExit } from '../../../shared/contract/exit.ts'
 import { getCheckpoint, getConsistency } from '../../../shared/contract/ledger.ts'
-import { listKeys } from '../../../shared/contract/ledger-entries.ts'
+import { listKeys } from '../../../shared/contract/ledger-checkpoints.ts'
 import { OgeeError } from '../../../shared/errors.ts'
 import { consistencyFault } from '../../../shared/ledger/check-consistency-proof.ts'
 import { checkNote } from '../../../shared/ledger/check-proof.ts'

@@ -1,7 +1,8 @@
-import type { LedgerKeyRow, StoredCheckpoint, Stray } from '../../contract/ledger-entries.ts'
+import type { LedgerKeyRow, StoredCheckpoint } from '../../contract/ledger-checkpoints.ts'
+import type { Stray } from '../../contract/ledger-entries.ts'
 import { checkNote } from '../check-proof.ts'
 import { keyName, type LedgerKey, parseVerifierKey, verifierKey } from '../checkpoint.ts'
-import { type LedgerCrypto, toHex } from '../hash.ts'
+import { type LedgerCrypto, type Sha256, toHex } from '../hash.ts'
 import { keysFrom } from '../key-chain.ts'
 import { EntryChecker, type SignatureTask, type SignedRoot } from './entry-checker.ts'
 import { type Entry, readEntry } from './entry-line.ts'
@@ -34,7 +35,9 @@ export type LedgerReport = {
 }
 
 type Options = {
-  crypto: LedgerCrypto
+  sha256: Sha256
+  /** Runs a check that needs signatures: at once where they can be checked at once, else when the answers are there. */
+  run: <Checked>(check: (crypto: LedgerCrypto) => Checked) => Promise<Checked>
   /** The key that is kept. */
   key: LedgerKey
   kept: readonly KeptNote[]
@@ -51,24 +54,16 @@ type Options = {
  * @returns the report; the first fault is that of the lowest entry.
  * @throws what the source throws.
  * Source: contract.md, Ledger; RFC 9162.
- * @example (await checkLedger(source, { crypto, key, kept: [], verifyAll: null, onProgress })).ok
+ * @example (await checkLedger(source, { sha256, run, key, kept: [], verifyAll: null, onProgress })).ok
  */
 export async function checkLedger(source: LedgerSource, options: Options): Promise<LedgerReport> {
-  const { crypto, key, kept, onProgress } = options
-  const faults = collectFaults()
+  const { sha256, key, kept, onProgress } = options
   const keyRows = await source.keys()
-  const statements = keyRows.flatMap(({ statement }) => statement ?? [])
-  const keys = keysFrom(crypto, key, statements)
   const stored = await source.checkpoints()
-  const roots = [
-    ...storedRoots(crypto, stored, key, statements, faults),
-    ...kept.flatMap(({ name, note }) => {
-      const checked = checkNote(crypto, note, key, statements)
-      if ('fault' in checked) return addLoose(faults, 'checkpoint', `${name}: ${checked.message}`)
-      return [{ ...checked.checkpoint, name, kept: true }]
-    }),
-  ].sort((a, b) => a.size - b.size || Number(a.kept) - Number(b.kept))
-  const checker = new EntryChecker(crypto, keys, roots, faults)
+  const { faults, keys, roots } = await options.run((crypto) =>
+    checkNotes(crypto, { key, keyRows, stored, kept }),
+  )
+  const checker = new EntryChecker(sha256, keys, roots, faults)
   // Read while the page before is checked: the two take about the same time.
   let reading = source.entries(0)
   for (;;) {
@@ -83,7 +78,7 @@ export async function checkLedger(source: LedgerSource, options: Options): Promi
     if (next === null) break
   }
   const { size, records } = checker.finish()
-  checkKeys(crypto, keyRows, keys, checker.keysSeen, faults)
+  checkKeys(sha256, keyRows, keys, checker.keysSeen, faults)
   for (const { message, record } of await source.strays()) {
     faults.add({ what: 'stray', entry: null, to: null, record, message })
   }
@@ -97,6 +92,31 @@ export async function checkLedger(source: LedgerSource, options: Options): Promi
     found,
     faults: faults.list(),
   }
+}
+
+type Notes = {
+  key: LedgerKey
+  keyRows: readonly LedgerKeyRow[]
+  stored: readonly StoredCheckpoint[]
+  kept: readonly KeptNote[]
+}
+
+/** Everything that is signed but receipts. Pure, faults included, so that it can run twice. */
+function checkNotes(
+  crypto: LedgerCrypto,
+  { key, keyRows, stored, kept }: Notes,
+): { faults: Faults; keys: LedgerKey[]; roots: SignedRoot[] } {
+  const faults = collectFaults()
+  const statements = keyRows.flatMap(({ statement }) => statement ?? [])
+  const outside = kept.flatMap(({ name, note }) => {
+    const checked = checkNote(crypto, note, key, statements)
+    if ('fault' in checked) return addLoose(faults, 'checkpoint', `${name}: ${checked.message}`)
+    return [{ ...checked.checkpoint, name, kept: true }]
+  })
+  const roots = [...storedRoots(crypto, stored, key, statements, faults), ...outside].sort(
+    (a, b) => a.size - b.size || Number(a.kept) - Number(b.kept),
+  )
+  return { faults, keys: keysFrom(crypto, key, statements), roots }
 }
 
 async function takePage(
@@ -144,7 +164,7 @@ function storedRoots(
 
 /** The table of keys and the leaves of kind `key` tell the same story, and the kept key leads to each of them. */
 function checkKeys(
-  { sha256 }: LedgerCrypto,
+  sha256: Sha256,
   rows: readonly LedgerKeyRow[],
   trusted: readonly LedgerKey[],
   inLeaves: EntryChecker['keysSeen'],

@@ -1,7 +1,7 @@
 import type { RecordBody } from '../../contract/record.ts'
 import { canonicalBytes } from '../canonical.ts'
 import { keyName, type LedgerKey } from '../checkpoint.ts'
-import { fromBase64, type LedgerCrypto, sameBytes, toHex } from '../hash.ts'
+import { fromBase64, type Sha256, sameBytes, toHex } from '../hash.ts'
 import { leafHash } from '../leaf.ts'
 import { restoreReceipt } from '../receipt.ts'
 import type { Entry } from './entry-line.ts'
@@ -35,10 +35,10 @@ const decoder = new TextDecoder()
  * against bytes. Signatures of receipts are handed out, not checked here.
  *
  * Source: contract.md, Ledger; RFC 9162. Throws nothing for bad entries.
- * @example new EntryChecker(crypto, keys, roots, collectFaults()).finish() // { size: 0, records: 0 }
+ * @example new EntryChecker(sha256, keys, roots, collectFaults()).finish() // { size: 0, records: 0 }
  */
 export class EntryChecker {
-  readonly #crypto: LedgerCrypto
+  readonly #sha256: Sha256
   readonly #keys: ReadonlyMap<string, LedgerKey>
   readonly #roots: readonly SignedRoot[]
   readonly #faults: Faults
@@ -55,22 +55,17 @@ export class EntryChecker {
   readonly keysSeen: { key: string; at: string }[] = []
 
   /**
-   * @param crypto SHA-256 and Ed25519.
+   * @param sha256 the hash function.
    * @param keys that the ledger was signed with, all of them vouched for.
    * @param roots signed, in the order of their sizes.
    * @param faults where to report.
    */
-  constructor(
-    crypto: LedgerCrypto,
-    keys: readonly LedgerKey[],
-    roots: readonly SignedRoot[],
-    faults: Faults,
-  ) {
-    this.#crypto = crypto
-    this.#keys = new Map(keys.map((key) => [keyName(crypto.sha256, key), key]))
+  constructor(sha256: Sha256, keys: readonly LedgerKey[], roots: readonly SignedRoot[], faults: Faults) {
+    this.#sha256 = sha256
+    this.#keys = new Map(keys.map((key) => [keyName(sha256, key), key]))
     this.#roots = roots
     this.#faults = faults
-    this.#tree = growingTree(crypto.sha256)
+    this.#tree = growingTree(sha256)
     this.#compareRoots()
   }
 
@@ -128,7 +123,7 @@ export class EntryChecker {
   #check(entry: Entry): SignatureTask | null {
     const record = entry.row?.id ?? null
     const at = `Entry ${this.#next}`
-    const hash = entry.leaf && leafHash(this.#crypto.sha256, entry.leaf)
+    const hash = entry.leaf && leafHash(this.#sha256, entry.leaf)
     if (!entry.leaf || !hash || toHex(hash) !== entry.hash) {
       this.#treeHolds = false
       return entry.leaf
@@ -204,7 +199,7 @@ export class EntryChecker {
     if (kind !== 'release') return null
     const { design, revision, hash } = body as { design: string; revision: number; hash: string }
     const bytes = entry.document ? fromBase64(entry.document) : null
-    if (bytes && toHex(this.#crypto.sha256(bytes)) === hash) return null
+    if (bytes && toHex(this.#sha256(bytes)) === hash) return null
     const how = bytes ? 'are not those that were released' : 'are gone'
     return this.#fault('document', `${at}: the bytes of ${design}, revision ${revision}, ${how}.`)
   }

@@ -1,5 +1,7 @@
+import { Button } from '../../ui/button.tsx'
 import { Caution } from '../../ui/caution.tsx'
 import { CopyButton } from '../../ui/copy-button.tsx'
+import { download } from '../../ui/download.ts'
 import { Whole } from '../../ui/number-text.tsx'
 import { Fact, Facts, Section } from '../../ui/section.tsx'
 import { readCheckpoint, readVerifierKey } from './note.ts'
@@ -13,9 +15,14 @@ export function LedgerFacts({ checkpoint, verifierKey }: { checkpoint: string; v
         title="Checkpoint"
         note="signed note"
         side={
-          <CopyButton text={checkpoint} what="checkpoint">
-            copy checkpoint
-          </CopyButton>
+          <>
+            <CopyButton text={checkpoint} what="checkpoint">
+              copy checkpoint
+            </CopyButton>{' '}
+            <Button look="quiet" onClick={() => download('checkpoint.txt', checkpoint, 'text/plain')}>
+              download checkpoint
+            </Button>
+          </>
         }
       >
         {head ? (
@@ -43,9 +50,14 @@ export function LedgerFacts({ checkpoint, verifierKey }: { checkpoint: string; v
         note="the content of ogee.pub"
         side={
           verifierKey === null ? null : (
-            <CopyButton text={verifierKey} what="public key">
-              copy key
-            </CopyButton>
+            <>
+              <CopyButton text={verifierKey} what="public key">
+                copy key
+              </CopyButton>{' '}
+              <Button look="quiet" onClick={() => download('ogee.pub', verifierKey, 'text/plain')}>
+                download ogee.pub
+              </Button>
+            </>
           )
         }
       >

@@ -1,14 +1,28 @@
-import { listCheckpoints, listEntries, listKeys, listStrays } from '../../shared/contract/ledger-entries.ts'
-import { OgeeError } from '../../shared/errors.ts'
-import type { LedgerSource } from '../../shared/ledger/check/check-ledger.ts'
-import { limits } from '../../shared/limits.ts'
-import type { Client } from '../client.ts'
+import type { Endpoint, InputOf, ReplyOf } from '../../contract/endpoint.ts'
+import { listCheckpoints, listKeys } from '../../contract/ledger-checkpoints.ts'
+import { listEntries, listStrays } from '../../contract/ledger-entries.ts'
+import { OgeeError } from '../../errors.ts'
+import { limits } from '../../limits.ts'
+import type { LedgerSource } from './check-ledger.ts'
 
 /** Entries of a request: some megabytes. */
 const entriesAtOnce = 2_000
 
-/** A server's ledger, read over its interface. */
-export function serverSource(client: Client): LedgerSource {
+/** How a server is asked: by the command line or by the browser. */
+export type Asking = {
+  call: <E extends Endpoint>(endpoint: E, input: InputOf<E>) => Promise<ReplyOf<E>>
+  page: <E extends Endpoint>(endpoint: E, input: InputOf<E>) => Promise<Uint8Array[]>
+}
+
+/**
+ * A server's ledger, read over its interface.
+ *
+ * @param client asks the server, and again where that can help.
+ * @returns the source. It throws what the client throws, and `answer-cut` for a page without its last line.
+ * Source: contract.md, HTTP.
+ * @example checkLedger(serverSource(client), options)
+ */
+export function serverSource(client: Asking): LedgerSource {
   return {
     keys: async () => (await client.call(listKeys, {})).items,
     checkpoints: () =>
@@ -36,7 +50,7 @@ export function serverSource(client: Client): LedgerSource {
 
 /** The last line says that nothing was cut. */
 function endOf(line: Uint8Array | undefined): { next: number | null; size: number } {
-  const text = line ? Buffer.from(line).toString('utf8') : ''
+  const text = line ? new TextDecoder().decode(line) : ''
   const { end, next, size } = (text.startsWith('{"end":') ? JSON.parse(text) : {}) as Record<string, unknown>
   if (end === true && (next === null || typeof next === 'number') && typeof size === 'number') {
     return { next, size }
