@@ -266,7 +266,12 @@ export const tokenText = `ogee_aB3dE5gH_${'x'.repeat(36)}`
 
 export const checkpointText = `ogee.example\n1004317\n${btoa('r'.repeat(32))}\n\n\u2014 ogee.example ${btoa('s'.repeat(68))}\n`
 export const verifierKey = `ogee.example+2c70e12b+${btoa(`\u0001${'k'.repeat(32)}`)}\n`
-export const ledgerKey = { number: 1, key: verifierKey.trim(), at: '2026-03-02T09:00:00.000Z', statement: null }
+export const ledgerKey = {
+  number: 1,
+  key: verifierKey.trim(),
+  at: '2026-03-02T09:00:00.000Z',
+  statement: null,
+}
 export const checkpoints = [3, 2].map((number) => ({
   number,
   size: 1_004_300 + number,
