@@ -93,7 +93,7 @@ test('the banner tries again by itself when its count ends', async () => {
   const server = fakeServer()
   // A page that reads nothing: an answer that comes late would end the outage.
   open('/settings', server)
-  await screen.findByText('This browser')
+  await screen.findByRole('heading', { level: 1, name: 'This browser' })
   const before = server.sent('GET /me').length
   vi.useFakeTimers()
   act(() => setConnection({ outage: 'The server does not answer.' }))
