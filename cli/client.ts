@@ -1,4 +1,6 @@
 import { type Caller, call, callPage } from '../shared/call.ts'
+import { callBatch } from '../shared/call-batch.ts'
+import type { BatchOutcome } from '../shared/contract/batches.ts'
 import type { Endpoint, InputOf, ReplyOf } from '../shared/contract/endpoint.ts'
 import { errorTable, OgeeError } from '../shared/errors.ts'
 import type { Connection } from './config.ts'
@@ -15,20 +17,25 @@ export type Client = {
   call: <E extends Endpoint>(endpoint: E, input: InputOf<E>) => Promise<ReplyOf<E>>
   /** Calls an endpoint that answers lines, and gives them once all have come. */
   page: <E extends Endpoint>(endpoint: E, input: InputOf<E>) => Promise<Uint8Array[]>
+  /** Posts a block of a batch, the whole again when its answer was cut: what was recorded is told once more. */
+  sendBlock: (block: string) => Promise<BatchOutcome[]>
 }
-
-/** One try. */
-type Ask<T> = (caller: Caller) => Promise<T>
 
 /** What is known of the last answer, beside its body. */
 type Seen = { reached: boolean; status: number | undefined; retryAfterMs: number | undefined }
 
-export function makeClient({ url, token }: Connection, io: Io, patience = usualPatience): Client {
+export function makeClient(
+  { url, token }: Connection,
+  io: Io,
+  patience = usualPatience,
+  fetch = globalThis.fetch,
+): Client {
   return {
     url,
     call: <E extends Endpoint>(endpoint: E, input: InputOf<E>) =>
       patiently<ReplyOf<E>>((caller) => call(caller, endpoint, input)),
     page: (endpoint, input) => patiently((caller) => callPage(caller, endpoint, input)),
+    sendBlock: (block) => patiently((caller, heard) => outcomesOf(caller, block, heard)),
   }
 
   async function patiently<T>(ask: Ask<T>): Promise<T> {
@@ -62,18 +69,31 @@ export function makeClient({ url, token }: Connection, io: Io, patience = usualP
         'user-agent': `ogee/${version}`,
       },
       fetch: (target: string | URL | Request, init?: RequestInit) =>
-        watched(target, { ...init, signal: silence.signal }, seen, io),
+        watched(fetch, target, { ...init, signal: silence.signal }, seen, io),
     }
     try {
-      return await ask(caller)
+      return await ask(caller, () => tooLong.refresh())
     } finally {
       clearTimeout(tooLong)
     }
   }
 }
 
+/** One try; `heard` is told of each sign of life, so that a long answer may take long. */
+type Ask<T> = (caller: Caller, heard: () => void) => Promise<T>
+
+async function outcomesOf(caller: Caller, block: string, heard: () => void): Promise<BatchOutcome[]> {
+  const outcomes: BatchOutcome[] = []
+  for await (const outcome of callBatch(caller, block)) {
+    outcomes.push(outcome)
+    heard()
+  }
+  return outcomes
+}
+
 /** Fetches without following redirects: a token must not be carried to wherever an answer points. */
 async function watched(
+  fetch: typeof globalThis.fetch,
   target: string | URL | Request,
   init: RequestInit,
   seen: Seen,

@@ -43,6 +43,23 @@ export const commandTable: readonly Entry[] = [
     load: async () => (await import('./commands/trim.ts')).trimCommand,
   },
   {
+    name: 'check',
+    summary: 'Record a verification with the codes loaded',
+    load: async () => (await import('./commands/check.ts')).checkCommand,
+  },
+  {
+    name: 'batch',
+    summary: 'Record many units of a file or a pipe',
+    load: async () => (await import('./commands/batch.ts')).batchCommand,
+    longLived: true,
+  },
+  {
+    name: 'pipe',
+    summary: 'Answer one JSON object a line, for as long as lines come',
+    load: async () => (await import('./commands/pipe.ts')).pipeCommand,
+    longLived: true,
+  },
+  {
     name: 'unit',
     summary: 'Current codes of a unit and the record they come from',
     load: async () => (await import('./commands/unit.ts')).unitCommand,

@@ -48,7 +48,13 @@ export type Command<Options = unknown> = {
 }
 
 /** A place in the command tree. Commands are loaded one at a time, so that a quick one starts quickly. */
-export type Leaf = { name: string; summary: string; load: () => Promise<Command> }
+export type Leaf = {
+  name: string
+  summary: string
+  load: () => Promise<Command>
+  /** Reads so many documents that compiling parsers for them pays. */
+  longLived?: boolean
+}
 export type Noun = { name: string; summary: string; verbs: readonly Leaf[] }
 export type Entry = Leaf | Noun
 

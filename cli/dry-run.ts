@@ -1,11 +1,13 @@
 import type { Design } from '../shared/contract/design.ts'
 import { type Instrument, listInstruments } from '../shared/contract/instruments.ts'
 import { listLots } from '../shared/contract/lots.ts'
+import type { Record as StoredRecord } from '../shared/contract/record.ts'
 import { getTrim } from '../shared/contract/trims.ts'
 import { findUnits, type Unit } from '../shared/contract/units.ts'
 import { OgeeError } from '../shared/errors.ts'
 import { computeCodes } from '../shared/solver/codes.ts'
 import type { PreviousPass } from '../shared/solver/learn.ts'
+import { verifyPoints } from '../shared/solver/verify.ts'
 import type { Client } from './client.ts'
 import { designFrom } from './design-file.ts'
 import { parseJson } from './files.ts'
@@ -17,7 +19,6 @@ import { fetchRevision } from './revision.ts'
 /** Nothing is sent but questions. */
 type Asking = Pick<Client, 'call'>
 type Current = Unit['current'][number]
-type Chain = { follows: string | null; pass: number; learned: PreviousPass | undefined }
 
 /**
  * What recording would give, computed here under the same revision and by the same rules; nothing is sent but questions.
@@ -34,21 +35,16 @@ export async function dryRun(client: Asking, body: RequestBody): Promise<DryReco
     design.ranges.map(({ id }) => id),
   )
   const current = await currentOf(client, body, channel, range)
-  const applied = appliedBy(body, current)
-  const chain = await chainOf(client, body, current)
+  const before = await recordBefore(client, body, current)
+  const applied = appliedBy(body, current, before)
   const instrument = await instrumentNamed(client, body.conditions?.instrument)
-  const result = computeCodes(design, body.points ?? [], {
-    rangeId: range,
-    applied,
-    learned: chain.learned,
-    ...(instrument ? { instrument } : {}),
-  })
+  const limits = { rangeId: range, ...(instrument ? { instrument } : {}) }
   return {
     format: 'ogee.record/1',
     id: null,
     dryRun: true,
     number: null,
-    kind: 'trim',
+    kind: body.kind ?? 'trim',
     unit: body.unit,
     channel,
     range,
@@ -56,18 +52,30 @@ export async function dryRun(client: Asking, body: RequestBody): Promise<DryReco
     design: body.design,
     revision: revision.number,
     designHash: revision.hash,
-    pass: chain.pass,
-    follows: chain.follows,
+    pass: (before?.pass ?? 0) + (body.kind === 'verify' ? 0 : 1),
+    follows: before?.id ?? null,
     applied,
     conditions: body.conditions ?? {},
-    result,
-    verdict: result.trim.verdict,
-    accepted: result.trim.verdict === 'ok' || result.trim.verdict === 'too-coarse',
+    ...(body.kind === 'verify'
+      ? verified(design, body, limits)
+      : trimmed(design, body, { ...limits, applied, learned: learnedFrom(body, before) })),
     notices: [],
     station: null,
     measuredAt: body.measuredAt ?? null,
     recordedAt: null,
   }
+}
+
+function trimmed(design: Design, { points = [] }: RequestBody, options: Parameters<typeof computeCodes>[2]) {
+  const result = computeCodes(design, points, options)
+  const { verdict } = result.trim
+  return { result, verdict, accepted: verdict === 'ok' || verdict === 'too-coarse' }
+}
+
+function verified(design: Design, { points = [] }: RequestBody, options: Parameters<typeof verifyPoints>[2]) {
+  const result = verifyPoints(design, points, options)
+  const { outcome } = result
+  return { result, verdict: outcome, accepted: outcome === 'pass' || outcome === 'conditional-pass' }
 }
 
 async function instrumentNamed(client: Asking, id: string | undefined): Promise<Instrument | undefined> {
@@ -116,10 +124,12 @@ async function currentOf(
 
 /** Left out it means neutral, but only while no codes are loaded: what is loaded would be corrected twice. */
 function appliedBy(
-  { applied, unit }: RequestBody,
+  { applied, unit, kind }: RequestBody,
   current: Current | undefined,
+  before: StoredRecord | null,
 ): NonNullable<RequestBody['applied']> {
   if (applied !== undefined) return applied
+  if (kind === 'verify' && before) return codesAfter(before)
   if (!current?.codes) return 'neutral'
   throw new OgeeError(
     'applied-required',
@@ -127,16 +137,24 @@ function appliedBy(
   )
 }
 
-async function chainOf(
+function codesAfter({ result, applied }: StoredRecord): NonNullable<RequestBody['applied']> {
+  return (result?.format === 'ogee.codes/1' ? result.trim.codes : null) ?? applied ?? 'neutral'
+}
+
+/** The record that this pass goes on from; a verification goes on from the last one without being told. */
+async function recordBefore(
   client: Asking,
-  { follows, effects }: RequestBody,
+  { follows, kind }: RequestBody,
   current: Current | undefined,
-): Promise<Chain> {
-  if (follows === undefined) return { follows: null, pass: 1, learned: undefined }
-  const id = follows === 'last' ? current?.lastRecord : follows
+): Promise<StoredRecord | null> {
+  const asked = follows ?? (kind === 'verify' && current ? 'last' : undefined)
+  if (asked === undefined) return null
+  const id = asked === 'last' ? current?.lastRecord : asked
   if (id === undefined)
     throw new OgeeError('follows-unknown', 'There is no record of this unit, channel and range to follow.')
-  const before = await client.call(getTrim, { params: { id } })
-  const learned = effects === 'learned' ? previousFrom(before, `Record ${before.number}`) : undefined
-  return { follows: id, pass: before.pass + 1, learned }
+  return await client.call(getTrim, { params: { id } })
+}
+
+function learnedFrom({ effects }: RequestBody, before: StoredRecord | null): PreviousPass | undefined {
+  return effects === 'learned' && before ? previousFrom(before, `Record ${before.number}`) : undefined
 }

@@ -57,6 +57,23 @@ export async function readFileText(
   }
 }
 
+/** The text of a file or of standard input of any length, piece by piece. Throws as `readText` does. */
+export async function* streamText(
+  io: Pick<Io, 'stdin' | 'stdinIsTerminal' | 'say'>,
+  path: string,
+): AsyncGenerator<string> {
+  const name = path === '-' ? 'Standard input' : path
+  if (path === '-' && io.stdinIsTerminal) io.say('ogee: reading standard input; end it with Ctrl-D.')
+  const pieces: AsyncIterable<Uint8Array> = path === '-' ? io.stdin : fs.createReadStream(path)
+  const decoder = new TextDecoder('utf-8', { fatal: true })
+  try {
+    for await (const piece of pieces) yield decoded(() => decoder.decode(piece, { stream: true }), name)
+    yield decoded(() => decoder.decode(), name)
+  } catch (error) {
+    throw error instanceof OgeeError ? error : unreadable(name, error)
+  }
+}
+
 type FileBytes = { bytes: Uint8Array; mode: number }
 
 const isPlainFile = (path: string) => fs.statSync(path, { throwIfNoEntry: false })?.isFile() === true
@@ -93,8 +110,12 @@ function unreadable(path: string, error: unknown): OgeeError {
 }
 
 function decode(bytes: Uint8Array, name: string): string {
+  return decoded(() => new TextDecoder('utf-8', { fatal: true }).decode(bytes), name)
+}
+
+function decoded(read: () => string, name: string): string {
   try {
-    return new TextDecoder('utf-8', { fatal: true }).decode(bytes)
+    return read()
   } catch (cause) {
     throw new OgeeError('invalid-document', `${name} is not UTF-8 text. Save it as UTF-8.`, { cause })
   }

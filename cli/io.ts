@@ -12,6 +12,8 @@ export type Io = {
   write: (text: string) => Promise<boolean>
   /** Writes a line to standard error. */
   say: (line: string) => void
+  /** Writes over the last line of standard error that was written so, on a terminal only. Empty text clears it. */
+  sayOver: (text: string) => void
   /** Milliseconds since 1970; the one clock. */
   now: () => number
 }
@@ -26,6 +28,13 @@ export function processIo(): Io {
     else failure = new OgeeError('read-failed', `Standard output failed: ${error.code ?? 'unknown'}.`)
   })
   process.stderr.on('error', () => undefined)
+  let over = 0
+  // Spaces and carriage returns only: a terminal that knows no escape sequences understands them too.
+  const sayOver = (text: string) => {
+    if (process.stderr.isTTY !== true || (text === '' && over === 0)) return
+    process.stderr.write(`\r${text.padEnd(over)}${text === '' ? '\r' : ''}`)
+    over = text.length
+  }
   const written = (text: string) =>
     new Promise<void>((resolve) => {
       process.stdout.write(text, () => resolve())
@@ -42,8 +51,10 @@ export function processIo(): Io {
       return !readerGone
     },
     say: (line) => {
+      sayOver('')
       process.stderr.write(`${line}\n`)
     },
+    sayOver,
     now: () => Date.now(),
   }
 }

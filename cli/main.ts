@@ -25,6 +25,8 @@ async function main(argv: readonly string[]): Promise<void> {
   })
   process.exitCode = await runCommandLine(argv, io)
   isDone = true
+  // A command that is done before its input is does not wait for the rest of it.
+  process.stdin.unref?.()
 }
 
 await main(process.argv.slice(2))

@@ -32,10 +32,18 @@ export async function readMeasurement(io: Io, path: string, wanted: Wanted): Pro
     ({ unit, channel, range }) => unit === group.unit && channel === group.channel && range !== group.range,
   )
   return {
+    ...measuredFrom(group, wanted),
+    otherRanges: Object.fromEntries(others.map(({ range = '', points }) => [range, points])),
+  }
+}
+
+/** What rows and flags say of one measurement together. */
+export function measuredFrom(group: PointGroup, wanted: Wanted): Measured {
+  return {
     ...group,
     range: agreed('range', wanted.range, group.range),
     applied: agreedCodes(wanted.applied, group.applied),
-    otherRanges: Object.fromEntries(others.map(({ range = '', points }) => [range, points])),
+    otherRanges: {},
   }
 }
 

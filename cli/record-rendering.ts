@@ -3,6 +3,7 @@ import type { CodesResult, VerifyResult } from '../shared/solver/types.ts'
 import { codesCsv, codesTable } from './codes-rendering.ts'
 import type { Rendering } from './output.ts'
 import type { Cell } from './table.ts'
+import { verifyTable } from './verify-rendering.ts'
 
 type Known = Pick<
   StoredRecord,
@@ -42,22 +43,22 @@ const heads = ['unit', 'channel', 'range', 'pass', 'verdict', 'accepted', ...cod
 
 export function recordRendering(record: AnyRecord): Rendering {
   const codes = record.result?.format === 'ogee.codes/1' ? record.result : undefined
+  const verified = record.result?.format === 'ogee.verify/1' ? record.result : undefined
   const { unit, channel, range, pass, verdict, accepted, id } = record
-  const row: Cell[] = [
-    unit,
-    channel,
-    range,
-    pass,
-    verdict,
-    String(accepted),
-    ...(codes ? codesCsv.row(codes) : codesCsv.heads.map(() => null)),
-    id,
-  ]
+  const row: Cell[] = [unit, channel, range, pass, verdict, String(accepted), ...resultCells(record), id]
   return {
     json: record,
-    table: (colour) => `${headLines(record)}\n${codes ? `\n${codesTable(codes, colour)}` : ''}`,
+    table: (colour) =>
+      `${headLines(record)}\n${codes ? `\n${codesTable(codes, colour)}` : ''}${verified ? `\n${verifyTable(verified, colour)}` : ''}`,
     csv: { heads, rows: [row] },
   }
+}
+
+/** Codes of a trim; of a verification what was measured with them loaded. */
+export function resultCells({ result }: Pick<AnyRecord, 'result'>): Cell[] {
+  if (result?.format === 'ogee.codes/1') return codesCsv.row(result)
+  const { fit, worst } = result ?? {}
+  return [null, null, null, null, fit?.offsetErrorV, fit?.gainErrorPpm, worst?.errorLsb]
 }
 
 function headLines(record: AnyRecord): string {
@@ -70,4 +71,4 @@ function headLines(record: AnyRecord): string {
 }
 
 /** 1004317 as 1 004 317. */
-const grouped = (number: number) => String(number).replaceAll(/\B(?=(\d{3})+$)/g, ' ')
+export const grouped = (number: number) => String(number).replaceAll(/\B(?=(\d{3})+$)/g, ' ')

@@ -2,7 +2,7 @@ import type * as z from 'zod'
 import { issueWords } from '../shared/contract/issue-words.ts'
 import { recordRequest } from '../shared/contract/record.ts'
 import { OgeeError } from '../shared/errors.ts'
-import { canonicalBytes, type Json } from '../shared/ledger/canonical.ts'
+import { canonicalBytes, canonicalText, type Json } from '../shared/ledger/canonical.ts'
 import { fieldErrors } from './field-errors.ts'
 import { agreed, type Measured } from './measurement.ts'
 import type { UnitOptions } from './unit-options.ts'
@@ -19,6 +19,7 @@ export function requestBody(
   design: string,
   measured: Measured,
   temperatureC: number | undefined,
+  kind: 'trim' | 'verify' = 'trim',
 ): RequestBody {
   const { revision, follows, effects, measuredAt, instrument, note } = options
   const lot = agreed('lot', options.lot, measured.lot)
@@ -33,6 +34,7 @@ export function requestBody(
     note,
   })
   const body = present({
+    kind: kind === 'trim' ? undefined : kind,
     design,
     revision,
     unit,
@@ -53,6 +55,51 @@ function present<T extends object>(values: T): { [K in keyof T]?: Exclude<T[K], 
   return Object.fromEntries(Object.entries(values).filter(([, value]) => value !== undefined)) as {
     [K in keyof T]?: Exclude<T[K], undefined>
   }
+}
+
+/**
+ * The request of a JSON line, completed by what flags say of all of them. A line and a flag may say the same thing, never
+ * different things.
+ */
+export function completedBody(line: Json, flags: Partial<RequestBody>): RequestBody {
+  if (typeof line !== 'object' || line === null || Array.isArray(line))
+    throw new OgeeError('invalid-request', 'The line is not a JSON object.')
+  const said = line as { readonly [name: string]: Json | undefined }
+  for (const [name, flag] of Object.entries(flags)) {
+    const own = said[name]
+    if (own === undefined || name === 'conditions') continue
+    if (canonicalText(own) !== canonicalText(flag as Json)) {
+      const message = `The flags say ${JSON.stringify(flag)} and the line ${JSON.stringify(own)}. Leave one of them out.`
+      throw new OgeeError('invalid-request', message, { errors: [{ path: `/${name}`, message }] })
+    }
+  }
+  const conditions = { ...flags.conditions, ...(said.conditions as object | undefined) }
+  return checked({ ...flags, ...said, ...(Object.keys(conditions).length > 0 ? { conditions } : {}) })
+}
+
+/** What flags say of every measurement, as parts of a request. */
+export function flagsBody(
+  options: UnitOptions,
+  design: string | undefined,
+  temperatureC: number | undefined,
+  kind: 'trim' | 'verify' = 'trim',
+): Partial<RequestBody> {
+  const { revision, unit, lot, channel, range, applied, effects, measuredAt, follows } = options
+  const conditions = present({ temperatureC, instrument: options.instrument, note: options.note })
+  return present({
+    kind: kind === 'trim' ? undefined : kind,
+    design,
+    revision,
+    unit,
+    lot,
+    channel,
+    range,
+    applied,
+    effects,
+    conditions: Object.keys(conditions).length > 0 ? conditions : undefined,
+    measuredAt,
+    follows,
+  }) as Partial<RequestBody>
 }
 
 /** The same schema as the server's, so that a slip is told before anything is sent. */

@@ -33,7 +33,7 @@ export async function parse(
 ): Promise<Chosen | { text: string }> {
   const loaded = new Map<Leaf, Command>()
   const leaves = namedLeaves(tree, argv)
-  if (leaves.length > 0) await import('./zod-config.ts')
+  if (leaves.some(({ longLived }) => !longLived)) await import('./zod-config.ts')
   for (const leaf of leaves) loaded.set(leaf, await leaf.load())
   let chosen: Chosen | undefined
   let text = ''

@@ -1,5 +1,5 @@
 import { OgeeError } from '../shared/errors.ts'
-import { type Client, makeClient } from './client.ts'
+import { type Client, makeClient, usualPatience } from './client.ts'
 import type { Context, Given, OptionSpec } from './command.ts'
 import { type ConnectionOptions, connectionFor } from './config.ts'
 
@@ -29,8 +29,12 @@ export async function connectOpen(options: ConnectionOptions, { io }: Context): 
   return makeClient(await connectionFor(options, io, false), io)
 }
 
-export async function connect(options: ConnectionOptions, { io }: Context): Promise<Client> {
-  return makeClient(await connectionFor(options, io), io)
+export async function connect(
+  options: ConnectionOptions,
+  { io }: Context,
+  fetch?: typeof globalThis.fetch,
+): Promise<Client> {
+  return makeClient(await connectionFor(options, io), io, usualPatience, fetch)
 }
 
 /** The value of an option as text, or nothing when it was not given. */

@@ -53,12 +53,13 @@ export const unitOptions: readonly OptionSpec[] = [
   { flags: '--dry-run', says: 'compute and print; record nothing' },
 ]
 
-export function readUnitOptions({ options }: Given): UnitOptions {
+/** `designElsewhere`: each line of the input may name its own. */
+export function readUnitOptions({ options }: Given, designElsewhere = false): UnitOptions {
   const revision = text(options.revision)
   const applied = text(options.applied)
   const design = text(options.design)
   const lot = text(options.lot)
-  if (design === undefined && lot === undefined) {
+  if (design === undefined && lot === undefined && !designElsewhere) {
     throw new OgeeError('usage', 'Name the design with --design, or the lot with --lot.')
   }
   return {

@@ -76,14 +76,15 @@ export async function callPage<E extends Endpoint>(
 }
 
 async function send(caller: Caller, endpoint: Endpoint, request: AnyInput): Promise<Response> {
-  const headers: Record<string, string> = { accept: 'application/json', ...caller.headers }
-  if (request.body !== undefined) headers['content-type'] = 'application/json'
+  const mediaType = endpoint.ndjson ? 'application/x-ndjson' : 'application/json'
+  const headers: Record<string, string> = { accept: mediaType, ...caller.headers }
+  if (request.body !== undefined) headers['content-type'] = mediaType
   if (request.idempotencyKey !== undefined) headers['idempotency-key'] = request.idempotencyKey
   if (request.ifMatch !== undefined) headers['if-match'] = request.ifMatch
   return await reach(caller, pathOf(endpoint, request), {
     method: endpoint.method,
     headers,
-    ...(request.body === undefined ? {} : { body: JSON.stringify(request.body) }),
+    ...(request.body === undefined ? {} : { body: bodyText(endpoint, request.body) }),
   })
 }
 
@@ -96,6 +97,26 @@ async function reach(caller: Caller, path: string, init: RequestInit): Promise<R
   } catch (cause) {
     if (caller.signal?.aborted) throw cause
     throw new OgeeError('server-unreachable', 'The server does not answer.', { cause })
+  }
+}
+
+/** A block of NDJSON is a text already. */
+const bodyText = ({ ndjson }: Endpoint, body: unknown) => (ndjson ? String(body) : JSON.stringify(body))
+
+/**
+ * Posts a block of NDJSON and gives the lines of the answer as they come, whole ones only: what was cut in the middle of a
+ * line is left out. @throws as `call`; whatever fetch throws when the answer breaks off
+ */
+export async function* callLines(caller: Caller, endpoint: Endpoint, block: string): AsyncGenerator<string> {
+  const response = await send(caller, endpoint, { body: block })
+  if (!response.ok) throw await problemOf(response)
+  const decoder = new TextDecoder()
+  let rest = ''
+  const reader = response.body?.getReader()
+  for (let read = await reader?.read(); read && !read.done; read = await reader?.read()) {
+    const lines = (rest + decoder.decode(read.value, { stream: true })).split('\n')
+    rest = lines.pop() ?? ''
+    yield* lines
   }
 }
 

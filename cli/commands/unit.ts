@@ -1,18 +1,12 @@
-import { findUnits, type Unit } from '../../shared/contract/units.ts'
-import { OgeeError } from '../../shared/errors.ts'
+import type { Unit } from '../../shared/contract/units.ts'
+import { type AskedUnit, askUnit, type CurrentCodes, noCodesExit, unitDocument } from '../ask-unit.ts'
 import { type Command, type Context, everyFormat, type Given } from '../command.ts'
 import type { ConnectionOptions } from '../config.ts'
 import { print, type Rendering, sayCaution } from '../output.ts'
 import { connect, readConnection, serverAbout, serverOptions, text } from '../server-options.ts'
 import { textTable } from '../table.ts'
 
-type CurrentCodes = Unit['current'][number]
-type Options = ConnectionOptions & {
-  serial: string
-  design: string | undefined
-  channel: string | undefined
-  range: string | undefined
-}
+type Options = ConnectionOptions & AskedUnit
 
 export const unitCommand: Command<Options> = {
   about: `Ends with 12 when there are no accepted codes.\n\n${serverAbout}`,
@@ -43,29 +37,15 @@ function readUnit(given: Given): Options {
 }
 
 async function showUnit(options: Options, context: Context): Promise<number> {
-  const { serial, design } = options
-  const client = await connect(options, context)
-  const { items } = await client.call(findUnits, { query: { serial, ...(design ? { design } : {}) } })
-  const unit = theOne(items, serial)
-  const current = unit.current.filter(
-    ({ channel, range }) => (options.channel ?? channel) === channel && (options.range ?? range) === range,
-  )
+  const { serial } = options
+  const { unit, current, isGood } = await askUnit(await connect(options, context), options)
   await print(rendering(unit, current), context)
-  const isGood = current.length > 0 && current.every(({ codes }) => codes !== null)
   if (isGood) sayCaution(context)
   else
     context.io.say(
       `ogee: unit ${serial} has no accepted codes${current.length > 0 ? ' in every place shown' : ' there'}.`,
     )
-  return isGood ? 0 : 12
-}
-
-function theOne(items: readonly Unit[], serial: string): Unit {
-  const [first, ...others] = items
-  if (!first) throw new OgeeError('not-found', `There is no unit ${serial}, or it is not open to this token.`)
-  if (others.length === 0) return first
-  const designs = items.map(({ design }) => design).join(', ')
-  throw new OgeeError('not-found', `Units ${serial} stand under ${designs}: name one with --design.`)
+  return isGood ? 0 : noCodesExit
 }
 
 function rendering({ design, serial }: Unit, current: readonly CurrentCodes[]): Rendering {
@@ -96,7 +76,7 @@ function rendering({ design, serial }: Unit, current: readonly CurrentCodes[]): 
     at.recordedAt,
   ]
   return {
-    json: { format: 'ogee.unit/1', design, serial, current },
+    json: unitDocument({ design, serial }, current),
     lines: current.map((at) => ({ design, serial, ...at })),
     table: () =>
       textTable(

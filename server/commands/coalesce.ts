@@ -1,7 +1,10 @@
 /** How many requests share a transaction, and how many transactions are under way at once in this process. */
 const shareMax = 64
 const underWayMax = 2
-/** One at a time makes the fullest transactions; one that takes longer than this, waiting for a lock, holds up nobody. */
+/**
+ * One at a time makes the fullest transactions. A second one starts when it is full already, so that one computes while the
+ * other waits for the disk; and when one takes longer than this, waiting for a lock, so that it holds up nobody.
+ */
 const slowMs = 40
 
 type Waiting<In, Out> = { input: In; resolve: (out: Out) => void; reject: (error: unknown) => void }
@@ -23,7 +26,7 @@ export function coalesce<In, Out>(
     void run(queue.splice(0, shareMax))
   }
   const pump = () => {
-    if (underWay === 0) start()
+    if (underWay === 0 || queue.length >= shareMax) start()
     if (queue.length === 0 || waitingForSlow) return
     waitingForSlow = true
     setTimeout(() => {

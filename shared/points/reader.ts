@@ -20,7 +20,12 @@ export type ReaderOptions = {
   ranges?: readonly string[] | undefined
   /** A batch needs a unit in every row. */
   unitRequired?: boolean | undefined
+  /** Remembers which measurements the file has had; a long file needs one that is smaller than a Map. */
+  seen?: SeenLines | undefined
 }
+
+/** The line in which a measurement stood first; undefined, and remembered, when it has not been seen. */
+export type SeenLines = { firstLine: (measurement: string, line: number) => number | undefined }
 
 type Open = { group: PointGroup; cells: Map<Column, string>; bad: boolean; full: boolean }
 
@@ -32,15 +37,18 @@ export class PointsReader {
   private readonly header: Header
   private readonly options: ReaderOptions
   private readonly cellOptions: CellOptions
-  private readonly seen = new Map<string, number>()
+  private readonly seen: SeenLines
   private open: Open | null = null
   private groups: PointGroup[] = []
   private problems: CsvProblem[] = []
+  /** Line of a row that could not be split, while it may still belong to what comes next. */
+  private brokenAt: number | null = null
 
   /** @throws csv-header */
   constructor(header: CsvRow, delimiter: Delimiter, options: ReaderOptions = {}) {
     this.header = headerOf(header, options.unitRequired ?? false)
     this.options = options
+    this.seen = options.seen ?? new SeenInMap()
     this.cellOptions = { decimalComma: delimiter !== ',' }
   }
 
@@ -54,6 +62,7 @@ export class PointsReader {
     const read = this.readPoint(row)
     const cells = this.groupCells(row)
     if (this.open === null || !sameMeasurement(this.open.cells, cells)) this.start(row, cells)
+    this.brokenAt = null
     const open = this.open!
     open.group.lastLine = row.line
     const before = this.problems.length
@@ -62,6 +71,14 @@ export class PointsReader {
     if (this.problems.length > before) open.bad = true
     if (open.group.points.length < limits.pointsMax) open.group.points.push(read.point)
     else if (!open.full) this.refuseFull(open, row.line)
+  }
+
+  /** A row that cannot be split into cells may be of the measurement before it or of the one after it: neither is taken. */
+  refuseRow(line: number, message: string): void {
+    const spoilt = this.open === null ? {} : names(this.open.group)
+    this.problems.push({ code: 'csv-quotes', line, column: null, message, ...spoilt })
+    if (this.open !== null) this.open.bad = true
+    this.brokenAt = line
   }
 
   end(): void {
@@ -144,6 +161,9 @@ export class PointsReader {
         ...names(group),
       })
     }
+    if (this.brokenAt !== null) {
+      add('csv-quotes', 'unit', `left out, because line ${this.brokenAt} before it cannot be read.`)
+    }
     this.resolve('channel', this.options.channels, cells, group, add)
     this.resolve('range', this.options.ranges, cells, group, add)
     if (this.options.unitRequired && group.unit === undefined) add('csv-cell', 'unit', 'unit is missing.')
@@ -175,9 +195,8 @@ export class PointsReader {
     add: (code: ErrorCode, column: string, message: string) => void,
   ): void {
     const id = JSON.stringify([unit, channel, range, key])
-    const first = this.seen.get(id)
-    if (first === undefined) this.seen.set(id, line)
-    else {
+    const first = this.seen.firstLine(id, line)
+    if (first !== undefined) {
       const what = unit === undefined ? 'this measurement' : `unit ${unit}`
       add('duplicate-unit', 'unit', `${what} stands in line ${first} too. Give one of them another key.`)
     }
@@ -210,5 +229,15 @@ export class PointsReader {
   private close(): void {
     if (this.open !== null && !this.open.bad) this.groups.push(this.open.group)
     this.open = null
+  }
+}
+
+class SeenInMap implements SeenLines {
+  private readonly lines = new Map<string, number>()
+
+  firstLine(measurement: string, line: number): number | undefined {
+    const first = this.lines.get(measurement)
+    if (first === undefined) this.lines.set(measurement, line)
+    return first
   }
 }

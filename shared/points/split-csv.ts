@@ -36,15 +36,20 @@ export function splitCsv(text: string): { rows: CsvRow[]; delimiter: Delimiter }
   return { rows, delimiter }
 }
 
-function refuseQuotes(line: number, open: boolean): never {
-  const sentence = open
+/** What is wrong with the quotes of a row. */
+export function quotesSentence(line: number, open: boolean): string {
+  return open
     ? `Line ${line}: a quote is opened and not closed.`
     : `Line ${line}: a quote stands in the wrong place. A quote inside a quoted cell is written twice.`
+}
+
+function refuseQuotes(line: number, open: boolean): never {
+  const sentence = quotesSentence(line, open)
   throw new OgeeError('csv-quotes', sentence, { errors: [{ path: `line ${line}`, message: sentence }] })
 }
 
 /** The delimiter is the one that the header row has most of: no column name holds any of the three. */
-function delimiterOf(text: string): Delimiter {
+export function delimiterOf(text: string): Delimiter {
   const header = text.split('\n').find((line) => line.trim() !== '') ?? ''
   const count = (mark: string): number => header.split(mark).length - 1
   const most = Math.max(count(','), count(';'), count('\t'))

@@ -8,6 +8,7 @@ const benches: Record<string, () => Promise<readonly BenchRow[]>> = {
   cli: async () => (await import('./cli-start.ts')).benchCliStart(),
   recording: async () => (await import('./recording.ts')).benchRecording(),
   history: async () => (await import('./history.ts')).benchHistory(),
+  batches: async () => (await import('./batches.ts')).benchBatches(),
   keystroke: async () => (await import('./keystroke.ts')).benchKeystroke(),
   'first-load': async () => (await import('./first-load.ts')).benchFirstLoad(),
 }

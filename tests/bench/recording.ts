@@ -12,7 +12,6 @@ import { type BenchRow, median } from './row.ts'
 
 /** P4, single posts: recorded trims a second at 32 clients against the bare route, in turns in the same run. */
 
-const clients = 32
 const rounds = 5
 const postsARound = 2_000
 
@@ -57,10 +56,11 @@ async function race(oursUrl: string, token: string, peerUrl: string): Promise<Ra
 }
 
 /** Posts all, `clients` at a time over kept connections; gives posts a second. Any answer but 201 ends the bench. */
-async function rateOf(
+export async function rateOf(
   url: string,
   token: string,
   items: readonly { key: string; body: string }[],
+  clients = 32,
 ): Promise<number> {
   const agent = new Agent({ keepAlive: true, maxSockets: clients })
   let next = 0
@@ -180,7 +180,7 @@ function rows({ ours, peer, bare }: Rates): BenchRow[] {
   return [
     {
       id: 'P4',
-      name: `recorded trims at ${clients} clients`,
+      name: 'recorded trims at 32 clients',
       ours: per(own),
       peer: per(other),
       ratio: own / other,

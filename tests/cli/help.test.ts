@@ -7,7 +7,17 @@ import { commandTable } from '../../cli/command-table.ts'
 import { lotCounts, lotDetail, lotLine, lotUnit } from '../support/lot-fixtures.ts'
 import { memoryLedger, plainBodies } from '../support/memory-ledger.ts'
 import { revisionLine as lineOf } from '../support/revision-lines.ts'
-import { designBytes, line, me, recordIds, recordOf, revision, unit } from './support/answers.ts'
+import {
+  batchAnswer,
+  designBytes,
+  examplePoints,
+  line,
+  me,
+  recordIds,
+  recordOf,
+  revision,
+  unit,
+} from './support/answers.ts'
 import { builtCli, ended, examples } from './support/built-cli.ts'
 import { FakeServer, json, problem } from './support/fake-server.ts'
 
@@ -57,6 +67,10 @@ function answerEverything(): void {
     [/\/ledger\/entries\?/, lone.answers.entries],
   ]
   server.willAnswer((seen, response) => {
+    if (seen.path.endsWith('/batches')) {
+      response.end(batchAnswer(seen))
+      return
+    }
     const [, text] = texts.find(([path]) => path.test(seen.path)) ?? []
     if (text !== undefined) {
       response.end(text)
@@ -78,6 +92,11 @@ beforeAll(async () => {
     join(cli.folder, 'as-left.csv'),
     'code,measured,uncertainty\n0,0.000001,1e-6\n131072,5.000002,1e-6\n',
   )
+  const rows = ['031', '032'].flatMap((unit) =>
+    examplePoints.map(({ code, measured }) => `${unit},${code},${measured}\n`),
+  )
+  writeFileSync(join(cli.folder, 'units.csv'), `unit,code,measured\n${rows.join('')}`)
+  writeFileSync(join(cli.folder, 'questions.ndjson'), '{"id":1,"do":"unit","unit":"031"}\n')
   writeFileSync(join(cli.folder, 'serials.csv'), 'unit\n031\n032\n')
   writeFileSync(join(cli.folder, 'ogee.pub'), ledger.pub)
   writeFileSync(join(cli.folder, 'proof.json'), JSON.stringify(ledger.proofOf(0)))

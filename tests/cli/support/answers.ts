@@ -96,6 +96,26 @@ export function recordOf({ body }: Pick<Seen, 'body'>, number = 1_004_317): Stor
   }
 }
 
+type SentLine = { key: string; unit: string; [field: string]: unknown }
+export const linesOf = ({ text }: Pick<Seen, 'text'>): SentLine[] =>
+  text
+    .split('\n')
+    .filter((line) => line !== '')
+    .map((line) => JSON.parse(line) as SentLine)
+
+/** What `POST /batches` answers: each line as `outcome` says, or recorded, and the end. */
+export function batchAnswer(
+  seen: Pick<Seen, 'text'>,
+  outcome: (line: SentLine, i: number) => object = (line) => ({
+    status: 201,
+    record: recordOf({ body: line }),
+  }),
+): string {
+  const lines = linesOf(seen).map((line, i) => ({ line: i + 1, key: line.key, ...outcome(line, i) }))
+  const end = { end: true, lines: lines.length, recorded: lines.length, replayed: 0, refused: 0 }
+  return [...lines, end].map((line) => `${JSON.stringify(line)}\n`).join('')
+}
+
 export const unit: Unit = {
   design: 'DBS-A',
   serial: '031',

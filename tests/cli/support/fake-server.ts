@@ -8,6 +8,8 @@ export type Seen = {
   authorization: string | undefined
   key: string | undefined
   body: Record<string, unknown> | undefined
+  /** The body as it came; of a block of lines it is the only form. */
+  text: string
 }
 export type Reply = (request: Seen, response: ServerResponse) => void
 
@@ -38,12 +40,14 @@ export class FakeServer {
     const pieces: Buffer[] = []
     for await (const piece of request) pieces.push(piece as Buffer)
     const text = Buffer.concat(pieces).toString('utf8')
+    const isJson = text !== '' && request.headers['content-type'] !== 'application/x-ndjson'
     const seen: Seen = {
       method: request.method ?? '',
       path: request.url ?? '',
       authorization: request.headers.authorization,
       key: request.headers['idempotency-key'] as string | undefined,
-      body: text === '' ? undefined : (JSON.parse(text) as Record<string, unknown>),
+      body: isJson ? (JSON.parse(text) as Record<string, unknown>) : undefined,
+      text,
     }
     this.seen.push(seen)
     const reply = this.#replies.length > 1 ? this.#replies.shift() : this.#replies[0]

@@ -25,6 +25,7 @@ export function memoryIo(
     say: (line) => {
       err += `${line}\n`
     },
+    sayOver: () => undefined,
     now: () => 1_780_000_000_000,
     out: () => out,
     err: () => err,
