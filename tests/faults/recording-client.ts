@@ -63,7 +63,8 @@ const patienceMs = 180_000
 
 class Refused extends Error {}
 
-function acknowledged(key: string, unit: string, text: string): Acknowledged {
+/** What an answer of 201 says, apart from what may change around it. */
+export function acknowledged(key: string, unit: string, text: string): Acknowledged {
   const {
     notices: _,
     ledger: __,

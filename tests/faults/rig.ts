@@ -12,13 +12,16 @@ export type Rig = {
   killDatabase: () => Promise<void>
   restartDatabase: () => Promise<void>
   asRoot: () => Promise<Connection>
+  /** Where further servers find the same database. */
+  addresses: () => { databaseUrl: string; adminUrl: string }
   /** Waits until every committed leaf has its place. */
   settled: () => Promise<void>
   close: () => Promise<void>
 }
 
-export async function startRig(): Promise<Rig> {
-  const dir = mkdtempSync(join(tmpdir(), 'ogee-faults-'))
+/** `dir`: where the database lies, when not in a folder of its own that is removed at the end. */
+export async function startRig(options: { dir?: string } = {}): Promise<Rig> {
+  const dir = options.dir ?? mkdtempSync(join(tmpdir(), 'ogee-faults-'))
   let database: PrivateDatabase = await startMariadb({ dir, size: 'test' })
   const port = Number(new URL(database.url.replace('mariadb:', 'http:')).port)
   const server = await startServer({
@@ -39,6 +42,7 @@ export async function startRig(): Promise<Rig> {
       database = await startMariadb({ dir, size: 'test', port })
     },
     asRoot,
+    addresses: () => ({ databaseUrl: database.url, adminUrl: database.adminUrl }),
     settled: async () => {
       const root = await asRoot()
       for (let waited = 0; waited < 30_000; waited += 100) {
@@ -51,7 +55,7 @@ export async function startRig(): Promise<Rig> {
     close: async () => {
       await server.remove()
       await database.stop()
-      rmSync(dir, { recursive: true, force: true })
+      if (options.dir === undefined) rmSync(dir, { recursive: true, force: true })
     },
   }
 }

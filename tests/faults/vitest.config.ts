@@ -3,7 +3,8 @@ import { defineConfig } from 'vitest/config'
 /** The long form of the fault tests (quality.md, R1, R2 and R6): `npm run test:faults`. Sizes can be set as in the short form. */
 export default defineConfig({
   test: {
-    include: ['tests/faults/**/*.test.ts'],
+    // R7 stands with what it tests, and is run at its long size from here.
+    include: ['tests/faults/**/*.test.ts', 'tests/server/*-race.test.ts'],
     environment: 'node',
     fileParallelism: false,
     maxWorkers: 1,
@@ -12,6 +13,11 @@ export default defineConfig({
     globalSetup: ['tests/support/global-setup.ts'],
     env: {
       OGEE_KILLS: process.env.OGEE_KILLS ?? '1000',
+      OGEE_RACES: process.env.OGEE_RACES ?? '10000',
+      OGEE_TWO_SERVERS_SECONDS: process.env.OGEE_TWO_SERVERS_SECONDS ?? '1800',
+      OGEE_READY_ROUNDS: process.env.OGEE_READY_ROUNDS ?? '20',
+      OGEE_SPOOL_UNITS: process.env.OGEE_SPOOL_UNITS ?? '100000',
+      OGEE_SPOOL_KILLS: process.env.OGEE_SPOOL_KILLS ?? '500',
       OGEE_DELIVERIES: process.env.OGEE_DELIVERIES ?? '1000000',
       OGEE_TAMPERINGS: process.env.OGEE_TAMPERINGS ?? '10000',
     },

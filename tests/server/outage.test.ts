@@ -14,7 +14,8 @@ import {
 } from '../support/server-harness.ts'
 
 /** A switch between server and database: through, refusing, cutting, or swallowing everything. */
-type Mode = 'through' | 'refuse' | 'swallow'
+type Mode = 'through' | 'refuse' | 'swallow' | 'slow'
+const slowMs = 400
 let mode: Mode = 'through'
 const sockets = new Set<Socket>()
 const proxy = createServer((client) => {
@@ -30,7 +31,8 @@ const proxy = createServer((client) => {
     })
   }
   client.on('data', (chunk) => {
-    if (mode !== 'swallow') upstream.write(chunk)
+    if (mode === 'slow') setTimeout(() => upstream.writable && upstream.write(chunk), slowMs)
+    else if (mode !== 'swallow') upstream.write(chunk)
   })
   upstream.on('data', (chunk) => {
     if (mode !== 'swallow') client.write(chunk)
@@ -114,6 +116,22 @@ describe('while the database is down', () => {
     mode = 'through'
     cutAll()
     await expect.poll(async () => (await trim(`X-6-${newKey()}`)).status, { timeout: 20_000 }).toBe(201)
+  })
+})
+
+describe('a slow database', () => {
+  it('answers in bounded time: recorded, or an outage after which the same key finds what was done', async () => {
+    expect((await trim('Slow-0')).status).toBe(201)
+    mode = 'slow'
+    const key = newKey()
+    const start = performance.now()
+    const first = await trim('Slow-1', key)
+    // A guard against hanging, ten times the aim of three seconds.
+    expect(performance.now() - start).toBeLessThan(30_000)
+    expect([201, 503]).toContain(first.status)
+    mode = 'through'
+    await expect.poll(async () => (await trim('Slow-1', key)).status, { timeout: 20_000 }).toBe(201)
+    expect(await harness.database.sql.rows("SELECT id FROM records WHERE unit = 'Slow-1'")).toHaveLength(1)
   })
 })
 
