@@ -53,6 +53,9 @@ describe.each(looks)('$theme at $width px', ({ theme, width }) => {
     for (const path of [
       '/designs',
       '/designs/DBS-A/revisions/1',
+      '/lots',
+      '/lots/DBS-A/L040',
+      '/lots/DBS-A/L028?chart=offset&channel=2&add=1',
       '/history',
       recordPath,
       '/bench?design=DBS-A&channel=1',
