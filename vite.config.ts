@@ -4,13 +4,16 @@ import { defineConfig, type Plugin } from 'vite'
 
 // zod-config stands with zod: it must have run before any schema of the other files is made.
 const basePackages =
-  /node_modules\/(?:react|react-dom|scheduler|react-router|react-router-dom|@tanstack\/[^/]+|zod)\/|src\/app\/zod-config/
+  /node_modules\/(?:react|react-dom|scheduler|react-router|react-router-dom|@tanstack\/(?:query-core|react-query)|zod)\/|src\/app\/zod-config/
 const startModules =
   /shared\/(?:call|errors|limits|contract\/(?:endpoint|ledger|primitives|problem|session))\.ts|src\/(?:lib\/(?:api|connection|leave|paths|query-client|storage)|features\/(?:ledger\/(?:note|public-facts|queries)|session\/(?:queries|sign-in-form))|ui\/(?:button|caution|clipboard|field|input|loading|mark|number-format|number-text|problem|status|use-countdown|word-mark))\./
 
 // What the Design page draws by itself: two dozen pieces that only it uses pack smaller as one.
 const designModules =
-  /src\/(?:screens\/design-page\/(?!conflict|document-acts|choices|network-texts|revisions-panel)|screens\/designs\/design-screen|features\/design-form\/(?!template|document-file)|features\/sizing\/(?:explain|explained-sentence|ladder|pass|residual|span|spoken|trim-ladder|verdict)[^/]*$|ui\/when-near)|shared\/(?:solver\/sizing\/|design-words\/(?:reach-remedy|verdict-sentences|words)\.)/
+  /src\/(?:screens\/design-page\/(?!conflict|document-acts|choices|network-texts|revisions-panel)|features\/design-form\/(?!template|document-file)|features\/sizing\/(?:explain|explained-sentence|ladder|pass|residual|span|spoken|trim-ladder|verdict)[^/]*$)|shared\/(?:design-words\/(?:reach-remedy|verdict-sentences|words)\.)/
+
+// Sizing is Design's and, for what a budget demands, a lot's: in a file of its own neither drags the other along.
+const sizingModules = /shared\/solver\/sizing\//
 
 // The frame of every plot, on Design, Bench and a record's page.
 const plotModules =
@@ -37,6 +40,7 @@ export default defineConfig({
             { name: 'base', test: basePackages },
             { name: 'start', test: startModules },
             { name: 'design', test: designModules },
+            { name: 'sizing', test: sizingModules },
             { name: 'plots', test: plotModules },
           ],
         },

@@ -17,6 +17,12 @@ const routes: readonly [name: string, chunks: readonly RegExp[], limitKb: number
   ['record', [frame, /^record-screen-.*\.js$/, /^record-drawn-.*\.js$/], 185],
   ['designs', [frame, /^designs-screen-.*\.js$/], 185],
   ['design', [frame, /^design-screen-.*\.js$/], 185],
+  ['lots', [frame, /^lots-screen-.*\.js$/], 185],
+  [
+    'lot, with what it draws by itself',
+    [frame, /^lot-screen-.*\.js$/, /^lot-drawn-.*\.js$/, /^station-line-.*\.js$/],
+    185,
+  ],
   ['ledger', [frame, /^ledger-screen-.*\.js$/], 185],
   ['tokens', [frame, /^tokens-screen-.*\.js$/], 185],
   ['stations', [frame, /^stations-screen-.*\.js$/], 185],

@@ -34,6 +34,11 @@ async function fileOf(download: Promise<Download>): Promise<string> {
   return readFileSync(await (await download).path(), 'utf8')
 }
 
+/** The table of units is loaded when it is near. */
+async function unitsInView(page: Page): Promise<void> {
+  await page.locator('[data-when-near="units"]').scrollIntoViewIfNeeded()
+}
+
 async function upload(page: Page, text: string, measurements: number): Promise<void> {
   const file = { name: 'points.csv', mimeType: 'text/csv', buffer: Buffer.from(text) }
   await page.locator('[data-upload]').setInputFiles(file)
@@ -97,6 +102,7 @@ describe('a lot', () => {
     const { page, context } = await openPage(stage.browser)
     await page.goto(`${stage.server.url}/lots/DBS-A/L040`)
     await stage.signIn(page, 'operator')
+    await unitsInView(page)
     await page.getByText('96 channels').waitFor()
     await page.getByText('Stations compared').waitFor()
     const place = () => page.getByText('Individuals chart').boundingBox()
@@ -136,7 +142,7 @@ describe('a lot', () => {
     await page.getByRole('heading', { level: 1, name: 'Lots' }).waitFor()
     expect(await page.getByRole('button', { name: 'Open a lot' }).count()).toBe(0)
     await page.goto(`${stage.server.url}/lots/DBS-A/L028`)
-    await page.getByText('24 channels').waitFor()
+    await page.getByText('Individuals chart').waitFor()
     expect(await page.getByRole('button', { name: 'Sign off lot' }).count()).toBe(0)
     await page.getByRole('main').focus()
     await page.keyboard.press('j')

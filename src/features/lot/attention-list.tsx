@@ -4,7 +4,7 @@ import { Button, LinkButton } from '../../ui/button.tsx'
 import { Section } from '../../ui/section.tsx'
 import { Table, Td, Th } from '../../ui/table.tsx'
 import { utcText } from '../../ui/time-text.tsx'
-import { StandingWord } from './sign-off-dialog.tsx'
+import { StandingWord } from './standing-word.tsx'
 import { whySentence } from './words.ts'
 
 type Place = LotUnit['places'][number]

@@ -8,7 +8,7 @@ import { useExpect } from './queries.ts'
 import { SerialsField, useSerials } from './serials-field.tsx'
 
 /** Says which units belong to a lot, so that those that never came are seen. */
-export function ExpectDialog({ lot, onClose }: { lot: LotDetail; onClose: () => void }) {
+export default function ExpectDialog({ lot, onClose }: { lot: LotDetail; onClose: () => void }) {
   const serials = useSerials()
   const expect = useExpect({ key: lot.design, lot: lot.key })
   const submit = (event: FormEvent) => {

@@ -11,7 +11,7 @@ import { announce } from '../../ui/status.tsx'
 import { useOpenLot } from './queries.ts'
 import { SerialsField, useSerials } from './serials-field.tsx'
 
-export function OpenLotDialog({
+export default function OpenLotDialog({
   designs,
   onOpened,
   onClose,

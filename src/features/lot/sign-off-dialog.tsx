@@ -1,5 +1,4 @@
 import { type FormEvent, useState } from 'react'
-import { undecidedStandings } from '../../../shared/contract/lot-standing.ts'
 import type { LotDetail, LotUnit } from '../../../shared/contract/lots.ts'
 import { isOgeeError } from '../../../shared/errors.ts'
 import { limits } from '../../../shared/limits.ts'
@@ -9,9 +8,9 @@ import { Field } from '../../ui/field.tsx'
 import { TextArea, TextInput } from '../../ui/input.tsx'
 import { Problem } from '../../ui/problem.tsx'
 import { announce } from '../../ui/status.tsx'
-import { Verdict } from '../../ui/verdict.tsx'
 import { useSignOff } from './queries.ts'
-import { percent, standingLook, unitsText } from './words.ts'
+import { isUndecided, StandingWord } from './standing-word.tsx'
+import { percent, unitsText } from './words.ts'
 
 /** Units that get a field of their own; the rest share one reason. */
 const shownMost = 12
@@ -19,7 +18,7 @@ const shownMost = 12
 type Props = { lot: LotDetail; units: readonly LotUnit[]; onClose: () => void }
 
 /** Every unit that is not right gets a decision: it is left out, for a reason that is kept for good. */
-export function SignOffDialog({ lot, units, onClose }: Props) {
+export default function SignOffDialog({ lot, units, onClose }: Props) {
   const open = units.filter((unit) => isUndecided(unit))
   const listed = open.slice(0, shownMost)
   const others = open.length - listed.length + lot.counts.missing
@@ -114,17 +113,5 @@ export function SignOffDialog({ lot, units, onClose }: Props) {
         </div>
       </form>
     </Dialog>
-  )
-}
-
-export const isUndecided = ({ reference, standing, places }: LotUnit): boolean =>
-  !reference && places.length > 0 && undecidedStandings.includes(standing)
-
-export function StandingWord({ standing }: { standing: LotUnit['standing'] }) {
-  const { verdict, word } = standingLook[standing]
-  return verdict === null ? (
-    <span className="font-semibold">{word}</span>
-  ) : (
-    <Verdict verdict={verdict} word={word} />
   )
 }

@@ -11,7 +11,7 @@ import { Section } from '../../ui/section.tsx'
 import { None, Td, Th } from '../../ui/table.tsx'
 import { utcText } from '../../ui/time-text.tsx'
 import { usePrinting } from '../../ui/use-printing.ts'
-import { StandingWord } from './sign-off-dialog.tsx'
+import { StandingWord } from './standing-word.tsx'
 
 /** Every row is as high as the smallest target; a list of them is measured once. */
 const rowPx = 25
@@ -38,7 +38,7 @@ type Props = {
 }
 
 /** All channels of a lot in a window of rows: ten thousand scroll as ten do. */
-export function UnitTable({ units, find, onFind, onReference }: Props) {
+export default function UnitTable({ units, find, onFind, onReference }: Props) {
   const rows = useMemo(() => rowsOf(units, find), [units, find])
   const hasRanges = useMemo(() => new Set(rows.map(({ place }) => place?.range)).size > 1, [rows])
   return (

@@ -4,7 +4,7 @@ import { Whole } from '../../ui/number-text.tsx'
 import { Section } from '../../ui/section.tsx'
 import { Table, Td, Th } from '../../ui/table.tsx'
 import { verdictTone } from '../../ui/verdict.tsx'
-import { StandingWord } from './sign-off-dialog.tsx'
+import { StandingWord } from './standing-word.tsx'
 import { percent, standingLook } from './words.ts'
 
 /** From best to worst; standings that never occur in most lots stand only when they do. */

@@ -1,4 +1,4 @@
-import { useDeferredValue, useMemo } from 'react'
+import { lazy, Suspense, useDeferredValue, useMemo } from 'react'
 import type { Design } from '../../../shared/contract/design.ts'
 import type { LotDetail, LotUnit } from '../../../shared/contract/lots.ts'
 import { converterRange, limitInVolts } from '../../../shared/solver/converter.ts'
@@ -11,11 +11,14 @@ import { differs, StationSentence } from '../../features/lot/lot-sentences.tsx'
 import { useMarkReference } from '../../features/lot/queries.ts'
 import { shownRange } from '../../features/lot/shown-range.ts'
 import { StationPlot } from '../../features/lot/station-plot.tsx'
-import { UnitTable } from '../../features/lot/unit-table.tsx'
 import { usePerson } from '../../features/session/use-person.ts'
 import { Problem } from '../../ui/problem.tsx'
+import { WhenNear } from '../../ui/when-near.tsx'
 import { PlaceChoice } from './place-choice.tsx'
 import { useComparison } from './use-comparison.ts'
+
+// Far down the page: its rows and what scrolls them come when they are about to be seen.
+const UnitTable = lazy(() => import('../../features/lot/unit-table.tsx'))
 
 type Props = {
   lot: LotDetail
@@ -76,14 +79,18 @@ export default function LotDrawn({ lot, design, units: newest, search, onSearch 
       </div>
       <Problem error={reference.error} />
       <div className="mt-3">
-        <UnitTable
-          units={units}
-          find={search.get('find') ?? ''}
-          onFind={(find) => onSearch({ find })}
-          onReference={
-            role === 'engineer' ? (unit, on) => reference.mutate({ unit, reference: on }) : undefined
-          }
-        />
+        <WhenNear name="units" minHeight={480}>
+          <Suspense fallback={null}>
+            <UnitTable
+              units={units}
+              find={search.get('find') ?? ''}
+              onFind={(find) => onSearch({ find })}
+              onReference={
+                role === 'engineer' ? (unit, on) => reference.mutate({ unit, reference: on }) : undefined
+              }
+            />
+          </Suspense>
+        </WhenNear>
       </div>
     </>
   )

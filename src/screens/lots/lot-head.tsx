@@ -1,10 +1,8 @@
-import { useState } from 'react'
+import { lazy, Suspense, useState } from 'react'
 import type { Design } from '../../../shared/contract/design.ts'
 import type { LotDetail, LotUnit } from '../../../shared/contract/lots.ts'
 import { downloadCodes } from '../../features/lot/codes-file.ts'
-import { ExpectDialog } from '../../features/lot/expect-dialog.tsx'
 import { useCloseLot } from '../../features/lot/queries.ts'
-import { SignOffDialog } from '../../features/lot/sign-off-dialog.tsx'
 import { stateWords } from '../../features/lot/words.ts'
 import { usePerson } from '../../features/session/use-person.ts'
 import { paths } from '../../lib/paths.ts'
@@ -13,6 +11,10 @@ import { Dialog } from '../../ui/dialog.tsx'
 import { PageHead } from '../../ui/page-head.tsx'
 import { Problem } from '../../ui/problem.tsx'
 import { utcText } from '../../ui/time-text.tsx'
+
+// Asked for by a click: not in what the page loads first.
+const ExpectDialog = lazy(() => import('../../features/lot/expect-dialog.tsx'))
+const SignOffDialog = lazy(() => import('../../features/lot/sign-off-dialog.tsx'))
 
 type Props = {
   lot: LotDetail
@@ -74,11 +76,13 @@ export function LotHead({ lot, title, document, units, onAdd }: Props) {
           </>
         }
       />
-      {asking === 'expect' ? <ExpectDialog lot={lot} onClose={() => setAsking(null)} /> : null}
-      {asking === 'close' ? <CloseDialog lot={lot} onClose={() => setAsking(null)} /> : null}
-      {asking === 'sign-off' ? (
-        <SignOffDialog lot={lot} units={units} onClose={() => setAsking(null)} />
-      ) : null}
+      <Suspense fallback={null}>
+        {asking === 'expect' ? <ExpectDialog lot={lot} onClose={() => setAsking(null)} /> : null}
+        {asking === 'close' ? <CloseDialog lot={lot} onClose={() => setAsking(null)} /> : null}
+        {asking === 'sign-off' ? (
+          <SignOffDialog lot={lot} units={units} onClose={() => setAsking(null)} />
+        ) : null}
+      </Suspense>
     </>
   )
 }

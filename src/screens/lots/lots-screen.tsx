@@ -1,10 +1,9 @@
 import { useInfiniteQuery } from '@tanstack/react-query'
-import { useState } from 'react'
+import { lazy, Suspense, useState } from 'react'
 import { useNavigate, useSearchParams } from 'react-router-dom'
 import { lotState } from '../../../shared/contract/lots.ts'
 import { designsOptions } from '../../features/design/queries.ts'
 import { LotTable } from '../../features/lot/lot-table.tsx'
-import { OpenLotDialog } from '../../features/lot/open-lot-dialog.tsx'
 import { lotsOptions } from '../../features/lot/queries.ts'
 import { stateWords } from '../../features/lot/words.ts'
 import { usePerson } from '../../features/session/use-person.ts'
@@ -18,6 +17,8 @@ import { Loading } from '../../ui/loading.tsx'
 import { PageHead } from '../../ui/page-head.tsx'
 import { PageProblem } from '../../ui/page-problem.tsx'
 import { useRowKeys } from '../../ui/use-row-keys.ts'
+
+const OpenLotDialog = lazy(() => import('../../features/lot/open-lot-dialog.tsx'))
 
 /** Lots, newest first; the address holds which design and state are shown. */
 export default function LotsScreen() {
@@ -82,11 +83,13 @@ export default function LotsScreen() {
         </Field>
       </div>
       {isOpening ? (
-        <OpenLotDialog
-          designs={lines.filter(({ released }) => released !== null)}
-          onOpened={(lot) => void navigate(paths.lot(lot.design, lot.key))}
-          onClose={() => setOpening(false)}
-        />
+        <Suspense fallback={null}>
+          <OpenLotDialog
+            designs={lines.filter(({ released }) => released !== null)}
+            onOpened={(lot) => void navigate(paths.lot(lot.design, lot.key))}
+            onClose={() => setOpening(false)}
+          />
+        </Suspense>
       ) : null}
       {lots.isPending ? <Loading>Reading the lots.</Loading> : null}
       {lots.data && items.length === 0 ? (
