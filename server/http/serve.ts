@@ -45,8 +45,9 @@ export class ReadyJson {
 
 /** A reply of lines that are made while they are sent, some at a time. */
 export class ReadyLines {
-  readonly lines: AsyncIterable<readonly string[]>
-  constructor(lines: AsyncIterable<readonly string[]>) {
+  /** Some lines; or a block of bytes of whole lines, their line ends included. */
+  readonly lines: AsyncIterable<readonly string[] | Uint8Array>
+  constructor(lines: AsyncIterable<readonly string[] | Uint8Array>) {
     this.lines = lines
   }
 }
@@ -179,9 +180,12 @@ async function sendLines(
   const type = endpoint.ndjson ? 'application/x-ndjson' : endpoint.reply.mediaType
   response.setHeader('Content-Type', `${type}; charset=utf-8`)
   for await (const some of lines) {
-    if (check && endpoint.ndjson) for (const line of some) requireAsAgreed(endpoint, JSON.parse(line))
+    const block = some instanceof Uint8Array ? some : `${some.join('\n')}\n`
+    if (check && endpoint.ndjson) {
+      for (const line of block.toString().trimEnd().split('\n')) requireAsAgreed(endpoint, JSON.parse(line))
+    }
     if (response.closed) return
-    if (!response.write(`${some.join('\n')}\n`)) await drained(response)
+    if (!response.write(block)) await drained(response)
   }
   response.end()
 }

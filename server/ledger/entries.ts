@@ -1,6 +1,5 @@
 import type { StoredRow } from '../../shared/contract/ledger-entries.ts'
-import { entryLine } from '../../shared/ledger/check/entry-line.ts'
-import { toBase64 } from '../../shared/ledger/hash.ts'
+import { afterLeaf, beforeLeaf, type EntryHead } from '../../shared/ledger/check/entry-line.ts'
 import type { Database } from '../db/connection.ts'
 import type { Sql } from '../db/sql.ts'
 import { transaction } from '../db/transaction.ts'
@@ -29,15 +28,15 @@ type EntryRow = {
 export async function* entryLines(
   database: Database,
   { from, limit }: { from: number; limit: number },
-): AsyncGenerator<string[]> {
+): AsyncGenerator<Uint8Array | string[]> {
   let at = from
   const stop = from + limit
   for (let more = true; more && at < stop; ) {
     const most = Math.min(atOnce, stop - at)
-    const { rows, lines } = await transaction(database, (sql) => readSome(sql, at, most))
+    const { rows, block } = await transaction(database, (sql) => readSome(sql, at, most))
     at = (rows.at(-1)?.idx ?? at - 1) + 1
     more = rows.length === most
-    if (lines.length > 0) yield lines
+    if (rows.length > 0) yield block
     if (!more) at = -1
   }
   const [head] = await database.sql.rows<{ size: number }>('SELECT size FROM ledger_head WHERE id = 1')
@@ -45,11 +44,7 @@ export async function* entryLines(
 }
 
 /** By place and not by number of rows, so that a gap costs nothing. */
-async function readSome(
-  sql: Sql,
-  from: number,
-  limit: number,
-): Promise<{ rows: EntryRow[]; lines: string[] }> {
+async function readSome(sql: Sql, from: number, limit: number): Promise<{ rows: EntryRow[]; block: Buffer }> {
   const rows = await sql.rows<EntryRow>(
     `SELECT e.idx, l.kind AS leafKind, l.at, l.hash, l.body, r.id, r.number, r.kind, r.unit, r.channel,
       r.range_id AS \`range\`, r.lot, r.design, r.revision, r.pass, r.follows, r.verdict, r.accepted,
@@ -62,21 +57,34 @@ async function readSome(
     [from, limit],
   )
   const last = rows.at(-1)
-  if (!last) return { rows, lines: [] }
+  if (!last) return { rows, block: Buffer.alloc(0) }
   const nodes = await readCompleted(sql, rows[0]!.idx, last.idx + 1)
   const documents = await readDocuments(sql, rows)
-  const lines = rows.map((row) => {
-    const hash = row.hash?.toString('hex') ?? null
-    const document = row.leafKind === 'release' ? { document: documents.get(row.idx) ?? null } : {}
-    const head = { index: row.idx, nodes: nodes.get(row.idx) ?? '', hash, row: storedRow(row), ...document }
-    return entryLine(head, leafText(row))
-  })
-  return { rows, lines }
+  const block = Buffer.concat(
+    rows.flatMap((row) => {
+      const hash = row.hash?.toString('hex') ?? null
+      const document = row.leafKind === 'release' ? { document: documents.get(row.idx) ?? null } : {}
+      return lineOf(
+        { index: row.idx, nodes: nodes.get(row.idx) ?? '', hash, row: storedRow(row), ...document },
+        row,
+      )
+    }),
+  )
+  return { rows, block }
 }
 
-function leafText({ leafKind, at, body }: EntryRow): string | null {
-  if (leafKind === null || !at || !body) return null
-  return `{"at":"${at.toISOString()}","body":${body.toString('utf8')},"kind":${JSON.stringify(leafKind)}}`
+/** A line in pieces: the leaf's bytes go out as they were stored, and are never made a text. */
+function lineOf(head: EntryHead, { leafKind, at, body }: EntryRow): Buffer[] {
+  if (leafKind === null || !at || !body) return [Buffer.from(`${beforeLeaf(head, 4)}null${afterLeaf}\n`)]
+  const before = `{"at":"${at.toISOString()}","body":`
+  const after = `,"kind":${JSON.stringify(leafKind)}}`
+  const length = Buffer.byteLength(before) + body.length + Buffer.byteLength(after)
+  return [
+    Buffer.from(`${beforeLeaf(head, length)}${before}`),
+    // A line end can only come from bytes that somebody changed: a blank in its place changes the hash as well.
+    body.includes(10) ? body.map((byte) => (byte === 10 ? 32 : byte)) : body,
+    Buffer.from(`${after}${afterLeaf}\n`),
+  ] as Buffer[]
 }
 
 function storedRow(row: EntryRow): StoredRow | null {
@@ -143,7 +151,7 @@ async function readDocuments(sql: Sql, rows: readonly EntryRow[]): Promise<Map<n
     'SELECT hash, bytes FROM design_documents WHERE hash IN (?)',
     [named.map(({ hash }) => Buffer.from(hash, 'hex'))],
   )
-  const bytes = new Map(found.map((row) => [row.hash.toString('hex'), toBase64(row.bytes)]))
+  const bytes = new Map(found.map((row) => [row.hash.toString('hex'), row.bytes.toString('base64')]))
   return new Map(named.flatMap(({ idx, hash }) => (bytes.has(hash) ? [[idx, bytes.get(hash)!]] : [])))
 }
 

@@ -9,6 +9,7 @@ const benches: Record<string, () => Promise<readonly BenchRow[]>> = {
   recording: async () => (await import('./recording.ts')).benchRecording(),
   history: async () => (await import('./history.ts')).benchHistory(),
   batches: async () => (await import('./batches.ts')).benchBatches(),
+  ledger: async () => (await import('./ledger.ts')).benchLedger(),
   keystroke: async () => (await import('./keystroke.ts')).benchKeystroke(),
   'first-load': async () => (await import('./first-load.ts')).benchFirstLoad(),
 }

@@ -63,7 +63,7 @@ export async function checkLedger(source: LedgerSource, options: Options): Promi
   const { faults, keys, roots } = await options.run((crypto) =>
     checkNotes(crypto, { key, keyRows, stored, kept }),
   )
-  const checker = new EntryChecker(sha256, keys, roots, faults)
+  const checker = new EntryChecker(sha256, keys, roots, faults, options.verifyAll !== null)
   // Read while the page before is checked: the two take about the same time.
   let reading = source.entries(0)
   for (;;) {

@@ -1,0 +1,96 @@
+import { afterAll, beforeAll, describe, expect, it } from 'vitest'
+import { readEntry } from '../../shared/ledger/check/entry-line.ts'
+import { agreesAtSight, rowDifference } from '../../shared/ledger/check/record-row.ts'
+import { api, post } from '../support/server-client.ts'
+import { pointsOf, suspectPoints, trimBody } from '../support/server-factories.ts'
+import { addToken } from '../support/server-harness.ts'
+import { type Scene, serverScene } from '../support/server-scene.ts'
+
+let scene: Scene
+let token = ''
+beforeAll(async () => {
+  scene = await serverScene()
+  const trim = await post(scene.url, scene.station, trimBody({ unit: 'E-1' }))
+  const left = { unit: 'E-1', points: pointsOf({ gainPpm: 0.2 }), kind: 'verify', follows: trim.id }
+  await post(scene.url, scene.station, trimBody(left))
+  await post(scene.url, scene.engineer, trimBody({ unit: 'E-2 "½"' }))
+  const suspect = await post(scene.url, scene.station, trimBody({ unit: 'E-3', points: suspectPoints() }))
+  const reason = 'Looked at by eye.'
+  const override = { kind: 'override', design: 'U18', unit: 'E-3', follows: suspect.id, reason }
+  await post(scene.url, scene.engineer, override)
+  token = (await addToken(scene.harness, ['ledger:read'])).token
+  await scene.harness.sequencer.drain()
+})
+afterAll(() => scene.harness.close())
+
+const page = async (query = '') => {
+  const reply = await fetch(`${scene.url}/api/v1/ledger/entries${query}`, {
+    headers: { authorization: `Bearer ${token}` },
+  })
+  expect(reply.headers.get('content-type')).toBe('application/x-ndjson; charset=utf-8')
+  const lines = (await reply.text()).trimEnd().split('\n')
+  const end = JSON.parse(lines.pop()!) as { end: true; size: number; next: number | null }
+  return { lines, end, entries: lines.map((line) => readEntry(Buffer.from(line))!) }
+}
+
+describe('GET /ledger/entries', () => {
+  it('gives every entry once, in pages of any size, and says where it ends', async () => {
+    const whole = await page()
+    expect(whole.end).toEqual({ end: true, size: whole.lines.length, next: null })
+    const inPieces: string[] = []
+    for (let from: number | null = 0; from !== null; ) {
+      const piece = await page(`?from=${from}&limit=3`)
+      inPieces.push(...piece.lines)
+      from = piece.end.next
+    }
+    expect(inPieces).toEqual(whole.lines)
+    expect(whole.entries.map(({ index }) => index)).toEqual(whole.entries.map((_, i) => i))
+    // Each line is JSON as well, whose leaf is what its bytes say.
+    for (const [i, line] of whole.lines.entries()) {
+      const leaf = JSON.parse(line).leaf
+      expect(JSON.parse(Buffer.from(whole.entries[i]!.leaf!).toString())).toEqual(leaf)
+    }
+  })
+
+  it('carries the released bytes, and every row agrees with its leaf', async () => {
+    const { entries } = await page()
+    expect(entries.filter(({ document }) => typeof document === 'string')).toHaveLength(2)
+    const records = entries.filter(({ row }) => row !== null)
+    expect(records).toHaveLength(5)
+    for (const { row, leaf } of records) {
+      expect(rowDifference(row!, JSON.parse(Buffer.from(leaf!).toString()).body)).toBeNull()
+    }
+  })
+
+  it('agrees at sight for measurements of tokens and people, and never where a field differs', async () => {
+    const { entries } = await page()
+    const rows = entries.flatMap(({ row, leaf }) =>
+      row && leaf ? [{ row, text: Buffer.from(leaf).toString() }] : [],
+    )
+    const seen = rows.filter(({ row, text }) => agreesAtSight(row, text))
+    expect(seen.map(({ row }) => row.unit)).toEqual(['E-1', 'E-1', 'E-2 "½"', 'E-3'])
+    for (const { row, text } of seen) {
+      for (const [name, value] of Object.entries(row)) {
+        if (name === 'attempt' || name === 'receipt') continue
+        for (const other of [
+          typeof value === 'number' ? value + 1 : `${String(value)}x`,
+          value === null ? 0 : null,
+        ]) {
+          const changed = { ...row, [name]: other }
+          expect(agreesAtSight(changed, text), `${row.kind} ${name} ${String(other)}`).toBe(false)
+          expect(rowDifference(changed, JSON.parse(text).body), name).toContain(name)
+        }
+      }
+    }
+  })
+
+  it('refuses pages that are too large, and tokens for some designs', async () => {
+    expect((await api(scene.url, 'get', '/ledger/entries?limit=5001', { token })).status).toBe(422)
+    const { token: narrow } = await addToken(scene.harness, ['ledger:read'], null, { designs: ['U18'] })
+    for (const path of ['/ledger/entries', '/ledger/strays']) {
+      const reply = await api(scene.url, 'get', path, { token: narrow })
+      expect(reply.status).toBe(403)
+      expect(reply.body.detail).toContain('one design only')
+    }
+  })
+})
