@@ -18,6 +18,7 @@ export default defineConfig({
       OGEE_READY_ROUNDS: process.env.OGEE_READY_ROUNDS ?? '20',
       OGEE_SPOOL_UNITS: process.env.OGEE_SPOOL_UNITS ?? '100000',
       OGEE_SPOOL_KILLS: process.env.OGEE_SPOOL_KILLS ?? '500',
+      OGEE_ROWS: process.env.OGEE_ROWS ?? '100000',
       OGEE_DELIVERIES: process.env.OGEE_DELIVERIES ?? '1000000',
       OGEE_TAMPERINGS: process.env.OGEE_TAMPERINGS ?? '10000',
     },
