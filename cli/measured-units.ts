@@ -1,7 +1,7 @@
 import type { Design } from '../shared/contract/design.ts'
 import { OgeeError } from '../shared/errors.ts'
 import { limits } from '../shared/limits.ts'
-import { unitErrorsOf } from '../shared/points/unit-errors.ts'
+import { measurementsOf, unitErrorsOf } from '../shared/points/unit-errors.ts'
 import { measuredUnits } from '../shared/solver/sizing/measured-units.ts'
 import type { MeasuredUnits, UnitError } from '../shared/solver/sizing/types.ts'
 import { loadArithmetic } from './arithmetic.ts'
@@ -18,7 +18,7 @@ export async function readMeasuredUnits(
   const errors: UnitError[] = []
   for (const path of paths) {
     const text = await readText(io, path, limits.benchCsvMaxBytes, () => tooLarge(path))
-    errors.push(...(await unitErrorsOf(text, path, design, range, loadArithmetic)))
+    errors.push(...unitErrorsOf(await measurementsOf(text, path, loadArithmetic), design, range))
   }
   return measuredUnits(errors)
 }

@@ -1,4 +1,4 @@
-import { type KeyboardEvent, memo, useState } from 'react'
+import { type KeyboardEvent, memo, type ReactNode, useState } from 'react'
 import { Button } from '../../ui/button.tsx'
 import { KeyHint } from '../../ui/key-hint.tsx'
 import { SelectCell, TextCell } from './cells.tsx'
@@ -12,16 +12,22 @@ const firstShown = 40
 const none: Partial<Record<LineField, string>> = {}
 
 /** "390 ppm / 321 ppm", of the last answer; null while there is none. */
-export type Sums = Readonly<Record<Which, string | null>>
+export type Sums = Readonly<Record<Which, string | null>> & {
+  /** How many measured units stand in the place of the initial lines; null for none. */
+  units: number | null
+}
 
 export const BudgetPart = memo(function BudgetPart({
   lines,
   said,
   sums,
+  children,
 }: {
   lines: FormDoc['lines']
   said: Said
   sums: Sums
+  /** Where else extents may come from. */
+  children?: ReactNode
 }) {
   const { isReadOnly } = useFormLinks()
   const side = isReadOnly ? null : (
@@ -41,8 +47,16 @@ export const BudgetPart = memo(function BudgetPart({
         <span className="px-1">when</span>
       </div>
       {both.map((which) => (
-        <Lines key={which} which={which} lines={lines[which]} said={said} sum={sums[which]} />
+        <Lines
+          key={which}
+          which={which}
+          lines={lines[which]}
+          said={said}
+          sum={sums[which]}
+          units={sums.units}
+        />
       ))}
+      {children}
     </Part>
   )
 })
@@ -52,11 +66,13 @@ function Lines({
   lines,
   said: { problems, remarks },
   sum,
+  units,
 }: {
   which: Which
   lines: readonly Line[]
   said: Said
   sum: string | null
+  units: number | null
 }) {
   const { store, isReadOnly } = useFormLinks()
   const [shown, setShown] = useState(firstShown)
@@ -81,7 +97,9 @@ function Lines({
         </Button>
       ) : null}
       <div className="flex min-h-6 flex-wrap items-center gap-x-3 text-small">
-        <span className={tones[which]}>{which}, worst case / RSS</span>
+        <span className={tones[which]}>
+          {units === null ? `${which}, worst case / RSS` : `${which}, ${units} units and drift`}
+        </span>
         <strong className="font-semibold">{sum}</strong>
         {isReadOnly ? null : (
           <span className="ml-auto flex gap-x-2">

@@ -1,15 +1,15 @@
-import { Suspense, useMemo } from 'react'
+import { Suspense, useMemo, useState } from 'react'
 import { limitInVolts } from '../../features/design/words.ts'
 import { AdjustersPart } from '../../features/design-form/adjusters-part.tsx'
 import { BudgetPart, type Sums } from '../../features/design-form/budget-part.tsx'
 import { ChannelPart, type RangeHint } from '../../features/design-form/channel-part.tsx'
-import type { Said } from '../../features/design-form/form-context.ts'
-import type { FormDoc } from '../../features/design-form/form-doc.ts'
 import { type Hints, MeasurementPart, SizingPart } from '../../features/design-form/plan-parts.tsx'
+import { Button } from '../../ui/button.tsx'
+import { Loading } from '../../ui/loading.tsx'
 import { engineering, significant } from '../../ui/number-format.ts'
 import { WhenNear } from '../../ui/when-near.tsx'
 import type { Answer } from './answer.ts'
-import { DocumentActs } from './on-demand.ts'
+import { DocumentActs, MeasuredUnits } from './on-demand.ts'
 import type { DesignPageState } from './use-design-page.ts'
 
 /** The form in the order of the signal path, in two columns where there is room for two and one where not. */
@@ -24,7 +24,11 @@ export function FormColumn({ page }: { page: DesignPageState }) {
         <AdjustersPart doc={doc} said={said} />
       </div>
       <div className="min-w-0 space-y-3.5">
-        <Rest doc={doc} said={said} hints={hints.plan} sums={hints.sums} />
+        <BudgetPart lines={doc.lines} said={said} sums={hints.sums}>
+          <Measured page={page} />
+        </BudgetPart>
+        <SizingPart said={said} hints={hints.plan} />
+        <MeasurementPart isRuled={(doc.values.rule ?? '') !== ''} said={said} hints={hints.plan} />
         <WhenNear name="document" minHeight={64}>
           <Suspense fallback={null}>
             <DocumentActs page={page} />
@@ -35,17 +39,24 @@ export function FormColumn({ page }: { page: DesignPageState }) {
   )
 }
 
-function Rest({ doc, said, hints, sums }: { doc: FormDoc; said: Said; hints: Hints; sums: Sums }) {
+/** What it takes to read and fit units loads with the wish for it. */
+function Measured({ page }: { page: DesignPageState }) {
+  const [isOpen, setOpen] = useState(false)
+  if (!isOpen) {
+    return (
+      <Button look="quiet" className="text-small print:hidden" onClick={() => setOpen(true)}>
+        take extents from measured units
+      </Button>
+    )
+  }
   return (
-    <>
-      <BudgetPart lines={doc.lines} said={said} sums={sums} />
-      <SizingPart said={said} hints={hints} />
-      <MeasurementPart isRuled={(doc.values.rule ?? '') !== ''} said={said} hints={hints} />
-    </>
+    <Suspense fallback={<Loading>Loading what reads points.</Loading>}>
+      <MeasuredUnits page={page} onClose={() => setOpen(false)} />
+    </Suspense>
   )
 }
 
-const noSums: Sums = { gain: null, offset: null }
+const noSums: Sums = { gain: null, offset: null, units: null }
 
 /** What was understood, of the last good answer. */
 function hintsOf(answer: Answer | null): {
@@ -80,6 +91,7 @@ function hintsOf(answer: Answer | null): {
       tolerance: design.decision ? inVolts(design.decision.tolerance) : null,
     },
     sums: {
+      units: size.extents.units,
       gain: `${significant(gain.worstCasePpm, 3)} ppm / ${significant(gain.rssPpm, 3)} ppm`,
       offset: `${engineering(offset.worstCaseV, 'V')} / ${engineering(offset.rssV, 'V')}`,
     },

@@ -6,7 +6,7 @@ import type { Said } from '../../features/design-form/form-context.ts'
 import { type FormDoc, rangeField } from '../../features/design-form/form-doc.ts'
 import type { FormStore } from '../../features/design-form/form-store.ts'
 import { readFields } from '../../features/design-form/read-form.ts'
-import { type Answer, answerOf } from './answer.ts'
+import { type Answer, answerOf, type Measured } from './answer.ts'
 
 /** What follows from the texts of the form for one range. */
 export type Answered = {
@@ -24,11 +24,13 @@ export type Answered = {
 }
 
 /** The form at one moment. Another result of arithmetic is another moment too. */
-export type View = { doc: FormDoc; before: FormDoc | null }
+export type View = { doc: FormDoc; before: FormDoc | null; measured: Measured | null }
 
 /** The answer beside React, so that who shows it hears of a key first and everything else later. */
 export type LiveAnswer = {
   view: () => View
+  /** Units in the place of the budget's initial lines; null takes them away. They are no part of the document. */
+  measure: (measured: Measured | null) => void
   answered: (view: View, range: string | null) => Answered
   subscribe: (hear: (isKey: boolean) => void) => () => void
 }
@@ -38,7 +40,7 @@ export function createLiveAnswer(store: FormStore): LiveAnswer {
   const tell = (isKey: boolean) => {
     for (const hear of hearers) hear(isKey)
   }
-  let view: View = { doc: store.get().doc, before: store.get().before }
+  let view: View = { doc: store.get().doc, before: store.get().before, measured: null }
   let memory = new WeakMap<View, Map<string | null, Answered>>()
   let last: { answer: Answer; at: Date } | null = null
   const arithmetic = createArithmetic(() => {
@@ -48,7 +50,7 @@ export function createLiveAnswer(store: FormStore): LiveAnswer {
   })
   store.subscribe((isKey) => {
     const { doc, before } = store.get()
-    view = { doc, before }
+    view = { ...view, doc, before }
     tell(isKey)
   })
 
@@ -57,7 +59,7 @@ export function createLiveAnswer(store: FormStore): LiveAnswer {
     const reading = readFields(doc, arithmetic())
     const { draft } = reading
     const range = draft?.ranges.find(({ id }) => id === wanted)?.id ?? draft?.ranges[0]?.id
-    const now = draft && range !== undefined ? answerOf(draft, range) : null
+    const now = draft && range !== undefined ? answerOf(draft, range, of.measured) : null
     const refusal = isOgeeError(now) ? now : null
     const good = now === null || isOgeeError(now) ? null : now
     if (good) last = { answer: good, at: new Date() }
@@ -79,6 +81,10 @@ export function createLiveAnswer(store: FormStore): LiveAnswer {
   }
   return {
     view: () => view,
+    measure: (measured) => {
+      view = { ...view, measured }
+      tell(false)
+    },
     answered: (of, wanted) => {
       const known = memory.get(of) ?? new Map<string | null, Answered>()
       memory.set(of, known)

@@ -4,4 +4,5 @@ import { lazy } from 'react'
 export const RevisionsPanel = lazy(() => import('./revisions-panel.tsx'))
 export const ConflictBar = lazy(() => import('./conflict-bar.tsx'))
 export const DocumentActs = lazy(() => import('./document-acts.tsx'))
+export const MeasuredUnits = lazy(() => import('./measured-units.tsx'))
 export const ReasonDialog = lazy(() => import('../../features/design/reason-dialog.tsx'))
