@@ -30,7 +30,7 @@ const environment = z.object({
   OGEE_KEY_FILE: z.string().min(1).optional(),
   OGEE_LEDGER_NAME: ledgerName.optional(),
   OGEE_DEMO: z.enum(['0', '1']).default('0'),
-  OGEE_SELF_RELEASE: z.enum(['0', '1']).default('0'),
+  OGEE_SELF_RELEASE: z.enum(['0', '1']).optional(),
   OGEE_DEV: z.enum(['0', '1']).default('0'),
 })
 
@@ -100,7 +100,8 @@ function configOf(env: z.output<typeof environment>): Config {
     keyFile: env.OGEE_KEY_FILE === undefined ? join(dataDir, 'ledger.key') : resolve(env.OGEE_KEY_FILE),
     ledgerName: env.OGEE_LEDGER_NAME ?? null,
     demo: env.OGEE_DEMO === '1',
-    selfRelease: env.OGEE_SELF_RELEASE === '1',
+    // The demo has one person for each role: whoever tries it releases what they wrote, and it is marked so.
+    selfRelease: (env.OGEE_SELF_RELEASE ?? env.OGEE_DEMO) === '1',
     dev: env.OGEE_DEV === '1',
     webRoot: join(projectRoot, 'dist/web'),
   }

@@ -5,7 +5,8 @@ import { openStage, type Stage } from './stage.ts'
 
 let stage: Stage
 beforeAll(async () => {
-  stage = await openStage()
+  // A site with more than one engineer; the demo by itself lets its only one release.
+  stage = await openStage({ OGEE_SELF_RELEASE: '0' })
 })
 afterAll(() => stage.close())
 

@@ -15,14 +15,15 @@ export type Stage = {
   close: () => Promise<void>
 }
 
-export async function openStage(): Promise<Stage> {
+/** @param env what the site sets, over the demo's own settings */
+export async function openStage(env: Readonly<Record<string, string>> = {}): Promise<Stage> {
   const database = await testDatabase()
   const dataDir = mkdtempSync(join(tmpdir(), 'ogee-e2e-'))
   const server = await startServer({
     databaseUrl: database.url,
     adminUrl: database.adminUrl,
     dataDir,
-    env: { OGEE_LOG: 'warn' },
+    env: { OGEE_LOG: 'warn', ...env },
   })
   const browser = await launchBrowser()
   return {

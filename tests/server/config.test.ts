@@ -14,6 +14,7 @@ describe('configuration', () => {
       adminUrl: null,
       ledgerName: null,
       demo: false,
+      selfRelease: false,
       dev: false,
       log: 'info',
       dataDir: expect.stringMatching(/\.data$/),
@@ -42,6 +43,14 @@ describe('configuration', () => {
     expect(() => readConfig(variables)).toThrow(
       expect.objectContaining({ code: 'configuration', exit: 78, message: expect.stringContaining(said) }),
     )
+  })
+
+  it('lets an author release where the site says so, and in the demo unless it says no', () => {
+    const of = (change: object) => readConfig({ DATABASE_URL: url, ...change }).selfRelease
+    expect(of({ OGEE_SELF_RELEASE: '1' })).toBe(true)
+    expect(of({ OGEE_DEMO: '1' })).toBe(true)
+    expect(of({ OGEE_DEMO: '1', OGEE_SELF_RELEASE: '0' })).toBe(false)
+    expect(of({ OGEE_DEMO: '0', OGEE_SELF_RELEASE: '' })).toBe(false)
   })
 
   it('takes an empty variable for an absent one', () => {

@@ -68,9 +68,16 @@ function ReviewActs({ page: { revision, person }, acts }: { page: DesignPageStat
           You wrote this revision, so someone else releases it.
         </span>
       ) : (
-        <Button look="primary" disabled={acts.isBusy} onClick={() => void acts.release(revision.etag)}>
-          {`Release revision ${revision.number}`}
-        </Button>
+        <>
+          {wrote ? (
+            <span className="max-w-72 text-body text-ink-2">
+              You wrote this revision. It will say: released by its author.
+            </span>
+          ) : null}
+          <Button look="primary" disabled={acts.isBusy} onClick={() => void acts.release(revision.etag)}>
+            {`Release revision ${revision.number}`}
+          </Button>
+        </>
       )}
       {isReturning ? (
         <Suspense fallback={null}>
