@@ -7,6 +7,7 @@ import { requireAccess } from '../policies/access.ts'
 import { requireSameSite } from './cross-site.ts'
 import { within } from './deadline.ts'
 import type { Deps } from './deps.ts'
+import { fileName } from './file-name.ts'
 import { jsonBody, ndjsonBody } from './json-body.ts'
 import { localsOf } from './locals.ts'
 import { nameAdministrators } from './name-administrators.ts'
@@ -43,6 +44,16 @@ export class ReadyJson {
   }
 }
 
+/** A reply that is a file: its bytes and the name to keep it under. */
+export class ReadyFile {
+  readonly bytes: Buffer
+  readonly name: string
+  constructor(bytes: Buffer, name: string) {
+    this.bytes = bytes
+    this.name = name
+  }
+}
+
 /** A reply of lines that are made while they are sent, some at a time. */
 export class ReadyLines {
   /** Some lines; or a block of bytes of whole lines, their line ends included. */
@@ -54,7 +65,7 @@ export class ReadyLines {
 
 export type Handler<E extends Endpoint> = (
   input: Input<E>,
-) => Promise<z.input<E['reply']['schema']> | ReadyJson | ReadyLines>
+) => Promise<z.input<E['reply']['schema']> | ReadyJson | ReadyLines | ReadyFile>
 
 /** Registers routes from their descriptions; there is no other way to register one. */
 export type Serve = <E extends Endpoint>(endpoint: E, handler: Handler<E>) => void
@@ -80,6 +91,7 @@ export function createServe(router: Router, deps: Deps, gates: Gates): Serve {
         const reply = await (takesPassword.has(endpoint.id) ? work : within(work))
         if (reply instanceof ReadyLines)
           await sendLines(response, endpoint, reply, deps.checkReplies ?? false)
+        else if (reply instanceof ReadyFile) sendFile(response, endpoint, reply)
         else send(response, endpoint, reply, deps.checkReplies ?? false)
       },
     )
@@ -188,6 +200,15 @@ async function sendLines(
     if (!response.write(block)) await drained(response)
   }
   response.end()
+}
+
+function sendFile(response: Response, { reply }: Endpoint, { bytes, name }: ReadyFile): void {
+  response.statusCode = reply.status
+  response.setHeader('Cache-Control', 'no-store')
+  response.setHeader('Content-Type', reply.mediaType ?? 'application/octet-stream')
+  response.setHeader('Content-Disposition', fileName(name))
+  response.setHeader('Content-Length', bytes.length)
+  response.end(bytes)
 }
 
 function drained(response: Response): Promise<void> {

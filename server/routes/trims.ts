@@ -1,8 +1,10 @@
-import { getTrim, listTrims, postTrim } from '../../shared/contract/trims.ts'
+import { getCertificate, getTrim, listTrims, postTrim } from '../../shared/contract/trims.ts'
 import { OgeeError } from '../../shared/errors.ts'
+import { renderCertificate } from '../certificate/render.ts'
+import { readCertificate } from '../commands/certificate/read-certificate.ts'
 import { listRecords } from '../commands/list-records.ts'
 import { readStored, recordJson } from '../commands/recording/read-stored.ts'
-import { ReadyJson, type Serve } from '../http/serve.ts'
+import { ReadyFile, ReadyJson, type Serve } from '../http/serve.ts'
 import { maySeeRecord } from '../policies/may-see.ts'
 import type { RouteDeps } from './route-deps.ts'
 
@@ -26,5 +28,12 @@ export function trimRoutes(serve: Serve, deps: RouteDeps): void {
         : undefined
     if (!stored) throw new OgeeError('not-found', 'There is no such record, or it is not open to you.')
     return new ReadyJson(recordJson(stored))
+  })
+
+  serve(getCertificate, async ({ params, principal }) => {
+    const facts = await readCertificate(database, params.id, principal)
+    const { unit, channel, number } = facts.subject
+    const name = `certificate ${unit} channel ${channel} record ${number}.pdf`
+    return new ReadyFile(await renderCertificate(facts, deps.now()), name)
   })
 }

@@ -22,7 +22,7 @@ import {
 import { deleteSession, getMe, getSetup, postSession, postSetup } from './session.ts'
 import { listStations, patchStation, postStation } from './stations.ts'
 import { deleteToken, listTokens, postToken } from './tokens.ts'
-import { getTrim, listTrims, postTrim } from './trims.ts'
+import { getCertificate, getTrim, listTrims, postTrim } from './trims.ts'
 import { findUnits } from './units.ts'
 
 /** Every operation that is served. The router, OpenAPI and the tests of access are made from this list. */
@@ -58,6 +58,7 @@ export const allEndpoints: readonly Endpoint[] = [
   postBatch,
   listTrims,
   getTrim,
+  getCertificate,
   listFindings,
   postFinding,
   postAnswer,

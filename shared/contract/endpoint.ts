@@ -38,7 +38,7 @@ export type Endpoint<
   reply: {
     status: 200 | 201 | 204
     schema: Reply
-    mediaType?: 'application/json' | 'text/plain' | 'text/csv'
+    mediaType?: 'application/json' | 'text/plain' | 'text/csv' | 'application/pdf'
   }
   /** Refusals of its own, beside those that every route can give. */
   refusals: readonly ErrorCode[]

@@ -73,3 +73,15 @@ export const getTrim = endpoint({
   reply: { status: 200, schema: record },
   refusals: ['not-found'],
 })
+
+/** Of the unit, channel and range as of this record: for paper, with the proofs inside. */
+export const getCertificate = endpoint({
+  id: 'readCertificate',
+  method: 'GET',
+  path: '/trims/:id/certificate',
+  summary: 'Certificate of the unit as of this record, as PDF with its proofs attached',
+  access: { roles: everyRole, scopes: ['trims:read', 'trims:read-all'] },
+  params: z.strictObject({ id: recordId }),
+  reply: { status: 200, schema: z.string(), mediaType: 'application/pdf' },
+  refusals: ['not-found', 'not-in-ledger-yet'],
+})
