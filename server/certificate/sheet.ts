@@ -44,6 +44,7 @@ export class Sheet {
   /** Where the next part begins. */
   y: number = page.top
   readonly #glyphs = new Map<string, Glyphs>()
+  readonly #widths = new Map<string, number>()
 
   constructor(info: { title: string; at: Date }) {
     this.doc = new PDFDocument({
@@ -85,12 +86,18 @@ export class Sheet {
   lines(text: string, width: number, style: Style = {}): string[] {
     const lines: string[] = []
     let line = ''
+    let taken = 0
     for (const word of text.split(/(?<= )|(?<=\S{24})/)) {
-      if (line !== '' && this.width((line + word).trimEnd(), style) > width) {
+      // Word by word: measuring the growing line again and again would be most of the work of a certificate.
+      const wide = this.width(word, style)
+      const seen = word.endsWith(' ') ? this.width(word.trimEnd(), style) : wide
+      if (line !== '' && taken + seen > width) {
         lines.push(line.trimEnd())
         line = ''
+        taken = 0
       }
       line += word
+      taken += wide
     }
     return [...lines, line.trimEnd()]
   }
@@ -120,7 +127,12 @@ export class Sheet {
   #runWidth({ font, text, isGap }: Run, { size = 9 }: Style): number {
     if (isGap) return thinEm * size
     this.doc.font(font).fontSize(size)
-    return this.doc.widthOfString(text, figures)
+    const key = `${font} ${size} ${text}`
+    const known = this.#widths.get(key)
+    if (known !== undefined) return known
+    const wide = this.doc.widthOfString(text, figures)
+    this.#widths.set(key, wide)
+    return wide
   }
 
   /** Which part of the face sets which characters; what none has is told by its code point and not left out. */

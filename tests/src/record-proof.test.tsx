@@ -1,5 +1,5 @@
 import { screen, waitFor, within } from '@testing-library/react'
-import { beforeEach, expect, test } from 'vitest'
+import { beforeEach, expect, test, vi } from 'vitest'
 import { sha256 } from '../../server/ledger/crypto.ts'
 import { canonicalBytes } from '../../shared/ledger/canonical.ts'
 import { signCheckpoint, verifierKey } from '../../shared/ledger/checkpoint.ts'
@@ -186,4 +186,29 @@ test('codes over time are drawn from the trims of the same place, and stand in a
     within(plot).getByRole('radio', { name: 'table' }).closest('label') ?? within(plot).getByText('table'),
   )
   expect(await within(plot).findByRole('row', { name: /2026-11-25 14:00 .* 2587 2048/ })).toBeVisible()
+})
+
+test('the certificate comes as a file by its name; a refusal is said', async () => {
+  const record = fixtures.record(1)
+  const made: { name: string }[] = []
+  vi.stubGlobal(
+    'URL',
+    Object.assign(URL, { createObjectURL: () => 'blob:x', revokeObjectURL: () => undefined }),
+  )
+  vi.spyOn(HTMLAnchorElement.prototype, 'click').mockImplementation(function (this: HTMLAnchorElement) {
+    made.push({ name: this.download })
+  })
+  const server = serverWith(record)
+  server.on('GET /trims/:id/certificate', () => refusal('not-in-ledger-yet', 'One follows within a second.'))
+  const { user } = show(record, server)
+  await user.click(await screen.findByRole('button', { name: 'Certificate, PDF' }))
+  await screen.findByText('One follows within a second.')
+  expect(made).toEqual([])
+  server.on('GET /trims/:id/certificate', () => new Response('%PDF-'))
+  await user.click(screen.getByRole('button', { name: 'Certificate, PDF' }))
+  await waitFor(() =>
+    expect(made.map(({ name }) => name)).toEqual([
+      `certificate ${record.unit} channel ${record.channel} record ${record.number}.pdf`,
+    ]),
+  )
 })

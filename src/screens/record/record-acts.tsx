@@ -1,6 +1,7 @@
 import { lazy, Suspense, useState } from 'react'
 import type { Record as TrimRecord } from '../../../shared/contract/record.ts'
 import { AmendDialog } from '../../features/record/amend-dialog.tsx'
+import { CertificateButton } from '../../features/record/certificate-button.tsx'
 import { usePerson } from '../../features/session/use-person.ts'
 import { paths } from '../../lib/paths.ts'
 import { Button, LinkButton } from '../../ui/button.tsx'
@@ -40,6 +41,9 @@ export function RecordActs({ record }: { record: TrimRecord }) {
         </Button>
       ) : null}
       {role === 'auditor' ? <Button onClick={() => setOpen('find')}>Write a finding</Button> : null}
+      {record.ledger ? (
+        <CertificateButton record={record} look={role === 'auditor' ? 'primary' : 'plain'} />
+      ) : null}
       {open === 'find' ? (
         <Suspense fallback={null}>
           <RecordFind record={record} onClose={() => setOpen(null)} />
