@@ -73,7 +73,7 @@ describe('a lot', () => {
     const repaired = await fileOf(repair)
     expect(repaired.split('\r\n')[0]).toBe('unit,channel,range,code,readings,x_problem')
     await page.getByText('1 unit out of reach').first().waitFor()
-    await page.getByText('Gain wants').first().waitFor()
+    await page.getByRole('cell', { name: /^Gain wants/ }).first().waitFor()
 
     // The same rows with the readings of the whole file again: what was recorded is recognised, nothing doubled.
     const whole = csv.replace(/^(S000003,4,.*),$/m, '$1,9.9979342')
@@ -104,8 +104,8 @@ describe('a lot', () => {
     await stage.signIn(page, 'operator')
     await unitsInView(page)
     await page.getByText('96 channels').waitFor()
-    await page.getByText('Stations compared').waitFor()
-    const place = () => page.getByText('Individuals chart').boundingBox()
+    await page.getByRole('heading', { name: 'Stations compared' }).waitFor()
+    const place = () => page.getByRole('heading', { name: 'Individuals chart' }).boundingBox()
     const before = await place()
     const body = {
       design: 'DBS-A',
@@ -142,7 +142,7 @@ describe('a lot', () => {
     await page.getByRole('heading', { level: 1, name: 'Lots' }).waitFor()
     expect(await page.getByRole('button', { name: 'Open a lot' }).count()).toBe(0)
     await page.goto(`${stage.server.url}/lots/DBS-A/L028`)
-    await page.getByText('Individuals chart').waitFor()
+    await page.getByRole('heading', { name: 'Individuals chart' }).waitFor()
     expect(await page.getByRole('button', { name: 'Sign off lot' }).count()).toBe(0)
     await page.getByRole('main').focus()
     await page.keyboard.press('j')
