@@ -11,6 +11,7 @@ const benches: Record<string, () => Promise<readonly BenchRow[]>> = {
   batches: async () => (await import('./batches.ts')).benchBatches(),
   ledger: async () => (await import('./ledger.ts')).benchLedger(),
   keystroke: async () => (await import('./keystroke.ts')).benchKeystroke(),
+  'lot-scroll': async () => (await import('./lot-scroll.ts')).benchLotScroll(),
   'first-load': async () => (await import('./first-load.ts')).benchFirstLoad(),
 }
 

@@ -73,7 +73,10 @@ describe('a lot', () => {
     const repaired = await fileOf(repair)
     expect(repaired.split('\r\n')[0]).toBe('unit,channel,range,code,readings,x_problem')
     await page.getByText('1 unit out of reach').first().waitFor()
-    await page.getByRole('cell', { name: /^Gain wants/ }).first().waitFor()
+    await page
+      .getByRole('cell', { name: /^Gain wants/ })
+      .first()
+      .waitFor()
 
     // The same rows with the readings of the whole file again: what was recorded is recognised, nothing doubled.
     const whole = csv.replace(/^(S000003,4,.*),$/m, '$1,9.9979342')

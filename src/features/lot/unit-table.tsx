@@ -84,9 +84,13 @@ function Window({ rows, hasRanges, onReference }: WindowProps) {
       aria-label="Units of the lot, scrolls"
       // biome-ignore lint/a11y/noNoninteractiveTabindex: what scrolls must be reached by keyboard (WCAG 2.1.1)
       tabIndex={0}
-      className="relative max-h-[420px] overflow-auto print:max-h-none print:overflow-visible"
+      className="relative max-h-[420px] overflow-auto [contain:content] print:max-h-none print:overflow-visible print:[contain:none]"
     >
-      <table className="w-full border-collapse text-body" aria-rowcount={rows.length + 1}>
+      {/* Fixed columns: widths that follow the rows in view would jump while scrolling. */}
+      <table
+        className="w-full min-w-[56rem] table-fixed border-collapse text-body"
+        aria-rowcount={rows.length + 1}
+      >
         <caption className="sr-only">Every channel of every unit: standing, errors, codes</caption>
         <Head hasRanges={hasRanges} hasActs={onReference !== undefined} />
         <tbody>
@@ -116,34 +120,39 @@ function Spacer({ px }: { px: number }) {
   ) : null
 }
 
+const heads = [
+  { name: 'unit', width: 'w-[15%]' },
+  { name: 'ch.', width: 'w-[5%]', right: true },
+  { name: 'range', width: 'w-[8%]' },
+  { name: 'standing', width: 'w-[16%]' },
+  { name: 'pass', width: 'w-[5%]', right: true },
+  { name: 'gain error', unit: 'ppm', width: 'w-[9%] text-copper', right: true },
+  { name: 'offset error', unit: 'µV', width: 'w-[9%] text-tide', right: true },
+  { name: 'gain', unit: 'code', width: 'w-[7%]', right: true },
+  { name: 'offset', unit: 'code', width: 'w-[7%]', right: true },
+  { name: 'as left', unit: 'LSB', width: 'w-[7%]', right: true },
+  { name: 'station', width: 'w-[10%]' },
+  { name: 'read', unit: 'UTC', width: 'w-[10%]' },
+] as const
+
 function Head({ hasRanges, hasActs }: { hasRanges: boolean; hasActs: boolean }) {
   return (
     <thead className="sticky top-0 bg-paper print:static">
       <tr>
-        <Th>unit</Th>
-        <Th align="right">ch.</Th>
-        {hasRanges ? <Th>range</Th> : null}
-        <Th>standing</Th>
-        <Th align="right">pass</Th>
-        <Th align="right" unit="ppm" className="text-copper">
-          gain error
-        </Th>
-        <Th align="right" unit="µV" className="text-tide">
-          offset error
-        </Th>
-        <Th align="right" unit="code">
-          gain
-        </Th>
-        <Th align="right" unit="code">
-          offset
-        </Th>
-        <Th align="right" unit="LSB">
-          as left
-        </Th>
-        <Th>station</Th>
-        <Th unit="UTC">read</Th>
+        {heads
+          .filter(({ name }) => hasRanges || name !== 'range')
+          .map(({ name, width, ...more }) => (
+            <Th
+              key={name + width}
+              className={width}
+              align={'right' in more ? 'right' : 'left'}
+              unit={'unit' in more ? more.unit : undefined}
+            >
+              {name}
+            </Th>
+          ))}
         {hasActs ? (
-          <Th>
+          <Th className="w-[11%]">
             <span className="sr-only">reference</span>
           </Th>
         ) : null}
@@ -160,7 +169,7 @@ const UnitRow = memo(function UnitRow({ row: { unit, place }, index, hasRanges, 
   const record = codes?.record ?? found?.record ?? left?.record
   return (
     <tr aria-rowindex={index + 2} className="h-[25px] hover:bg-shade">
-      <Td className="max-w-56 truncate">
+      <Td className="truncate">
         {record ? (
           <LinkButton className="min-h-6" to={paths.record(record)}>
             {unit.unit}
@@ -184,7 +193,7 @@ const UnitRow = memo(function UnitRow({ row: { unit, place }, index, hasRanges, 
       <Td align="right">{codes?.gain ?? <None />}</Td>
       <Td align="right">{codes?.offset ?? <None />}</Td>
       <Td align="right">{number(left === null ? null : Math.abs(left.worstLsb), 2, 1, 'auto')}</Td>
-      <Td className="whitespace-nowrap">{found?.station ?? left?.station ?? ''}</Td>
+      <Td className="truncate">{found?.station ?? left?.station ?? ''}</Td>
       <Td className="whitespace-nowrap text-ink-2">{utcText(found?.at ?? left?.at ?? '').slice(5, 16)}</Td>
       {onReference ? (
         <Td align="right" className="print:hidden">
