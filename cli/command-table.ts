@@ -187,6 +187,11 @@ export const commandTable: readonly Entry[] = [
         summary: 'Whether an older checkpoint still stands',
         load: async () => (await import('./commands/ledger/consistency.ts')).ledgerConsistencyCommand,
       },
+      {
+        name: 'export',
+        summary: 'Records with all that checking them needs, in one folder',
+        load: async () => (await import('./commands/ledger/export.ts')).ledgerExportCommand,
+      },
     ],
   },
   {

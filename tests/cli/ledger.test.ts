@@ -1,4 +1,5 @@
-import { mkdtempSync, readFileSync, writeFileSync } from 'node:fs'
+import { spawn } from 'node:child_process'
+import { mkdtempSync, readdirSync, readFileSync, writeFileSync } from 'node:fs'
 import { tmpdir } from 'node:os'
 import { join } from 'node:path'
 import type { Connection } from 'mariadb'
@@ -10,7 +11,7 @@ import { post } from '../support/server-client.ts'
 import { trimBody } from '../support/server-factories.ts'
 import { addToken } from '../support/server-harness.ts'
 import { type Scene, serverScene } from '../support/server-scene.ts'
-import { builtCli, problemOf, type RunOptions } from './support/built-cli.ts'
+import { builtCli, ended, problemOf, type RunOptions } from './support/built-cli.ts'
 
 const cli = builtCli()
 let scene: Scene
@@ -160,5 +161,93 @@ describe('ledger check', () => {
     }
     expect(await asking(['trims:read-all'])).toBe(77)
     expect(await asking(['ledger:read'], ['U18'])).toBe(77)
+  })
+})
+
+describe('ledger export', () => {
+  const offline = (folder: string, ...more: string[]) =>
+    ended(
+      spawn(process.execPath, ['ogee.mjs', 'ledger', 'check', '.', '--key', 'ogee.pub', ...more], {
+        cwd: folder,
+        env: { OGEE_URL: 'http://ledger.invalid' },
+      }),
+    )
+  let all = ''
+
+  beforeAll(async () => {
+    all = (await addToken(scene.harness, ['ledger:read', 'trims:read-all', 'designs:read'])).token
+  })
+  const exported = (folderName: string, ...filters: string[]) =>
+    run(['export', folderName, '--key', 'ogee.pub', ...filters], { env: { OGEE_TOKEN: all } })
+
+  test('makes a folder that checks without a server, by the program that lies in it', async () => {
+    const ran = await exported('out')
+    expect({ code: ran.code, stderr: ran.stderr }).toEqual({ code: 0, stderr: '' })
+    expect(asJson(ran)).toMatchObject({ ok: true, records: 5, revisions: 1 })
+    const out = join(folder, 'out')
+    const names =
+      'README.txt checkpoints.txt designs keys.json ogee.mjs ogee.pub proofs.ndjson records.ndjson'
+    expect(readdirSync(out).sort().join(' ')).toBe(names)
+    const checked = await offline(out)
+    expect({ code: checked.code, stderr: checked.stderr }).toEqual({ code: 0, stderr: '' })
+    expect(asJson(checked)).toMatchObject({
+      format: 'ogee.export-check/1',
+      ok: true,
+      records: 5,
+      revisions: 1,
+    })
+    // The commands of its own README work as they stand.
+    const lines = readFileSync(join(out, 'README.txt'), 'utf8')
+      .split('\n')
+      .filter((line) => /^(All|One)/.test(line))
+    expect(lines).toHaveLength(2)
+    for (const line of lines) {
+      const command = line.replace(/^[^:]+: +/, '')
+      const shell = spawn('bash', ['-c', command], { cwd: out, env: { PATH: process.env.PATH } })
+      expect((await ended(shell)).code, command).toBe(0)
+    }
+  })
+
+  test('takes the filters of history', async () => {
+    expect(asJson(await exported('one', '--unit', 'L-2'))).toMatchObject({ records: 1 })
+    const [line] = readFileSync(join(folder, 'one/records.ndjson'), 'utf8').split('\n')
+    expect(JSON.parse(line!)).toMatchObject({ id: records[2]!.id, unit: 'L-2' })
+  })
+
+  test('what is changed in the folder later is found, with 16', async () => {
+    const out = join(folder, 'one')
+    const tampered = async (name: string, change: (text: string) => string, words: string) => {
+      const path = join(out, name)
+      const text = readFileSync(path, 'utf8')
+      writeFileSync(path, change(text))
+      const ran = await offline(out)
+      expect({ name, code: ran.code }).toEqual({ name, code: 16 })
+      expect(asJson(ran).first).toContain(words)
+      writeFileSync(path, text)
+      expect((await offline(out)).code).toBe(0)
+    }
+    await tampered(
+      'records.ndjson',
+      (text) => text.replace('"L-2"', '"L-3"'),
+      'another record there than its proof',
+    )
+    await tampered('records.ndjson', (text) => `${text}${text}`, 'more lines')
+    await tampered('records.ndjson', () => '', 'another record there than its proof')
+    await tampered(
+      'proofs.ndjson',
+      (text) => text.replace('"index":', '"index":1'),
+      'does not lead to the signed root',
+    )
+    await tampered('designs/U18-1.json', (text) => `${text} `, 'is not what was released')
+    await tampered(
+      'checkpoints.txt',
+      (text) => text.replace(/\n(\d)\n/, '\n9$1\n'),
+      'not signed by the ledger',
+    )
+  })
+
+  test('writes into no folder that holds anything', async () => {
+    const ran = await exported('out')
+    expect({ code: ran.code, stdout: ran.stdout }).toEqual({ code: 73, stdout: '' })
   })
 })

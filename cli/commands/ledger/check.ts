@@ -1,3 +1,4 @@
+import { join } from 'node:path'
 import { proofFailsExit } from '../../../shared/contract/exit.ts'
 import { checkLedger, type LedgerReport } from '../../../shared/ledger/check/check-ledger.ts'
 import type { LedgerFault } from '../../../shared/ledger/check/faults.ts'
@@ -5,15 +6,19 @@ import { serverSource } from '../../../shared/ledger/check/server-source.ts'
 import { type Command, type Context, everyFormat } from '../../command.ts'
 import type { ConnectionOptions } from '../../config.ts'
 import type { Io } from '../../io.ts'
+import { checkFolder } from '../../ledger/check-folder.ts'
 import { crypto } from '../../ledger/crypto.ts'
+import { names } from '../../ledger/export-folder.ts'
 import { readKept } from '../../ledger/kept-notes.ts'
 import { keyFor, keyOption } from '../../ledger/key-options.ts'
+import { readKey } from '../../ledger/read-files.ts'
 import { verifyAll } from '../../ledger/verify-all.ts'
 import { print, type Rendering } from '../../output.ts'
 import { connect, readConnection, serverAbout, serverOptions, text } from '../../server-options.ts'
 import { pairs } from '../../table.ts'
 
 type Options = ConnectionOptions & {
+  folder: string | undefined
   key: string | undefined
   against: readonly string[]
   receipts: boolean
@@ -24,7 +29,9 @@ export const ledgerCheckCommand: Command<Options> = {
     'Reads everything and computes it again: leaves, tree, checkpoints, records, receipts, revisions. Ends with 16 and\n' +
     'names the first entry that disagrees. Give the key and a checkpoint that were kept elsewhere: what was rewritten\n' +
     'together with its checkpoints contradicts only those. Needs the scope ledger:read.\n\n' +
+    'With a folder, checks what `ogee ledger export` wrote into it, without any server.\n\n' +
     serverAbout,
+  arguments: [{ name: '[folder]', says: 'exported folder to check in place of the server' }],
   options: [
     {
       flags: '--against <file...>',
@@ -44,6 +51,7 @@ export const ledgerCheckCommand: Command<Options> = {
   ],
   read: (given) => ({
     ...readConnection(given),
+    folder: given.args[0],
     key: text(given.options.key),
     against: Array.isArray(given.options.against) ? given.options.against : [],
     receipts: given.options.receipts !== false,
@@ -52,6 +60,7 @@ export const ledgerCheckCommand: Command<Options> = {
 }
 
 async function check(options: Options, context: Context): Promise<number> {
+  if (options.folder !== undefined) return await checkExported(options.folder, options.key, context)
   const client = await connect(options, context)
   const key = await keyFor(options.key, client)
   const kept = (await Promise.all(options.against.map((path) => readKept(context.io, path)))).flat()
@@ -65,6 +74,28 @@ async function check(options: Options, context: Context): Promise<number> {
   })
   await print(rendering(report, key.name), context)
   return report.ok ? 0 : proofFailsExit
+}
+
+async function checkExported(folder: string, key: string | undefined, context: Context): Promise<number> {
+  const report = await checkFolder(context.io, folder, await readKey(key ?? join(folder, names.key)))
+  const { ok, records, revisions, checkpoints, found, faults } = report
+  const facts: [string, string][] = [
+    ['Records', `${records}, under ${revisions} revisions`],
+    ['Checkpoints', String(checkpoints)],
+  ]
+  const bad = faults.slice(0, shown).map((fault) => `  ${fault}\n`)
+  await print(
+    {
+      json: { format: 'ogee.export-check/1', first: faults[0] ?? null, ...report },
+      table: () =>
+        ok
+          ? `✓ checks: everything agrees\n${pairs(facts)}`
+          : `✕ does not check, ${found} in all:\n${bad.join('')}${pairs(facts)}`,
+      csv: { heads: ['message'], rows: faults.map((fault) => [fault]) },
+    },
+    context,
+  )
+  return ok ? 0 : proofFailsExit
 }
 
 /** A line a second, on a terminal only. */
