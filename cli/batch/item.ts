@@ -17,7 +17,7 @@ export type Item = {
   channel: string | null
   range: string | null
   /** What is to be sent; null when nothing is. */
-  send: { body: RequestBody; text: string } | null
+  send: { body: RequestBody; key: string; text: string } | null
   outcome: Outcome | null
 }
 
@@ -27,10 +27,11 @@ export type Place = Pick<Item, 'line'> & { unit?: unknown; channel?: unknown; ra
 export async function itemOf(place: Place, make: () => RequestBody, key?: string): Promise<Item> {
   try {
     const body = make()
-    const text = JSON.stringify({ key: key ?? (await defaultKey(body)), ...body })
+    const own = key ?? (await defaultKey(body))
+    const text = JSON.stringify({ key: own, ...body })
     if (Buffer.byteLength(text) > limits.bodyMaxBytes)
       throw new OgeeError('body-too-large', 'The measurement is over 1 MiB as JSON.')
-    return { ...named(place), send: { body, text }, outcome: null }
+    return { ...named(place), send: { body, key: own, text }, outcome: null }
   } catch (error) {
     if (!(error instanceof OgeeError)) throw error
     return { ...named(place), send: null, outcome: refused(atLine(error, place.line)) }

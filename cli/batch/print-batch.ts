@@ -96,7 +96,10 @@ function csvRow({ line, unit, channel, range, outcome }: Finished): Cell[] {
     ...resultCells(record),
     exit,
     record.id,
-    record.notices.map(({ message }) => message).join(' ') || null,
+    [
+      ...('spooled' in record ? [`Not yet sent: ${record.spooled}`] : []),
+      ...record.notices.map(({ message }) => message),
+    ].join(' ') || null,
   ]
 }
 
@@ -113,7 +116,8 @@ function tableRow({ line, unit, channel, range, outcome }: Finished, colour: boo
   const { record } = outcome
   const cells = resultCells(record)
   const worst = cells[6]
-  const also = record.notices.map(({ code }) => code.replaceAll('-', ' ')).join(', ')
+  const said = record.notices.map(({ code }) => code.replaceAll('-', ' '))
+  const also = ['spooled' in record ? 'not yet sent' : [], said].flat().join(', ')
   const verdict = record.verdict === null ? '' : verdictText(record.verdict, colour)
   return [
     line,

@@ -5,7 +5,7 @@ import type { Client } from '../client.ts'
 import type { Block } from './blocks.ts'
 import type { Outcome, Problem } from './item.ts'
 
-const tries = 8
+const usualTries = 8
 const firstWaitMs = 250
 const longestWaitMs = 5_000
 
@@ -13,7 +13,11 @@ const longestWaitMs = 5_000
  * Sends a block and gives every row of it an outcome; lines that the server could not see to just now are sent again.
  * @throws the trouble that would not go away; rows without an outcome are then not known to be recorded
  */
-export async function sendBlock(client: Pick<Client, 'sendBlock'>, block: Block): Promise<void> {
+export async function sendBlock(
+  client: Pick<Client, 'sendBlock'>,
+  block: Block,
+  tries = usualTries,
+): Promise<void> {
   for (let attempt = 1; ; attempt += 1) {
     const open = block.rows.filter(({ outcome }) => outcome === null)
     if (open.length === 0) return

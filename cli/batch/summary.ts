@@ -10,6 +10,8 @@ export type Summary = {
   notGood: number
   /** Of those with an answer: recorded before, by an earlier run. */
   replayed: number
+  /** Of those with an answer: put down in the spool, not yet sent. */
+  spooled: number
   /** By verdict, and by the code of a refusal. */
   outcomes: Record<string, number>
   /** Sent, and not known to be recorded. */
@@ -18,7 +20,15 @@ export type Summary = {
 
 /** Counts items as they are printed. */
 export class Tally {
-  readonly summary: Summary = { lines: 0, good: 0, notGood: 0, replayed: 0, outcomes: {}, notDone: 0 }
+  readonly summary: Summary = {
+    lines: 0,
+    good: 0,
+    notGood: 0,
+    replayed: 0,
+    spooled: 0,
+    outcomes: {},
+    notDone: 0,
+  }
   /** Line of the first measurement that is not known to be recorded. */
   firstNotDone: number | null = null
   lastLine = 0
@@ -48,6 +58,7 @@ export class Tally {
     if (!('record' in outcome)) return
     const { result, notices } = outcome.record
     if (notices.some(({ code }) => code === 'replayed')) summary.replayed += 1
+    if ('spooled' in outcome.record) summary.spooled += 1
     this.hasCodes ||= result?.format === 'ogee.codes/1' && result.trim.codes !== null
   }
 
@@ -58,10 +69,12 @@ export class Tally {
 }
 
 /** `1 004 units: 990 ok, 12 out of reach, 2 csv cell; 4 of them recorded before.` */
-export function summaryText({ lines, outcomes, replayed }: Summary): string {
+export function summaryText({ lines, outcomes, replayed, spooled }: Summary): string {
   const parts = Object.entries(outcomes)
     .sort(([, a], [, b]) => b - a)
     .map(([name, n]) => `${grouped(n)} ${name.replaceAll('-', ' ')}`)
   const before = replayed === 0 ? '' : `; ${grouped(replayed)} recorded before`
-  return `${grouped(lines)} ${lines === 1 ? 'unit' : 'units'}${parts.length > 0 ? `: ${parts.join(', ')}` : ''}${before}.`
+  const kept = spooled === 0 ? '' : `; ${grouped(spooled)} in the spool, not yet sent`
+  const counts = parts.length > 0 ? `: ${parts.join(', ')}` : ''
+  return `${grouped(lines)} ${lines === 1 ? 'unit' : 'units'}${counts}${before}${kept}.`
 }

@@ -12,6 +12,7 @@ import type { ConnectionOptions } from '../config.ts'
 import { designOfLot } from '../design-of-lot.ts'
 import { sayCaution } from '../output.ts'
 import { celsius } from '../quantities.ts'
+import { spoolerOf } from '../record-one.ts'
 import { rememberingClient } from '../remembering-client.ts'
 import {
   connect,
@@ -45,7 +46,7 @@ export const batchCommand: Command<Options> = {
   arguments: [{ name: '<file>', says: 'points CSV or NDJSON, or - for standard input' }],
   options: [
     // A key is of one measurement: those of a batch stand in its key column. Its file is still there after an outage.
-    ...unitOptions.filter(({ flags }) => !/^--(key|spool) /.test(flags)),
+    ...unitOptions.filter(({ flags }) => !flags.startsWith('--key ')),
     {
       flags: '--kind <kind>',
       says: 'as found, or measured with the codes loaded (default: trim)',
@@ -94,7 +95,8 @@ function readBatch(given: Given): Options {
 async function batch(options: Options, context: Context): Promise<number> {
   const { io } = context
   const temperatureC = options.temperature === undefined ? undefined : await celsius(options.temperature)
-  const client = await connect(options, context)
+  const spooler = await spoolerOf(options, context)
+  const client = spooler?.client ?? (await connect(options, context))
   const design = options.design ?? (await designOfLot(client, options.lot ?? ''))
   const asking = rememberingClient(client)
   const printer = new BatchPrinter(context)
@@ -110,7 +112,11 @@ async function batch(options: Options, context: Context): Promise<number> {
   }
   let leftOff = false
   try {
-    const send = (block: Block) => (options.dryRun ? dryBlock(asking, block) : sendBlock(client, block))
+    const send = async (block: Block) => {
+      if (options.dryRun) await dryBlock(asking, block)
+      else if (spooler) await (await import('../spool/spool-block.ts')).spoolBlock(spooler, block)
+      else await sendBlock(client, block)
+    }
     leftOff = !(await runBlocks(blocks, { width: options.jobs, send, print }))
   } catch (error) {
     await write(printer.head() + printer.foot(tally.summary))

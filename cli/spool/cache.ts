@@ -30,27 +30,36 @@ export function answerCache(io: Pick<Io, 'env' | 'now'>, url: string): AnswerCac
       .slice(0, 32)
     return join(folder, `${endpoint.id}-${name}.json`)
   }
+  /** What this process has read or written: a batch asks the same for each unit. */
+  const known = new Map<string, { reply: unknown; atMs: number }>()
   return {
     keeps: (endpoint) => kept.includes(endpoint.id),
     read: (endpoint, input) => {
       const file = fileOf(endpoint, input)
       try {
-        const stored = JSON.parse(fs.readFileSync(file, 'utf8')) as { reply: unknown }
-        const checked = endpoint.reply.schema.safeParse(stored.reply)
-        if (!checked.success) return null
-        const ageMs = io.now() - fs.statSync(file).mtimeMs
-        return { reply: stored.reply as ReplyOf<typeof endpoint>, ageMs }
+        const found = known.get(file) ?? readFile(endpoint, file)
+        if (found === null) return null
+        known.set(file, found)
+        return { reply: found.reply as ReplyOf<typeof endpoint>, ageMs: io.now() - found.atMs }
       } catch {
         return null
       }
     },
     write: (endpoint, input, reply) => {
+      const file = fileOf(endpoint, input)
+      known.set(file, { reply, atMs: io.now() })
       try {
         makeFolder(folder)
-        putDown(fileOf(endpoint, input), JSON.stringify({ reply }), folder)
+        putDown(file, JSON.stringify({ reply }), folder)
       } catch {
         // Recording goes on; without the server this answer will be missing, and that is said then.
       }
     },
   }
+}
+
+function readFile(endpoint: Endpoint, file: string): { reply: unknown; atMs: number } | null {
+  const { reply } = JSON.parse(fs.readFileSync(file, 'utf8')) as { reply: unknown }
+  const isGood = endpoint.reply.schema.safeParse(reply).success
+  return isGood ? { reply, atMs: fs.statSync(file).mtimeMs } : null
 }

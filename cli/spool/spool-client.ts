@@ -1,7 +1,7 @@
 import type { Endpoint, InputOf, ReplyOf } from '../../shared/contract/endpoint.ts'
 import { findUnits } from '../../shared/contract/units.ts'
 import { errorTable, isOgeeError, OgeeError } from '../../shared/errors.ts'
-import { makeClient, type Patience } from '../client.ts'
+import { type Client, makeClient, type Patience } from '../client.ts'
 import type { Connection } from '../config.ts'
 import type { Io } from '../io.ts'
 import { type AnswerCache, answerCache } from './cache.ts'
@@ -15,6 +15,7 @@ export type SpoolClient = {
   cache: AnswerCache
   /** To the server; what it keeps is remembered, and given from memory while the server is away. */
   call: Call
+  sendBlock: Client['sendBlock']
   /** From memory alone. */
   offline: { call: Call }
 }
@@ -48,6 +49,7 @@ export function spoolClient(connection: Connection, io: Io, patience = spoolPati
         return remembered(endpoint, input)
       }
     },
+    sendBlock: client.sendBlock,
     offline: {
       call: async <E extends Endpoint>(endpoint: E, input: InputOf<E>) => {
         // What the unit has cannot be asked: nothing said counts as neutral, and the server checks that later.

@@ -34,6 +34,7 @@ export class Spooler {
   readonly #io: Io
   /** Once the server was away, a long-lived process asks it again only now and then. */
   #awayUntil = 0
+  #turn: Promise<unknown> = Promise.resolve()
 
   constructor(client: SpoolClient, spool: Spool, io: Io) {
     this.client = client
@@ -61,6 +62,13 @@ export class Spooler {
 
   /** True when everything older was sent and the server was not away a moment ago: then order is kept. */
   async mayGoAhead(): Promise<boolean> {
+    // One at a time: blocks of a batch ask side by side.
+    const turn = this.#turn.then(() => this.#sendOlder())
+    this.#turn = turn.catch(() => undefined)
+    return await turn
+  }
+
+  async #sendOlder(): Promise<boolean> {
     if (performance.now() < this.#awayUntil) return false
     if (this.spool.names('pending').length === 0) return true
     const until = performance.now() + backlogMs

@@ -333,3 +333,43 @@ describe('spool send', () => {
     expect(await recordsOf('T-30')).toHaveLength(1)
   })
 })
+
+describe('check and batch with --spool', () => {
+  test('a check is judged by the kept revision, and recorded later', async () => {
+    await trim('B-1')
+    fate = 'reset'
+    const ran = await run(['check', '--design', 'U18', '--unit', 'B-1', '--points', '-', '--spool', spool], {
+      input: csvOf(pointsOf({ gainPpm: 0.2 })),
+    })
+    expect(ran.code).toBe(0)
+    expect(JSON.parse(ran.stdout)).toMatchObject({ id: null, kind: 'verify', verdict: 'pass' })
+    fate = 'pass'
+    expect((await send()).code).toBe(0)
+    expect((await recordsOf('B-1')).map(({ kind }) => kind)).toEqual(['trim', 'verify'])
+  })
+
+  test('a batch goes on without the server, in order; the same file again doubles nothing', async () => {
+    await trim('B-2')
+    const units = Array.from({ length: 30 }, (_, i) => `C-${String(i).padStart(2, '0')}`)
+    const rows = units.flatMap((unit) =>
+      pointsOf({ gainPpm: -150 }).map((p) => `${unit},${p.code},${p.measured},${p.uncertainty}`),
+    )
+    const input = `unit,code,measured,uncertainty\n${rows.join('\n')}\nC-bad,0,nonsense,1e-6\n`
+    const batch = () =>
+      run(['batch', '-', '--design', 'U18', '--applied', 'neutral', '--spool', spool, '--format', 'json'], {
+        input,
+      })
+    fate = 'reset'
+    const first = await batch()
+    expect(first.code).toBe(20)
+    const told = JSON.parse(first.stdout)
+    expect(told.summary).toMatchObject({ lines: 31, good: 30, notGood: 1, spooled: 30 })
+    expect(entries('pending').map(({ body }) => body.unit)).toEqual(units)
+    await batch()
+    expect(names('pending')).toHaveLength(30)
+    fate = 'pass'
+    const online = JSON.parse((await batch()).stdout)
+    expect(online.summary).toMatchObject({ good: 30, replayed: 30, spooled: 0 })
+    for (const unit of units) expect(await recordsOf(unit)).toHaveLength(1)
+  })
+})

@@ -1,0 +1,45 @@
+import { verdictExit } from '../../shared/contract/exit.ts'
+import { errorTable, isOgeeError, type OgeeError } from '../../shared/errors.ts'
+import type { Block } from '../batch/blocks.ts'
+import { refused } from '../batch/item.ts'
+import { sendBlock } from '../batch/send-block.ts'
+import { isOutage } from './spool-client.ts'
+import type { Spooler } from './spooler.ts'
+
+/** What is put down when it does not go through at once need not be tried for long. */
+const tries = 2
+
+/** Sends a block; what the server does not answer for is computed here and put down, row by row, in order. */
+export async function spoolBlock(spooler: Spooler, block: Block): Promise<void> {
+  if (await spooler.mayGoAhead()) {
+    try {
+      await sendBlock(spooler.client, block, tries)
+      await rememberOne(spooler, block)
+      return
+    } catch (error) {
+      if (!isOutage(error)) throw error
+      spooler.noteAway()
+    }
+  }
+  for (const row of block.rows) {
+    if (row.outcome !== null) continue
+    try {
+      const record = await spooler.put(row.send.body, row.send.key)
+      row.outcome = { exit: record.verdict === null ? 0 : verdictExit[record.verdict], record }
+    } catch (error) {
+      if (!isOgeeError(error) || !isOwnFault(error)) throw error
+      row.outcome = refused(error)
+    }
+  }
+}
+
+/** What is wrong with this unit and no other. */
+const isOwnFault = ({ code }: OgeeError) => errorTable[code].exit === 65
+
+async function rememberOne(spooler: Spooler, { rows }: Block): Promise<void> {
+  for (const { outcome, send } of rows) {
+    if (outcome === null || !('record' in outcome) || outcome.record.id === null) continue
+    await spooler.remember(outcome.record, send.body)
+    return
+  }
+}
