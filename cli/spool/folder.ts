@@ -19,11 +19,13 @@ const entryName = /^(\d{12})-([0-9a-f]{16})-([0-9a-f]{16})-[0-9a-z]+\.json$/
 /** What other processes put down is looked for at most so often. */
 const lookAgainMs = 1_000
 
+type Found = { place: SpoolPlace; name: string }
+
 export class Spool {
   readonly dir: string
   #next: number | null = null
   #written = 0
-  #known = { atMs: Number.NEGATIVE_INFINITY, hashes: new Set<string>() }
+  #known = { atMs: Number.NEGATIVE_INFINITY, found: new Map<string, Found>() }
 
   private constructor(dir: string) {
     this.dir = dir
@@ -72,21 +74,20 @@ export class Spool {
 
   /** The entry of that idempotency key where there is one: the same measurement is kept once. */
   withKey(key: string): { path: string; entry: Entry } | null {
-    const hash = hashOf(key)
-    if (!this.#knows(hash)) return null
-    for (const place of ['pending', 'sent'] as const) {
-      for (const name of this.names(place)) {
-        if (entryName.exec(name)?.[2] !== hash) continue
-        const entry = this.read(place, name)
-        if (entry?.key === key) return { path: this.path(place, name), entry }
-      }
-    }
-    return null
+    const found = this.#find(hashOf(key))
+    if (!found) return null
+    const entry = this.read(found.place, found.name)
+    if (entry) return entry.key === key ? { path: this.path(found.place, found.name), entry } : null
+    // Sent meanwhile, by somebody else: it is looked for once more.
+    this.#known.atMs = Number.NEGATIVE_INFINITY
+    const moved = this.#find(hashOf(key))
+    const there = moved ? this.read(moved.place, moved.name) : null
+    return moved && there?.key === key ? { path: this.path(moved.place, moved.name), entry: there } : null
   }
 
   /** Whether something of that name (a unit's channel and range) was put down here and is not yet let go. */
   hasOf(what: string): boolean {
-    return this.#knows(hashOf(what))
+    return this.#find(hashOf(what)) !== undefined
   }
 
   /** Puts an entry down at the end of `pending/`, under what it is of; it is durable when this returns its path. */
@@ -95,19 +96,24 @@ export class Spool {
     const number = String(this.#next++).padStart(digits, '0')
     const own = `${process.pid.toString(36)}${(this.#written++).toString(36).padStart(4, '0')}`
     const hashes = [hashOf(entry.key), hashOf(what)]
-    const path = this.path('pending', `${[number, ...hashes, own].join('-')}.json`)
+    const name = `${[number, ...hashes, own].join('-')}.json`
+    const path = this.path('pending', name)
     this.#write(path, entry)
-    for (const hash of hashes) this.#known.hashes.add(hash)
+    for (const hash of hashes) this.#known.found.set(hash, { place: 'pending', name })
     return path
   }
 
-  #knows(hash: string): boolean {
+  #find(hash: string): Found | undefined {
     if (performance.now() - this.#known.atMs > lookAgainMs) {
-      const names = (['pending', 'sent'] as const).flatMap((place) => this.names(place))
-      const hashes = names.flatMap((name) => entryName.exec(name)?.slice(2) ?? [])
-      this.#known = { atMs: performance.now(), hashes: new Set(hashes) }
+      const found = new Map<string, Found>()
+      for (const place of ['pending', 'sent'] as const) {
+        for (const name of this.names(place)) {
+          for (const one of entryName.exec(name)?.slice(2) ?? []) found.set(one, { place, name })
+        }
+      }
+      this.#known = { atMs: performance.now(), found }
     }
-    return this.#known.hashes.has(hash)
+    return this.#known.found.get(hash)
   }
 
   /** Moves an entry on: written whole at its new place first, so that at no moment it is nowhere. */
