@@ -27,8 +27,11 @@ const words: Readonly<Record<string, string>> = {
 
 let made = 0
 
-/** Writes a file so that it survives a kill and a power cut: its bytes first, its name after them, the folder last. */
-export function putDown(path: string, text: string, beside: string): void {
+/**
+ * Writes a file so that it survives a kill and a power cut: its bytes first, its name after them, the folder last. Of many
+ * files the folder can be made durable once, after them all: then `isLast` is false for each, and `syncFolder` follows.
+ */
+export function putDown(path: string, text: string, beside: string, isLast = true): void {
   const temporary = join(beside, `${process.pid}-${++made}.part`)
   try {
     const file = fs.openSync(temporary, 'wx', 0o600)
@@ -39,26 +42,27 @@ export function putDown(path: string, text: string, beside: string): void {
       fs.closeSync(file)
     }
     fs.renameSync(temporary, path)
-    syncFolder(dirname(path))
+    if (isLast) syncFolder(dirname(path))
   } catch (error) {
     fs.rmSync(temporary, { force: true })
     throw diskTrouble(path, error)
   }
 }
 
-/** Takes a file away durably; that somebody else did it first is no trouble. */
+/**
+ * Takes a file away; that somebody else did it first is no trouble. Not made durable: whoever finds it again after a power
+ * cut finds out that it was dealt with.
+ */
 export function takeAway(path: string): void {
   try {
     fs.unlinkSync(path)
   } catch (error) {
-    if ((error as Trouble).code === 'ENOENT') return
-    throw diskTrouble(path, error)
+    if ((error as Trouble).code !== 'ENOENT') throw diskTrouble(path, error)
   }
-  syncFolder(dirname(path))
 }
 
 /** A new name is durable once its folder is. */
-function syncFolder(path: string): void {
+export function syncFolder(path: string): void {
   const folder = fs.openSync(path, 'r')
   try {
     fs.fsyncSync(folder)

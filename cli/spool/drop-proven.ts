@@ -9,6 +9,9 @@ import type { Spool } from './folder.ts'
 import { pinKey, pinnedKey } from './pinned-key.ts'
 import { isOutage, type SpoolClient } from './spool-client.ts'
 
+/** Proofs asked for at a time. */
+const lanes = 4
+
 export type Fault = { name: string; record: string; message: string }
 /** `waiting`: sent, promised, and not yet in a checkpoint; `stopped`: why the rest was not looked at. */
 export type Proving = { dropped: number; waiting: number; faults: Fault[]; stopped: OgeeError | null }
@@ -23,14 +26,19 @@ export async function dropProven(spool: Spool, client: Pick<SpoolClient, 'call'>
   try {
     if (names.length === 0) return proving
     const key = await ledgerKey(spool, client)
-    for (const name of names) {
-      const state = await lookAt(spool, client, name, key)
-      if (state === 'proven') {
-        spool.drop('sent', name)
-        proving.dropped += 1
-      } else if (state === 'waiting') proving.waiting += 1
-      else if (state !== 'gone') proving.faults.push(state)
+    let next = 0
+    const lane = async () => {
+      while (next < names.length) {
+        const name = names[next++]!
+        const state = await lookAt(spool, client, name, key)
+        if (state === 'proven') {
+          spool.drop('sent', name)
+          proving.dropped += 1
+        } else if (state === 'waiting') proving.waiting += 1
+        else if (state !== 'gone') proving.faults.push(state)
+      }
     }
+    await Promise.all(Array.from({ length: lanes }, lane))
   } catch (error) {
     if (!isOgeeError(error)) throw error
     if (!isOutage(error) && error.exit !== 77) throw error

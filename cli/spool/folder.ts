@@ -2,7 +2,16 @@ import { createHash } from 'node:crypto'
 import fs from 'node:fs'
 import { join } from 'node:path'
 import { OgeeError } from '../../shared/errors.ts'
-import { clearParts, diskTrouble, isAlive, makeFolder, putDown, type Trouble, takeAway } from './disk.ts'
+import {
+  clearParts,
+  diskTrouble,
+  isAlive,
+  makeFolder,
+  putDown,
+  syncFolder,
+  type Trouble,
+  takeAway,
+} from './disk.ts'
 import { type Entry, readEntry } from './entry.ts'
 
 /**
@@ -90,15 +99,18 @@ export class Spool {
     return this.#find(hashOf(what)) !== undefined
   }
 
-  /** Puts an entry down at the end of `pending/`, under what it is of; it is durable when this returns its path. */
-  add(entry: Entry, what: string): string {
+  /**
+   * Puts an entry down at the end of `pending/`, under what it is of. It is durable when this returns its path; one of
+   * many (`isLast` false) once `sync` has returned.
+   */
+  add(entry: Entry, what: string, isLast = true): string {
     this.#next ??= this.#afterAll()
     const number = String(this.#next++).padStart(digits, '0')
     const own = `${process.pid.toString(36)}${(this.#written++).toString(36).padStart(4, '0')}`
     const hashes = [hashOf(entry.key), hashOf(what)]
     const name = `${[number, ...hashes, own].join('-')}.json`
     const path = this.path('pending', name)
-    this.#write(path, entry)
+    this.#write(path, entry, isLast)
     for (const hash of hashes) this.#known.found.set(hash, { place: 'pending', name })
     return path
   }
@@ -116,10 +128,15 @@ export class Spool {
     return this.#known.found.get(hash)
   }
 
-  /** Moves an entry on: written whole at its new place first, so that at no moment it is nowhere. */
-  move(name: string, to: SpoolPlace, entry: Entry): void {
-    this.#write(this.path(to, name), entry)
-    takeAway(this.path('pending', name))
+  sync(place: SpoolPlace): void {
+    syncFolder(join(this.dir, place))
+  }
+
+  /** Moves entries on to `sent/`: durable at their new place before they leave the old one. */
+  sent(entries: readonly { name: string; entry: Entry }[]): void {
+    for (const { name, entry } of entries) this.#write(this.path('sent', name), entry, false)
+    this.sync('sent')
+    for (const { name } of entries) takeAway(this.path('pending', name))
   }
 
   /** As it stands, with the problem beside it. */
@@ -141,8 +158,8 @@ export class Spool {
     clearParts(join(this.dir, 'parts'))
   }
 
-  #write(path: string, entry: Entry): void {
-    putDown(path, `${JSON.stringify(entry, null, 2)}\n`, join(this.dir, 'parts'))
+  #write(path: string, entry: Entry, isLast: boolean): void {
+    putDown(path, `${JSON.stringify(entry, null, 2)}\n`, join(this.dir, 'parts'), isLast)
   }
 
   #afterAll(): number {

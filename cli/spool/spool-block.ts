@@ -1,7 +1,7 @@
 import { verdictExit } from '../../shared/contract/exit.ts'
 import { errorTable, isOgeeError, type OgeeError } from '../../shared/errors.ts'
 import type { Block } from '../batch/blocks.ts'
-import { refused } from '../batch/item.ts'
+import { type Outcome, refused } from '../batch/item.ts'
 import { sendBlock } from '../batch/send-block.ts'
 import { isOutage } from './spool-client.ts'
 import type { Spooler } from './spooler.ts'
@@ -21,15 +21,29 @@ export async function spoolBlock(spooler: Spooler, block: Block): Promise<void> 
       spooler.noteAway()
     }
   }
-  for (const row of block.rows) {
-    if (row.outcome !== null) continue
-    try {
-      const record = await spooler.put(row.send.body, row.send.key)
-      row.outcome = { exit: record.verdict === null ? 0 : verdictExit[record.verdict], record }
-    } catch (error) {
-      if (!isOgeeError(error) || !isOwnFault(error)) throw error
-      row.outcome = refused(error)
+  await putAll(spooler, block)
+}
+
+/** None is said to be saved before the folder is durable, also when the disk is full half-way. */
+async function putAll(spooler: Spooler, { rows }: Block): Promise<void> {
+  const put: { row: Block['rows'][number]; outcome: Outcome }[] = []
+  try {
+    for (const row of rows) {
+      if (row.outcome === null) put.push({ row, outcome: await outcomeOf(spooler, row.send) })
     }
+  } finally {
+    spooler.spool.sync('pending')
+    for (const { row, outcome } of put) row.outcome = outcome
+  }
+}
+
+async function outcomeOf(spooler: Spooler, { body, key }: Block['rows'][number]['send']): Promise<Outcome> {
+  try {
+    const record = await spooler.put(body, key, false)
+    return { exit: record.verdict === null ? 0 : verdictExit[record.verdict], record }
+  } catch (error) {
+    if (!isOgeeError(error) || !isOwnFault(error)) throw error
+    return refused(error)
   }
 }
 

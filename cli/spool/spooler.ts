@@ -77,7 +77,7 @@ export class Spooler {
       sendPending(
         this.spool,
         this.client,
-        async (line) => void (line.problem && refused.push(line.unit)),
+        (line) => void (line.problem && refused.push(line.unit)),
         () => performance.now() < until,
       ),
     )
@@ -89,8 +89,11 @@ export class Spooler {
     return this.spool.names('pending').length === 0
   }
 
-  /** Computes with what is kept here, and puts the measurement down; the same one again is the one that is there. */
-  async put(body: RequestBody, key: string): Promise<SpooledRecord> {
+  /**
+   * Computes with what is kept here, and puts the measurement down; the same one again is the one that is there. Of many
+   * (`isLast` false) none is saved before `spool.sync` has returned.
+   */
+  async put(body: RequestBody, key: string, isLast = true): Promise<SpooledRecord> {
     const known = this.spool.withKey(key)
     if (known) return { ...(known.entry.printed as unknown as Computed), spooled: known.path }
     const computed = await this.#compute(body)
@@ -98,7 +101,7 @@ export class Spooler {
     const codes = computed.result.format === 'ogee.codes/1' ? computed.result.trim.codes : null
     const claimed = { solver: SOLVER_VERSION, codes, at }
     const entry = { format: 'ogee.spooled/1', key, savedAt: at, body: { ...body, claimed } } as const
-    const file = this.spool.add({ ...entry, printed: computed }, whatOf(computed))
+    const file = this.spool.add({ ...entry, printed: computed }, whatOf(computed), isLast)
     return { ...computed, spooled: file }
   }
 

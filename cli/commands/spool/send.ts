@@ -38,7 +38,7 @@ async function send(options: Options, context: Context): Promise<number> {
   spool.clear()
   const lines: SentLine[] = []
   const sending = await inTurn(spool, () =>
-    sendPending(spool, client, async (line) => {
+    sendPending(spool, client, (line) => {
       lines.push(line)
       if (io.stderrIsTerminal) io.say(`ogee: ${lines.length} sent, unit ${line.unit}`)
     }),
@@ -95,7 +95,7 @@ function rendering(spool: Spool, lines: readonly SentLine[], proving: Proving): 
   const flat = lines.map(({ name, problem, ...line }) => ({
     file: name,
     ...line,
-    problem: problem ? { code: problem.code, detail: problem.message } : null,
+    problem: problem ? { code: problem.code, detail: problem.detail } : null,
   }))
   const left = { pending: spool.names('pending').length, sent: spool.names('sent').length }
   const cells = flat.map(({ file, unit, exit, record, verdict, problem }) => [
