@@ -15,6 +15,12 @@ const designModules =
 // Sizing is Design's and, for what a budget demands, a lot's: in a file of its own neither drags the other along.
 const sizingModules = /shared\/solver\/sizing\/(?!measured-units|tolerance-factor|unit-error)/
 
+// What nearly every page has, and what every page that computes has: small pieces that pack smaller together.
+const pageModules =
+  /src\/(?:lib\/keys|features\/bench\/outbox|ui\/(?:dialog|empty|key-hint|page-head|page-problem|quantity|section|table|time-text|use-scrolls))\./
+const solverModules =
+  /shared\/(?:solver\/(?:adjuster|channel|converter|effects|network|point-rules|prepare-trim|solve-exact|version|distribution\/elementary))\.ts/
+
 // The frame of every plot, on Design, Bench and a record's page.
 const plotModules =
   /src\/ui\/(?:plot\/(?:axes|end-labels|plot-figure|plot-numbers|plot-svg|use-width|walk-points)|segmented)\./
@@ -42,6 +48,8 @@ export default defineConfig({
             { name: 'design', test: designModules },
             { name: 'sizing', test: sizingModules },
             { name: 'plots', test: plotModules },
+            { name: 'solver', test: solverModules },
+            { name: 'page', test: pageModules },
           ],
         },
       },

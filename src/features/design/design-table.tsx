@@ -3,6 +3,7 @@ import { paths } from '../../lib/paths.ts'
 import { LinkButton } from '../../ui/button.tsx'
 import { None, RowHead, Table, Td, Th } from '../../ui/table.tsx'
 import { TimeText } from '../../ui/time-text.tsx'
+import { stateWord } from './state-word.ts'
 
 export function DesignTable({ designs }: { designs: readonly DesignLine[] }) {
   return (
@@ -50,9 +51,4 @@ function DesignRow({ design }: { design: DesignLine }) {
       </Td>
     </tr>
   )
-}
-
-/** States of a revision are words, no shape. */
-export function stateWord(state: DesignLine['revisions'][number]['state']): string {
-  return state === 'in-review' ? 'in review' : state
 }

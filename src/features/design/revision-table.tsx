@@ -3,7 +3,7 @@ import { paths } from '../../lib/paths.ts'
 import { LinkButton } from '../../ui/button.tsx'
 import { None, RowHead, Table, Td, Th } from '../../ui/table.tsx'
 import { TimeText } from '../../ui/time-text.tsx'
-import { stateWord } from './design-table.tsx'
+import { stateWord } from './state-word.ts'
 
 /** Every revision with who wrote and who released it; the one on the page is shaded. */
 export function RevisionTable({ design, shown }: { design: DesignLine; shown: number }) {

@@ -1,6 +1,6 @@
 import { useState } from 'react'
 import type { Revision } from '../../../shared/contract/designs.ts'
-import { stateWord } from '../../features/design/design-table.tsx'
+import { stateWord } from '../../features/design/state-word.ts'
 import { both, countDifferences, type FormDoc } from '../../features/design-form/form-doc.ts'
 import { toForm } from '../../features/design-form/to-form.ts'
 import { differenceOf } from '../../features/design-form/what-if.ts'

@@ -1,5 +1,5 @@
 import { useEffect, useMemo, useRef, useState } from 'react'
-import { stateWord } from '../../features/design/design-table.tsx'
+import { stateWord } from '../../features/design/state-word.ts'
 import { TextCell } from '../../features/design-form/cells.tsx'
 import { FormContext } from '../../features/design-form/form-context.ts'
 import { textOf } from '../../features/design-form/form-doc.ts'
