@@ -1,4 +1,6 @@
 import { once } from 'node:events'
+import { mkdirSync, writeFileSync } from 'node:fs'
+import { join } from 'node:path'
 import { setTimeout as sleep } from 'node:timers/promises'
 import { afterAll, beforeAll, describe, expect, test } from 'vitest'
 import { record, recordLine } from '../../shared/contract/record.ts'
@@ -125,6 +127,41 @@ describe('the line from points to recorded codes', () => {
     )
     expect(problemOf(channel)).toMatchObject({ code: 'channel-unknown', exit: 65 })
   })
+})
+
+test('a simulated lot from as found to as left: the guide’s commands, one after another', async () => {
+  const { stdout: document } = await run(['design', 'pull', design])
+  const folder = join(cli.folder, 'guide')
+  mkdirSync(folder)
+  writeFileSync(join(folder, 'design.json'), document)
+  const simulate = [
+    'simulate',
+    '--design',
+    'design.json',
+    '--units',
+    '6',
+    '--seed',
+    '4',
+    '--instrument',
+    'DMM-07',
+  ]
+  const found = await run([...simulate, '--format', 'csv'], { cwd: folder })
+  const batch = ['batch', '-', '--design', design, '--format', 'csv']
+  const trimmed = await run([...batch, '--applied', 'neutral'], { input: found.stdout })
+  expect([trimmed.code, trimmed.stderr]).toEqual([0, ''])
+  writeFileSync(join(folder, 'codes.csv'), trimmed.stdout)
+  const left = await run([...simulate, '--codes', 'codes.csv', '--format', 'csv'], { cwd: folder })
+  expect(left.stdout).toMatch(/^unit,channel,range,applied_gain,applied_offset,instrument,code,readings\n/)
+  const checked = await run([...batch, '--kind', 'verify'], { input: left.stdout })
+  // Effects within 20 % leave some units for a second pass: 20 says that not all are good.
+  expect([0, 20]).toContain(checked.code)
+  const verdicts = checked.stdout
+    .trimEnd()
+    .split('\n')
+    .slice(1)
+    .map((line) => line.split(',')[5])
+  expect(verdicts).toHaveLength(24)
+  expect(verdicts.filter((verdict) => verdict === 'pass').length).toBeGreaterThan(4)
 })
 
 const seed = 20_260_303

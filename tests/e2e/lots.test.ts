@@ -23,10 +23,14 @@ beforeAll(async () => {
     if (one.unit !== 'S000002') continue
     for (const point of one.points) point.readings = point.readings.map((volts) => volts * 1.004)
   }
-  const rows = measured.map(simulatedRows).join('').trimEnd().split('\n')
+  const rows = measured
+    .map((one) => simulatedRows(one))
+    .join('')
+    .trimEnd()
+    .split('\n')
   const last = rows.findLastIndex((row) => row.startsWith('S000003'))
   rows[last] = rows[last]!.replace(/[^,]*$/, '')
-  csv = simulatedHeader(4) + rows.join('\n')
+  csv = simulatedHeader({ readings: 4 }) + rows.join('\n')
 })
 afterAll(() => stage.close())
 

@@ -5,6 +5,7 @@ import { designDocument } from '../../../shared/contract/design.ts'
 import { parsePointsCsv } from '../../../shared/points/parse-csv.ts'
 import { simulatedHeader, simulatedRows } from '../../../shared/simulate/csv.ts'
 import { simulateUnit } from '../../../shared/simulate/unit.ts'
+import { computeCodes } from '../../../shared/solver/codes.ts'
 import { fitPoints } from '../../../shared/solver/fit.ts'
 import { type Distribution, draw } from '../../../shared/solver/random/draw.ts'
 import { randomStream } from '../../../shared/solver/random/generator.ts'
@@ -112,10 +113,72 @@ describe('simulated units', () => {
       measurement: { ...design.measurement, readings: 3, noiseV: 1e-5 },
     })
     const measurements = [0, 1].flatMap((number) => simulateUnit(noisy, 5, number))
-    const { groups, problems } = parsePointsCsv(simulatedHeader(3) + measurements.map(simulatedRows).join(''))
+    const { groups, problems } = parsePointsCsv(
+      simulatedHeader({ readings: 3 }) + measurements.map((one) => simulatedRows(one)).join(''),
+    )
     expect(problems).toEqual([])
     expect(groups.map(({ unit, channel, range, points }) => ({ unit, channel, range, points }))).toEqual(
       measurements,
     )
+  })
+})
+
+describe('the simulated bench', () => {
+  const quiet = designWith({ measurement: { ...design.measurement, readings: 4, noiseV: 2e-7 } })
+  const asFound = (number: number, bench = {}) => simulateUnit(quiet, 9, number, {}, bench)[0]!
+  const codesOf = (number: number) => computeCodes(quiet, asFound(number).points, { applied: 'neutral' })
+
+  test('codes that are loaded move the same unit as the adjusters really do, within their tolerance', () => {
+    const factors: number[] = []
+    for (let number = 0; number < 40; number++) {
+      const first = codesOf(number)
+      const codes = first.trim.codes
+      if (codes === null) continue
+      const left = asFound(number, { codesOf: () => codes })
+      expect(left.applied).toEqual(codes)
+      const second = computeCodes(quiet, left.points, { applied: codes, learned: first })
+      const found = Math.abs(first.fit.gainErrorPpm)
+      // The tolerance of the effect is what is left of the error, and not more.
+      expect(Math.abs(second.fit.gainErrorPpm)).toBeLessThan(0.2 * found + 2)
+      const { gain } = second.trim.effects
+      if (gain?.source === 'learned') factors.push(gain.factor)
+    }
+    expect(factors.length).toBeGreaterThan(20)
+    expect(Math.max(...factors)).toBeGreaterThan(1.08)
+    expect(Math.min(...factors)).toBeLessThan(0.92)
+    for (const factor of factors) expect(Math.abs(factor - 1)).toBeLessThan(0.23)
+  })
+
+  test('a second look at a unit changes nothing in its first', () => {
+    const only = simulateUnit(quiet, 9, 3)
+    simulateUnit(quiet, 9, 3, {}, { codesOf: () => ({ gain: 2000 }), unsettled: 1 })
+    expect(simulateUnit(quiet, 9, 3, {}, { codesOf: () => 'neutral', unsettled: 0 })).toEqual(only)
+    const with2000 = asFound(3, { codesOf: () => ({ gain: 2000, offset: 2048 }) })
+    expect(asFound(3, { codesOf: () => ({ gain: 2000, offset: 2048 }) })).toEqual(with2000)
+    expect(simulateUnit(quiet, 9, 3, {}, { codesOf: () => null })).toEqual([])
+  })
+
+  test('readings taken too early run in, and the fit finds them', () => {
+    const flagged = (unsettled: number) =>
+      Array.from({ length: 60 }, (_, number) => {
+        const { points } = asFound(number, { unsettled })
+        return fitPoints(quiet, points).fit.flags.some(({ flag }) => flag === 'unsettled')
+      }).filter(Boolean).length
+    expect(flagged(0)).toBe(0)
+    expect(flagged(1)).toBeGreaterThan(55)
+    const some = flagged(0.25)
+    expect(some).toBeGreaterThan(5)
+    expect(some).toBeLessThan(28)
+  })
+
+  test('the CSV says which codes were loaded and what measured', () => {
+    const columns = { applied: true, instrument: 'DMM-07' }
+    const measured = asFound(0, { codesOf: () => ({ gain: 2000, offset: 2048 }) })
+    const { groups, problems } = parsePointsCsv(
+      simulatedHeader({ readings: 4, ...columns }) + simulatedRows(measured, columns),
+    )
+    expect(problems).toEqual([])
+    expect(groups[0]).toMatchObject({ applied: { gain: 2000, offset: 2048 }, instrument: 'DMM-07' })
+    expect(groups[0]?.points).toEqual(measured.points)
   })
 })
