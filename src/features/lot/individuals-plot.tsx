@@ -67,7 +67,7 @@ export function IndividualsPlot({ side, points, stations, choices, onChoice }: P
 
 /** A phone draws the chart at full scale and scrolls it within itself. */
 function Scroller({ children }: { children: ReactNode }) {
-  return <div className="overflow-x-auto">{children}</div>
+  return <div className="overflow-x-auto print:overflow-visible">{children}</div>
 }
 
 function tableOf(points: readonly LotPoint[], { which, unit }: Side): PlotTableData {

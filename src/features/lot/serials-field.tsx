@@ -55,7 +55,12 @@ export function SerialsField({ serials, label }: { serials: Serials; label: stri
       </Field>
       <label className="inline-flex min-h-7 items-center gap-2 text-small text-ink-2">
         From a file
-        <input type="file" accept=".csv,.txt,text/csv,text/plain" onChange={(event) => void take(event)} />
+        <input
+          type="file"
+          className="max-w-full file:mr-2 file:min-h-7 file:rounded-sm file:border file:border-rule file:px-3 file:font-semibold"
+          accept=".csv,.txt,text/csv,text/plain"
+          onChange={(event) => void take(event)}
+        />
       </label>
     </>
   )

@@ -44,6 +44,7 @@ export default function UnitTable({ units, find, onFind, onReference }: Props) {
   return (
     <Section
       title="Units"
+      className="print:break-inside-auto print:break-before-page"
       note={`${rows.length} channels`}
       side={
         <span className="print:hidden">
@@ -84,7 +85,7 @@ function Window({ rows, hasRanges, onReference }: WindowProps) {
       aria-label="Units of the lot, scrolls"
       // biome-ignore lint/a11y/noNoninteractiveTabindex: what scrolls must be reached by keyboard (WCAG 2.1.1)
       tabIndex={0}
-      className="relative max-h-[420px] overflow-auto [contain:content] print:max-h-none print:overflow-visible print:[contain:none]"
+      className="relative max-h-[420px] overflow-auto [contain:content] print:max-h-none print:break-inside-auto print:overflow-visible print:[contain:none]"
     >
       {/* Fixed columns: widths that follow the rows in view would jump while scrolling. */}
       <table

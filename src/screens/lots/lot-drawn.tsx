@@ -52,7 +52,7 @@ export default function LotDrawn({ lot, design, units: newest, search, onSearch 
       {side === null ? (
         <p className="my-3 text-text">{`Design ${lot.design} has no adjuster in this range: there is no reach.`}</p>
       ) : null}
-      <div className="mt-3 grid gap-x-7 gap-y-3 wide:grid-cols-2">
+      <div className="mt-3 grid gap-x-7 gap-y-3 wide:grid-cols-2 print:grid-cols-2">
         {analysis.gain ? <ErrorHistogram side={analysis.gain} points={analysis.points} /> : null}
         {analysis.offset ? <ErrorHistogram side={analysis.offset} points={analysis.points} /> : null}
       </div>
@@ -67,7 +67,7 @@ export default function LotDrawn({ lot, design, units: newest, search, onSearch 
           />
         </div>
       ) : null}
-      <div className="mt-3 grid gap-x-7 gap-y-3 wide:grid-cols-2">
+      <div className="mt-3 grid gap-x-7 gap-y-3 wide:grid-cols-2 print:grid-cols-2">
         <Stations lot={lot} range={range.id} side={side} />
         <div className="min-w-0 space-y-3">
           <CapabilityTable analysis={analysis} />

@@ -65,7 +65,7 @@ export function LotPage({ lot }: { lot: LotDetail }) {
   const document = design.data?.document
   const hasUnits = lot.records > 0
   return (
-    <>
+    <div className="print-wide">
       <LotHead
         lot={lot}
         title={document?.title ?? ''}
@@ -96,7 +96,7 @@ export function LotPage({ lot }: { lot: LotDetail }) {
       </div>
       <Problem error={units.error ?? design.error} />
       {hasUnits ? (
-        <div className="mt-3 grid gap-x-7 gap-y-3 wide:grid-cols-[5fr_7fr]">
+        <div className="mt-3 grid gap-x-7 gap-y-3 wide:grid-cols-[5fr_7fr] print:grid-cols-[5fr_7fr]">
           <YieldTable counts={lot.counts} />
           <AttentionList
             lot={lot}
@@ -122,6 +122,6 @@ export function LotPage({ lot }: { lot: LotDetail }) {
           <LotDrawn lot={lot} design={document} units={units.data.units} search={search} onSearch={change} />
         </Suspense>
       ) : null}
-    </>
+    </div>
   )
 }

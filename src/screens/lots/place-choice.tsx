@@ -13,7 +13,7 @@ type Props = {
 export function PlaceChoice({ design, range, channel, onSearch }: Props) {
   if (design.ranges.length < 2 && design.channels.length < 2) return null
   return (
-    <div className="mt-3 flex flex-wrap gap-x-5 gap-y-1">
+    <div className="mt-3 flex flex-wrap gap-x-5 gap-y-1 print:hidden">
       {design.ranges.length > 1 ? (
         <Field label="range" layout="inline">
           <Select value={range} onChange={(event) => onSearch({ range: event.target.value })}>

@@ -75,7 +75,7 @@ export default function UploadPanel({ lot, design, onClose }: Props) {
             disabled={isSending}
             onChange={onFile}
             data-upload
-            className="max-w-full min-h-6"
+            className="max-w-full min-h-7 file:mr-2 file:min-h-7 file:rounded-sm file:border file:border-rule file:px-3 file:font-semibold"
           />
         </label>
         <span className="text-small text-ink-3">
