@@ -11,8 +11,8 @@ type Work = {
 type Running = { places: ReadonlySet<string>; settled: Promise<void> }
 
 /**
- * Sends blocks several at a time and prints them in the order of the input. At most twice `width` blocks are in memory, so a
- * slow reader or a slow block slows the input down. Two blocks that share a unit go one after the other.
+ * Sends blocks several at a time and prints them in the order of the input. Two more than are under way are in memory at
+ * most, so a slow reader or a slow block slows the input down. Two blocks that share a unit go one after the other.
  * @returns false when it was left off because nobody reads any more
  * @throws the first trouble of sending, else that of the input; everything that had begun has then ended and was printed
  */
@@ -39,6 +39,9 @@ export async function runBlocks(
       troubles.push(error)
     } finally {
       gate.leave()
+      // What was sent is let go at once; what came back waits for its turn to be printed.
+      for (const row of block.items) row.send = null
+      block.rows = []
     }
   }
   const start = (block: Block) => {
@@ -63,7 +66,7 @@ export async function runBlocks(
       leftOff ||= readerGone
       if (troubles.length > 0 || leftOff) break
       start(block)
-      if (unprinted < 2 * width) continue
+      if (unprinted < width + 2) continue
       await Promise.race([
         printed,
         new Promise<void>((resolve) => {

@@ -45,7 +45,7 @@ export const batchCommand: Command<Options> = {
     `A unit measured twice in one file needs different keys in the key column.\n\n${serverAbout}`,
   arguments: [{ name: '<file>', says: 'points CSV or NDJSON, or - for standard input' }],
   options: [
-    // A key is of one measurement: those of a batch stand in its key column. Its file is still there after an outage.
+    // A key is of one measurement: those of a batch stand in its key column.
     ...unitOptions.filter(({ flags }) => !flags.startsWith('--key ')),
     {
       flags: '--kind <kind>',

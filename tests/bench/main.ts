@@ -10,6 +10,7 @@ const benches: Record<string, () => Promise<readonly BenchRow[]>> = {
   history: async () => (await import('./history.ts')).benchHistory(),
   batches: async () => (await import('./batches.ts')).benchBatches(),
   ledger: async () => (await import('./ledger.ts')).benchLedger(),
+  memory: async () => (await import('./memory.ts')).benchMemory(),
   keystroke: async () => (await import('./keystroke.ts')).benchKeystroke(),
   'lot-scroll': async () => (await import('./lot-scroll.ts')).benchLotScroll(),
   'first-load': async () => (await import('./first-load.ts')).benchFirstLoad(),
