@@ -163,13 +163,13 @@ describe('a finding is kept once and for good', () => {
     '%s refuses UPDATE and DELETE to the account and to root',
     async (table) => {
       const denied = { parent: { errno: 1142 } }
-      await expect(scene.harness.database.sql.run(`UPDATE ${table} SET body = 'x'`)).rejects.toMatchObject(
+      await expect(scene.harness.database.sql.run(`UPDATE ${table} SET by_id = 'x'`)).rejects.toMatchObject(
         denied,
       )
       await expect(scene.harness.database.sql.run(`DELETE FROM ${table}`)).rejects.toMatchObject(denied)
       const root = await scene.harness.test.asRoot()
       const refused = { errno: 1644, sqlState: '45000' }
-      await expect(root.query(`UPDATE ${table} SET body = 'x'`)).rejects.toMatchObject(refused)
+      await expect(root.query(`UPDATE ${table} SET by_id = 'x'`)).rejects.toMatchObject(refused)
       await expect(root.query(`DELETE FROM ${table}`)).rejects.toMatchObject(refused)
       await root.end()
     },

@@ -27,10 +27,9 @@ export function answerFinding(
       const at = deps.now()
       const body = { format: 'ogee.answer/1', id, finding, act, text, by }
       const [leafId] = await insertLeaves(sql, [newLeaf('answer', at.toISOString(), body)])
-      await sql.run(
-        'INSERT INTO finding_answers (id, finding_id, closes, body, by_id, by_name, at, leaf_id) VALUES ?',
-        [[[id, finding, act === 'close' ? finding : null, text, by.id, by.name, sqlTime(at), leafId!]]],
-      )
+      await sql.run('INSERT INTO finding_answers (id, finding_id, closes, by_id, at, leaf_id) VALUES ?', [
+        [[id, finding, act === 'close' ? finding : null, by.id, sqlTime(at), leafId!]],
+      ])
     },
     repeats: (stored, id) => {
       const answer = stored.answers.find((one) => one.id === id)

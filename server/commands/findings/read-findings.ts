@@ -7,15 +7,14 @@ type Row = {
   recordId: string | null
   design: string
   lot: string | null
-  text: string
-  byId: string
-  byName: string
+  /** Of the leaf: the words, and who wrote them. */
+  body: Buffer
   at: Date
   leaf: Buffer
   number: number | null
   unit: string | null
 }
-type AnswerRow = Pick<Row, 'id' | 'text' | 'byId' | 'byName' | 'at' | 'leaf'> & {
+type AnswerRow = Pick<Row, 'id' | 'body' | 'at' | 'leaf'> & {
   findingId: string
   closes: string | null
 }
@@ -23,16 +22,14 @@ type AnswerRow = Pick<Row, 'id' | 'text' | 'byId' | 'byName' | 'at' | 'leaf'> & 
 /** `where` is ours; values go by place. Newest first. */
 async function find(sql: Sql, where: string, values: readonly SqlParameter[]): Promise<Finding[]> {
   const rows = await sql.rows<Row>(
-    `SELECT f.id, f.record_id AS recordId, f.design, f.lot, f.body AS text, f.by_id AS byId, f.by_name AS byName, f.at,
-      l.hash AS leaf, r.number, r.unit
+    `SELECT f.id, f.record_id AS recordId, f.design, f.lot, l.at, l.body, l.hash AS leaf, r.number, r.unit
       FROM findings f JOIN ledger_leaves l ON l.id = f.leaf_id LEFT JOIN records r ON r.id = f.record_id
       WHERE ${where}`,
     values,
   )
   if (rows.length === 0) return []
   const answers = await sql.rows<AnswerRow>(
-    `SELECT a.id, a.finding_id AS findingId, a.closes, a.body AS text, a.by_id AS byId, a.by_name AS byName, a.at,
-      l.hash AS leaf
+    `SELECT a.id, a.finding_id AS findingId, a.closes, l.at, l.body, l.hash AS leaf
       FROM finding_answers a JOIN ledger_leaves l ON l.id = a.leaf_id WHERE a.finding_id IN (?) ORDER BY a.at, a.id`,
     [rows.map(({ id }) => id)],
   )
@@ -114,9 +111,7 @@ function replyOf(row: Row, answers: readonly AnswerRow[]): Finding {
   }
 }
 
-const writtenOf = ({ text, byId, byName, at, leaf }: Omit<AnswerRow, 'id' | 'findingId' | 'closes'>) => ({
-  text,
-  by: { id: byId, name: byName },
-  at: at.toISOString(),
-  leaf: leaf.toString('hex'),
-})
+function writtenOf({ body, at, leaf }: Pick<Row, 'body' | 'at' | 'leaf'>) {
+  const { text, by } = JSON.parse(body.toString('utf8')) as Pick<Finding, 'text' | 'by'>
+  return { text, by, at: at.toISOString(), leaf: leaf.toString('hex') }
+}

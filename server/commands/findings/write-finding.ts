@@ -26,10 +26,9 @@ export function writeFinding(
       const subject = kind === 'record' ? { kind, record } : { kind, design, lot }
       const body = { format: 'ogee.finding/1', id, subject, text, by: asked.by }
       const [leafId] = await insertLeaves(sql, [newLeaf('finding', at.toISOString(), body)])
-      await sql.run(
-        'INSERT INTO findings (id, record_id, design, lot, body, by_id, by_name, at, leaf_id) VALUES ?',
-        [[[id, record, design, lot, text, asked.by.id, asked.by.name, sqlTime(at), leafId!]]],
-      )
+      await sql.run('INSERT INTO findings (id, record_id, design, lot, by_id, at, leaf_id) VALUES ?', [
+        [[id, record, design, lot, asked.by.id, sqlTime(at), leafId!]],
+      ])
     },
     repeats: (stored) => {
       const { subject } = asked

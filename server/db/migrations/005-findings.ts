@@ -1,11 +1,9 @@
 const options = 'ENGINE=InnoDB DEFAULT CHARSET=utf8mb4 COLLATE=utf8mb4_bin'
 const uuid = 'CHAR(36) CHARACTER SET ascii COLLATE ascii_bin'
 
-/** Who wrote what and when, and the leaf that holds it for good. */
+/** Who wrote and when, to find it by; the words themselves stand in the leaf alone, where any change is found. */
 const written = `
-    body TEXT NOT NULL,
     by_id ${uuid} NOT NULL,
-    by_name VARCHAR(80) NOT NULL,
     at DATETIME(3) NOT NULL,
     leaf_id BIGINT UNSIGNED NOT NULL UNIQUE`
 
