@@ -1,4 +1,3 @@
-import { inflateSync } from 'node:zlib'
 import { afterAll, beforeAll, beforeEach, describe, expect, it, vi } from 'vitest'
 import { renderCertificate } from '../../server/certificate/render.ts'
 import { Sheet } from '../../server/certificate/sheet.ts'
@@ -8,6 +7,7 @@ import { sha256, verifyEd25519 } from '../../server/ledger/crypto.ts'
 import type { Proof } from '../../shared/contract/proof.ts'
 import type { Record as TrimRecord } from '../../shared/contract/record.ts'
 import { checkProof } from '../../shared/ledger/check-proof.ts'
+import { filesInPdf } from '../support/pdf-files.ts'
 import { api, post } from '../support/server-client.ts'
 import { pointsOf, suspectPoints, trimBody } from '../support/server-factories.ts'
 import { type Scene, serverScene } from '../support/server-scene.ts'
@@ -48,20 +48,7 @@ async function trimAndVerify(unit: string): Promise<{ trim: TrimRecord; verify: 
   return { trim, verify: await post(scene.url, scene.station, body) }
 }
 
-/** The files inside a PDF, by what they hold: each is a deflated stream. */
-function filesIn(pdf: Buffer): Proof[] {
-  const found: Proof[] = []
-  for (let from = pdf.indexOf('stream\n'); from >= 0; from = pdf.indexOf('stream\n', from + 7)) {
-    const end = pdf.indexOf('endstream', from)
-    try {
-      const content = inflateSync(pdf.subarray(from + 7, end)).toString('utf8')
-      if (content.startsWith('{')) found.push(JSON.parse(content) as Proof)
-    } catch {
-      // Another kind of stream.
-    }
-  }
-  return found
-}
+const filesIn = (pdf: Buffer) => filesInPdf(pdf).map((text) => JSON.parse(text) as Proof)
 
 describe('a certificate', () => {
   it('says what was found, the codes, what was left with its uncertainty and rule, and carries proofs that check', async () => {
