@@ -6,7 +6,7 @@ import { defineConfig, type Plugin } from 'vite'
 const basePackages =
   /node_modules\/(?:react|react-dom|scheduler|react-router|react-router-dom|@tanstack\/(?:query-core|react-query)|zod)\/|src\/app\/zod-config/
 const startModules =
-  /shared\/(?:call|errors|limits|contract\/(?:endpoint|ledger|primitives|problem|session))\.ts|src\/(?:lib\/(?:api|connection|leave|paths|query-client|storage)|features\/(?:ledger\/(?:note|public-facts|queries)|session\/(?:queries|sign-in-form))|ui\/(?:button|caution|clipboard|field|input|loading|mark|number-format|number-text|problem|status|use-countdown|word-mark))\./
+  /shared\/(?:call|errors|limits|contract\/(?:endpoint|ledger|primitives|problem|proof|session))\.ts|src\/(?:lib\/(?:api|connection|leave|paths|query-client|storage)|features\/(?:ledger\/(?:note|public-facts|queries)|session\/(?:queries|sign-in-form))|ui\/(?:button|caution|clipboard|field|input|loading|mark|number-format|number-text|problem|status|use-countdown|word-mark))\./
 
 // What the Design page draws by itself: two dozen pieces that only it uses pack smaller as one.
 const designModules =
