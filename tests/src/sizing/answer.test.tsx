@@ -49,7 +49,7 @@ describe('verdict rows', () => {
     await user.tab()
     expect(document.activeElement).toHaveTextContent('7.63 mV')
     await user.keyboard('{Enter}')
-    const shown = screen.getByRole('dialog', { name: 'How reach of gain at the output comes about' })
+    const shown = await screen.findByRole('dialog', { name: 'How reach of gain at the output comes about' })
     await within(shown).findByText('Available reach on the tighter side times the effect.')
     expect(shown).toHaveTextContent('Definition of this page: solver, section 6')
     await user.click(within(shown).getByRole('button', { name: '0.0208 V/V' }))
