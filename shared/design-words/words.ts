@@ -6,8 +6,9 @@ import type { Which } from '../solver/types.ts'
 export const volts = (value: number): string => engineering(value, 'V')
 export const ohms = (value: number): string => engineering(value, 'Ω')
 export const bitsWord = (bits: number): string => (bits === 1 ? '1 bit' : `${bits} bits`)
+/** A part of a bit is no plural: 0.33 bit, 1.00 bit, 1.68 bits. */
 export const bitsAmount = (bits: number): string =>
-  `${fixed(bits, 2)} ${Math.abs(bits) === 1 ? 'bit' : 'bits'}`
+  `${fixed(bits, 2)} ${Math.abs(Number(bits.toFixed(2))) > 1 ? 'bits' : 'bit'}`
 export const nameOf = (which: Which): string => (which === 'gain' ? 'Gain' : 'Offset')
 
 /** A span as people write it: ±367 mV when both ends are alike to three digits, else both ends. */

@@ -2,14 +2,17 @@ import { type KeyboardEvent, memo, type ReactNode, useState } from 'react'
 import { Button } from '../../ui/button.tsx'
 import { KeyHint } from '../../ui/key-hint.tsx'
 import { SelectCell, TextCell } from './cells.tsx'
-import { type Said, useFormLinks } from './form-context.ts'
-import { both, type FormDoc, type Line, type LineField, lineField, type Which } from './form-doc.ts'
+import { type Said, useFieldText, useFormLinks } from './form-context.ts'
+import { both, type FormDoc, kOf, type Line, type LineField, lineField, type Which } from './form-doc.ts'
 import { Part } from './part.tsx'
 import { shapes, times } from './words.ts'
 
 const tones = { gain: 'text-copper', offset: 'text-tide' } as const
 const firstShown = 40
-const none: Partial<Record<LineField, string>> = {}
+const offeredShapes = new Set(shapes.map(([shape]) => shape).filter((shape) => shape !== 'normal '))
+const otherShape = (shape: string) => `normal k=${kOf(shape) ?? ''}`
+type Problems = Partial<Record<LineField | 'k', string>>
+const none: Problems = {}
 
 /** "390 ppm / 321 ppm", of the last answer; null while there is none. */
 export type Sums = Readonly<Record<Which, string | null>> & {
@@ -127,14 +130,10 @@ function Lines({
   )
 }
 
-function problemsOf(
-  problems: ReadonlyMap<string, string>,
-  which: Which,
-  id: number,
-): Partial<Record<LineField, string>> {
+function problemsOf(problems: ReadonlyMap<string, string>, which: Which, id: number): Problems {
   if (problems.size === 0) return none
-  const own: Partial<Record<LineField, string>> = {}
-  for (const name of ['name', 'limit', 'shape', 'when', 'nominal', 'pivot'] as const) {
+  const own: Problems = {}
+  for (const name of ['name', 'limit', 'shape', 'k', 'when', 'nominal', 'pivot'] as const) {
     const why = problems.get(lineField(which, id, name))
     if (why !== undefined) own[name] = why
   }
@@ -164,10 +163,12 @@ const LineRow = memo(function LineRow({
   id: number
   number: number
   hasBias: boolean
-  problems: Partial<Record<LineField, string>>
+  problems: Problems
 }) {
   const { store, isReadOnly } = useFormLinks()
-  const cell = (name: LineField, label: string) => ({
+  const shape = useFieldText(lineField(which, id, 'shape'))
+  const hasOtherK = kOf(shape) !== undefined && !offeredShapes.has(shape)
+  const cell = (name: LineField | 'k', label: string) => ({
     field: lineField(which, id, name),
     label: `${label}, ${which} line ${number}`,
     problem: problems[name],
@@ -200,7 +201,7 @@ const LineRow = memo(function LineRow({
         <TextCell {...cell('name', 'Line')} placeholder="name" />
       </span>
       <TextCell {...cell('limit', 'Limit')} placeholder={which === 'gain' ? 'ppm' : 'uV'} />
-      <SelectCell {...cell('shape', 'Shape')} options={shapes} />
+      <SelectCell {...cell('shape', 'Shape')} options={shapes} other={otherShape} />
       <SelectCell {...cell('when', 'When')} options={times} />
       {isReadOnly ? (
         <span />
@@ -214,6 +215,12 @@ const LineRow = memo(function LineRow({
           <span aria-hidden="true">×</span>
         </button>
       )}
+      {hasOtherK ? (
+        <span className="col-span-full mb-1 grid grid-cols-[auto_6rem_1fr] items-center gap-x-2 pl-3 text-small text-ink-2">
+          normal, limit is k standard deviations; k
+          <TextCell {...cell('k', 'k')} placeholder="3.3" />
+        </span>
+      ) : null}
       {hasBias ? (
         <span className="col-span-full mb-1 grid grid-cols-[auto_1fr_auto_1fr] items-center gap-x-2 pl-3 text-small text-ink-2">
           bias

@@ -60,11 +60,16 @@ export const SelectCell = memo(function SelectCell({
   problem,
   remark,
   options,
-}: Omit<CellProps, 'placeholder'> & { options: Options }) {
+  other,
+}: Omit<CellProps, 'placeholder'> & {
+  options: Options
+  /** Says what is not offered; one function for every drawing. */
+  other?: (text: string) => string
+}) {
   const { store, isReadOnly } = useFormLinks()
   const text = useFieldText(field)
   const id = useId()
-  const word = options.find(([value]) => value === text)?.[1] ?? text
+  const word = options.find(([value]) => value === text)?.[1] ?? other?.(text) ?? text
   if (isReadOnly) return <Printed text={word} remark={remark} />
   return (
     <span className="block min-w-0">

@@ -3,7 +3,7 @@ import { Button } from '../../ui/button.tsx'
 import { engineering, exact } from '../../ui/number-format.ts'
 import { Row, SelectCell, TextCell } from './cells.tsx'
 import { type Said, useFormLinks } from './form-context.ts'
-import { type RangeTexts, rangeField } from './form-doc.ts'
+import { both, type RangeField, type RangeTexts, rangeField } from './form-doc.ts'
 import { Part } from './part.tsx'
 import { codings, offsetPlaces } from './words.ts'
 
@@ -101,7 +101,9 @@ function RangeRows({
   name: number | null
 }) {
   const { store, isReadOnly } = useFormLinks()
-  const cell = (which: 'name' | 'ends' | 'sharedWith', label: string) => ({
+  // Where there are several ranges an adjuster may do something else in each.
+  const isOwn = name !== null || range.gainEffect !== '' || range.offsetEffect !== ''
+  const cell = (which: Exclude<RangeField, 'label' | 'offsetAt'>, label: string) => ({
     field: rangeField(range.id, which),
     label: name === null ? label : `${label} ${name}`,
     problem: problems.get(rangeField(range.id, which)),
@@ -137,8 +139,20 @@ function RangeRows({
           <TextCell {...cell('sharedWith', 'Codes shared with, range')} placeholder="none" />
         </Row>
       )}
+      {isOwn
+        ? both.map((which) => (
+            <Row key={which} label={`Effect of ${which}`} hint="in this range">
+              <TextCell
+                {...cell(`${which}Effect`, `Effect of ${which} in this range, slope and offset per V`)}
+                placeholder="as the adjuster's"
+              />
+            </Row>
+          ))
+        : null}
       {range.effects === '' ? null : (
-        <p className="text-small text-ink-2">This range has an effect of its own, as imported; it is kept.</p>
+        <p className="text-small text-ink-2">
+          This range has an effect of its own from circuit values, as imported; it is kept.
+        </p>
       )}
     </>
   )

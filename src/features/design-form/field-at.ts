@@ -1,4 +1,5 @@
 import { both, type FormDoc, type LineField, lineField, rangeField, type Which } from './form-doc.ts'
+import { shapes } from './words.ts'
 
 /** The field of the form that a JSON pointer into the document speaks of. What has no field of its own stands at its part. */
 export function fieldAt(doc: FormDoc, pointer: string): string {
@@ -6,7 +7,9 @@ export function fieldAt(doc: FormDoc, pointer: string): string {
   if (head === 'budget') return budgetField(doc, second, third, fourth)
   if (head === 'ranges') {
     const range = doc.ranges[Number(second)]
-    return range ? rangeField(range.id, rangeNames[third] ?? 'ends') : 'ranges'
+    if (!range) return 'ranges'
+    const effect = both.find((one) => third === 'effects' && one === fourth)
+    return rangeField(range.id, effect ? `${effect}Effect` : (rangeNames[third] ?? 'ends'))
   }
   if (head === 'adjusters') {
     const which = both.find((one) => one === second)
@@ -82,6 +85,9 @@ function budgetField(doc: FormDoc, second: string, third: string, fourth: string
   if (second !== 'gain' && second !== 'offset') return 'budget'
   const line = doc.lines[second][Number(third)]
   if (third === '' || line === undefined) return `budget.${second}`
+  // An offered k stands in the shape; another has a field of its own.
+  if (fourth === 'k' && !shapes.some(([shape]) => shape === line.shape))
+    return lineField(second, line.id, 'k')
   return lineField(second, line.id, lineNames[fourth] ?? 'name')
 }
 

@@ -4,11 +4,11 @@ export type Which = 'gain' | 'offset'
 export const both = ['gain', 'offset'] as const satisfies readonly Which[]
 
 export type LineField = 'name' | 'limit' | 'shape' | 'when' | 'nominal' | 'pivot'
-/** `shape` is the distribution, with its k where it is normal: "normal 2". */
+/** `shape` is the distribution, with its k where it is normal: "normal 2"; `k` is a field of its own that writes there. */
 export type Line = { readonly id: number } & Readonly<Record<LineField, string>>
 
-export type RangeField = 'name' | 'label' | 'ends' | 'offsetAt' | 'sharedWith'
-/** `effects` is what the form does not edit, as JSON, and hands on unchanged. */
+export type RangeField = 'name' | 'label' | 'ends' | 'offsetAt' | 'sharedWith' | 'gainEffect' | 'offsetEffect'
+/** `effects` is what the form does not edit, effects from circuit values, as JSON, and hands on unchanged. */
 export type RangeTexts = { readonly id: number } & Readonly<Record<RangeField | 'effects', string>>
 
 export type FormDoc = {
@@ -20,18 +20,27 @@ export type FormDoc = {
 }
 
 /** Names of fields: `bits`, `gain.slope`, `line.gain.4.limit`, `range.1.ends`. */
-export const lineField = (which: Which, id: number, name: LineField) => `line.${which}.${id}.${name}`
+export const lineField = (which: Which, id: number, name: LineField | 'k') => `line.${which}.${id}.${name}`
 export const rangeField = (id: number, name: RangeField | 'effects') => `range.${id}.${name}`
 
 const linePlace = /^line\.(gain|offset)\.(\d+)\.(\w+)$/
 const rangePlace = /^range\.(\d+)\.(\w+)$/
+
+/** The k of a normal shape as it is typed; undefined where the shape has none. */
+export const kOf = (shape: string): string | undefined => /^normal (.*)$/s.exec(shape)?.[1]
+
+/** The fields that a key in one changes: a k is part of its line's shape. */
+export function fieldsWith(field: string): string[] {
+  const line = /^(line\.\w+\.\d+)\.(?:k|shape)$/.exec(field)
+  return line ? [`${line[1]}.k`, `${line[1]}.shape`] : [field]
+}
 
 /** The text of a field, empty where there is none. */
 export function textOf(doc: FormDoc, field: string): string {
   const line = linePlace.exec(field)
   if (line) {
     const found = doc.lines[line[1] as Which].find(({ id }) => id === Number(line[2]))
-    return found?.[line[3] as LineField] ?? ''
+    return line[3] === 'k' ? (kOf(found?.shape ?? '') ?? '') : (found?.[line[3] as LineField] ?? '')
   }
   const range = rangePlace.exec(field)
   if (range) return doc.ranges.find(({ id }) => id === Number(range[1]))?.[range[2] as RangeField] ?? ''
@@ -45,7 +54,8 @@ export function withText(doc: FormDoc, field: string, text: string): FormDoc {
   if (line) {
     const which = line[1] as Which
     const id = Number(line[2])
-    const lines = doc.lines[which].map((one) => (one.id === id ? { ...one, [line[3]!]: text } : one))
+    const change = line[3] === 'k' ? { shape: `normal ${text}` } : { [line[3]!]: text }
+    const lines = doc.lines[which].map((one) => (one.id === id ? { ...one, ...change } : one))
     return { ...doc, lines: { ...doc.lines, [which]: lines } }
   }
   const range = rangePlace.exec(field)

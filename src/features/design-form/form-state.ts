@@ -1,4 +1,4 @@
-import { type FormDoc, type Line, type Which, withText, withTexts } from './form-doc.ts'
+import { type FormDoc, type Line, type RangeTexts, type Which, withText, withTexts } from './form-doc.ts'
 
 /** The form with all its steps: undo goes back to the first. */
 export type FormState = {
@@ -134,17 +134,20 @@ function withRange(doc: FormDoc): FormDoc {
   const names = new Set(doc.ranges.map(({ name }) => name))
   let n = doc.ranges.length + 1
   while (names.has(`r${n}`)) n++
-  const range = {
-    id: doc.nextId,
-    name: `r${n}`,
-    label: '',
-    ends: '',
-    offsetAt: 'zero-volts',
-    sharedWith: '',
-    effects: '',
-  }
-  return { ...doc, ranges: [...doc.ranges, range], nextId: doc.nextId + 1 }
+  return { ...doc, ranges: [...doc.ranges, newRange(doc.nextId, `r${n}`)], nextId: doc.nextId + 1 }
 }
+
+export const newRange = (id: number, name: string): RangeTexts => ({
+  id,
+  name,
+  label: '',
+  ends: '',
+  offsetAt: 'zero-volts',
+  sharedWith: '',
+  gainEffect: '',
+  offsetEffect: '',
+  effects: '',
+})
 
 const without = <T extends { id: number }>(list: readonly T[], id: number): readonly T[] =>
   list.some((one) => one.id === id) ? list.filter((one) => one.id !== id) : list

@@ -1,3 +1,4 @@
+import { fieldsWith } from './form-doc.ts'
 import { type FormAction, type FormState, formReducer } from './form-state.ts'
 
 /** The form beside React: a key is heard by its own cell and by what answers it, and draws nothing else again. */
@@ -21,7 +22,8 @@ export function createFormStore(first: FormState): FormStore {
       // That a field was left changes nothing that is shown.
       if (state.doc === before.doc && state.before === before.before) return
       const isKey = action.do === 'set'
-      const concerned = isKey ? [cells.get(action.field)] : cells.values()
+      const concerned =
+        action.do === 'set' ? fieldsWith(action.field).map((field) => cells.get(field)) : cells.values()
       for (const cell of concerned) for (const hear of cell ?? []) hear()
       for (const hear of hearers) hear(isKey)
     },

@@ -4,7 +4,7 @@ import { limits } from '../../../shared/limits.ts'
 import { parseCode } from '../../../shared/quantity/code.ts'
 import { evenCodes } from './even-codes.ts'
 import { fieldAt } from './field-at.ts'
-import { type FormDoc, type RangeTexts, rangeField, type Which } from './form-doc.ts'
+import { both, type FormDoc, type RangeTexts, rangeField, type Which } from './form-doc.ts'
 import { readAdjuster } from './read-adjuster.ts'
 import { readLines } from './read-lines.ts'
 import {
@@ -120,9 +120,23 @@ function readRange(reader: Reader, range: RangeTexts): object {
     lowV: ends?.low,
     highV: ends?.high,
     offsetAt: range.offsetAt || 'zero-volts',
-    effects: range.effects === '' ? undefined : JSON.parse(range.effects),
+    effects: readEffects(reader, range),
     sharedWith: shared.length === 0 ? undefined : shared,
   })
+}
+
+/** "1e-3 /V, 0.01 V/V": slope and offset per volt of an adjuster in this range alone, in the place of its own. */
+function readEffects(reader: Reader, range: RangeTexts): object | undefined {
+  const effects: Record<string, unknown> = range.effects === '' ? {} : JSON.parse(range.effects)
+  for (const which of both) {
+    const text = range[`${which}Effect`]
+    const place = rangeField(range.id, `${which}Effect`)
+    const read = readMixed(reader, place, text, 'Effect', ['/V', 'V/V'], 'any')
+    if (read.size > 0) {
+      effects[which] = stated({ kind: 'measured', slopePerV: read.get('/V'), offsetPerV: read.get('V/V') })
+    }
+  }
+  return Object.keys(effects).length === 0 ? undefined : effects
 }
 
 /** Nothing stated at all is no `sizing`: the defaults are the solver's. */

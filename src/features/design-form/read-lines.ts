@@ -1,4 +1,4 @@
-import { type FormDoc, type Line, type LineField, lineField, type Which } from './form-doc.ts'
+import { type FormDoc, kOf, type Line, type LineField, lineField, type Which } from './form-doc.ts'
 import { type Arithmetic, newReader, type Reader, readNumber, stated } from './reader.ts'
 
 type ReadLine = { line: object; problems: ReadonlyMap<string, string>; isPending: boolean }
@@ -29,13 +29,17 @@ export function readLines(reader: Reader, doc: FormDoc, which: Which): object[] 
 
 function readLine(arithmetic: Arithmetic, which: Which, line: Line): ReadLine {
   const own = newReader(arithmetic)
-  const place = (name: LineField) => lineField(which, line.id, name)
+  const place = (name: LineField | 'k') => lineField(which, line.id, name)
   const unit = which === 'gain' ? 'ppm' : 'V'
   if (line.name.trim() === '') own.problems.set(place('name'), 'Line is missing: name what it limits.')
   const limit = readNumber(own, place('limit'), line.limit, { label: 'Limit', unit, rule: 'not-negative' })
   const nominal = readNumber(own, place('nominal'), line.nominal, { label: 'Bias', unit, optional: true })
-  const [distribution, k] = line.shape.split(' ')
-  const shared = { name: line.name.trim(), distribution, k: k === undefined ? undefined : Number(k) }
+  const typedK = kOf(line.shape)
+  const k =
+    typedK === undefined
+      ? undefined
+      : readNumber(own, place('k'), typedK, { label: 'k', unit: '', rule: 'positive' })
+  const shared = { name: line.name.trim(), distribution: line.shape.split(' ')[0], k }
   const read =
     which === 'gain'
       ? {

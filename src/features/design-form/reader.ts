@@ -144,12 +144,13 @@ export function readMixed(
   text: string,
   label: string,
   units: readonly string[],
+  rule: Rule | 'any' = 'not-negative',
 ): ReadonlyMap<string, number> {
   const found = new Map<string, number>()
   if (text.trim() === '') return found
   const [unit = '', ...also] = units
   for (const part of text.split(',')) {
-    const read = readQuantity(reader, field, part, { label, unit, also, rule: 'not-negative' })
+    const read = readQuantity(reader, field, part, { label, unit, also, ...(rule === 'any' ? {} : { rule }) })
     if (read === undefined) continue
     if (found.has(read.unit)) wrong(reader, field, `${label} states ${read.unit} twice.`)
     found.set(read.unit, read.value)

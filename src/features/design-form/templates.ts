@@ -1,5 +1,5 @@
 import type { FormDoc } from './form-doc.ts'
-import { newLine } from './form-state.ts'
+import { newLine, newRange } from './form-state.ts'
 import type { TemplateName } from './template-list.ts'
 
 const gain = {
@@ -61,15 +61,6 @@ const plan = {
 /** A new design from a template, under a title that a person will change. */
 export function fromTemplate(name: TemplateName, title: string): FormDoc {
   const hasOffset = name !== 'gain-only'
-  const range = {
-    id: 1,
-    name: 'main',
-    label: '',
-    ends: '',
-    offsetAt: 'zero-volts',
-    sharedWith: '',
-    effects: '',
-  }
   const ofGain = { ...newLine(2), name: 'Gain error', limit: '300 ppm' }
   const ofOffset = { ...newLine(3), name: 'Amplifier offset', limit: '50 uV' }
   return {
@@ -81,7 +72,7 @@ export function fromTemplate(name: TemplateName, title: string): FormDoc {
       ...(name === 'bipolar' ? { coding: 'twos-complement' } : {}),
     },
     lines: { gain: [ofGain], offset: hasOffset ? [ofOffset] : [] },
-    ranges: [range],
+    ranges: [newRange(1, 'main')],
     nextId: 4,
   }
 }

@@ -22,7 +22,7 @@ export function toForm(design: Design): FormDoc {
       ends: endsText(range.lowV, range.highV),
       offsetAt: range.offsetAt,
       sharedWith: (range.sharedWith ?? []).join(', '),
-      effects: stated(range.effects, JSON.stringify),
+      ...effectsTexts(range.effects),
     }),
   )
   const gain = (design.budget?.gain ?? []).map(
@@ -51,6 +51,24 @@ export function toForm(design: Design): FormDoc {
   }
   for (const which of both) Object.assign(values, adjusterTexts(which, design.adjusters[which]))
   return { values, lines: { gain, offset }, ranges, nextId: id }
+}
+
+/** Measured effects of a range of its own as they are typed; those from circuit values are handed on as they are. */
+function effectsTexts(effects: Design['ranges'][number]['effects']) {
+  const kept: Record<string, unknown> = {}
+  const typed = { gainEffect: '', offsetEffect: '' }
+  for (const which of both) {
+    const effect = effects?.[which]
+    if (effect?.kind === 'measured') {
+      typed[`${which}Effect`] = [
+        stated(effect.slopePerV, (v) => (v === 0 ? '0 /V' : perVoltText(v, '/V'))),
+        stated(effect.offsetPerV, (v) => (v === 0 ? '0 V/V' : perVoltText(v, 'V/V'))),
+      ]
+        .filter(Boolean)
+        .join(', ')
+    } else if (effect !== undefined) kept[which] = effect
+  }
+  return { ...typed, effects: Object.keys(kept).length === 0 ? '' : JSON.stringify(kept) }
 }
 
 function lineTexts(

@@ -79,7 +79,16 @@ function checked(value: unknown): WhatIf | null {
 }
 
 const lineNames = ['name', 'limit', 'shape', 'when', 'nominal', 'pivot']
-const rangeNames = ['name', 'label', 'ends', 'offsetAt', 'sharedWith', 'effects']
+const rangeNames = [
+  'name',
+  'label',
+  'ends',
+  'offsetAt',
+  'sharedWith',
+  'gainEffect',
+  'offsetEffect',
+  'effects',
+]
 
 function isRow(row: unknown, names: readonly string[]): boolean {
   if (!isObject(row) || !Number.isSafeInteger(row.id)) return false

@@ -33,6 +33,7 @@ export const shapes: Options = [
   ['normal 1', 'normal k=1'],
   ['normal 2', 'normal k=2'],
   ['normal 3', 'normal k=3'],
+  ['normal ', 'normal, other k'],
 ]
 export const times: Options = [
   ['initial', 'initial'],

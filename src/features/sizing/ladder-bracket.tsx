@@ -1,10 +1,10 @@
-import { volts } from '../../../shared/design-words/words.ts'
+import { bitsAmount, volts } from '../../../shared/design-words/words.ts'
 import type { Ladder } from '../../../shared/solver/sizing/ladder.ts'
 import { PlotText } from '../../ui/plot/axes.tsx'
 import { type EndLabel, EndLabels } from '../../ui/plot/end-labels.tsx'
 import { bracketGap, halfRails, type LadderFrame } from './ladder-frame.ts'
 import { ladderColours } from './ladder-rungs.tsx'
-import { bitsText, isShort } from './ladder-words.ts'
+import { isShort } from './ladder-words.ts'
 
 /** Said by the ladder's own sentences. */
 const silent = { 'aria-hidden': true }
@@ -81,22 +81,22 @@ function bracketLabels(ladder: Ladder, { y }: LadderFrame): EndLabel[] {
     { y: bottom, text: `allows ${volts(bracket.bottomV)}`, colour: 'var(--ink)', weight: 600 },
   ]
   if (isShort(ladder)) {
-    const text = shortBits > 0 ? `short ${bitsText(shortBits)}` : 'short, no reach'
+    const text = shortBits > 0 ? `short ${bitsAmount(shortBits)}` : 'short, no reach'
     ends.push({ y: top - line, text, colour: 'var(--bad)', weight: 600 })
     ends.push({ y: reachV > 0 ? y(reachV) : bottom - line, text: `reach ${volts(reachV)}`, colour: own })
   } else {
-    ends.push({ y: top - line, text: `${bitsText(spareAboveBits)} spare`, colour: 'var(--ink-2)' })
+    ends.push({ y: top - line, text: `${bitsAmount(spareAboveBits)} spare`, colour: 'var(--ink-2)' })
   }
   if (coarseBits > 0) {
     ends.push({
       y: bottom + line,
-      text: `coarse by ${bitsText(coarseBits)}`,
+      text: `coarse by ${bitsAmount(coarseBits)}`,
       colour: 'var(--caution)',
       weight: 600,
     })
     ends.push({ y: y(stepV), text: `step ${volts(stepV)}`, colour: own })
   } else {
-    ends.push({ y: bottom + line, text: `${bitsText(spareBelowBits)} spare`, colour: 'var(--ink-2)' })
+    ends.push({ y: bottom + line, text: `${bitsAmount(spareBelowBits)} spare`, colour: 'var(--ink-2)' })
   }
   return ends
 }

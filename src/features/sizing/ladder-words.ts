@@ -1,4 +1,4 @@
-import { volts } from '../../../shared/design-words/words.ts'
+import { bitsAmount, volts } from '../../../shared/design-words/words.ts'
 import type { Ladder, Rung } from '../../../shared/solver/sizing/ladder.ts'
 import { fixed } from '../../ui/number-format.ts'
 import type { PlotTableData } from '../../ui/plot/plot-figure.tsx'
@@ -6,10 +6,6 @@ import { labelDecimals } from '../../ui/plot/plot-numbers.ts'
 import { verdictWord } from '../../ui/verdict.tsx'
 
 /** What the ladder says: to the eye beside its marks, to the ear one sentence a rung. */
-
-/** "0.33 bit", "2.35 bits". */
-export const bitsText = (bits: number): string =>
-  `${fixed(bits, 2)} ${Number(bits.toFixed(2)) > 1 ? 'bits' : 'bit'}`
 
 export const verdictNames = { covers: 'covers', short: 'short', coarse: 'too-coarse', both: 'both' } as const
 
@@ -42,8 +38,8 @@ export function reachSentence({ reachV, bracket, shortBits, spareAboveBits }: La
   const needed = `${reach}, ${volts(bracket.topV)} needed`
   if (reachV <= 0) return `${needed}, nothing is reached on that side.`
   return shortBits > 0
-    ? `${needed}, short by ${bitsText(shortBits)}.`
-    : `${needed}, ${bitsText(spareAboveBits)} to spare.`
+    ? `${needed}, short by ${bitsAmount(shortBits)}.`
+    : `${needed}, ${bitsAmount(spareAboveBits)} to spare.`
 }
 
 /** "Step 3.73 µV, 19.1 µV allowed, 2.35 bits to spare." */
@@ -52,8 +48,8 @@ export function stepSentence({ stepV, bracket, coarseBits, spareBelowBits }: Lad
   if (bracket === null) return `${step}.`
   const allowed = `${step}, ${volts(bracket.bottomV)} allowed`
   return coarseBits > 0
-    ? `${allowed}, too coarse by ${bitsText(coarseBits)}.`
-    : `${allowed}, ${bitsText(spareBelowBits)} to spare.`
+    ? `${allowed}, too coarse by ${bitsAmount(coarseBits)}.`
+    : `${allowed}, ${bitsAmount(spareBelowBits)} to spare.`
 }
 
 /** The whole ladder in one breath, for a screen reader. */

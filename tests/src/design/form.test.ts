@@ -67,6 +67,49 @@ describe('a document as texts and back', () => {
     })
     expect(read(toForm(document)).document).toEqual(JSON.parse(JSON.stringify(document)))
   })
+
+  test('a measured effect of a range is typed; one from circuit values is handed on', () => {
+    const summing = { kind: 'output-summing', feedbackOhm: 1e4, adjustOhm: 2e6, inverting: true } as const
+    const document = designDocument.parse({
+      ...design,
+      ranges: [
+        design.ranges[0],
+        {
+          id: 'b5',
+          lowV: -5,
+          highV: 5,
+          effects: { gain: { kind: 'measured', slopePerV: -1e-3, offsetPerV: 0 }, offset: summing },
+        },
+      ],
+    })
+    const texts = toForm(document)
+    const { id } = texts.ranges[1]!
+    expect(texts.ranges[1]).toMatchObject({ gainEffect: '-1e-3 /V, 0 V/V', offsetEffect: '' })
+    expect(read(texts).document).toEqual(document)
+    const typed = read(withText(texts, `range.${id}.gainEffect`, '4e-3 /V, 0.02 V/V'))
+    expect(typed.document?.ranges[1]?.effects).toEqual({
+      gain: { kind: 'measured', slopePerV: 0.004, offsetPerV: 0.02 },
+      offset: summing,
+    })
+    const wrong = read(withText(texts, `range.${id}.gainEffect`, '4 mV'))
+    expect([...wrong.problems.keys()]).toEqual([`range.${id}.gainEffect`])
+    expect(fieldAt(texts, '/ranges/1/effects/gain/slopePerV')).toBe(`range.${id}.gainEffect`)
+  })
+
+  test('any k of a normal line is typed; without one it is said to be missing', () => {
+    const line = `line.offset.${form.lines.offset[0]!.id}`
+    const other = withTexts(form, { [`${line}.shape`]: 'normal ' })
+    expect(Object.fromEntries(read(other).problems)).toEqual({ [`${line}.k`]: 'k is missing.' })
+    const typed = withText(other, `${line}.k`, '3.3')
+    expect(textOf(typed, `${line}.k`)).toBe('3.3')
+    expect(read(typed).document?.budget?.offset[0]).toMatchObject({ distribution: 'normal', k: 3.3 })
+    expect(textOf(toForm(read(typed).document!), `${line}.k`)).toBe('3.3')
+    expect(read(withText(other, `${line}.k`, '0')).problems.get(`${line}.k`)).toBe(
+      'k is 0; it must be over 0.',
+    )
+    expect(fieldAt(typed, '/budget/offset/0/k')).toBe(`${line}.k`)
+    expect(fieldAt(form, '/budget/offset/0/k')).toBe(`${line}.shape`)
+  })
 })
 
 function randomDesign(seed: number): Design {

@@ -1,4 +1,4 @@
-import { render, screen, within } from '@testing-library/react'
+import { render, screen, waitFor, within } from '@testing-library/react'
 import { userEvent } from '@testing-library/user-event'
 import { describe, expect, test, vi } from 'vitest'
 import { SmallLadder } from '../../../src/features/sizing/small-ladder.tsx'
@@ -159,7 +159,9 @@ test('shown as a table, copied as CSV with every digit and as SVG in light colou
   })
   show()
   await user.click(screen.getByRole('button', { name: 'SVG' }))
+  await waitFor(() => expect(copied).toHaveLength(1))
   await user.click(screen.getByRole('button', { name: 'CSV' }))
+  await waitFor(() => expect(copied).toHaveLength(2))
   expect(copied[0]).toContain('#a64b12')
   expect(copied[0]).not.toContain('var(')
   const [head, first] = copied[1]!.split('\r\n')
