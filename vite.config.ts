@@ -17,13 +17,13 @@ const sizingModules = /shared\/solver\/sizing\/(?!measured-units|tolerance-facto
 
 // What nearly every page has, and what every page that computes has: small pieces that pack smaller together.
 const pageModules =
-  /src\/(?:lib\/keys|features\/bench\/outbox|ui\/(?:dialog|empty|key-hint|page-head|page-problem|quantity|section|table|time-text|use-scrolls))\./
+  /src\/(?:lib\/keys|features\/bench\/outbox|ui\/(?:dialog|empty|key-hint|page-head|page-problem|quantity|section|table|time-text|use-scrolls|verdict|verdict-shape))\./
 const solverModules =
   /shared\/(?:solver\/(?:adjuster|channel|converter|effects|network|point-rules|prepare-trim|solve-exact|version|distribution\/elementary))\.ts/
 
 // The frame of every plot, on Design, Bench and a record's page.
 const plotModules =
-  /src\/ui\/(?:plot\/(?:axes|end-labels|plot-figure|plot-numbers|plot-svg|use-width|walk-points)|segmented)\./
+  /src\/ui\/(?:plot\/(?:axes|copy-csv|end-labels|plot-figure|plot-numbers|plot-svg|use-width|walk-points)|segmented|when-near)\./
 
 /** The web application. In development the server mounts Vite in middleware mode, so there is no proxy here. */
 export default defineConfig({
