@@ -4,9 +4,9 @@ import { allEndpoints } from '../../shared/contract/all-endpoints.ts'
 import { problem } from '../../shared/contract/problem.ts'
 import { errorTable } from '../../shared/errors.ts'
 import { limits } from '../../shared/limits.ts'
-import { api, newKey, post } from '../support/server-client.ts'
+import { api, newKey, post, signIn } from '../support/server-client.ts'
 import { trimBody, unipolar } from '../support/server-factories.ts'
-import type { Harness } from '../support/server-harness.ts'
+import { addPerson, type Harness } from '../support/server-harness.ts'
 import { serverScene } from '../support/server-scene.ts'
 
 let harness: Harness
@@ -183,13 +183,16 @@ describe('problems (S4)', () => {
   })
 
   it('ASVS V15.3.3 V8.2.3 fields that are not offered are refused wherever there is a body', async () => {
-    const asRole = { administrator: admin, engineer, operator: engineer }
+    await addPerson(harness, 'auditor')
+    const auditor = { cookie: await signIn(url, 'auditor@example.org') }
+    const asRole = { administrator: admin, engineer, operator: engineer, auditor }
     for (const endpoint of allEndpoints.filter(
       (one) => one.body && one.id !== 'signIn' && one.id !== 'setUp',
     )) {
       if (endpoint.access === 'open') continue
-      const who = asRole[endpoint.access.roles[0] as 'administrator']
+      const who = asRole[endpoint.access.roles[0]!]
       const path = endpoint.path
+        .replace('/instruments/:id', '/instruments/DMM-1')
         .replace(':id', '01a230b2-a46d-7315-89af-a51980fdfb2a')
         .replace(':key', 'U18')
         .replace(':number', '1')
@@ -198,13 +201,13 @@ describe('problems (S4)', () => {
       const sent = api(url, verb, path, { ...who, key: newKey() }).buffer(true)
       if (endpoint.ndjson) sent.set('Content-Type', 'application/x-ndjson')
       const reply = await sent.send(
-        endpoint.ndjson ? '{"isAdmin":true,"id":"x"}' : { isAdmin: true, id: 'x' },
+        endpoint.ndjson ? '{"isAdmin":true,"createdBy":"x"}' : { isAdmin: true, createdBy: 'x' },
       )
       // A line of a block has its problem in its own answer.
       const problem = endpoint.ndjson ? JSON.parse(reply.text.split('\n')[0]!).problem : reply.body
       expect(problem.status, endpoint.id).toBe(422)
       const paths = problem.errors.map((error: { path: string }) => error.path)
-      expect(paths, endpoint.id).toEqual(expect.arrayContaining(['/isAdmin', '/id']))
+      expect(paths, endpoint.id).toEqual(expect.arrayContaining(['/isAdmin', '/createdBy']))
     }
   })
 
