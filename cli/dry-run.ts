@@ -6,12 +6,11 @@ import { getTrim } from '../shared/contract/trims.ts'
 import { findUnits, type Unit } from '../shared/contract/units.ts'
 import { OgeeError } from '../shared/errors.ts'
 import { computeCodes } from '../shared/solver/codes.ts'
-import type { PreviousPass } from '../shared/solver/learn.ts'
 import { verifyPoints } from '../shared/solver/verify.ts'
 import type { Client } from './client.ts'
 import { designFrom } from './design-file.ts'
 import { parseJson } from './files.ts'
-import { previousFrom } from './previous.ts'
+import { learnedFrom } from './learned.ts'
 import type { DryRecord } from './record-rendering.ts'
 import type { RequestBody } from './request.ts'
 import { fetchRevision } from './revision.ts'
@@ -39,6 +38,8 @@ export async function dryRun(client: Asking, body: RequestBody): Promise<DryReco
   const applied = appliedBy(body, current, before)
   const instrument = await instrumentNamed(client, body.conditions?.instrument)
   const limits = { rangeId: range, ...(instrument ? { instrument } : {}) }
+  const isLearned = body.effects === 'learned' && before !== null
+  const learned = isLearned ? await learnedFrom(client, before, applied, { design, range }) : undefined
   return {
     format: 'ogee.record/1',
     id: null,
@@ -58,7 +59,7 @@ export async function dryRun(client: Asking, body: RequestBody): Promise<DryReco
     conditions: body.conditions ?? {},
     ...(body.kind === 'verify'
       ? verified(design, body, limits)
-      : trimmed(design, body, { ...limits, applied, learned: learnedFrom(body, before) })),
+      : trimmed(design, body, { ...limits, applied, learned })),
     notices: [],
     station: null,
     measuredAt: body.measuredAt ?? null,
@@ -153,8 +154,4 @@ async function recordBefore(
   if (id === undefined)
     throw new OgeeError('follows-unknown', 'There is no record of this unit, channel and range to follow.')
   return await client.call(getTrim, { params: { id } })
-}
-
-function learnedFrom({ effects }: RequestBody, before: StoredRecord | null): PreviousPass | undefined {
-  return effects === 'learned' && before ? previousFrom(before, `Record ${before.number}`) : undefined
 }

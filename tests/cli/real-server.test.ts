@@ -108,6 +108,20 @@ describe('the line from points to recorded codes', () => {
     }
   })
 
+  test('a second pass after a check: the same numbers dry and recorded, learned through the check', async () => {
+    const first = record.parse(JSON.parse((await run(trim('CLI-5'), { input: points })).stdout))
+    const codes = first.result?.format === 'ogee.codes/1' ? first.result.trim.codes : null
+    const check = ['check', '--design', design, '--unit', 'CLI-5', '--channel', '1', '--points', '-']
+    const left = points.replaceAll(/(\d)(?=[;\n])/g, '7')
+    expect([0, 13, 14, 15]).toContain((await run(check, { input: left })).code)
+    const applied = `gain=${codes?.gain},offset=${codes?.offset}`
+    const again = trim('CLI-5', '--applied', applied, '--follows', 'last', '--effects', 'learned')
+    const dry = JSON.parse((await run([...again, '--dry-run'], { input: left })).stdout)
+    const second = record.parse(JSON.parse((await run(again, { input: left })).stdout))
+    expect(dry.result).toEqual(second.result)
+    expect(dry).toMatchObject({ pass: 2, follows: second.follows })
+  })
+
   test('the same key with another body is refused', async () => {
     await run(trim('CLI-2', '--key', 'K2'), { input: points })
     const ran = await run(trim('CLI-2', '--key', 'K2', '--note', 'other'), { input: points })
