@@ -192,6 +192,7 @@ async function sendLines(
   const type = endpoint.ndjson ? 'application/x-ndjson' : endpoint.reply.mediaType
   response.setHeader('Content-Type', `${type}; charset=utf-8`)
   for await (const some of lines) {
+    if (some.length === 0) continue
     const block = some instanceof Uint8Array ? some : `${some.join('\n')}\n`
     if (check && endpoint.ndjson) {
       for (const line of block.toString().trimEnd().split('\n')) requireAsAgreed(endpoint, JSON.parse(line))

@@ -1,6 +1,7 @@
+import { spawn } from 'node:child_process'
 import { createHash } from 'node:crypto'
 import { once } from 'node:events'
-import { writeFileSync } from 'node:fs'
+import { readFileSync, writeFileSync } from 'node:fs'
 import { join } from 'node:path'
 import { setTimeout as sleep } from 'node:timers/promises'
 import { afterAll, beforeAll, beforeEach, describe, expect, test } from 'vitest'
@@ -8,7 +9,7 @@ import { batchLine } from '../../shared/contract/batches.ts'
 import { record } from '../../shared/contract/record.ts'
 import { canonicalBytes, type Json } from '../../shared/ledger/canonical.ts'
 import { batchAnswer, examplePoints, linesOf, recordOf } from './support/answers.ts'
-import { builtCli, problemOf, type Ran, type RunOptions } from './support/built-cli.ts'
+import { builtCli, ended, problemOf, type Ran, type RunOptions } from './support/built-cli.ts'
 import { FakeServer, problem, type Reply } from './support/fake-server.ts'
 
 const cli = builtCli()
@@ -390,6 +391,32 @@ describe('streams', () => {
     for (let waited = 0; server.seen.length === 0 && waited < 20_000; waited += 20) await sleep(20)
     child.kill('SIGINT')
     expect((await once(child, 'exit'))[0]).toBe(130)
+  })
+
+  test('a full disk is 74, and what was recorded stays recorded', async () => {
+    const file = join(cli.folder, 'full.csv')
+    writeFileSync(file, csvOf(...numbered(10)))
+    const line = `'${process.execPath}' '${cli.path}' batch '${file}' --design DBS-A --format csv > /dev/full`
+    const child = spawn('bash', ['-c', line], {
+      env: { ...env(), PATH: process.env.PATH ?? '', HOME: cli.folder },
+    })
+    const ran = await ended(child)
+    expect(ran.code).toBe(74)
+    expect(ran.stderr).toContain('Standard output failed: ENOSPC. Everything up to line 47 was done.')
+  })
+
+  test('L3: progress on a terminal, without escape bytes; the summary after it', async () => {
+    const file = join(cli.folder, 'progress.csv')
+    writeFileSync(file, csvOf(...numbered(2_000)))
+    const line = `'${process.execPath}' '${cli.path}' batch '${file}' --design DBS-A --format csv > '${file}.out'`
+    const child = spawn('script', ['-qec', line, '/dev/null'], {
+      env: { ...env(), PATH: process.env.PATH ?? '', HOME: cli.folder, TERM: 'xterm' },
+    })
+    const { stdout } = await ended(child)
+    expect(stdout).toMatch(/\r\d[\d ]* units, 0 not good, [\d ]+ a second/)
+    expect(stdout).toContain('ogee: 2 000 units: 2 000 ok.')
+    expect(stdout).not.toContain('\u001b')
+    expect(readFileSync(`${file}.out`, 'utf8').trimEnd().split('\n')).toHaveLength(2_001)
   })
 
   test('a slow reader gets all of it, whole', async () => {

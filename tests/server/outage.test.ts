@@ -119,6 +119,38 @@ describe('while the database is down', () => {
   })
 })
 
+describe('a block during an outage', () => {
+  /** Gives the status of each line. */
+  const block = async (lines: readonly object[]) => {
+    const reply = await fetch(`${served.url}/api/v1/batches`, {
+      method: 'POST',
+      headers: { authorization: `Bearer ${station.token}`, 'content-type': 'application/x-ndjson' },
+      body: lines.map((line) => `${JSON.stringify(line)}\n`).join(''),
+    })
+    const answers = (await reply.text()).trimEnd().split('\n')
+    return answers.slice(0, -1).map((line) => (JSON.parse(line) as { status: number }).status)
+  }
+
+  it('every line hears 503 after one wait, not one wait a step; the same block completes later', async () => {
+    await trim('B-0')
+    const lines = Array.from({ length: 300 }, (_, i) => ({ key: newKey(), ...trimBody({ unit: `B-${i}` }) }))
+    mode = 'swallow'
+    const start = performance.now()
+    const statuses = await block(lines.slice(1))
+    expect(performance.now() - start).toBeLessThan(30_000)
+    expect(statuses).toEqual(Array.from({ length: 299 }, () => 503))
+    mode = 'through'
+    cutAll()
+    await expect
+      .poll(async () => (await block(lines.slice(1))).every((status) => status === 201), { timeout: 20_000 })
+      .toBe(true)
+    const [row] = await harness.database.sql.rows<{ n: number }>(
+      "SELECT COUNT(*) AS n FROM records WHERE unit LIKE 'B-%'",
+    )
+    expect(Number(row!.n)).toBe(300)
+  })
+})
+
 describe('a slow database', () => {
   it('answers in bounded time: recorded, or an outage after which the same key finds what was done', async () => {
     expect((await trim('Slow-0')).status).toBe(201)
