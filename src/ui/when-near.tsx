@@ -28,7 +28,12 @@ export function WhenNear({
     }
   }, [isNear])
   return (
-    <div ref={place} data-when-near={name} style={isNear ? undefined : { minHeight }}>
+    <div
+      ref={place}
+      data-when-near={name}
+      style={isNear ? undefined : { minHeight }}
+      className={isNear ? undefined : 'print:hidden'}
+    >
       {isNear ? children : null}
     </div>
   )

@@ -26,7 +26,10 @@ export function AdjustersPart({ doc, said }: { doc: FormDoc; said: Said }) {
         const label = rowLabel(row)
         return (
           <div key={`${row.gain?.name}|${row.offset?.name}`} className={columns}>
-            <span className="pt-[4px] text-small leading-4 text-ink-2" aria-hidden="true">
+            <span
+              className="pt-[4px] text-small leading-4 text-ink-2 print:pt-0 print:leading-[18px]"
+              aria-hidden="true"
+            >
               {label}
             </span>
             {both.map((which) => {
@@ -34,7 +37,10 @@ export function AdjustersPart({ doc, said }: { doc: FormDoc; said: Said }) {
               return asking ? (
                 <AdjusterCell key={which} which={which} asking={asking} said={said} />
               ) : (
-                <span key={which} className="px-1 pt-[4px] text-small text-ink-3">
+                <span
+                  key={which}
+                  className="px-1 pt-[4px] text-small text-ink-3 print:pt-0 print:leading-[18px]"
+                >
                   none
                 </span>
               )

@@ -34,7 +34,7 @@ export const BudgetPart = memo(function BudgetPart({
 }) {
   const { isReadOnly } = useFormLinks()
   const side = isReadOnly ? null : (
-    <span>
+    <span className="print:hidden">
       add a line <KeyHint keys="Enter" />
     </span>
   )

@@ -109,7 +109,7 @@ function Printed({ text, remark }: { text: string; remark: string | undefined })
 function PrintedText({ text }: { text: string }) {
   return (
     <span aria-hidden="true" className="hidden min-h-5 px-1 print:block">
-      {text === '' ? 'not stated' : text}
+      {text === '' ? 'not stated' : text.replaceAll('-', minus)}
     </span>
   )
 }
@@ -135,11 +135,11 @@ function Said({
 export function Row({ label, hint, children }: { label: ReactNode; hint?: ReactNode; children: ReactNode }) {
   return (
     <div className="grid grid-cols-[6.75rem_minmax(0,9.5rem)_minmax(0,1fr)] items-start gap-x-2 print:grid-cols-[6rem_minmax(0,1fr)_minmax(0,1fr)]">
-      <span className="pt-[4px] text-small text-ink-2" aria-hidden="true">
+      <span className="pt-[4px] text-small text-ink-2 print:pt-0 print:leading-[18px]" aria-hidden="true">
         {label}
       </span>
       {children}
-      <span className="pt-[4px] text-small text-ink-3">{hint}</span>
+      <span className="pt-[4px] text-small text-ink-3 print:pt-0 print:leading-[18px]">{hint}</span>
     </div>
   )
 }

@@ -1,3 +1,4 @@
+import type { ReactNode } from 'react'
 import type { DesignLine } from '../../../shared/contract/designs.ts'
 import { paths } from '../../lib/paths.ts'
 import { LinkButton } from '../../ui/button.tsx'
@@ -5,13 +6,23 @@ import { None, RowHead, Table, Td, Th } from '../../ui/table.tsx'
 import { TimeText } from '../../ui/time-text.tsx'
 import { stateWord } from './state-word.ts'
 
-export function DesignTable({ designs }: { designs: readonly DesignLine[] }) {
+type Drawn = (designKey: string, number: number) => ReactNode
+
+export function DesignTable({
+  designs,
+  ladders,
+}: {
+  designs: readonly DesignLine[]
+  /** Draws the answer of a revision: the released one, else the newest. */
+  ladders: Drawn
+}) {
   return (
     <Table caption="Designs by key">
       <thead>
         <tr>
           <Th>design</Th>
           <Th>title</Th>
+          <Th className="hidden medium:table-cell">trim ladder</Th>
           <Th align="right">released</Th>
           <Th>newest revision</Th>
           <Th className="hidden medium:table-cell">released by</Th>
@@ -22,14 +33,14 @@ export function DesignTable({ designs }: { designs: readonly DesignLine[] }) {
       </thead>
       <tbody>
         {designs.map((design) => (
-          <DesignRow key={design.key} design={design} />
+          <DesignRow key={design.key} design={design} ladders={ladders} />
         ))}
       </tbody>
     </Table>
   )
 }
 
-function DesignRow({ design }: { design: DesignLine }) {
+function DesignRow({ design, ladders }: { design: DesignLine; ladders: Drawn }) {
   const released = design.revisions.find((revision) => revision.number === design.released)
   const newest = design.revisions.reduce<DesignLine['revisions'][number] | undefined>(
     (last, revision) => (last && last.number > revision.number ? last : revision),
@@ -43,6 +54,9 @@ function DesignRow({ design }: { design: DesignLine }) {
         </LinkButton>
       </RowHead>
       <Td>{design.title}</Td>
+      <Td className="hidden medium:table-cell">
+        {newest ? ladders(design.key, design.released ?? newest.number) : <None />}
+      </Td>
       <Td align="right">{design.released ?? <None />}</Td>
       <Td>{newest ? `${newest.number}, ${stateWord(newest.state)}` : <None />}</Td>
       <Td className="hidden medium:table-cell">{released?.releasedBy ?? <None />}</Td>

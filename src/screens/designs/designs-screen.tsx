@@ -1,5 +1,5 @@
 import { useInfiniteQuery } from '@tanstack/react-query'
-import { useState } from 'react'
+import { lazy, Suspense, useState } from 'react'
 import { useNavigate } from 'react-router-dom'
 import { DesignTable } from '../../features/design/design-table.tsx'
 import { NewDesignDialog } from '../../features/design/new-design-dialog.tsx'
@@ -12,6 +12,18 @@ import { Empty } from '../../ui/empty.tsx'
 import { Loading } from '../../ui/loading.tsx'
 import { PageHead } from '../../ui/page-head.tsx'
 import { PageProblem } from '../../ui/page-problem.tsx'
+import { WhenNear } from '../../ui/when-near.tsx'
+
+const DesignLadders = lazy(() => import('./design-ladders.tsx'))
+
+/** Sizing and the documents load for the rows that are looked at. */
+const ladders = (designKey: string, number: number) => (
+  <WhenNear name={`ladders-${designKey}`} minHeight={44}>
+    <Suspense fallback={null}>
+      <DesignLadders designKey={designKey} number={number} />
+    </Suspense>
+  </WhenNear>
+)
 
 export default function DesignsScreen() {
   const designs = useInfiniteQuery(designsOptions)
@@ -53,7 +65,7 @@ export default function DesignsScreen() {
       ) : null}
       {lines.length > 0 ? (
         <div className="mt-2">
-          <DesignTable designs={lines} />
+          <DesignTable designs={lines} ladders={ladders} />
         </div>
       ) : null}
       {designs.hasNextPage ? (
