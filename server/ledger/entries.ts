@@ -50,7 +50,7 @@ async function readSome(sql: Sql, from: number, limit: number): Promise<{ rows: 
       r.range_id AS \`range\`, r.lot, r.design, r.revision, r.pass, r.follows, r.verdict, r.accepted,
       r.gain_error_ppm AS gainErrorPpm, r.offset_error_v AS offsetErrorV, r.gain_code AS gainCode,
       r.offset_code AS offsetCode, r.worst_lsb AS worstLsb, r.attempt, r.by_name AS \`by\`, r.by_id AS byId, r.station,
-      r.measured_at AS measuredAt, r.recorded_at AS recordedAt, r.receipt_key AS receiptKey,
+      r.measured_at AS measuredAt, r.recorded_at AS recordedAt, r.notices, r.receipt_key AS receiptKey,
       r.receipt_signature AS receiptSignature
       FROM ledger_entries e LEFT JOIN ledger_leaves l ON l.id = e.leaf_id LEFT JOIN records r ON r.leaf_id = e.leaf_id
       WHERE e.idx >= ? ORDER BY e.idx LIMIT ?`,
@@ -114,6 +114,7 @@ function storedRow(row: EntryRow): StoredRow | null {
     station: row.station,
     measuredAt: row.measuredAt?.toISOString() ?? null,
     recordedAt: row.recordedAt.toISOString(),
+    notices: row.notices,
     receipt: { key: row.receiptKey, signature: row.receiptSignature.toString('base64') },
   }
 }

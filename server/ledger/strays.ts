@@ -1,5 +1,6 @@
 import type { Stray } from '../../shared/contract/ledger-entries.ts'
 import type { Sql } from '../db/sql.ts'
+import { statementsOtherwise, statementsWithoutLeaf } from './stray-statements.ts'
 
 /** Leaves looked at by one request. */
 const atOnce = 20_000
@@ -16,6 +17,7 @@ export async function readStrays(sql: Sql, after: number): Promise<{ items: Stra
     ...(await leavesWithoutPlace(sql, after, to)),
     ...(await recordsWithoutLeaf(sql, after, to)),
     ...(await recordsElsewhere(sql, after, to)),
+    ...(await statementsOtherwise(sql, after, to)),
   ]
   const [last] = await sql.rows<{ id: number }>(
     `SELECT GREATEST(COALESCE((SELECT MAX(id) FROM ledger_leaves), 0),
@@ -25,6 +27,7 @@ export async function readStrays(sql: Sql, after: number): Promise<{ items: Stra
   return {
     items: [
       ...items,
+      ...(await statementsWithoutLeaf(sql)),
       ...(await beyondTheHead(sql)),
       ...(await checkpointsAfter(sql)),
       ...(await documentsOtherwise(sql)),

@@ -14,6 +14,7 @@ const wholeLedger = {
 export const storedRow = recordLine.omit({ finding: true }).extend({
   follows: recordId.nullable(),
   byId: z.string().nullable(),
+  notices: z.string().describe('As stored: JSON'),
   receipt: z.object({ key: z.string(), signature: z.string() }),
 })
 export type StoredRow = z.output<typeof storedRow>

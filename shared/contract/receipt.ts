@@ -9,6 +9,9 @@ export const receipt = z
     leaf: sha256Hex,
     recordedAt: instant,
     includedBy: instant,
+    notices: sha256Hex
+      .optional()
+      .describe('SHA-256 of the RFC 8785 form of the notices given with it; absent when there were none'),
     key: z.string().describe('Name and hash of the signing key, as in the checkpoint'),
     signature: z.string().describe('Ed25519 over the RFC 8785 form of the rest, base64'),
   })

@@ -1,18 +1,38 @@
 import type { Receipt } from '../contract/receipt.ts'
-import { canonicalBytes } from './canonical.ts'
+import { canonicalBytes, type Json } from './canonical.ts'
 import { keyName, type LedgerKey } from './checkpoint.ts'
-import { fromBase64, type Sha256, type Sign, toBase64, type Verify } from './hash.ts'
+import { fromBase64, type Sha256, type Sign, toBase64, toHex, type Verify } from './hash.ts'
 
 /** Milliseconds after which a receipt's record must be in the ledger. The aim is one second. */
 const promiseMs = 60_000
 
-export type Promised = { record: string; leaf: string; recordedAt: string }
+export type Promised = {
+  record: string
+  leaf: string
+  recordedAt: string
+  /** Of the notices given with the record, as `noticesHash` makes it. */
+  notices?: string | undefined
+}
+
+/**
+ * What a receipt says of the notices that were given with a record: they stand in no leaf, and are as hard to change.
+ *
+ * @param sha256 the hash function.
+ * @param notices as given; what is said about a record later is not among them.
+ * @returns lower-case hexadecimal, or undefined when there are none.
+ * @throws as `canonicalText`, for what JSON cannot say.
+ * Source: contract.md, Ledger; RFC 8785.
+ * @example noticesHash(sha256, []) // undefined
+ */
+export function noticesHash(sha256: Sha256, notices: readonly Json[]): string | undefined {
+  return notices.length === 0 ? undefined : toHex(sha256(canonicalBytes(notices)))
+}
 
 /**
  * A signed receipt: the server's promise, which somebody else keeps, that a record will be in the ledger.
  *
  * @param sha256 the hash function.
- * @param promised record id, leaf hash in hex, time of recording (ISO 8601 with Z).
+ * @param promised record id, leaf hash in hex, time of recording (ISO 8601 with Z), hash of the notices if any.
  * @param key whose signature it is.
  * @param sign Ed25519 under that key.
  * @returns the receipt; `includedBy` is 60 s after `recordedAt`.
@@ -59,7 +79,8 @@ export function checkReceipt(sha256: Sha256, receipt: Receipt, key: LedgerKey, v
   return verify(key.publicKey, canonicalBytes(rest), bytes)
 }
 
-function unsigned({ record, leaf, recordedAt }: Promised, key: string): Omit<Receipt, 'signature'> {
+function unsigned({ record, leaf, recordedAt, notices }: Promised, key: string): Omit<Receipt, 'signature'> {
   const includedBy = new Date(Date.parse(recordedAt) + promiseMs).toISOString()
-  return { format: 'ogee.receipt/1', record, leaf, recordedAt, includedBy, key }
+  const promised = { format: 'ogee.receipt/1', record, leaf, recordedAt, includedBy } as const
+  return notices === undefined ? { ...promised, key } : { ...promised, notices, key }
 }

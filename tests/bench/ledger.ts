@@ -194,7 +194,7 @@ async function sequencing(filled: FilledDatabase, perTrim: number): Promise<Benc
   const count = 10_000
   for (let i = 0; i < count; i += 500) {
     const leaves = Array.from({ length: 500 }, (_, j) =>
-      newLeaf('finding', now().toISOString(), { format: 'ogee.bench/1', n: i + j, at: process.hrtime()[1] }),
+      newLeaf('token', now().toISOString(), { format: 'ogee.bench/1', n: i + j, at: process.hrtime()[1] }),
     )
     await transaction(database, (sql) => insertLeaves(sql, leaves))
   }

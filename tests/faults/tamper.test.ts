@@ -8,9 +8,9 @@ import { checkLedger } from '../../shared/ledger/check/check-ledger.ts'
 import { serverSource } from '../../shared/ledger/check/server-source.ts'
 import { memoryIo } from '../cli/support/memory-io.ts'
 import { runSeed, seededRandom } from '../support/random.ts'
-import { api, newKey } from '../support/server-client.ts'
+import { api, newKey, post, signIn } from '../support/server-client.ts'
 import { pointsOf, suspectPoints, trimBody } from '../support/server-factories.ts'
-import { addToken, listen } from '../support/server-harness.ts'
+import { addPerson, addToken, listen } from '../support/server-harness.ts'
 import { type Scene, serverScene } from '../support/server-scene.ts'
 import {
   type Held,
@@ -35,6 +35,9 @@ const tables: readonly Table[] = [
   'ledger_keys',
   'design_documents',
   'ledger_head',
+  'findings',
+  'finding_answers',
+  'lot_sign_offs',
 ]
 
 let scene: Scene
@@ -50,6 +53,7 @@ beforeAll(async () => {
   // What was tampered with breaks the form of replies, which is the point.
   served = await listen({ ...scene.harness.deps, checkReplies: false })
   root = await scene.harness.test.asRoot()
+  await addStatements()
   await fillLedger()
   await rememberAll()
 })
@@ -58,6 +62,28 @@ afterAll(async () => {
   await served.stop()
   await scene.harness.close()
 })
+
+/** A lot that is signed off, a finding on it and one on a record, answered and closed. */
+async function addStatements(): Promise<void> {
+  const { url, engineer } = scene
+  await addPerson(scene.harness, 'auditor')
+  const auditor = { cookie: await signIn(url, 'auditor@example.org') }
+  const sent = async (path: string, as: { cookie: string }, body: object) => {
+    const more = { ...as, key: newKey(), headers: { 'If-Match': '*' } }
+    const reply = await api(url, 'post', path, more).send(body)
+    expect(reply.status, `${path} ${JSON.stringify(reply.body)}`).toBeLessThan(300)
+    return reply.body as { id: string }
+  }
+  await sent('/lots', engineer, { design: 'U18', key: 'L1' })
+  const { id } = await post(url, scene.station, trimBody({ unit: 'T-lot', lot: 'L1' }))
+  const text = 'The note gives 30 min of warm-up; the procedure asks 45.'
+  const finding = await sent('/findings', auditor, { subject: { kind: 'record', record: id }, text })
+  await sent('/findings', auditor, { subject: { kind: 'lot', design: 'U18', lot: 'L1' }, text })
+  await sent(`/findings/${finding.id}/answers`, engineer, { text: 'Readings show it had settled.' })
+  await sent(`/findings/${finding.id}/closing`, auditor, { text: 'Accepted; the procedure changes.' })
+  await sent('/designs/U18/lots/L1/close', engineer, {})
+  await sent('/designs/U18/lots/L1/sign-off', engineer, { rest: { reason: 'Looked at and left out.' } })
+}
 
 /** A thousand leaves, most of them records, with a checkpoint after each fifty. */
 async function fillLedger(): Promise<void> {
@@ -84,7 +110,7 @@ async function fillLedger(): Promise<void> {
 }
 
 async function rememberAll(): Promise<void> {
-  await root.query('SET foreign_key_checks = 0')
+  await root.query('SET foreign_key_checks = 0, check_constraint_checks = 0')
   const triggers = await root.query<{ name: string }[]>(
     'SELECT TRIGGER_NAME AS name FROM information_schema.TRIGGERS WHERE TRIGGER_SCHEMA = DATABASE()',
   )
@@ -149,7 +175,7 @@ test('negative control: nothing is found where nothing was done, nor where it is
 test('negative control: who rewrites the end and has it signed anew is not found without a checkpoint from before', async () => {
   const fork = tamperings.find(({ name }) => name.startsWith('fork'))!
   await fork.act(worldOf(1))
-  expect(await check([])).toMatchObject({ ok: true })
+  expect((await check([])).faults).toEqual([])
   expect(await check(notes.slice(-1))).toMatchObject({ ok: false })
   await putBack(fork)
 })

@@ -19,6 +19,9 @@ export type Table =
   | 'ledger_checkpoints'
   | 'ledger_keys'
   | 'design_documents'
+  | 'findings'
+  | 'finding_answers'
+  | 'lot_sign_offs'
   | 'ledger_head'
 
 export type Entry = { idx: number; leafId: number; kind: string; record: string | null }
@@ -123,6 +126,7 @@ const recordColumns: Record<string, string> = {
   measured_at: 'IF(measured_at IS NULL, recorded_at, measured_at + INTERVAL 1 SECOND)',
   recorded_at: 'recorded_at - INTERVAL 1 DAY',
   receipt_key: "CONCAT(receipt_key, '0')",
+  notices: `IF(notices = '[]', '[{"code":"clock-skew","message":"x"}]', '[]')`,
 }
 
 const recordColumn: Tampering = {
@@ -308,6 +312,46 @@ const insertion: Tampering = {
   },
 }
 
+const statementColumns: Record<string, Record<string, string>> = {
+  findings: {
+    record_id: 'NULL',
+    lot: "'L9'",
+    design: "'TWO'",
+    by_name: "'Nobody'",
+    by_id: 'id',
+    at: 'at + INTERVAL 1 SECOND',
+  },
+  finding_answers: {
+    finding_id: 'id',
+    closes: 'IF(closes IS NULL, id, NULL)',
+    by_name: "'Nobody'",
+    at: 'at - INTERVAL 1 DAY',
+  },
+  lot_sign_offs: { by_name: "'Nobody'", at: 'at + INTERVAL 1 SECOND', lot_id: 'lot_id + 900', leaf_id: '1' },
+}
+
+const statementRow: Tampering = {
+  name: 'change or remove a row of a finding, an answer or a sign-off',
+  touches: ['findings', 'finding_answers', 'lot_sign_offs'],
+  act: async ({ root, random }) => {
+    const table = random.pick(Object.keys(statementColumns))
+    const leaves = await root.query<{ id: bigint }[]>(`SELECT leaf_id AS id FROM ${table}`)
+    const { id } = random.pick(leaves)
+    const columns = Object.entries(statementColumns[table]!)
+    const [column, value] = random.pick([...columns, ['', ''] as const])
+    if (column === '') await root.query(`DELETE FROM ${table} WHERE leaf_id = ?`, [id])
+    else {
+      // A finding on a lot names no record, and so on: what would change nothing is no tampering.
+      const { affectedRows } = await root.query<{ affectedRows: number }>(
+        `UPDATE ${table} SET ${column} = ${value} WHERE leaf_id = ? AND NOT (${column} <=> ${value})`,
+        [id],
+      )
+      if (affectedRows === 0) await root.query(`DELETE FROM ${table} WHERE leaf_id = ?`, [id])
+    }
+    return { what: `${table} ${column || 'row'} of leaf ${id}`, right: about('stray', table) }
+  },
+}
+
 /** Filled by the test from the table itself, generated columns left out. */
 let recordNames = ''
 export function knowRecordColumns(names: readonly string[]): void {
@@ -423,7 +467,7 @@ const cut: Tampering = {
   name: 'cut the tail, or put an old backup back',
   touches: everything,
   act: async (world) => {
-    const size = 20 + world.random.below(world.held.entries.length - 21)
+    const size = 40 + world.random.below(world.held.entries.length - 41)
     if (world.random.below(2) === 0) {
       await world.root.query('DELETE FROM ledger_entries WHERE idx >= ?', [size])
       return { what: `entries from ${size}`, right: at('cut', size) }
@@ -439,17 +483,17 @@ const fork: Tampering = {
   act: async (world) => {
     const { root, held, random } = world
     const total = held.entries.length
-    const size = 20 + random.below(total - 21)
+    const size = 40 + random.below(total - 41)
     await cutFrom(world, size)
     const body = Buffer.from(
       String(await cell(root, 'ledger_leaves', 'body', 'id = ?', [held.entries[0]!.leafId])),
     )
     const rows = Array.from({ length: total - size + random.below(20) }, (_, i) => {
       const time = new Date(Date.UTC(2026, 5, 1, 0, 0, 0, i))
-      const hash = leafHash(sha256, leafBytes('finding', time.toISOString(), body))
+      const hash = leafHash(sha256, leafBytes('token', time.toISOString(), body))
       return [
         910_000 + i,
-        'finding',
+        'token',
         time.toISOString().slice(0, 23).replace('T', ' '),
         Buffer.from(hash),
         body,
@@ -510,4 +554,5 @@ export const tamperings: readonly Tampering[] = [
   cut,
   fork,
   rewriting,
+  statementRow,
 ]

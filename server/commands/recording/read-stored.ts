@@ -1,6 +1,7 @@
 import type { Notice } from '../../../shared/contract/record.ts'
-import { restoreReceipt } from '../../../shared/ledger/receipt.ts'
+import { noticesHash, restoreReceipt } from '../../../shared/ledger/receipt.ts'
 import type { Sql } from '../../db/sql.ts'
+import { sha256 } from '../../ledger/crypto.ts'
 import type { StoredRecord } from './job.ts'
 
 type Row = {
@@ -41,15 +42,17 @@ export async function readStored(sql: Sql, ids: readonly string[]): Promise<Map<
 type Said = { id: string; follows: string; kind: string; number: number }
 
 function storedOf(row: Row, later: readonly Said[], finding: Notice | undefined): StoredRecord {
+  const given = JSON.parse(row.notices) as Notice[]
   const promised = {
     record: row.id,
     leaf: row.leaf.toString('hex'),
     recordedAt: row.recordedAt.toISOString(),
+    notices: noticesHash(sha256, given),
   }
   const said = later.filter((one) => one.follows === row.id).map(noticeOf)
   return {
     text: row.body.toString('utf8'),
-    notices: [...(JSON.parse(row.notices) as Notice[]), ...said, ...(finding ? [finding] : [])],
+    notices: [...given, ...said, ...(finding ? [finding] : [])],
     receipt: restoreReceipt(promised, row.receiptKey, row.receiptSignature),
     index: row.idx,
   }

@@ -1,6 +1,6 @@
 import type { RecordBody } from '../../../shared/contract/record.ts'
 import { fromBase64 } from '../../../shared/ledger/hash.ts'
-import { signReceipt } from '../../../shared/ledger/receipt.ts'
+import { noticesHash, signReceipt } from '../../../shared/ledger/receipt.ts'
 import { type Sql, type SqlValue, sqlTime } from '../../db/sql.ts'
 import { sha256 } from '../../ledger/crypto.ts'
 import { insertLeaves, type NewLeaf, newLeaf } from '../../ledger/leaves.ts'
@@ -15,7 +15,12 @@ type Ready = { decision: Decision; leaf: NewLeaf; stored: StoredRecord }
 export function makeReady(decision: Decision, signer: Signer): Ready {
   const { body, notices } = decision
   const leaf = newLeaf('record', body.recordedAt, body as never)
-  const promised = { record: body.id, leaf: leaf.hash.toString('hex'), recordedAt: body.recordedAt }
+  const promised = {
+    record: body.id,
+    leaf: leaf.hash.toString('hex'),
+    recordedAt: body.recordedAt,
+    notices: noticesHash(sha256, notices),
+  }
   const receipt = signReceipt(sha256, promised, signer.key, signer.sign)
   return { decision, leaf, stored: { text: leaf.body.toString('utf8'), notices, receipt, index: null } }
 }

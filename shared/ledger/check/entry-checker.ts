@@ -1,10 +1,10 @@
 import type { StoredRow } from '../../contract/ledger-entries.ts'
 import type { RecordBody } from '../../contract/record.ts'
-import { canonicalBytes } from '../canonical.ts'
+import { canonicalBytes, type Json } from '../canonical.ts'
 import { keyName, type LedgerKey } from '../checkpoint.ts'
 import { fromBase64, type Sha256, sameBytes, toHex } from '../hash.ts'
 import { leafHash } from '../leaf.ts'
-import { restoreReceipt } from '../receipt.ts'
+import { noticesHash, restoreReceipt } from '../receipt.ts'
 import type { Entry } from './entry-line.ts'
 import type { FaultKind, Faults } from './faults.ts'
 import { type GrowingTree, growingTree } from './growing-tree.ts'
@@ -204,7 +204,20 @@ export class EntryChecker {
       const message = `Entry ${this.#next}, record ${row.number}: ${row.receipt.key}, named by its receipt, is no key of the ledger.`
       return this.#fault('receipt', message, row.id)
     }
-    const promised = { record: row.id, leaf: entry.hash ?? '', recordedAt: row.recordedAt }
+    const notices = noticesIn(row)
+    if (notices === null) {
+      return this.#fault(
+        'receipt',
+        `Entry ${this.#next}, record ${row.number}: its notices are no list.`,
+        row.id,
+      )
+    }
+    const promised = {
+      record: row.id,
+      leaf: entry.hash ?? '',
+      recordedAt: row.recordedAt,
+      notices: noticesHash(this.#sha256, notices),
+    }
     const { signature: _, ...rest } = restoreReceipt(promised, row.receipt.key, signature)
     const bytes = canonicalBytes(rest)
     return { entry: this.#next, record: row.id, publicKey: key.publicKey, bytes, signature }
@@ -222,5 +235,15 @@ export class EntryChecker {
     if (bytes && toHex(this.#sha256(bytes)) === hash) return null
     const how = bytes ? 'are not those that were released' : 'are gone'
     return this.#fault('document', `${at}: the bytes of ${design}, revision ${revision}, ${how}.`)
+  }
+}
+
+function noticesIn({ notices }: StoredRow): Json[] | null {
+  if (notices === '[]') return []
+  try {
+    const parsed: unknown = JSON.parse(notices)
+    return Array.isArray(parsed) ? (parsed as Json[]) : null
+  } catch {
+    return null
   }
 }
