@@ -116,7 +116,14 @@ test.each([
   ],
   [
     'engineer',
-    ['/designs', '/designs/DBS-A/revisions/1', '/history', '/bench?design=DBS-A&channel=1&unit=U3-2'],
+    [
+      '/designs',
+      '/designs/DBS-A/revisions/1',
+      '/lots',
+      '/lots/DBS-A/L038?add=1',
+      '/history',
+      '/bench?design=DBS-A&channel=1&unit=U3-2',
+    ],
   ],
 ] as const)('U3: Tab reaches everything on the screens of an %s, visibly', async (role, paths) => {
   const { page, context } = await openPage(stage.browser)
