@@ -5,7 +5,7 @@ import type { LotDetail, LotUnit } from '../../shared/contract/lots.ts'
 import { leafBytes, leafHash } from '../../shared/ledger/leaf.ts'
 import { type As, api, post } from '../support/server-client.ts'
 import { pointsOf, suspectPoints, trimBody } from '../support/server-factories.ts'
-import { addToken } from '../support/server-harness.ts'
+import { addDesign, addToken, listen } from '../support/server-harness.ts'
 import { type Scene, serverScene } from '../support/server-scene.ts'
 
 let scene: Scene
@@ -103,6 +103,27 @@ describe('opening and closing', () => {
     expect(again.body).toMatchObject({ status: 409, code: 'lot-state' })
     expect((await send(at('SHUT', '/expected'), { serials: ['x'] })).body.code).toBe('lot-state')
     expect((await get(at('NONE'))).status).toBe(404)
+  })
+})
+
+describe('a lot of a withdrawn revision', () => {
+  it('is not opened; an open one takes no fresh unit, and one that it knows with a notice', async () => {
+    await addDesign(scene.harness, 'GONE')
+    const lot = { design: 'GONE', key: 'G-1' }
+    expect((await send('/lots', lot)).status).toBe(201)
+    await trim('G-1', 'g-1', { design: 'GONE' })
+    const as = { ...scene.engineer, headers: { 'If-Match': '*' } }
+    const path = '/designs/GONE/revisions/1/withdrawal'
+    const withdrawn = await api(scene.url, 'post', path, as).send({ reason: 'wrong reference fitted' })
+    expect(withdrawn.body.state, JSON.stringify(withdrawn.body)).toBe('withdrawn')
+    const fresh = trimBody({ design: 'GONE', lot: 'G-1', unit: 'g-2' })
+    expect(await post(scene.url, scene.station, fresh, 422)).toMatchObject({ code: 'revision-withdrawn' })
+    const again = await trim('G-1', 'g-1', { design: 'GONE', applied: 'neutral' })
+    expect(again.notices).toMatchObject([{ code: 'revision-withdrawn' }])
+    expect((await send('/lots', { ...lot, key: 'G-2', revision: 1 })).body.code).toBe('revision-withdrawn')
+    const none = await send('/lots', { ...lot, key: 'G-3' })
+    expect(none.body).toMatchObject({ code: 'revision-not-released', status: 422 })
+    expect((await get('/designs/GONE/lots/G-1')).body).toMatchObject({ revisionState: 'withdrawn' })
   })
 })
 
@@ -240,6 +261,29 @@ describe('units of a lot', () => {
     expect(b).toMatchObject([{ unit: null, n: 1, gainS: null }])
     expect(b[0].gainMeanPpm).toBeCloseTo(-100, 6)
     expect((await get('/designs/U18/stations?to=2001-01-01T00:00:00Z')).body.items).toEqual([])
+  })
+})
+
+describe('what is kept of a lot in memory', () => {
+  it('is the same as read afresh, whatever comes in between and however many ask (20 rounds)', async () => {
+    await open('KEPT')
+    const second = await listen(scene.harness.deps)
+    for (let round = 0; round < 20; round++) {
+      const change = round % 3 === 0 ? outOfReach : {}
+      await Promise.all([
+        trim('KEPT', `k-${round % 7}`, { applied: 'neutral', ...change }),
+        ...[scene.url, second.url].map((url) => api(url, 'get', at('KEPT'), scene.engineer)),
+      ])
+      const seen = await Promise.all(
+        [scene.url, scene.url, second.url].map((url) => api(url, 'get', at('KEPT'), scene.engineer)),
+      )
+      const fresh = await listen(scene.harness.deps)
+      const { body } = await api(fresh.url, 'get', at('KEPT'), scene.engineer)
+      await fresh.stop()
+      expect(body.records).toBe(round + 1)
+      for (const one of seen) expect(one.body, `round ${round}`).toEqual(body)
+    }
+    await second.stop()
   })
 })
 

@@ -51,17 +51,24 @@ export class LotBoards {
     return board !== undefined && isOf(board, lot)
   }
 
-  /** Two who ask at once share one reading: a big lot is read once, however often somebody asks meanwhile. */
+  /**
+   * A board with all that the head counts, or more that came since. Two who ask at once share one reading: a big lot is read
+   * once, however often somebody asks meanwhile.
+   */
   async read(sql: Sql, lot: LotHead): Promise<Board> {
+    const shared = await this.#reading.get(lot.id)?.catch(() => undefined)
+    if (shared && shared.records >= lot.records && shared.expected.length >= lot.expected) return shared
     const kept = this.#boards.get(lot.id)
     if (kept && isOf(kept, lot)) return kept
-    const running = this.#reading.get(lot.id)
-    if (running) return running
-    const reading = readBoard(sql, lot, kept).finally(() => this.#reading.delete(lot.id))
+    const reading = readBoard(sql, lot, kept)
     this.#reading.set(lot.id, reading)
-    const board = await reading
-    this.#keep(lot.id, board)
-    return board
+    try {
+      const board = await reading
+      this.#keep(lot.id, board)
+      return board
+    } finally {
+      if (this.#reading.get(lot.id) === reading) this.#reading.delete(lot.id)
+    }
   }
 
   #keep(id: number, board: Board): void {

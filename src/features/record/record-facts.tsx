@@ -16,7 +16,13 @@ export function RecordFacts({ record }: { record: TrimRecord }) {
         </LinkButton>
       </Fact>
       <Fact name="range">{record.range}</Fact>
-      {record.lot ? <Fact name="lot">{record.lot}</Fact> : null}
+      {record.lot ? (
+        <Fact name="lot">
+          <LinkButton className="min-h-6" to={paths.lot(record.design, record.lot)}>
+            {record.lot}
+          </LinkButton>
+        </Fact>
+      ) : null}
       {applied ? <Fact name="codes applied">{appliedText(applied)}</Fact> : null}
       <Fact name="instrument">{instrumentText(record)}</Fact>
       <Fact name="conditions">{conditionsText(conditions) || <span className="text-ink-3">none</span>}</Fact>
