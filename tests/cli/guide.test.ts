@@ -12,10 +12,9 @@ import { ended } from './support/built-cli.ts'
 
 const root = join(import.meta.dirname, '../..')
 const folder = mkdtempSync(join(tmpdir(), 'ogee-guide-'))
-const section =
-  /## Many units from a script\n(.*?)\n## /s.exec(readFileSync(join(root, 'README.md'), 'utf8'))?.[1] ?? ''
-const blocks = (language: string) =>
-  [...section.matchAll(/```(\w+)\n(.*?)```/gs)]
+const readme = readFileSync(join(root, 'README.md'), 'utf8')
+const blocks = (language: string, title = 'Many units from a script') =>
+  [...(readme.split(`\n## ${title}\n`)[1]?.split('\n## ')[0] ?? '').matchAll(/```(\w+)\n(.*?)```/gs)]
     .filter(([, of]) => of === language)
     .map(([, , code = '']) => code)
 const hasPython = spawnSync('python3', ['--version']).status === 0
@@ -64,6 +63,23 @@ describe('the guide for callers', () => {
     await run('bash', script)
     expect(csv().map((row) => row.split(',')[15])).toEqual(first.map((row) => row.split(',')[15]))
     expect(first).toHaveLength(21)
+  })
+
+  test('sh: found, trimmed and as left by way of a spool, with simulated units', async () => {
+    const [script = ''] = blocks('sh', 'When the server is away, and as left')
+    const ran = await run('bash', script)
+    const rows = (name: string) => readFileSync(join(folder, name), 'utf8').trimEnd().split('\n').slice(1)
+    expect(ran.code, ran.stderr).toBe(0)
+    expect(rows('codes.csv')).toHaveLength(20)
+    // Units that are out of reach have no codes and are not measured as left.
+    const trimmed = rows('codes.csv').filter((row) => row.split(',')[7] !== '')
+    expect(rows('as-left.csv')).toHaveLength(trimmed.length)
+    const outcomes = new Set(rows('as-left.csv').map((row) => row.split(',')[5]))
+    expect(
+      [...outcomes].every((one) => /^(pass|fail|conditional-pass|conditional-fail)$/.test(one ?? '')),
+    ).toBe(true)
+    expect(outcomes).toContain('pass')
+    expect(ran.stdout).toContain('"pending": 0')
   })
 
   test.runIf(hasPython)('python: one kept process, and plain HTTP', async () => {
