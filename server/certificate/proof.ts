@@ -35,7 +35,7 @@ export function putProof(sheet: Sheet, { proofs }: CertificateFacts, at: Date): 
   const [first = ''] = files
   sheet.y += 2
   sheet.paragraph(
-    `The path of ${countWord(path.length)} hashes is attached to this document as ${first}${files.length > 1 ? `, those of the other records as ${files.slice(1).join(' and ')}` : ''}. “ogee proof check ${first} --key ogee.pub” checks it without the server.`,
+    `The path of ${countWord(path.length)} hashes is attached to this document as ${first}${files.length > 1 ? `, beside ${files.slice(1).join(' and ')} of the other records` : ''}. “ogee proof check ${first} --key ogee.pub” checks it without the server.`,
     { size },
   )
 }

@@ -47,9 +47,9 @@ function collected({ doc }: Sheet): Promise<Buffer> {
 
 function putSignatures(sheet: Sheet): void {
   sheet.y += 6
-  sheet.room(78)
+  sheet.room(70)
   sheet.paragraph(cautions, { size: 7.5, colour: ink.second })
-  const y = Math.min(page.bottom - 14, sheet.y + 44)
+  const y = Math.min(page.bottom - 14, sheet.y + 36)
   const middle = page.left + 252
   for (const [x, end, name] of [
     [page.left, middle - 14, 'Measured by'],

@@ -50,26 +50,33 @@ function sentence({ left, trim }: CertificateFacts): string {
   return 'No code is given and no measurement as left is recorded.'
 }
 
-function putCodes(sheet: Sheet, { trim }: CertificateFacts, x: number, top: number): number {
+function putCodes(sheet: Sheet, facts: CertificateFacts, x: number, top: number): number {
+  const { trim } = facts
   const codes = trim?.result.trim.codes ?? null
   if (codes === null) {
     sheet.put('no codes', x, top, { face: 'strong', colour: ink.second })
     return top + 14
   }
+  // Codes that nobody has accepted are shown, and stand back.
+  const colour = isAccepted(facts) ? ink.text : ink.second
   let at = x
   for (const which of ['gain', 'offset'] as const) {
     const code = codes[which]
     if (code === undefined) continue
     sheet.put(`${which} code`, at, top, { face: 'strong', colour: which === 'gain' ? ink.copper : ink.tide })
-    sheet.put(String(code), at, top + 11, { face: 'title', size: 21 })
+    sheet.put(String(code), at, top + 11, { face: 'title', size: 21, colour })
     sheet.put(trim?.result.trim.words?.[which] ?? '', at, top + 38, { face: 'mono' })
     at += Math.max(76, sheet.width(String(code), { face: 'title', size: 21 }) + 24)
   }
   return top + 52
 }
 
+const isAccepted = ({ trim, override }: CertificateFacts) =>
+  trim?.verdict !== 'suspect' || trim.accepted || override !== null
+
 /** What happened around the records; none of it changes them. */
-function warnings({ notices, override, revision, trim }: CertificateFacts): string[] {
+function warnings(facts: CertificateFacts): string[] {
+  const { notices, override, revision, trim } = facts
   const said = notices
     .filter(({ code }) => code !== 'replayed' && code !== 'released-by-author')
     .map(({ message }) => message)
@@ -83,6 +90,7 @@ function warnings({ notices, override, revision, trim }: CertificateFacts): stri
           `The trim was suspect. Its codes were accepted by ${override.by} in record ${whole(override.number)}: “${override.reason}”`,
         ]
       : []),
+    ...(isAccepted(facts) ? [] : ['The trim is suspect and nobody has accepted its codes.']),
     ...new Set(said),
   ]
 }

@@ -25,7 +25,7 @@ export const page = {
   right: 210 * mm - 16 * mm,
   top: 14 * mm,
   /** Above the foot, which every page has. */
-  bottom: 297 * mm - 24 * mm,
+  bottom: 297 * mm - 22 * mm,
 } as const
 
 export type Style = { face?: Face; size?: number; colour?: string; align?: 'left' | 'right' }

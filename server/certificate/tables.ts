@@ -20,10 +20,10 @@ const size = 8
 /** What was measured before the trim beside what was measured after it, code by code; as long as the measurement is. */
 export function putPoints(sheet: Sheet, facts: CertificateFacts, lsbV: number): void {
   sheet.section('As found and as left', 60)
-  putHeads(sheet)
+  putHeads(sheet, facts)
   const rows = rowsOf(facts)
   for (const row of rows.slice(0, rowsMost)) {
-    if (sheet.room(rowHeight)) putHeads(sheet)
+    if (sheet.room(rowHeight)) putHeads(sheet, facts)
     putRow(sheet, row, lsbV)
   }
   sheet.y += 3
@@ -43,7 +43,7 @@ export function putPoints(sheet: Sheet, facts: CertificateFacts, lsbV: number): 
   sheet.paragraph(note.filter(Boolean).join(' '), { size: 7.5, colour: ink.second })
 }
 
-function putHeads(sheet: Sheet): void {
+function putHeads(sheet: Sheet, { left }: CertificateFacts): void {
   const heads = [
     'code',
     'ideal V',
@@ -55,7 +55,9 @@ function putHeads(sheet: Sheet): void {
     'error LSB',
     'U µV',
   ]
-  for (const [i, head] of heads.entries()) {
+  // Without a measurement as left its columns would be promises.
+  const shown = left === null ? heads.slice(0, 5) : heads
+  for (const [i, head] of shown.entries()) {
     sheet.put(head, page.left + ends[i]!, sheet.y, {
       size,
       align: 'right',
@@ -63,7 +65,7 @@ function putHeads(sheet: Sheet): void {
       face: 'strong',
     })
   }
-  sheet.put('decision', page.left + 444, sheet.y, { size, colour: ink.second, face: 'strong' })
+  if (left) sheet.put('decision', page.left + 444, sheet.y, { size, colour: ink.second, face: 'strong' })
   sheet.y += 12
   sheet.line(page.left, page.right, sheet.y)
   sheet.y += 2
@@ -118,9 +120,9 @@ export function putLines(sheet: Sheet, { found, left }: CertificateFacts): void 
   const after = left?.result.fit ?? null
   const method = (after ?? before)?.method
   if (!method) return
-  sheet.section(`Line before and after, ${method.replace('-', ' ')}`, 62)
+  sheet.section(`${after ? 'Line before and after' : 'Line as found'}, ${method.replace('-', ' ')}`, 62)
   const columns = [page.left + 200, page.left + 262, page.left + 380]
-  const heads = ['as found', 'as left', 'standard uncertainty, as left']
+  const heads = ['as found', ...(after ? ['as left', 'standard uncertainty, as left'] : [])]
   for (const [i, head] of heads.entries()) {
     sheet.put(head, columns[i]!, sheet.y, { size, align: 'right', colour: ink.second, face: 'strong' })
   }
