@@ -24,16 +24,22 @@ type Case = {
   values: readonly string[]
 }
 
+/** Both sizes are open at once and asked in turns, so that what else the machine does falls on both. */
 export async function benchHistory(): Promise<readonly BenchRow[]> {
-  const little = await measure(small)
-  const much = await measure(large)
-  return [...much].flatMap(([name, { ours, peer }]) => {
-    const before = little.get(name)!.ours
-    return [
-      row(`page by ${name}, ${large} records`, ours, peer, 1.5),
-      row(`page by ${name}, against ${small}`, ours, before, 1.3),
-    ]
-  })
+  const much = await openSide(large)
+  const little = await openSide(small)
+  try {
+    const rows: BenchRow[] = []
+    for (const [i, one] of much.cases.entries()) {
+      const { ours, peer, before } = await race(one, little.cases[i]!, much, little)
+      rows.push(row(`page by ${one.name}, ${large} records`, ours, peer, 1.5))
+      rows.push(row(`page by ${one.name}, against ${small}`, ours, before, 1.3))
+    }
+    return rows
+  } finally {
+    await little.close()
+    await much.close()
+  }
 }
 
 const row = (name: string, ours: number, peer: number, goal: number): BenchRow => ({
@@ -46,7 +52,9 @@ const row = (name: string, ours: number, peer: number, goal: number): BenchRow =
   met: ours <= goal * peer,
 })
 
-async function measure(count: number): Promise<Map<string, { ours: number; peer: number }>> {
+type Side = { url: string; token: string; peerUrl: string; cases: Case[]; close: () => Promise<void> }
+
+async function openSide(count: number): Promise<Side> {
   const database = await filledDatabase(count)
   const server = await startServer({
     databaseUrl: database.url,
@@ -56,38 +64,39 @@ async function measure(count: number): Promise<Map<string, { ours: number; peer:
   })
   const cases = await casesOf(database)
   const peer = await startPeer(database.url, cases)
-  try {
-    const { token } = server.accounts()
-    const found = new Map<string, { ours: number; peer: number }>()
-    for (const one of cases) found.set(one.name, await race(one, server.url, token, peer.url))
-    return found
-  } finally {
-    peer.process.kill()
-    await server.stop()
-    await database.stop()
+  return {
+    url: server.url,
+    token: server.accounts().token,
+    peerUrl: peer.url,
+    cases,
+    close: async () => {
+      peer.process.kill()
+      await server.stop()
+      await database.stop()
+    },
   }
 }
 
-async function race(
-  { name, query, values }: Case,
-  ours: string,
-  token: string,
-  peer: string,
-): Promise<{ ours: number; peer: number }> {
+async function race(one: Case, same: Case, much: Side, little: Side) {
   const agent = new Agent({ keepAlive: true, maxSockets: 1 })
-  const address = `${ours}/api/v1/trims?${new URLSearchParams({ ...query, limit: '50' })}`
-  const byHand = `${peer}/${name}?${new URLSearchParams({ values: JSON.stringify(values) })}`
-  const times = { ours: [] as number[], peer: [] as number[] }
+  const ask = ({ query }: Case, { url, token }: Side) => {
+    const address = `${url}/api/v1/trims?${new URLSearchParams({ ...query, limit: '50' })}`
+    return timed(address, agent, { authorization: `Bearer ${token}` })
+  }
+  const values = new URLSearchParams({ values: JSON.stringify(one.values) })
+  const times = { ours: [] as number[], peer: [] as number[], before: [] as number[] }
   for (let round = -10; round < rounds; round++) {
-    const one = await timed(address, agent, { authorization: `Bearer ${token}` })
-    const other = await timed(byHand, agent, {})
-    if (String(one.ids) !== String(other.ids)) throw new Error(`${name}: the peer found other records.`)
+    const ours = await ask(one, much)
+    const peer = await timed(`${much.peerUrl}/${one.name}?${values}`, agent, {})
+    const before = await ask(same, little)
+    if (String(ours.ids) !== String(peer.ids)) throw new Error(`${one.name}: the peer found other records.`)
     if (round < 0) continue
-    times.ours.push(one.ms)
-    times.peer.push(other.ms)
+    times.ours.push(ours.ms)
+    times.peer.push(peer.ms)
+    times.before.push(before.ms)
   }
   agent.destroy()
-  return { ours: median(times.ours), peer: median(times.peer) }
+  return { ours: median(times.ours), peer: median(times.peer), before: median(times.before) }
 }
 
 function timed(

@@ -159,6 +159,13 @@ describe('export', () => {
     ).toEqual(expected.map(({ byId: _, stationId: __, ...line }) => line))
   })
 
+  it('of nothing is no line, and in CSV the head alone', async () => {
+    const of = async (kind: string) =>
+      (await get(`/history/export.${kind}?unit=NONE`).buffer().parse(asText)).body as string
+    expect(await of('ndjson')).toBe('')
+    expect(await of('csv')).toMatch(/^number,recorded_at,.*,finding\n$/)
+  })
+
   it('as CSV: every number the same double, over several pages', async () => {
     const reply = await get('/history/export.csv').buffer().parse(asText)
     expect(reply.headers['content-type']).toBe('text/csv; charset=utf-8')

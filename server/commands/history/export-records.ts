@@ -18,7 +18,7 @@ export async function* exportRecords(
   let after: string | undefined
   do {
     const page = await listRecords(database, { ...filters, after, limit: linesAPage }, principal)
-    yield page.items
+    if (page.items.length > 0) yield page.items
     after = page.next ?? undefined
   } while (after !== undefined)
 }
