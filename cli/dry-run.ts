@@ -1,5 +1,4 @@
 import type { Design } from '../shared/contract/design.ts'
-import { type Instrument, listInstruments } from '../shared/contract/instruments.ts'
 import { listLots } from '../shared/contract/lots.ts'
 import type { Record as StoredRecord } from '../shared/contract/record.ts'
 import { getTrim } from '../shared/contract/trims.ts'
@@ -10,6 +9,7 @@ import { verifyPoints } from '../shared/solver/verify.ts'
 import type { Client } from './client.ts'
 import { designFrom } from './design-file.ts'
 import { parseJson } from './files.ts'
+import { instrumentUsed } from './instrument-used.ts'
 import { learnedFrom } from './learned.ts'
 import type { DryRecord } from './record-rendering.ts'
 import type { RequestBody } from './request.ts'
@@ -36,7 +36,7 @@ export async function dryRun(client: Asking, body: RequestBody): Promise<DryReco
   const current = await currentOf(client, body, channel, range)
   const before = await recordBefore(client, body, current)
   const applied = appliedBy(body, current, before)
-  const instrument = await instrumentNamed(client, body.conditions?.instrument)
+  const { instrument, notices } = await instrumentUsed(client, body, Date.now())
   const limits = { rangeId: range, ...(instrument ? { instrument } : {}) }
   const isLearned = body.effects === 'learned' && before !== null
   const learned = isLearned ? await learnedFrom(client, before, applied, { design, range }) : undefined
@@ -60,7 +60,7 @@ export async function dryRun(client: Asking, body: RequestBody): Promise<DryReco
     ...(body.kind === 'verify'
       ? verified(design, body, limits)
       : trimmed(design, body, { ...limits, applied, learned })),
-    notices: [],
+    notices,
     station: null,
     measuredAt: body.measuredAt ?? null,
     recordedAt: null,
@@ -77,14 +77,6 @@ function verified(design: Design, { points = [] }: RequestBody, options: Paramet
   const result = verifyPoints(design, points, options)
   const { outcome } = result
   return { result, verdict: outcome, accepted: outcome === 'pass' || outcome === 'conditional-pass' }
-}
-
-async function instrumentNamed(client: Asking, id: string | undefined): Promise<Instrument | undefined> {
-  if (id === undefined) return undefined
-  const { items } = await client.call(listInstruments, {})
-  const found = items.find((instrument) => instrument.id === id)
-  if (found) return found
-  throw new OgeeError('instrument-unknown', `There is no instrument ${id}.`)
 }
 
 /** Under which revision a request is computed: its lot's, else the one it names, else the released one. */

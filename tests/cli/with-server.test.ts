@@ -252,6 +252,48 @@ describe('trim --dry-run', () => {
     expect((await run([...dry, '--format', 'table'])).stdout).toContain('Not recorded: a dry run.')
   })
 
+  const meter = (change: object) => ({
+    id: 'DMM-07',
+    serial: 'QX-1',
+    title: 'Meter',
+    gainPpm: 4,
+    offsetV: 1e-6,
+    calibratedOn: '2025-01-01',
+    dueOn: '2025-12-31',
+    createdAt: '2025-01-01T00:00:00Z',
+    changedAt: '2025-01-01T00:00:00Z',
+    changedBy: 'S. Brandt',
+    retiredAt: null,
+    etag: '"1"',
+    ...change,
+  })
+  test.each([
+    ['instrument-overdue', {}, []],
+    ['instrument-retired', { dueOn: '2199-01-01', retiredAt: '2025-06-01T00:00:00Z' }, []],
+    ['instrument-unknown', { id: 'DMM-08' }, []],
+    [null, {}, ['--measured-at', '2025-12-31T23:00:00Z']],
+  ])('an instrument is judged as the server does: %s', async (code, change, more) => {
+    const list = json(200, { items: [meter(change)], overdueAllowed: false })
+    server.willAnswer(...answers([]).slice(0, 2), list)
+    const ran = await run([...dry, '--instrument', 'DMM-07', ...more])
+    if (code !== null) expect(problemOf(ran)).toMatchObject({ code, exit: 65 })
+    else {
+      expect(ran.code).toBe(0)
+      expect(JSON.parse(ran.stdout).result.fit.instrument).toEqual({
+        id: 'DMM-07',
+        gainPpm: 4,
+        offsetV: 1e-6,
+      })
+    }
+  })
+
+  test('an overdue instrument where the site allows it: the record would say so', async () => {
+    const list = json(200, { items: [meter({})], overdueAllowed: true })
+    server.willAnswer(...answers([]).slice(0, 2), list)
+    const ran = await run([...dry, '--instrument', 'DMM-07'])
+    expect(JSON.parse(ran.stdout).notices).toMatchObject([{ code: 'instrument-overdue' }])
+  })
+
   test('loaded codes that are not said are asked for, as the server does', async () => {
     server.willAnswer(...answers(unit.current))
     expect(problemOf(await run(dry))).toMatchObject({ code: 'applied-required', exit: 65 })
