@@ -7,7 +7,7 @@ import type { Sql } from '../db/sql.ts'
  */
 
 const of = (path: string) => `JSON_VALUE(CONVERT(l.body USING utf8mb4), '$.${path}')`
-const sameWriter = `t.at <=> l.at AND t.by_id <=> ${of('by.id')} AND t.by_name <=> ${of('by.name')} AND t.id <=> ${of('id')}`
+const sameWriter = `t.at <=> l.at AND t.by_id <=> ${of('by.id')} AND t.id <=> ${of('id')}`
 
 /** By kind of leaf: the table, what else it is joined with, and when a row agrees with its leaf. */
 const kinds = [
