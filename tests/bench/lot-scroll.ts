@@ -32,13 +32,14 @@ export async function benchLotScroll(): Promise<BenchRow[]> {
     const table = page.getByRole('region', { name: 'Units of the lot, scrolls' })
     await table.waitFor()
     await table.hover()
-    const { frames, worst } = await scrolled(page)
+    const { frames, worst, atRest } = await scrolled(page)
     return [
       {
         id: 'P7',
         name: `${rows}-row lot scrolls, longest of ${frames} frames`,
         ours: worst.toFixed(1),
-        peer: String(limitMs),
+        // A page at rest on a machine that is not quiet drops frames too: then the figure says nothing.
+        peer: `${limitMs}, rest ${atRest.toFixed(0)}`,
         ratio: worst / limitMs,
         goal: '<= 1.00',
         met: worst <= limitMs,
@@ -52,9 +53,11 @@ export async function benchLotScroll(): Promise<BenchRow[]> {
 type Watched = { gaps: number[] }
 
 /** Turns the wheel until the last row is in view, and says how long the longest frame took. */
-async function scrolled(page: Page): Promise<{ frames: number; worst: number }> {
+async function scrolled(page: Page): Promise<{ frames: number; worst: number; atRest: number }> {
   await page.waitForTimeout(1_000)
   await page.evaluate(watch)
+  await page.waitForTimeout(3_000)
+  const atRest = await page.evaluate(() => Math.max(...(globalThis as unknown as Watched).gaps.splice(0)))
   const isAtEnd = () =>
     page.evaluate(() => {
       const box = document.querySelector('[aria-label="Units of the lot, scrolls"]')
@@ -62,14 +65,14 @@ async function scrolled(page: Page): Promise<{ frames: number; worst: number }> 
     })
   for (let turn = 0; !(await isAtEnd()); turn++) {
     if (turn > 2_000) throw new Error('the table has no end')
-    await page.mouse.wheel(0, 1_200)
+    await page.mouse.wheel(0, 600)
     await page.waitForTimeout(8)
   }
   const last = `unit ${String(rows).padStart(3, '0')}`
   await page.getByRole('button', { name: new RegExp(`${last}$`) }).waitFor()
   const { gaps } = await page.evaluate(() => ({ gaps: (globalThis as unknown as Watched).gaps }))
   if (gaps.length < 60) throw new Error(`only ${gaps.length} frames were seen`)
-  return { frames: gaps.length, worst: Math.max(...gaps) }
+  return { frames: gaps.length, worst: Math.max(...gaps), atRest }
 }
 
 /** In the page: the time from each frame to the next. */

@@ -73,7 +73,7 @@ function Window({ rows, hasRanges, onReference }: WindowProps) {
     count: rows.length,
     getScrollElement: () => box.current,
     estimateSize: () => rowPx,
-    overscan: 12,
+    overscan: 8,
     initialRect: { width: 800, height: 420 },
   })
   const shown = virtual.getVirtualItems()
