@@ -23,18 +23,25 @@ export const codesHeads = [
 export type CodesRow = { [Column in (typeof codesHeads)[number]]: string | number | null }
 
 /**
- * The accepted codes of units, a row for each channel and range that has some.
+ * The accepted codes of the units of a lot, a row for each channel and range that has some. Reference units are not of the lot,
+ * nor is what was left out of it at sign-off.
  * @param design of the lot's revision: how many bits each auxiliary DAC has, and its coding
+ * @param leftOut serials, of `signOff.leftOut`
  * @example codesRows(design, []) // []
  */
-export function codesRows({ adjusters }: Design, units: readonly LotUnit[]): CodesRow[] {
+export function codesRows(
+  { adjusters }: Design,
+  units: readonly LotUnit[],
+  leftOut: ReadonlySet<string> = new Set(),
+): CodesRow[] {
   const wordsOf = (which: 'gain' | 'offset', code: number | undefined) => {
     const source = adjusters[which]?.source
     if (code === undefined || source === undefined) return { code: null, word: null, decimal: null }
     const { bits, coding } = source
     return { code, word: wordText(code, bits, coding), decimal: wordOf(code, bits, coding) }
   }
-  return units.flatMap(({ unit, standing, places }) =>
+  const ofLot = units.filter(({ unit, reference }) => !reference && !leftOut.has(unit))
+  return ofLot.flatMap(({ unit, standing, places }) =>
     places.flatMap(({ channel, range, pass, codes }) => {
       if (codes === null) return []
       const gain = wordsOf('gain', codes.gain)

@@ -14,6 +14,7 @@ export const paths = {
   lots: '/lots',
   lot: (design: string, lot: string) => `/lots/${encodeURIComponent(design)}/${encodeURIComponent(lot)}`,
   history: '/history',
+  historyFor: (search: Record<string, string | undefined>) => `/history${query(search)}`,
   record: (id: string) => `/records/${id}`,
   ledger: '/ledger',
   settings: '/settings',

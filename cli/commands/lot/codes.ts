@@ -13,7 +13,7 @@ import { designOption, type LotOptions, lotArgument, lotParamsOf, readLotOptions
 export const lotCodesCommand: Command<LotOptions> = {
   about:
     'A row for each channel and range that has accepted codes: the index, and the word in the part’s coding, decimal\n' +
-    'and hexadecimal. Needs a token that may read the records of all stations. Ends with 12 when there are no codes.\n\n' +
+    'and hexadecimal. Reference units, and those left out at sign-off, are not in it. Needs a token that may read the records of all stations. Ends with 12 when there are no codes.\n\n' +
     serverAbout,
   arguments: [lotArgument],
   options: [designOption, ...serverOptions],
@@ -34,12 +34,13 @@ async function lotCodes(options: LotOptions, context: Context): Promise<number> 
   const lot = await client.call(getLot, { params })
   const { bytes } = await fetchRevision(client, params.key, lot.revision)
   const design = designDocument.parse(JSON.parse(bytes.toString('utf8')))
+  const leftOut = new Set(lot.signOff?.leftOut.map(({ unit }) => unit))
   const isStreamed = context.format === 'csv' || context.format === 'ndjson'
   const all: CodesRow[] = []
   let count = 0
   let isFirst = true
   for await (const units of pages(client, params)) {
-    const rows = codesRows(design, units)
+    const rows = codesRows(design, units, leftOut)
     if (!isStreamed) all.push(...rows)
     else if (!(await write(rows, isFirst, context))) return 0
     count += rows.length

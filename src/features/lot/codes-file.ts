@@ -10,8 +10,9 @@ export function downloadCodes(
   format: 'csv' | 'ndjson',
   design: Design,
   units: readonly LotUnit[],
+  leftOut: ReadonlySet<string>,
 ): void {
-  const rows = codesRows(design, units)
+  const rows = codesRows(design, units, leftOut)
   if (format === 'ndjson') {
     const text = rows.map((row) => `${JSON.stringify(row)}\n`).join('')
     download(`${name}.ndjson`, text, 'application/x-ndjson')

@@ -32,8 +32,9 @@ export function LotHead({ lot, title, document, units, onAdd }: Props) {
   const mayRun = role === 'engineer' || role === 'operator'
   const hasCodes =
     document !== undefined && units.some(({ places }) => places.some(({ codes }) => codes !== null))
+  const leftOut = new Set(lot.signOff?.leftOut.map(({ unit }) => unit))
   const save = (format: 'csv' | 'ndjson') =>
-    document && downloadCodes(`${lot.design}-${lot.key}-codes`, format, document, units)
+    document && downloadCodes(`${lot.design}-${lot.key}-codes`, format, document, units, leftOut)
   return (
     <>
       <PageHead
@@ -50,6 +51,7 @@ export function LotHead({ lot, title, document, units, onAdd }: Props) {
         state={<State lot={lot} title={title} />}
         acts={
           <>
+            <LinkButton to={paths.historyFor({ design: lot.design, lot: lot.key })}>Records</LinkButton>
             {hasCodes ? (
               <span className="inline-flex items-center gap-1">
                 Codes
@@ -68,7 +70,7 @@ export function LotHead({ lot, title, document, units, onAdd }: Props) {
                 <Button onClick={() => setAsking('close')}>Close lot</Button>
               </>
             ) : null}
-            {role === 'engineer' && lot.state !== 'signed-off' && lot.counts.units > 0 ? (
+            {role === 'engineer' && lot.state !== 'signed-off' && units.length > 0 ? (
               <Button look="primary" onClick={() => setAsking('sign-off')}>
                 Sign off lot
               </Button>

@@ -39,10 +39,16 @@ describe('codes of a lot', () => {
 
   test('a row for each place with codes, the word in the coding of the part', () => {
     const codes = { record: 'r', station: null, at: '2026-11-24T12:58:00Z', number: 5, gain: 3, offset: 2048 }
-    const rows = codesRows(design, [
-      lotUnit(1, { place: { codes } }),
-      lotUnit(2, { place: { codes: null }, standing: 'suspect' }),
-    ])
+    const rows = codesRows(
+      design,
+      [
+        lotUnit(1, { place: { codes } }),
+        lotUnit(2, { place: { codes: null }, standing: 'suspect' }),
+        lotUnit(3, { place: { codes }, reference: true }),
+        lotUnit(4, { place: { codes } }),
+      ],
+      new Set(['004']),
+    )
     expect(rows).toHaveLength(1)
     // Two's complement of 12 bits: mid-scale is 0.
     expect(rows[0]).toMatchObject({
