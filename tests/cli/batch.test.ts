@@ -8,9 +8,9 @@ import { afterAll, beforeAll, beforeEach, describe, expect, test } from 'vitest'
 import { batchLine } from '../../shared/contract/batches.ts'
 import { record } from '../../shared/contract/record.ts'
 import { canonicalBytes, type Json } from '../../shared/ledger/canonical.ts'
-import { batchAnswer, examplePoints, linesOf, recordOf } from './support/answers.ts'
+import { batchAnswer, designBytes, examplePoints, linesOf, recordOf, revision } from './support/answers.ts'
 import { builtCli, ended, problemOf, type Ran, type RunOptions } from './support/built-cli.ts'
-import { FakeServer, problem, type Reply } from './support/fake-server.ts'
+import { FakeServer, json, problem, type Reply } from './support/fake-server.ts'
 
 const cli = builtCli()
 const server = new FakeServer()
@@ -201,6 +201,26 @@ describe('what is printed', () => {
     const ran = await run(['--format', 'ndjson'], { input: csvOf(...units) })
     expect(linesIn(ran).map(({ unit }) => unit)).toEqual(units)
   })
+})
+
+test('a dry run asks for the design once and sends nothing', async () => {
+  const hash = createHash('sha256').update(designBytes).digest('hex')
+  server.willAnswer((seen, response) => {
+    if (seen.path.includes('/revisions/')) json(200, revision(hash))(seen, response)
+    else if (seen.path.includes('/units')) json(200, { items: [] })(seen, response)
+    else problem('not-found')(seen, response)
+  })
+  const ran = await run(['--format', 'ndjson', '--dry-run'], { input: csvOf('A', 'B', 'C') })
+  expect(ran.code).toBe(0)
+  expect(
+    linesIn(ran).map(({ unit, exit, record }) => [unit, exit, (record as unknown as { id: null }).id]),
+  ).toEqual([
+    ['A', 0, null],
+    ['B', 0, null],
+    ['C', 0, null],
+  ])
+  expect(server.seen.every(({ method }) => method === 'GET')).toBe(true)
+  expect(server.seen.filter(({ path }) => path.includes('/revisions/'))).toHaveLength(1)
 })
 
 describe('bad input', () => {
