@@ -37,17 +37,17 @@ export const ledgerKeysOptions = queryOptions({
 export type Compared = { from: number; to: number; path: string[]; fault: string | null }
 export type Pair = { older: { name: string; note: string }; newer: { name: string; note: string } }
 
-/** Asks for the proof between two signed checkpoints and checks it here, signatures included. */
+/** Asks for the proof between two signed checkpoints and checks it here, signatures included, once the keys are known. */
 export const comparisonOptions = (
   pair: Pair | null,
   key: LedgerKey | null,
-  changes: readonly KeyStatement[],
+  changes: readonly KeyStatement[] | null,
 ) =>
   queryOptions({
-    queryKey: ['ledger', 'consistency', pair?.older.note ?? null, pair?.newer.note ?? null],
-    enabled: pair !== null && key !== null,
+    queryKey: ['ledger', 'consistency', pair?.older.note, pair?.newer.note, changes?.length],
+    enabled: pair !== null && key !== null && changes !== null,
     staleTime: Number.POSITIVE_INFINITY,
-    queryFn: ({ signal }) => compare(pair!, key!, changes, signal),
+    queryFn: ({ signal }) => compare(pair!, key!, changes!, signal),
   })
 
 async function compare(

@@ -21,7 +21,7 @@ export function KeptPanel({
   /** The kept key, read. */
   ledgerKey: LedgerKey | null
   newest: string
-  changes: readonly KeyStatement[]
+  changes: readonly KeyStatement[] | null
   onKeep: () => void
   onForget: () => void
 }) {

@@ -22,7 +22,7 @@ export function Checkpoints({
   changes,
 }: {
   verifierKey: string | null
-  changes: readonly KeyStatement[]
+  changes: readonly KeyStatement[] | null
 }) {
   const [search, setSearch] = useSearchParams()
   const after = search.get('after') ?? undefined

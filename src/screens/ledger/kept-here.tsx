@@ -13,7 +13,7 @@ export function KeptHere({
   kept: Keeping
   note: string
   verifierKey: string | null
-  changes: readonly KeyStatement[]
+  changes: readonly KeyStatement[] | null
 }) {
   return (
     <KeptPanel

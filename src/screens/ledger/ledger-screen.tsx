@@ -25,7 +25,7 @@ export default function LedgerScreen() {
   const kept = useKept()
   const [isChanging, setChanging] = useState(false)
   const files = useDownload()
-  const error = checkpoint.error ?? key.error
+  const error = checkpoint.error ?? key.error ?? keys.error
   if (error && checkpoint.data === undefined) {
     return (
       <PageProblem place="Ledger" what="Checkpoint" error={error} onRetry={() => void checkpoint.refetch()} />
@@ -33,7 +33,7 @@ export default function LedgerScreen() {
   }
   const note = checkpoint.data
   const verifierKey = key.data ?? null
-  const changes = keys.data?.flatMap(({ statement }) => statement ?? []) ?? []
+  const changes = keys.data?.flatMap(({ statement }) => statement ?? []) ?? null
   return (
     <>
       <PageHead
