@@ -173,6 +173,11 @@ export const commandTable: readonly Entry[] = [
     summary: 'The ledger as a whole',
     verbs: [
       {
+        name: 'key',
+        summary: 'The public key, to keep elsewhere',
+        load: async () => (await import('./commands/ledger/key.ts')).ledgerKeyCommand,
+      },
+      {
         name: 'checkpoint',
         summary: 'The newest signed checkpoint, to keep elsewhere',
         load: async () => (await import('./commands/ledger/checkpoint.ts')).ledgerCheckpointCommand,

@@ -65,6 +65,14 @@ describe('the guide for callers', () => {
     expect(first).toHaveLength(21)
   })
 
+  test('sh: key, checkpoint, proof and consistency', async () => {
+    const [script = ''] = blocks('sh', 'Prove it years later')
+    const ran = await run('bash', `set -e\n${script}`)
+    expect({ code: ran.code, stderr: ran.stderr }).toEqual({ code: 0, stderr: '' })
+    const answers = ran.stdout.split(/(?<=^\})\n/m).filter((text) => text !== '')
+    expect(answers.map((text) => JSON.parse(text).ok)).toEqual([true, true])
+  })
+
   test('sh: found, trimmed and as left by way of a spool, with simulated units', async () => {
     const [script = ''] = blocks('sh', 'When the server is away, and as left')
     const ran = await run('bash', script)

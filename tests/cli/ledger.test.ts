@@ -55,6 +55,12 @@ const asJson = (ran: { stdout: string }) => JSON.parse(ran.stdout)
 
 describe('ledger checkpoint', () => {
   test('gives the signed note, without a token', async () => {
+    const named = await cli.run(['ledger', 'key'], { cwd: folder, env: { OGEE_URL: scene.url } })
+    expect(named).toMatchObject({
+      code: 0,
+      stderr: '',
+      stdout: expect.stringMatching(/^test\/ledger\+[0-9a-f]{8}\+/),
+    })
     writeFileSync(
       join(folder, 'ogee.pub'),
       (await fetch(`${scene.url}/api/v1/ledger/key`).then((r) => r.text())) as string,
