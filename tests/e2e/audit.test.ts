@@ -138,6 +138,25 @@ describe('an auditor', () => {
     expect(complaints).toEqual([])
     await context.close()
   })
+
+  test('writes one on a lot, which stands on the lot and on each of its records', async () => {
+    const { page, context, complaints } = await openPage(stage.browser)
+    const headers = { authorization: `Bearer ${stage.server.accounts().token}` }
+    const reply = await fetch(`${stage.server.url}/api/v1/trims?limit=1&kind=trim`, { headers })
+    const [line] = ((await reply.json()) as { items: { id: string; design: string; lot: string }[] }).items
+    await page.goto(`${stage.server.url}/lots/${line!.design}/${line!.lot}`)
+    await stage.signIn(page, 'auditor')
+    await page.locator('[data-when-near="findings"]').scrollIntoViewIfNeeded()
+    await page.getByRole('button', { name: 'Write a finding' }).click()
+    await page.getByLabel('Words').fill('Two meters were used in one lot.')
+    await page.getByRole('button', { name: 'Keep the finding' }).click()
+    await page.getByText(/Two meters were used in one lot\./).waitFor()
+    await judge(page, 'the lot with a finding')
+    await page.goto(`${stage.server.url}/records/${line!.id}`)
+    await page.getByText(/Two meters were used in one lot\. On lot/).waitFor()
+    expect(complaints).toEqual([])
+    await context.close()
+  })
 })
 
 const looks = (['light', 'dark'] as const).flatMap((theme) => [1440, 320].map((width) => ({ theme, width })))

@@ -6,13 +6,13 @@ import { Loading } from '../../ui/loading.tsx'
 import { Problem } from '../../ui/problem.tsx'
 import { Section } from '../../ui/section.tsx'
 import { TimeText } from '../../ui/time-text.tsx'
-import { findingsOptions } from './queries.ts'
+import { type About, findingsOptions } from './queries.ts'
 
 type Act = (finding: Finding, act: 'answer' | 'close') => void
 
-/** What was found on a record and on its lot, with the answers. Acts that are not open to somebody are absent. */
-export function Findings({ record, role, onAct }: { record: string; role: Role; onAct: Act }) {
-  const findings = useQuery(findingsOptions(record))
+/** What was found, with the answers. Acts that are not open to somebody are absent. */
+export function Findings({ about, role, onAct }: { about: About; role: Role; onAct: Act }) {
+  const findings = useQuery(findingsOptions(about))
   const items = findings.data?.items ?? []
   const open = items.filter(({ state }) => state !== 'closed').length
   return (
@@ -27,7 +27,7 @@ export function Findings({ record, role, onAct }: { record: string; role: Role; 
               at={finding.at}
               by={finding.by.name}
               text={finding.text}
-              note={`${aboutLot(finding)}${stateWords[finding.state]}`}
+              note={`${subjectWords(finding, about)}${stateWords[finding.state]}`}
             />
             {finding.answers.map(({ id, act, at, by, text }) => (
               <Entry
@@ -47,7 +47,11 @@ export function Findings({ record, role, onAct }: { record: string; role: Role; 
 }
 
 const stateWords = { open: 'Open.', answered: 'Answered, open.', closed: '' } as const
-const aboutLot = ({ subject }: Finding) => (subject.kind === 'lot' ? `On lot ${subject.lot}. ` : '')
+/** Said where it is not what the page is about. */
+function subjectWords({ subject }: Finding, about: About): string {
+  if (subject.kind === 'lot') return 'lot' in about ? '' : `On lot ${subject.lot}. `
+  return 'record' in about ? '' : `On record ${subject.number}, unit ${subject.unit}. `
+}
 
 function Entry({ at, by, text, note }: { at: string; by: string; text: string; note: string }) {
   return (

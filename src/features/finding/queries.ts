@@ -5,11 +5,13 @@ import { listFindings, postAnswer, postClosing, postFinding } from '../../../sha
 import { limits } from '../../../shared/limits.ts'
 import { api } from '../../lib/api.ts'
 
-/** Findings on a record and on its lot. */
-export const findingsOptions = (record: string) =>
+export type About = { record: string } | { design: string; lot: string }
+
+/** Findings on a record and on its lot; or on a lot and on its records. */
+export const findingsOptions = (about: About) =>
   queryOptions({
-    queryKey: ['findings', record],
-    queryFn: ({ signal }) => api(listFindings, { query: { record, limit: limits.pageMax } }, signal),
+    queryKey: ['findings', about],
+    queryFn: ({ signal }) => api(listFindings, { query: { ...about, limit: limits.pageMax } }, signal),
   })
 
 export type Subject = InputOf<typeof postFinding>['body']['subject']

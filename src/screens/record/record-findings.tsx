@@ -1,9 +1,12 @@
-import { useState } from 'react'
+import { lazy, Suspense, useState } from 'react'
 import type { Record as TrimRecord } from '../../../shared/contract/record.ts'
 import { Findings } from '../../features/finding/findings.tsx'
 import type { Writing } from '../../features/finding/queries.ts'
-import { WriteDialog } from '../../features/finding/write-dialog.tsx'
 import { usePerson } from '../../features/session/use-person.ts'
+
+const WriteDialog = lazy(() =>
+  import('../../features/finding/write-dialog.tsx').then(({ WriteDialog }) => ({ default: WriteDialog })),
+)
 
 type Open = { draft: string; choices: (readonly [string, Writing])[] }
 
@@ -14,13 +17,17 @@ export default function RecordFindings({ record }: { record: TrimRecord }) {
   return (
     <>
       <Findings
-        record={record.id}
+        about={{ record: record.id }}
         role={role}
         onAct={(finding, act) =>
           setOpen({ draft: `${act}.${finding.id}`, choices: [[act, { act, finding: finding.id }]] })
         }
       />
-      {open ? <WriteDialog {...open} onClose={() => setOpen(null)} /> : null}
+      {open ? (
+        <Suspense fallback={null}>
+          <WriteDialog {...open} onClose={() => setOpen(null)} />
+        </Suspense>
+      ) : null}
     </>
   )
 }
