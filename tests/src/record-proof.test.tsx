@@ -155,7 +155,7 @@ test('an engineer answers and finds no way to write or close; a refusal stands i
   await user.click(await screen.findByRole('button', { name: 'Answer' }))
   expect(screen.queryByRole('button', { name: 'Write a finding' })).toBeNull()
   expect(screen.queryByRole('button', { name: 'Close' })).toBeNull()
-  await user.type(screen.getByLabelText('Words'), 'No reading is flagged unsettled.')
+  await user.type(await screen.findByLabelText('Words'), 'No reading is flagged unsettled.')
   await user.click(screen.getByRole('button', { name: 'Keep the answer' }))
   await screen.findByText('The finding was closed by A. Hale.')
 })
