@@ -14,20 +14,37 @@ import { markSentence, StationMark } from './station-mark.tsx'
 /** Under this many units the limits say little (patterns.md). */
 const leastForLimits = 20
 const height = 246
-const colours = { gain: 'var(--copper)', offset: 'var(--tide)' } as const
+const colours = { gain: 'var(--copper)', offset: 'var(--tide)', left: 'var(--ink)' } as const
+const words = {
+  gain: 'gain error as found',
+  offset: 'offset error as found',
+  left: 'worst error as left',
+} as const
+
+/** What the chart is of: an error as found, or, of the channels that were verified, the worst error as left. */
+export type Series = {
+  which: keyof typeof words
+  unit: Side['unit'] | 'LSB'
+  chart: Side['chart']
+}
+type Charted = LotPoint & { value: number }
 
 type Props = {
-  side: Side
+  side: Series
   points: readonly LotPoint[]
   stations: readonly string[]
-  /** Gain and offset, where the design has both. */
+  /** Gain and offset, where the design has both, and as left. */
   choices: readonly (readonly [string, string])[]
   onChoice: (which: string) => void
 }
 
 /** Every channel as found in the order of reading, with mean ± 2.66 times the mean moving range. */
-export function IndividualsPlot({ side, points, stations, choices, onChoice }: Props) {
+export function IndividualsPlot({ side, points: all, stations, choices, onChoice }: Props) {
   const { which, unit, chart } = side
+  const points = all.flatMap((point): Charted[] => {
+    const value = point[which]
+    return value === null ? [] : [{ ...point, value }]
+  })
   const [page, setPage] = useState<number | null>(null)
   const pages = Math.max(1, Math.ceil(points.length / pageSize))
   // The newest unless somebody looks at others.
@@ -41,7 +58,7 @@ export function IndividualsPlot({ side, points, stations, choices, onChoice }: P
     : few
   return (
     <PlotFigure
-      title={`Individuals chart, ${which} error as found`}
+      title={`Individuals chart, ${words[which]}`}
       units={choices}
       unit={which}
       onUnit={onChoice}
@@ -70,15 +87,15 @@ function Scroller({ children }: { children: ReactNode }) {
   return <div className="overflow-x-auto print:overflow-visible">{children}</div>
 }
 
-function tableOf(points: readonly LotPoint[], { which, unit }: Side): PlotTableData {
-  const name = unit === 'ppm' ? 'ppm' : 'uv'
+function tableOf(points: readonly Charted[], { which, unit }: Series): PlotTableData {
+  const name = unit === 'µV' ? 'uv' : unit.toLowerCase()
   return {
-    head: ['unit', 'channel', 'station', `${which} error, ${unit}`, 'verdict'],
+    head: ['unit', 'channel', 'station', `${words[which]}, ${unit}`, 'verdict'],
     rows: points.map((point) => [
       point.unit,
       point.channel,
       point.station,
-      numberText(point[which], 2, true),
+      numberText(point.value, 2, which !== 'left'),
       point.isOut ? 'out of reach' : '',
     ]),
     csvHead: ['unit', 'channel', 'station', 'read_at', `${which}_error_${name}`, 'out_of_reach'],
@@ -87,15 +104,15 @@ function tableOf(points: readonly LotPoint[], { which, unit }: Side): PlotTableD
       point.channel,
       point.station,
       new Date(point.at).toISOString(),
-      point[which],
+      point.value,
       point.isOut ? 1 : 0,
     ]),
   }
 }
 
 type DrawingProps = {
-  side: Side
-  points: readonly LotPoint[]
+  side: Series
+  points: readonly Charted[]
   first: number
   stations: readonly string[]
   hasLimits: boolean
@@ -107,20 +124,20 @@ function Drawing({ side, points, first, stations, hasLimits, width }: DrawingPro
   const box: Box = { left: 56, right: width - 100, top: 26, bottom: height - 34 }
   const inReach = points.filter(({ isOut }) => !isOut)
   const drawn = inReach.length > 0 ? inReach : points
-  const values = drawn.map((point) => point[which])
+  const values = drawn.map((point) => point.value)
   const ends = hasLimits && chart ? [...values, chart.lower, chart.upper] : values
   const y = scaleLinear([Math.min(...ends), Math.max(...ends)], [box.bottom - 12, box.top]).nice()
   const x = scaleLinear([first, first + Math.max(1, points.length - 1)], [box.left + 8, box.right - 8])
   const line = points
     .flatMap((point, i) =>
-      drawn.includes(point) || !point.isOut ? [`${x(first + i)} ${y(point[which])}`] : [],
+      drawn.includes(point) || !point.isOut ? [`${x(first + i)} ${y(point.value)}`] : [],
     )
     .join('L')
   return (
     <PlotSvg
       width={width}
       height={height}
-      label={`${which} error of ${points.length} channels in the order of reading.`}
+      label={`${words[which]} of ${points.length} channels in the order of reading.`}
     >
       <YAxis y={y} box={box} unit={unit} side="left" grid />
       {chart ? <Limits side={side} y={y} box={box} hasLimits={hasLimits} /> : null}
@@ -140,7 +157,7 @@ function Drawing({ side, points, first, stations, hasLimits, width }: DrawingPro
   )
 }
 
-type LimitsProps = { side: Side; y: Scale; box: Box; hasLimits: boolean }
+type LimitsProps = { side: Series; y: Scale; box: Box; hasLimits: boolean }
 
 function Limits({ side: { chart, which }, y, box, hasLimits }: LimitsProps) {
   if (!chart) return null
@@ -182,7 +199,7 @@ function Points({ side, points, first, x, y, box, stations, hasLimits }: PointsP
   const stop = useWalk(points.length)
   const [low = 0, high = 1] = y.domain()
   return points.map((point, i) => {
-    const value = point[which]
+    const { value } = point
     const isBeyond = value < low || value > high
     const isOutside = hasLimits && chart !== null && (value > chart.upper || value < chart.lower)
     const px = x(first + i)

@@ -2,10 +2,11 @@ import { lazy, Suspense, useDeferredValue, useMemo } from 'react'
 import type { Design } from '../../../shared/contract/design.ts'
 import type { LotDetail, LotUnit } from '../../../shared/contract/lots.ts'
 import { converterRange, limitInVolts } from '../../../shared/solver/converter.ts'
+import { individualsChart } from '../../../shared/solver/lots/individuals.ts'
 import { type Analysis, analyse, type Side, type Which } from '../../features/lot/analyse.ts'
 import { CapabilityTable } from '../../features/lot/capability-table.tsx'
 import { ErrorHistogram } from '../../features/lot/error-histogram.tsx'
-import { IndividualsPlot } from '../../features/lot/individuals-plot.tsx'
+import { IndividualsPlot, type Series } from '../../features/lot/individuals-plot.tsx'
 import { LeftPlot } from '../../features/lot/left-plot.tsx'
 import { differs, StationSentence } from '../../features/lot/lot-sentences.tsx'
 import { useMarkReference } from '../../features/lot/queries.ts'
@@ -45,6 +46,7 @@ export default function LotDrawn({ lot, design, units: newest, search, onSearch 
   )
   const which = shownSide(analysis, search.get('chart'))
   const side = which === null ? null : analysis[which]
+  const series = search.get('chart') === 'left' ? leftSeries(analysis) : side
   const reference = useMarkReference(lot.design)
   return (
     <>
@@ -56,10 +58,10 @@ export default function LotDrawn({ lot, design, units: newest, search, onSearch 
         {analysis.gain ? <ErrorHistogram side={analysis.gain} points={analysis.points} /> : null}
         {analysis.offset ? <ErrorHistogram side={analysis.offset} points={analysis.points} /> : null}
       </div>
-      {side !== null && analysis.points.length > 0 ? (
+      {series !== null && analysis.points.length > 0 ? (
         <div className="mt-3">
           <IndividualsPlot
-            side={side}
+            side={series}
             points={analysis.points}
             stations={stations}
             choices={choicesOf(analysis)}
@@ -102,9 +104,16 @@ function shownSide(analysis: Analysis, asked: string | null): Which | null {
   return analysis.offset ? 'offset' : null
 }
 
-const choicesOf = ({ gain, offset }: Analysis): [string, string][] => [
+/** Worst errors as left of the channels that were verified, as a chart of their own; null where none was. */
+function leftSeries({ points }: Analysis): Series | null {
+  const values = points.flatMap(({ left }) => left ?? [])
+  return values.length === 0 ? null : { which: 'left', unit: 'LSB', chart: individualsChart(values) }
+}
+
+const choicesOf = ({ gain, offset, points }: Analysis): [string, string][] => [
   ...(gain ? [['gain', 'gain'] as [string, string]] : []),
   ...(offset ? [['offset', 'offset'] as [string, string]] : []),
+  ...(points.some(({ left }) => left !== null) ? [['left', 'as left'] as [string, string]] : []),
 ]
 
 function toleranceOf(design: Design, rangeId: string): number | null {

@@ -96,6 +96,16 @@ describe('one lot', () => {
       expect(screen.queryByRole('button', { name })).toBeNull()
   })
 
+  test('the chart shows errors as left, and the address keeps it', async () => {
+    const { user } = open(address, serverWith({}, twentyTwo))
+    await screen.findByRole('heading', { name: 'Individuals chart, gain error as found' })
+    await user.click(screen.getByRole('radio', { name: 'as left' }))
+    await screen.findByRole('heading', { name: 'Individuals chart, worst error as left' })
+    expect(window.location.search).toBe('?chart=left')
+    // The one out of reach was never verified.
+    expect(screen.getAllByRole('img', { name: /^Unit \d+, channel 1, Station/ })).toHaveLength(21)
+  })
+
   test('an empty lot says how to fill it; one of a design that is not there says nothing more', async () => {
     const { unmount } = open(address, serverWith({ counts: lotCounts(), records: 0 }, []))
     await screen.findByText(/No units yet/)
