@@ -52,6 +52,9 @@ function refuseOtherFormats(parsed: unknown, name: string): void {
     isNewer
       ? `${name} has format ${format}; this version of ogee reads ogee.design/1. Take a newer ogee.`
       : `${name} has format ${format}; a design document has ogee.design/1.`,
-    { facts: { format, reads: 'ogee.design/1' } },
+    {
+      facts: { format, reads: 'ogee.design/1' },
+      errors: [{ path: '/format', message: 'Only ogee.design/1 is read.' }],
+    },
   )
 }
