@@ -1,8 +1,6 @@
-import { readFileSync } from 'node:fs'
-import { extname, join, normalize } from 'node:path'
-import type { Page, Route } from 'playwright-core'
-import { launchBrowser, openPage } from '../support/browser.ts'
-import { designLine, me, revision } from '../support/web-fixtures.ts'
+import type { Page } from 'playwright-core'
+import { launchBrowser } from '../support/browser.ts'
+import { builtOrigin, openBuilt } from '../support/built-page.ts'
 import { type BenchRow, median } from './row.ts'
 
 /**
@@ -10,25 +8,15 @@ import { type BenchRow, median } from './row.ts'
  * protocol. From the key's own time stamp to the frame that carries the answer having been drawn; the page is the built one,
  * its server is answered from fixtures.
  */
-const web = join(import.meta.dirname, '../../dist/web')
-const origin = 'http://keystroke.test'
 const frameMs = 1000 / 60
 const slowDown = 4
 const keys = 60
-const types: Readonly<Record<string, string>> = {
-  '.html': 'text/html',
-  '.js': 'text/javascript',
-  '.css': 'text/css',
-  '.svg': 'image/svg+xml',
-  '.woff2': 'font/woff2',
-}
-
 export async function benchKeystroke(): Promise<BenchRow[]> {
   const browser = await launchBrowser()
   try {
-    const { page } = await openPage(browser)
-    await page.route('**/*', answer)
-    await page.goto(`${origin}/designs/DBS-A/revisions/2`)
+    const { page } = await openBuilt(browser, '/designs/DBS-A/revisions/2', {
+      pages: { '/empty': emptyPage },
+    })
     await page.getByText('gain covers').waitFor()
     // All panels open: what waits until it is near is brought near.
     await page.locator('[data-when-near=choices]').scrollIntoViewIfNeeded()
@@ -36,13 +24,13 @@ export async function benchKeystroke(): Promise<BenchRow[]> {
     const session = await page.context().newCDPSession(page)
     await session.send('Emulation.setCPUThrottlingRate', { rate: slowDown })
     const times = await typed(page)
-    await page.goto(`${origin}/empty`)
-    const empty = await typed(page)
+    await page.goto(`${builtOrigin}/empty`)
+    const bare = await typed(page)
     return [
       row('keystroke to new answer, median ms at 4x', median(times)),
       row('keystroke to new answer, 95th percentile', worst(times)),
       // No goal: what the browser itself takes on this machine for a key in a page of one field and one sentence.
-      { ...row('the same on an empty page, median ms', median(empty)), goal: 'none', met: true },
+      { ...row('the same on an empty page, median ms', median(bare)), goal: 'none', met: true },
     ]
   } finally {
     await browser.close()
@@ -102,31 +90,7 @@ const watch = `(() => {
   }, { capture: true })
 })()`
 
-const empty = `<!doctype html><main><input data-field="margin"><p></p></main><script>
+const emptyPage = `<!doctype html><main><input data-field="margin"><p></p></main><script>
 document.querySelector('input').addEventListener('input', ({ target }) => {
   document.querySelector('p').textContent = 'Reach ' + target.value + ' needed'
 })</script>`
-
-async function answer(route: Route): Promise<void> {
-  const { pathname } = new URL(route.request().url())
-  if (pathname.startsWith('/api/v1/')) {
-    const reply = replies[pathname.replace('/api/v1', '')]
-    return reply === undefined
-      ? route.fulfill({ status: 200, json: { items: [], next: null } })
-      : route.fulfill({ status: 200, json: reply })
-  }
-  if (pathname === '/empty') return route.fulfill({ status: 200, contentType: 'text/html', body: empty })
-  const path = extname(pathname) === '' ? '/index.html' : normalize(pathname)
-  return route.fulfill({
-    status: 200,
-    contentType: types[extname(path)] ?? 'application/octet-stream',
-    body: readFileSync(join(web, path)),
-  })
-}
-
-const replies: Readonly<Record<string, unknown>> = {
-  '/me': me('engineer'),
-  '/designs/DBS-A': designLine,
-  '/designs/DBS-A/revisions/1': revision(1),
-  '/designs/DBS-A/revisions/2': revision(2),
-}

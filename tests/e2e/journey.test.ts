@@ -1,6 +1,7 @@
 import { execFile } from 'node:child_process'
 import { join } from 'node:path'
 import { promisify } from 'node:util'
+import type { Page } from 'playwright-core'
 import { afterAll, beforeAll, describe, expect, test } from 'vitest'
 import { openPage } from '../support/browser.ts'
 import { openStage, readings, type Stage } from './stage.ts'
@@ -147,22 +148,65 @@ async function expectCell(page: import('playwright-core').Page, place: string, t
   expect(await cell.textContent()).toMatch(text)
 }
 
-test("the README's design: from a template to released by its author, with what the demo has", async () => {
+/** Tab until the focus is there, as a person without a mouse goes; a stop that never comes is a fault of the page. */
+async function tabTo(page: Page, words: RegExp): Promise<void> {
+  const said: string[] = []
+  for (let i = 0; i < 120; i++) {
+    const name = await page.evaluate(() => {
+      const at = document.activeElement
+      if (!(at instanceof HTMLElement)) return ''
+      const labels =
+        at instanceof HTMLInputElement ? [...(at.labels ?? [])].map((one) => one.textContent) : []
+      return [at.getAttribute('aria-label') ?? '', ...labels, at.textContent].join(' ').trim()
+    })
+    if (words.test(name)) return
+    said.push(name)
+    await page.keyboard.press('Tab')
+  }
+  throw new Error(`no Tab leads to ${words}: ${said.join(' | ')}`)
+}
+
+test("U3: the README's design by keyboard alone: from a template to released by its author, with what the demo has", async () => {
   const { page, complaints, context } = await openPage(stage.browser)
   page.setDefaultTimeout(90_000)
   await page.goto(`${stage.server.url}/designs`)
   await stage.signIn(page, 'engineer')
-  await page.getByRole('button', { name: 'New design' }).click()
-  await page.getByLabel('Key').fill('README-1')
-  await page.getByLabel(/^Unipolar/).check()
-  await page.getByRole('button', { name: 'Start' }).click()
-  await page.locator('[data-field=bits]').fill('18')
+  await page.getByRole('button', { name: 'New design' }).waitFor()
+  await tabTo(page, /^New design$/)
+  await page.keyboard.press('Enter')
+  await page.getByLabel('Key').waitFor()
+  await tabTo(page, /^Key/)
+  await page.keyboard.type('README-1')
+  await page.keyboard.press('Tab')
+  await page.keyboard.type('Bias source')
+  await tabTo(page, /^Unipolar/)
+  await page.keyboard.press('Space')
+  await page.keyboard.press('Enter')
+  await page.waitForFunction(() => document.activeElement?.getAttribute('data-field') === 'bits')
+  await page.keyboard.type('18')
   await page.keyboard.press('Tab')
   await page.keyboard.type('0 V to 10 V')
   await page.getByText('gain covers').waitFor()
+  // A number explains itself, and a cell of the table is tried and dropped.
+  await page.keyboard.press('Escape')
+  await tabTo(page, /^7\.\d+ mV|^\d+(\.\d+)? mV$/)
+  await page.keyboard.press('Enter')
+  await page.getByRole('dialog', { name: /^How reach of gain/ }).waitFor()
+  await page.keyboard.press('Escape')
+  await tabTo(page, /12 bits, .*covers/)
+  await page.keyboard.press('ArrowDown')
+  await page.keyboard.press('Enter')
+  await page.getByText('This is tried and not saved.').waitFor()
+  await page.locator('h1').focus()
+  await tabTo(page, /^Drop it$/)
+  await page.keyboard.press('Enter')
+  await page.getByText('This is tried and not saved.').waitFor({ state: 'detached' })
+  await page.getByText(/saved \d\d:\d\d:\d\d/).waitFor()
   await page.keyboard.press('Control+Enter')
   await page.getByText('You wrote this revision. It will say: released by its author.').waitFor()
-  await page.getByRole('button', { name: 'Release revision 1' }).click()
+  await page.locator('h1').focus()
+  await tabTo(page, /^Release revision 1$/)
+  await page.keyboard.press('Enter')
   await page.getByText(/^Released by .*, by its author\. Released revisions do not change\.$/).waitFor()
   expect(complaints).toEqual([])
   await context.close()

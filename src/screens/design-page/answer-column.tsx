@@ -13,7 +13,7 @@ import { useAnswerNow } from './use-form-answer.ts'
 import type { RevisionActs } from './use-revision-acts.ts'
 
 type Texts = Readonly<Record<string, string>>
-const greyed = 'opacity-60 [&_*]:!text-ink-3'
+const greyed = '[&_*:not(label,label_*)]:!text-ink-3 [&_svg]:opacity-60'
 
 /** The answer in the order of decision: verdicts, ladder with resolution × span, residual, resistors, yield; then revisions. */
 export function AnswerColumn({
@@ -45,7 +45,7 @@ export function AnswerColumn({
   const grey = isStale ? greyed : ''
   return (
     <div className="contents wide:block wide:overflow-y-auto wide:pr-2 print:contents">
-      <div className="sticky top-0 z-1 order-1 -mx-4 bg-paper px-4 pb-1.5 medium:mx-0 medium:px-0 wide:static print:static">
+      <div className="sticky top-0 z-1 order-1 -mx-4 bg-paper px-4 pb-1.5 medium:mx-0 medium:px-0 wide:static print:static print:mx-0 print:px-0">
         <Ranges page={page} />
         <Now page={page} onField={onField} />
       </div>
