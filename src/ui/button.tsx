@@ -7,7 +7,7 @@ export type ButtonLook = 'primary' | 'plain' | 'quiet'
 const shared = 'inline-flex items-center gap-2 text-body whitespace-nowrap disabled:cursor-default'
 const looks: Record<ButtonLook, string> = {
   primary:
-    'min-h-7 rounded-sm border border-ink bg-ink px-3 font-semibold text-paper disabled:border-ink-3 disabled:bg-ink-3 forced-colors:border-[ButtonBorder] forced-colors:disabled:text-[GrayText]',
+    'min-h-7 rounded-sm border border-ink bg-ink px-3 font-semibold text-paper disabled:border-ink-3 disabled:bg-ink-3 forced-colors:border-[ButtonBorder] forced-colors:text-[ButtonText] forced-colors:disabled:text-[GrayText]',
   plain:
     'min-h-7 rounded-sm border border-rule px-3 font-semibold text-ink disabled:text-ink-3 forced-colors:disabled:text-[GrayText]',
   quiet:
