@@ -108,7 +108,7 @@ test('on paper: light whatever the theme, texts for fields, no controls, nothing
     expect(await page.getByText(control, { exact: true }).first().isVisible(), control).toBe(false)
   }
   expect(await page.getByRole('navigation').first().isVisible()).toBe(false)
-  expect(await page.locator("[data-field]:visible").count()).toBe(0)
+  expect(await page.locator('[data-field]:visible').count()).toBe(0)
   for (const text of ['8.66k / 1.5k', 'not stated', 'Resolution × span, gain', 'Root sum square, 95 %']) {
     expect(await page.getByText(text).first().isVisible(), text).toBe(true)
   }
