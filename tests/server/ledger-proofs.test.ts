@@ -1,5 +1,10 @@
 import { afterAll, beforeAll, describe, expect, it } from 'vitest'
+import type { Sql } from '../../server/db/sql.ts'
+import { transaction } from '../../server/db/transaction.ts'
 import { sha256, verifyEd25519 } from '../../server/ledger/crypto.ts'
+import { insertLeaves, newLeaf } from '../../server/ledger/leaves.ts'
+import { proveRecord } from '../../server/ledger/prove.ts'
+import { sequencePass } from '../../server/ledger/sequence.ts'
 import type { ConsistencyProof } from '../../shared/contract/proof.ts'
 import { canonicalText } from '../../shared/ledger/canonical.ts'
 import { checkProof } from '../../shared/ledger/check-proof.ts'
@@ -114,6 +119,47 @@ describe('GET /ledger/consistency', () => {
       const reply = await between(from, to)
       expect(reply.status, `${from} ${to}`).toBe(422)
       expect(reply.body.errors[0].path).toBe(path)
+    }
+  })
+})
+
+describe('what a proof costs', () => {
+  it('is a fixed number of look-ups and O(log n) rows, whatever the size', async () => {
+    const { database, deps, sequencer } = scene.harness
+    const record = await post(scene.url, scene.station, trimBody({ unit: 'O-1' }))
+    await sequencer.stop()
+    const costs: { statements: number; rows: number; size: number }[] = []
+    let clock = Date.now()
+    for (const more of [0, 300, 2_000]) {
+      const leaves = Array.from({ length: more }, (_, i) =>
+        newLeaf('token', new Date().toISOString(), { format: 'ogee.test/1', more, i }),
+      )
+      await transaction(database, (sql) => insertLeaves(sql, leaves))
+      const later = () => {
+        clock += 5_000
+        return new Date(clock)
+      }
+      while ((await sequencePass(database, deps.signer, later)).more);
+      const cost = { statements: 0, rows: 0, size: 0 }
+      const counted: Sql = {
+        ...database.sql,
+        rows: async <Row extends object>(...asked: Parameters<Sql['rows']>) => {
+          const rows = await database.sql.rows<Row>(...asked)
+          cost.statements++
+          cost.rows += rows.length
+          return rows
+        },
+      }
+      const proof = await proveRecord(counted, record.id)
+      expect(checkProof(crypto, proof, deps.signer.key)).toMatchObject({ ok: true })
+      cost.size = Number(proof.checkpoint.split('\n')[1])
+      costs.push(cost)
+    }
+    expect(costs.at(-1)!.size).toBeGreaterThan(2_300)
+    for (const { statements, rows, size } of costs) {
+      expect(statements).toBe(costs[0]!.statements)
+      // Record, checkpoint and keys; a hash a level, and as many for the ragged right side.
+      expect(rows).toBeLessThanOrEqual(4 + 2 * Math.ceil(Math.log2(size)))
     }
   })
 })
