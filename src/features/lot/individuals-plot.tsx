@@ -27,6 +27,7 @@ export type Series = {
   unit: Side['unit'] | 'LSB'
   chart: Side['chart']
 }
+const decimalsOf = (unit: Series['unit']): number => (unit === 'LSB' ? 2 : 1)
 type Charted = LotPoint & { value: number }
 
 type Props = {
@@ -54,7 +55,7 @@ export function IndividualsPlot({ side, points: all, stations, choices, onChoice
   const hasLimits = chart !== null && inReach >= leastForLimits
   const few = `Limits of the chart need ${leastForLimits} channels; ${inReach} are here. `
   const limits = hasLimits
-    ? `Dashed: mean ± 2.66 times the mean moving range (${numberText(chart.meanMovingRange, 1)} ${unit}). Ringed: outside the limits. `
+    ? `Dashed: mean ± 2.66 times the mean moving range (${numberText(chart.meanMovingRange, decimalsOf(unit))} ${unit}). Ringed: outside the limits. `
     : few
   return (
     <PlotFigure
@@ -159,11 +160,11 @@ function Drawing({ side, points, first, stations, hasLimits, width }: DrawingPro
 
 type LimitsProps = { side: Series; y: Scale; box: Box; hasLimits: boolean }
 
-function Limits({ side: { chart, which }, y, box, hasLimits }: LimitsProps) {
+function Limits({ side: { chart, which, unit }, y, box, hasLimits }: LimitsProps) {
   if (!chart) return null
   const at = (value: number, word: string) => ({
     y: y(value),
-    text: `${word} ${numberText(value, 1, true)}`,
+    text: `${word} ${numberText(value, decimalsOf(unit), which !== 'left')}`,
     colour: word === 'mean' ? colours[which] : 'var(--ink-2)',
   })
   const labels = [
