@@ -13,6 +13,7 @@ import { parseTokenText } from '../policies/token-text.ts'
 import { type DemoAccounts, demoAccounts, nameOf } from './accounts.ts'
 import { demoDesigns } from './demo-designs.ts'
 import { calibrate } from './demo-instruments.ts'
+import { loadFindings } from './load-findings.ts'
 import { loadLots } from './load-lots.ts'
 
 type DemoDeps = Pick<Deps, 'database' | 'signer' | 'now' | 'notifyLedger'>
@@ -34,6 +35,7 @@ export async function loadDemo(deps: DemoDeps, dataDir: string, say: (line: stri
   await loadToken(deps, accounts, stations.A.id)
   await loadLots(deps, begun, stations)
   for (const station of ['A', 'B'] as const) await calibrate(deps, station, begun, begun)
+  await loadFindings(deps, begun)
   await deps.database.sql.run("UPDATE settings SET value = 'loaded' WHERE name = 'demo'")
   deps.notifyLedger()
   sayAccounts(accounts, dataDir, say)

@@ -74,6 +74,19 @@ describe('demo data', () => {
     }
   })
 
+  it('hold a finding on the lot with the wrong resistor, answered and still open', async () => {
+    const lot = demoLots(new Date()).find((one) => one.wrongResistor)!
+    const leaves = await rows<{ kind: string; body: Buffer }>(
+      "SELECT kind, body FROM ledger_leaves WHERE kind IN ('finding', 'answer') ORDER BY id",
+    )
+    expect(leaves.map(({ kind }) => kind)).toEqual(['finding', 'answer'])
+    expect(JSON.parse(leaves[0]!.body.toString('utf8')).subject).toEqual({
+      kind: 'lot',
+      design: lot.design,
+      lot: lot.key,
+    })
+  })
+
   it('tell the scenario: two years, a lot out of reach, second passes, suspects, verifications', async () => {
     const verdicts = await rows<{ verdict: string; n: number }>(
       'SELECT verdict, COUNT(*) AS n FROM records GROUP BY verdict',

@@ -1,5 +1,6 @@
 import Papa from 'papaparse'
-import { afterAll, beforeAll, describe, expect, it } from 'vitest'
+import { afterAll, beforeAll, describe, expect, it, vi } from 'vitest'
+import { exportRecords } from '../../server/commands/history/export-records.ts'
 import { listRecords } from '../../server/commands/list-records.ts'
 import type { PersonPrincipal } from '../../server/http/principal.ts'
 import type { RecordLine } from '../../shared/contract/record.ts'
@@ -164,6 +165,21 @@ describe('export', () => {
       (await get(`/history/export.${kind}?unit=NONE`).buffer().parse(asText)).body as string
     expect(await of('ndjson')).toBe('')
     expect(await of('csv')).toMatch(/^number,recorded_at,.*,finding\n$/)
+  })
+
+  it('reads the next page only when the last one was taken, so that a slow reader holds one in memory', async () => {
+    const pages = vi.spyOn(harness.database.sql, 'rows')
+    const reader = { kind: 'person', id: 'x', name: 'x', role: 'auditor' } as PersonPrincipal
+    const read = exportRecords(harness.database, {}, reader)
+    const first = await read.next()
+    expect(first.value).toHaveLength(500)
+    expect(pages).toHaveBeenCalledTimes(1)
+    await read.next()
+    expect(pages).toHaveBeenCalledTimes(2)
+    await read.return(undefined)
+    expect((await read.next()).done).toBe(true)
+    expect(pages).toHaveBeenCalledTimes(2)
+    pages.mockRestore()
   })
 
   it('as CSV: every number the same double, over several pages', async () => {
