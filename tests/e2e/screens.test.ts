@@ -77,7 +77,7 @@ describe.each(looks)('$theme at $width px', ({ theme, width }) => {
 })
 
 test('P7: JavaScript of a first load, over the wire, stays under its limits', async () => {
-  const { page, context } = await openPage(stage.browser)
+  const { page, context, complaints } = await openPage(stage.browser)
   const session = await context.newCDPSession(page)
   await session.send('Network.enable')
   await session.send('Network.setCacheDisabled', { cacheDisabled: true })
@@ -112,5 +112,7 @@ test('P7: JavaScript of a first load, over the wire, stays under its limits', as
   ]) {
     expect(await load(path), path).toBeLessThanOrEqual(185)
   }
+  // A page that broke is small too.
+  expect(complaints).toEqual([])
   await context.close()
 })
