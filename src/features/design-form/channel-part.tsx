@@ -118,9 +118,10 @@ function RangeRows({
               <Button
                 look="quiet"
                 className="-my-1 text-small"
+                aria-label={`take away, range ${name}`}
                 onClick={() => store.dispatch({ do: 'remove-range', id: range.id })}
               >
-                {`take range ${name} away`}
+                take away
               </Button>
             )
           }
