@@ -16,9 +16,16 @@ let running: Started[] = []
 
 type Started = { child: ChildProcess; said: () => string; ended: Promise<number | null> }
 
-function start(...args: string[]): Started {
+const start = (...args: string[]) =>
+  run(process.execPath, [join(root, 'server/setup/supervise.mjs'), ...args])
+
+/** The command itself, without its first step: what is built is built. */
+const startByNpm = () => run('npm', ['start', '--ignore-scripts'])
+
+function run(command: string, args: readonly string[]): Started {
   let said = ''
-  const child = spawn(process.execPath, [join(root, 'server/setup/supervise.mjs'), ...args], {
+  const child = spawn(command, args, {
+    cwd: root,
     env: {
       PATH: process.env.PATH ?? '',
       HOME: process.env.HOME ?? '',
@@ -131,6 +138,15 @@ describe('npm start', () => {
     first.child.kill('SIGTERM')
     expect(await first.ended).toBe(0)
     expect(processesOfOurs()).toEqual([])
+    expect(existsSync(join(dir, 'run.lock'))).toBe(false)
+  })
+
+  test('a SIGTERM to npm alone stops all of it, too', async () => {
+    const started = startByNpm()
+    await until('ready', isReady, started)
+    started.child.kill('SIGTERM')
+    await started.ended
+    await until('all gone', () => processesOfOurs().length === 0, started)
     expect(existsSync(join(dir, 'run.lock'))).toBe(false)
   })
 
