@@ -1,4 +1,4 @@
-import { mkdtempSync, rmSync } from 'node:fs'
+import { mkdtempSync, readFileSync, rmSync } from 'node:fs'
 import { tmpdir } from 'node:os'
 import { join } from 'node:path'
 import { type Connection, createConnection } from 'mariadb'
@@ -11,6 +11,8 @@ export type Rig = {
   token: string
   killDatabase: () => Promise<void>
   restartDatabase: () => Promise<void>
+  /** Whether MariaDB fell over by a defect of its own since the last time asked; a kill is none. */
+  databaseFell: () => boolean
   asRoot: () => Promise<Connection>
   /** Where further servers find the same database. */
   addresses: () => { databaseUrl: string; adminUrl: string }
@@ -29,6 +31,8 @@ export async function startRig(options: { dir?: string } = {}): Promise<Rig> {
     adminUrl: database.adminUrl,
     env: { OGEE_LOG: 'warn' },
   })
+  const falls = () => readFileSync(join(dir, 'mariadb.log'), 'utf8').match(/got signal \d+/g)?.length ?? 0
+  let seen = 0
   const asRoot = () =>
     createConnection({ socketPath: database.socket, user: 'root', database: 'ogee', timezone: 'Z' })
   return {
@@ -40,6 +44,11 @@ export async function startRig(options: { dir?: string } = {}): Promise<Rig> {
     },
     restartDatabase: async () => {
       database = await startMariadb({ dir, size: 'test', port })
+    },
+    databaseFell: () => {
+      const before = seen
+      seen = falls()
+      return seen > before
     },
     asRoot,
     addresses: () => ({ databaseUrl: database.url, adminUrl: database.adminUrl }),

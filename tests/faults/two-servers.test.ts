@@ -67,43 +67,69 @@ function requestOf(index: number, random: Random, known: readonly Acknowledged[]
   return { path: '/trims', init: { method: 'POST', headers, body } }
 }
 
+type Run = { kills: number; histogram: number[]; failed: string[]; known: Acknowledged[] }
+
+/** Asks with six clients, by keys of its own, while one server after the other is killed and started again. */
+async function killAndAsk(firstKey: number): Promise<Run> {
+  const random = seededRandom(seed)
+  const servers = [rig.server, second]
+  const urls = servers.map(({ url }) => url)
+  const run: Run = { kills: 0, histogram: [0, 0, 0, 0], failed: [], known: [] }
+  let killing = true
+  const killer = (async () => {
+    const until = Date.now() + seconds * 1_000
+    while (Date.now() < until) {
+      await sleep(killEveryMs)
+      const server = servers[run.kills % 2]!
+      run.kills += 1
+      await server.kill()
+      await server.restart()
+    }
+  })().finally(() => {
+    killing = false
+  })
+  let index = firstKey
+  const clients = Array.from({ length: 6 }, async () => {
+    while (killing) {
+      index += 1
+      const mine = index
+      const asked = requestOf(mine, random, run.known)
+      const { tries, status, text } = await within3(urls, mine % 2, asked)
+      run.histogram[tries] = (run.histogram[tries] ?? 0) + 1
+      if (status !== 200 && status !== 201) run.failed.push(`${asked.path}: ${status} ${text.slice(0, 200)}`)
+      else if (asked.init) {
+        const { key, unit } = { ...delivery(mine, random, 4) }
+        run.known.push(acknowledged(key, unit, text))
+      }
+    }
+  })
+  await Promise.all([killer, ...clients])
+  return run
+}
+
+/**
+ * MariaDB itself was once seen to end with a segmentation fault in such a run, under nobody's supervision here. That says
+ * nothing of two servers: the database is started again and the run repeated, once.
+ */
+async function killAndAskOnASoundDatabase(): Promise<Run> {
+  try {
+    const run = await killAndAsk(0)
+    if (!rig.databaseFell()) return run
+  } catch (error) {
+    if (!rig.databaseFell()) throw error
+  }
+  process.stdout.write('R4: MariaDB itself fell over; once more from the start\n')
+  await rig.restartDatabase()
+  for (const server of [rig.server, second]) {
+    await server.kill()
+    await server.restart()
+  }
+  return killAndAsk(1_000_000)
+}
+
 describe(`R4 with seed ${seed}`, () => {
   test(`${seconds} s, one of two servers killed every 5 s: every request succeeds within 3 tries`, async () => {
-    const random = seededRandom(seed)
-    const servers = [rig.server, second]
-    const urls = servers.map(({ url }) => url)
-    const known: Acknowledged[] = []
-    const failed: string[] = []
-    const histogram = [0, 0, 0, 0]
-    let killing = true
-    let kills = 0
-    const killer = (async () => {
-      const until = Date.now() + seconds * 1_000
-      while (Date.now() < until) {
-        await sleep(killEveryMs)
-        const server = servers[kills % 2]!
-        kills += 1
-        await server.kill()
-        await server.restart()
-      }
-      killing = false
-    })()
-    let index = 0
-    const clients = Array.from({ length: 6 }, async () => {
-      while (killing) {
-        index += 1
-        const mine = index
-        const asked = requestOf(mine, random, known)
-        const { tries, status, text } = await within3(urls, mine % 2, asked)
-        histogram[tries] = (histogram[tries] ?? 0) + 1
-        if (status !== 200 && status !== 201) failed.push(`${asked.path}: ${status} ${text.slice(0, 200)}`)
-        else if (asked.init) {
-          const { key, unit } = { ...delivery(mine, random, 4) }
-          known.push(acknowledged(key, unit, text))
-        }
-      }
-    })
-    await Promise.all([killer, ...clients])
+    const { kills, histogram, failed, known } = await killAndAskOnASoundDatabase()
     process.stdout.write(`R4: ${kills} kills, tries of each request: ${histogram.slice(1).join(', ')}\n`)
     expect(failed).toEqual([])
     // Kills were met, or this has shown nothing.
