@@ -4,6 +4,7 @@ import type { Record as StoredRecord } from '../shared/contract/record.ts'
 import { getTrim } from '../shared/contract/trims.ts'
 import { findUnits, type Unit } from '../shared/contract/units.ts'
 import { OgeeError } from '../shared/errors.ts'
+import { measuredAtOf } from '../shared/measured-at.ts'
 import { computeCodes } from '../shared/solver/codes.ts'
 import { verifyPoints } from '../shared/solver/verify.ts'
 import type { Client } from './client.ts'
@@ -62,7 +63,7 @@ export async function dryRun(client: Asking, body: RequestBody): Promise<DryReco
       : trimmed(design, body, { ...limits, applied, learned })),
     notices,
     station: null,
-    measuredAt: body.measuredAt ?? null,
+    measuredAt: measuredAtOf(body),
     recordedAt: null,
   }
 }

@@ -2,6 +2,7 @@ import { calibrationState, overdueSentence } from '../shared/calibration.ts'
 import { type Instrument, listInstruments } from '../shared/contract/instruments.ts'
 import type { Notice } from '../shared/contract/record.ts'
 import { OgeeError } from '../shared/errors.ts'
+import { measuredAtOf } from '../shared/measured-at.ts'
 import type { Client } from './client.ts'
 import type { RequestBody } from './request.ts'
 
@@ -10,15 +11,16 @@ export type InstrumentUsed = { instrument: Instrument | null; notices: Notice[] 
 
 export async function instrumentUsed(
   client: Pick<Client, 'call'>,
-  { conditions, measuredAt }: RequestBody,
+  body: RequestBody,
   nowMs: number,
 ): Promise<InstrumentUsed> {
-  const id = conditions?.instrument
+  const id = body.conditions?.instrument
   if (id === undefined) return { instrument: null, notices: [] }
   const { items, overdueAllowed } = await client.call(listInstruments, {})
   const instrument = items.find((one) => one.id === id)
   if (!instrument) throw refusal('instrument-unknown', `There is no instrument ${id}.`)
-  const atMs = Math.min(measuredAt === undefined ? nowMs : Date.parse(measuredAt), nowMs)
+  const measuredAt = measuredAtOf(body)
+  const atMs = Math.min(measuredAt === null ? nowMs : Date.parse(measuredAt), nowMs)
   if (instrument.retiredAt !== null && atMs >= Date.parse(instrument.retiredAt)) {
     throw refusal('instrument-retired', `Instrument ${id} is retired. Name the one that measured.`)
   }

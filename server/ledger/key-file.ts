@@ -26,7 +26,8 @@ export async function readKeyFile(path: string): Promise<KeyObject | null> {
 /** Makes a key and keeps it, readable by the owner alone and on disk before anybody relies on it. */
 export async function writeKeyFile(path: string): Promise<KeyObject> {
   const { privateKey } = generateKeyPairSync('ed25519')
-  await mkdir(dirname(path), { recursive: true })
+  const folder = dirname(path)
+  await mkdir(folder, { recursive: true })
   const file = await open(path, 'wx', 0o600)
   try {
     await file.writeFile(privateKey.export({ type: 'pkcs8', format: 'pem' }))
@@ -34,7 +35,18 @@ export async function writeKeyFile(path: string): Promise<KeyObject> {
   } finally {
     await file.close()
   }
+  await syncFolder(folder)
   return privateKey
+}
+
+/** A new name is durable once its folder is. */
+async function syncFolder(path: string): Promise<void> {
+  const folder = await open(path, 'r')
+  try {
+    await folder.sync()
+  } finally {
+    await folder.close()
+  }
 }
 
 const nextOf = (path: string) => `${path}.next`
@@ -56,6 +68,7 @@ export async function adoptKeyFile(path: string, inForce: Uint8Array): Promise<K
   await rename(nextOf(path), path).catch((cause: NodeJS.ErrnoException) => {
     if (cause.code !== 'ENOENT') throw cause
   })
+  await syncFolder(dirname(path))
   return next
 }
 

@@ -30,7 +30,8 @@ export function signKeyChange(sha256: Sha256, replaced: Pair, replacing: Pair): 
 }
 
 /**
- * Every key that somebody who trusts one key can trust, by statements that both keys of each change signed.
+ * Every key that somebody who trusts one key can trust, by statements that both keys of each change signed: those that it
+ * took the place of, and those that took its place, never others of these.
  *
  * @param crypto SHA-256 and Ed25519.
  * @param trusted the key that is kept.
@@ -45,25 +46,31 @@ export function keysFrom(
   trusted: LedgerKey,
   statements: readonly KeyStatement[],
 ): LedgerKey[] {
-  const found = new Map([[verifierKey(crypto.sha256, trusted), trusted]])
+  const start: Named = { text: verifierKey(crypto.sha256, trusted), key: trusted }
   const changes = statements.flatMap((statement) => changeOf(crypto, statement) ?? [])
-  // Each round adds at least one key or is the last, so a chain in any order is followed to its ends.
-  for (let before = 0; before < found.size; ) {
-    before = found.size
-    for (const { from, to } of changes) {
-      if (found.has(from.text)) found.set(to.text, to.key)
-      if (found.has(to.text)) found.set(from.text, from.key)
-    }
-  }
-  return [...found.values()]
+  const later = reached(start, changes)
+  const earlier = reached(
+    start,
+    changes.map(({ from, to }) => ({ from: to, to: from })),
+  )
+  return [...new Map([...later, ...earlier]).values()]
 }
 
 type Named = { text: string; key: LedgerKey }
+type Step = { from: Named; to: Named }
 
-function changeOf(
-  { sha256, verify }: LedgerCrypto,
-  { signatures, ...rest }: KeyStatement,
-): { from: Named; to: Named } | null {
+/** Only one way: from a key that was replaced nothing leads on again, or whoever stole it could hand over to his own. */
+function reached(start: Named, steps: readonly Step[]): Map<string, LedgerKey> {
+  const found = new Map([[start.text, start.key]])
+  // Each round adds at least one key or is the last, so a chain in any order is followed to its end.
+  for (let before = 0; before < found.size; ) {
+    before = found.size
+    for (const { from, to } of steps) if (found.has(from.text)) found.set(to.text, to.key)
+  }
+  return found
+}
+
+function changeOf({ sha256, verify }: LedgerCrypto, { signatures, ...rest }: KeyStatement): Step | null {
   const from = rest.replaces === null ? null : parseVerifierKey(sha256, rest.replaces)
   const to = parseVerifierKey(sha256, rest.key)
   if (!from || !to || !signatures || rest.replaces === null) return null

@@ -2,6 +2,7 @@ import { createHash } from 'node:crypto'
 import { chmodSync, copyFileSync, mkdirSync, readFileSync, statSync, writeFileSync } from 'node:fs'
 import { join } from 'node:path'
 import { afterAll, beforeAll, beforeEach, describe, expect, test } from 'vitest'
+import { instrumentUsed } from '../../cli/instrument-used.ts'
 import { record } from '../../shared/contract/record.ts'
 import { canonicalBytes, type Json } from '../../shared/ledger/canonical.ts'
 import { lotLine } from '../support/lot-fixtures.ts'
@@ -285,6 +286,19 @@ describe('trim --dry-run', () => {
         offsetV: 1e-6,
       })
     }
+  })
+
+  test('where nobody says when, an instrument is judged by when the last point was read', async () => {
+    const client = { call: async () => ({ items: [meter({})], overdueAllowed: false }) as never }
+    const body = { design: 'D', unit: 'u', conditions: { instrument: 'DMM-07' } }
+    const points = ['2025-12-30T08:00:00Z', '2025-12-31T23:00:00Z'].map((readAt) => ({
+      code: 1,
+      measured: 1,
+      readAt,
+    }))
+    const now = Date.parse('2026-02-01T00:00:00Z')
+    expect(await instrumentUsed(client, { ...body, points }, now)).toMatchObject({ notices: [] })
+    await expect(instrumentUsed(client, body, now)).rejects.toMatchObject({ code: 'instrument-overdue' })
   })
 
   test('an overdue instrument where the site allows it: the record would say so', async () => {

@@ -157,6 +157,11 @@ describe('recording with an instrument', () => {
     const spooled = { solver: '1.0.0', codes: null, at: measuredAt }
     const sent = await post(url, station, by('DMM-08', { unit: 'I-8', claimed: spooled }))
     expect(sent.notices.map((notice: { code: string }) => notice.code)).toEqual(['claimed-codes-differ'])
+    // Where nobody says when, the points do: what waited in a spool is as good as it was.
+    const readAt = `${day(-2)}T09:00:00Z`
+    const points = pointsOf({ gainPpm: -203 }).map((point) => ({ ...point, readAt }))
+    const waited = await post(url, station, by('DMM-08', { unit: 'I-6-waited', points }))
+    expect(waited).toMatchObject({ measuredAt: readAt, notices: [] })
     // A clock that runs ahead by months makes nothing overdue.
     const ahead = `${day(90)}T10:00:00Z`
     const skewed = await post(url, station, by('DMM-07', { unit: 'I-9', measuredAt: ahead }))

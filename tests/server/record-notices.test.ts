@@ -62,6 +62,9 @@ describe('notices', () => {
     expect(await post(url, station, trimBody(fresh), 422)).toMatchObject({ code: 'revision-withdrawn' })
     const early = await post(url, station, trimBody({ ...fresh, measuredAt: '2025-01-01T00:00:00Z' }))
     expect(early.notices).toMatchObject([{ code: 'revision-withdrawn' }])
+    const points = pointsOf({ gainPpm: -203 }).map((point) => ({ ...point, readAt: '2025-01-01T00:00:00Z' }))
+    const read = await post(url, station, trimBody({ ...fresh, unit: 'N-5-read', points }))
+    expect(read.notices).toMatchObject([{ code: 'revision-withdrawn' }])
     const known = await post(url, station, trimBody({ design: 'OLD', unit: 'N-4', applied: 'neutral' }))
     expect(known.notices).toMatchObject([{ code: 'revision-withdrawn' }])
     const claimed = { solver: '1.0.0', codes: null, at: '2026-01-01T00:00:00Z' }

@@ -1,5 +1,6 @@
 import type { RecordBody } from '../../../shared/contract/record.ts'
 import { canonicalText } from '../../../shared/ledger/canonical.ts'
+import { measuredAtOf } from '../../../shared/measured-at.ts'
 import type { RevisionInPlay } from './catalogue.ts'
 import type { Known } from './followed.ts'
 import type { Used } from './instrument.ts'
@@ -56,19 +57,9 @@ export function commonBody(context: Context) {
     claimed: request.claimed ?? null,
     by: recorder.by,
     station: recorder.station?.name ?? null,
-    measuredAt: measuredAt(request),
+    measuredAt: measuredAtOf(request),
     recordedAt,
   } as const
-}
-
-/** The station's clock: as said, else when the last point was read. */
-function measuredAt(request: Job['request']): string | null {
-  if (request.measuredAt !== undefined) return request.measuredAt
-  const read = (request.points ?? []).flatMap((point) => point.readAt ?? [])
-  return read.reduce<string | null>(
-    (latest, at) => (latest === null || Date.parse(at) > Date.parse(latest) ? at : latest),
-    null,
-  )
 }
 
 export function lastOf({ id, recordedAt, job }: Context): PlaceState['last'] {

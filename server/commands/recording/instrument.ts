@@ -2,6 +2,7 @@ import { calibrationState, overdueSentence } from '../../../shared/calibration.t
 import type { InstrumentFacts } from '../../../shared/contract/instruments.ts'
 import type { RecordRequest } from '../../../shared/contract/record.ts'
 import { OgeeError } from '../../../shared/errors.ts'
+import { measuredAtOf } from '../../../shared/measured-at.ts'
 import type { Sql } from '../../db/sql.ts'
 import { factsOf } from '../../models/instrument.ts'
 import { overdueAllowed } from '../instruments/overdue-rule.ts'
@@ -55,8 +56,9 @@ export function usedInstrument(
 }
 
 /** A clock that runs ahead makes nothing overdue. */
-function measuredMs({ measuredAt, claimed }: RecordRequest, recordedAt: string): number {
-  return Math.min(Date.parse(measuredAt ?? claimed?.at ?? recordedAt), Date.parse(recordedAt))
+function measuredMs(request: RecordRequest, recordedAt: string): number {
+  const said = measuredAtOf(request) ?? request.claimed?.at ?? recordedAt
+  return Math.min(Date.parse(said), Date.parse(recordedAt))
 }
 
 function refusal(

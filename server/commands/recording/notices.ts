@@ -2,6 +2,7 @@ import { overdueSentence } from '../../../shared/calibration.ts'
 import type { RecordBody } from '../../../shared/contract/record.ts'
 import { OgeeError } from '../../../shared/errors.ts'
 import { limits } from '../../../shared/limits.ts'
+import { measuredAtOf } from '../../../shared/measured-at.ts'
 import { type Context, type NoticeList, sameJson } from './context.ts'
 
 /** What the sender should hear beside the result. None of it changes the result. */
@@ -32,9 +33,9 @@ function newerRecord({ state, job }: Context, body: RecordBody): NoticeList {
 /** A fresh unit under a withdrawn revision is refused, unless its codes were given out, or it was measured, before. */
 export function requireUsableRevision({ revision, unit, job }: Context): void {
   if (revision.state !== 'withdrawn' || !unit.fresh || job.request.claimed !== undefined) return
-  const { measuredAt } = job.request
+  const measuredAt = measuredAtOf(job.request)
   const before =
-    measuredAt !== undefined &&
+    measuredAt !== null &&
     revision.withdrawnAt !== null &&
     Date.parse(measuredAt) < revision.withdrawnAt.getTime()
   if (before) return

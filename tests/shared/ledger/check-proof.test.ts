@@ -122,8 +122,19 @@ describe('after a change of the key', () => {
     const statements = [signKeyChange(sha256, stranger, newest), ...changes]
     expect(keysFrom(crypto, stranger.key, [changes[0]!])).toEqual([stranger.key])
     expect(keysFrom(crypto, signer.key, [changes[1]!])).toHaveLength(2)
-    // Whoever signs for the newest must hold it: that is its own chain, and it reaches the stranger only by both signatures.
-    expect(keysFrom(crypto, signer.key, statements)).toHaveLength(4)
+    // Whoever signs for the newest must hold it: it may say what it replaced, which nobody else has to believe.
+    expect(keysFrom(crypto, signer.key, statements)).toHaveLength(3)
+  })
+
+  it('a key that was replaced hands over to no other one for those who keep a later key', () => {
+    const minted = testKey()
+    const keys = [...changes, signKeyChange(sha256, newer, minted)]
+    const forged = { ...proofOf(5, 13, minted), keys }
+    expect(checkProof(crypto, forged, newest.key)).toMatchObject({ ok: false, fault: 'key' })
+    expect(keysFrom(crypto, newest.key, keys)).toHaveLength(3)
+    for (const kept of [signer, newer, newest]) {
+      expect(checkProof(crypto, { ...proof, keys }, kept.key)).toMatchObject({ ok: true })
+    }
   })
 })
 
