@@ -53,17 +53,42 @@ async function recordStep(
     (found) => ({ found }),
     (error: unknown) => ({ found: null, error }),
   )
-  return await Promise.all(
-    step.map(async (one): Promise<LineOutcome> => {
-      const { line, key } = one
-      if (principal.found === null) return { line, key, recorded: null, error: principal.error }
-      if (one.asked === null) return { line, key, recorded: null, error: one.error }
-      try {
-        return { line, key, recorded: await record({ ...one.asked, principal: principal.found }) }
-      } catch (error) {
-        return { line, key, recorded: null, error }
-      }
-    }),
+  const started: { one: BatchLine; outcome: Promise<LineOutcome> }[] = []
+  for (const one of step) {
+    const before = started.filter((earlier) => maySharePlace(earlier.one, one)).map(({ outcome }) => outcome)
+    started.push({ one, outcome: recordLine(record, principal, one, before) })
+  }
+  return await Promise.all(started.map(({ outcome }) => outcome))
+}
+
+/** Records a line once those before it at its place are done with: two transactions may end in either order. */
+async function recordLine(
+  record: RecordOne,
+  principal: { found: Principal } | { found: null; error: unknown },
+  one: BatchLine,
+  before: readonly Promise<LineOutcome>[],
+): Promise<LineOutcome> {
+  const { line, key } = one
+  const obstacle = (await Promise.all(before)).map(obstacleOf).find((found) => found !== null)
+  if (obstacle) return { line, key, recorded: null, error: obstacle.error }
+  if (principal.found === null) return { line, key, recorded: null, error: principal.error }
+  if (one.asked === null) return { line, key, recorded: null, error: one.error }
+  try {
+    return { line, key, recorded: await record({ ...one.asked, principal: principal.found }) }
+  } catch (error) {
+    return { line, key, recorded: null, error }
+  }
+}
+
+/** A channel or range that is not named may be any. */
+function maySharePlace({ asked: a }: BatchLine, { asked: b }: BatchLine): boolean {
+  if (a === null || b === null) return false
+  const may = (x: string | undefined, y: string | undefined) => x === undefined || y === undefined || x === y
+  return (
+    a.request.design === b.request.design &&
+    a.request.unit === b.request.unit &&
+    may(a.request.channel, b.request.channel) &&
+    may(a.request.range, b.request.range)
   )
 }
 
@@ -78,7 +103,7 @@ function obstacleOf(outcome: LineOutcome): { error: unknown } | null {
 }
 
 /**
- * Cuts lines into steps. Within a step all are under way at once, so a key that comes again waits for the next one, and
+ * Cuts lines into steps. Within a step places are under way at once, so a key that comes again waits for the next one, and
  * what is said about a record (which may be of a line just before) stands alone.
  */
 function* stepsOf(lines: Iterable<BatchLine>): Generator<BatchLine[]> {

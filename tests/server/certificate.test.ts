@@ -139,6 +139,17 @@ describe('a certificate', () => {
     await certificateOf(suspect.id)
     expect(text()).toContain('Test engineer')
     expect(text()).toContain(reason)
+    const override = (await facts(suspect.id)).notices[0]!.record!
+    const takeBack = {
+      kind: 'withdraw',
+      design: 'U18',
+      unit: 'CERT-6',
+      follows: override,
+      reason: 'Seen too soon.',
+    }
+    await post(scene.url, scene.engineer, takeBack)
+    await settled()
+    expect(await facts(suspect.id)).toMatchObject({ override: null, notices: [] })
     said = []
     const body = {
       kind: 'withdraw',

@@ -114,6 +114,12 @@ describe('a withdrawal', () => {
     })
     await post(url, engineer, withdraw('W-2', override.id))
     expect(await currentOf('W-2')).toMatchObject({ codes: null, record: null })
+    const seen = async () => (await api(url, 'get', `/trims/${suspect.id}`, engineer)).body.notices
+    expect(await seen()).toEqual([])
+    const again = { kind: 'override', design: 'U18', unit: 'W-2', follows: suspect.id, reason }
+    const second = await post(url, engineer, again)
+    expect(await currentOf('W-2')).toMatchObject({ codes: suspect.result.trim.codes, record: suspect.id })
+    expect(await seen()).toMatchObject([{ code: 'overridden', record: second.id }])
   })
 
   it('is for engineers', async () => {

@@ -105,9 +105,12 @@ async function verificationOf(sql: Sql, { id }: RecordBody): Promise<(Read & { b
   return read && isVerification(read) ? read : null
 }
 
+/** The newest override of a trim that was not withdrawn. */
 async function overrideOf(sql: Sql, id: string): Promise<CertificateFacts['override']> {
   const [found] = await sql.rows<{ id: string }>(
-    "SELECT id FROM records WHERE follows = ? AND kind = 'override' LIMIT 1",
+    `SELECT o.id FROM records o WHERE o.follows = ? AND o.kind = 'override'
+      AND NOT EXISTS (SELECT 1 FROM records w WHERE w.follows = o.id AND w.kind = 'withdraw')
+      ORDER BY o.recorded_at DESC, o.id DESC LIMIT 1`,
     [id],
   )
   const read = found ? await readOne(sql, found.id) : null

@@ -23,7 +23,9 @@ export async function readFollowed(sql: Sql, ids: readonly string[]): Promise<Kn
     [wanted],
   )
   const answers = await sql.rows<{ follows: string; kind: string }>(
-    "SELECT follows, kind FROM records WHERE follows IN (?) AND kind IN ('override', 'withdraw')",
+    // A withdrawn override says nothing any more; a withdrawal cannot be withdrawn.
+    `SELECT a.follows, a.kind FROM records a WHERE a.follows IN (?) AND a.kind IN ('override', 'withdraw')
+      AND NOT EXISTS (SELECT 1 FROM records w WHERE w.follows = a.id AND w.kind = 'withdraw')`,
     [wanted],
   )
   const has = (id: string, kind: string) =>

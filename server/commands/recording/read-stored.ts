@@ -26,8 +26,10 @@ export async function readStored(sql: Sql, ids: readonly string[]): Promise<Map<
     [ids],
   )
   const later = await sql.rows<Said>(
-    `SELECT id, follows, kind, number FROM records WHERE follows IN (?) AND kind IN ('override', 'withdraw')
-      ORDER BY recorded_at, id`,
+    `SELECT a.id, a.follows, a.kind, a.number FROM records a
+      WHERE a.follows IN (?) AND a.kind IN ('override', 'withdraw')
+      AND NOT EXISTS (SELECT 1 FROM records w WHERE w.follows = a.id AND w.kind = 'withdraw')
+      ORDER BY a.recorded_at, a.id`,
     [ids],
   )
   const open = await sql.rows<{ recordId: string; at: Date }>(
