@@ -19,6 +19,9 @@ export function maySeeRecord(
   return station && maySeeDesign(principal, record.design)
 }
 
+/** Single units of a lot, whichever station measured them; others see a lot's counts. */
+export const maySeeUnits = (principal: Principal): boolean => sightOf(principal).station === 'all'
+
 /** Who reads the ledger reads every record in it; a token's designs bound that too. */
 export function mayProveRecord(
   principal: Principal,

@@ -25,17 +25,20 @@ import { signOffLot } from '../commands/lots/sign-off-lot.ts'
 import { readStationMonths } from '../commands/lots/station-months.ts'
 import type { Principal } from '../http/principal.ts'
 import type { Serve } from '../http/serve.ts'
-import { requireDesign } from '../policies/may-see.ts'
+import { maySeeUnits, requireDesign } from '../policies/may-see.ts'
 import type { RouteDeps } from './route-deps.ts'
 
 export function lotRoutes(serve: Serve, deps: RouteDeps): void {
   const { sql } = deps.database
   const boards = new LotBoards()
 
-  const tagged = async (response: Response, head: LotHead): Promise<LotDetail> => {
+  const tagged = async (
+    { response, principal }: { response: Response; principal: Principal },
+    head: LotHead,
+  ): Promise<LotDetail> => {
     const { detail } = await readLot(sql, head, await boards.read(sql, head))
     response.set('ETag', detail.etag)
-    return detail
+    return maySeeUnits(principal) ? detail : withoutUnits(detail)
   }
 
   serve(listLots, async ({ query, principal }) => {
@@ -44,7 +47,7 @@ export function lotRoutes(serve: Serve, deps: RouteDeps): void {
   })
 
   serve(getLot, async ({ params, principal, response }) =>
-    tagged(response, await findLot(sql, named(principal, params))),
+    tagged({ response, principal }, await findLot(sql, named(principal, params))),
   )
 
   serve(listLotUnits, async ({ params, query, principal }) => {
@@ -62,20 +65,23 @@ export function lotRoutes(serve: Serve, deps: RouteDeps): void {
 
   serve(postLot, async ({ body, principal, response }) => {
     requireDesign(principal, body.design)
-    return tagged(response, await openLot(deps, { ...body, by: principal.name }))
+    return tagged({ response, principal }, await openLot(deps, { ...body, by: principal.name }))
   })
 
   serve(postExpected, async ({ params, body, principal, response }) =>
-    tagged(response, await expectUnits(deps, { ...named(principal, params), ...body })),
+    tagged({ response, principal }, await expectUnits(deps, { ...named(principal, params), ...body })),
   )
 
   serve(postClose, async ({ params, principal, response }) =>
-    tagged(response, await closeLot(deps, { ...named(principal, params), by: principal.name })),
+    tagged(
+      { response, principal },
+      await closeLot(deps, { ...named(principal, params), by: principal.name }),
+    ),
   )
 
   serve(postSignOff, async ({ params, body, ifMatch, principal, response }) => {
     const asked = { ...named(principal, params), ...body, by: principal.name, ifMatch }
-    return tagged(response, await signOffLot(deps, asked))
+    return tagged({ response, principal }, await signOffLot(deps, asked))
   })
 
   serve(postReference, async ({ params, body, principal }) => {
@@ -95,3 +101,10 @@ function named(principal: Principal, { key, lot }: { key: string; lot: string })
   requireDesign(principal, key)
   return { design: key, lot }
 }
+
+/** What names single units is left empty; counts stay. */
+const withoutUnits = ({ signOff, ...lot }: LotDetail): LotDetail => ({
+  ...lot,
+  references: [],
+  signOff: signOff && { ...signOff, leftOut: [] },
+})

@@ -45,11 +45,17 @@ export const lotDetail = lot
   .extend({
     revisionState: z.enum(['released', 'withdrawn']),
     counts: lotCounts,
-    references: z.array(serial).describe('Reference units of the design that were measured in this lot'),
+    references: z
+      .array(serial)
+      .describe(
+        'Reference units of the design that were measured in this lot; empty for who reads no single units',
+      ),
     signOff: z
       .object({ counts: lotCounts, leftOut: z.array(leftOut), leaf: sha256Hex })
       .nullable()
-      .describe('As it was signed; what was recorded since stands outside of it'),
+      .describe(
+        'As it was signed; what was recorded since stands outside of it. leftOut is empty for who reads no single units',
+      ),
     etag: z.string().describe('What If-Match takes, quotes included; another one after every record'),
   })
   .meta({ id: 'LotDetail' })
@@ -133,7 +139,7 @@ export const listMissing = endpoint({
   method: 'GET',
   path: '/designs/:key/lots/:lot/missing',
   summary: 'Serials that are expected in a lot and not recorded',
-  access: readsCounts,
+  access: readsUnits,
   params: lotParams,
   query: z.strictObject(pageQuery),
   reply: { status: 200, schema: page(serial) },

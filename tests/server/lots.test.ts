@@ -208,6 +208,8 @@ describe('yield', () => {
     const lot = await detailOf('R')
     expect(lot.counts).toMatchObject({ units: 1, good: 1, references: 1, undecided: 0 })
     expect(lot.references).toEqual(['ref-1'])
+    const counts = (await get(at('R'), scene.station)).body
+    expect(counts).toMatchObject({ references: [], counts: { references: 1 } })
     await mark(scene.engineer, 'ref-1', false)
     expect((await detailOf('R')).counts).toMatchObject({ units: 2, good: 1, references: 0 })
   })
@@ -244,7 +246,8 @@ describe('units of a lot', () => {
   it('are for whoever reads all; a token for another design finds nothing', async () => {
     expect((await get(at('P', '/units'), scene.station)).status).toBe(403)
     expect((await get(at('P'), scene.station)).status).toBe(200)
-    expect((await get(at('P', '/units'), reader)).status).toBe(200)
+    expect((await get(at('P', '/missing'), scene.station)).status).toBe(403)
+    for (const path of ['/units', '/missing']) expect((await get(at('P', path), reader)).status).toBe(200)
     const narrow = await addToken(scene.harness, ['trims:read-all'], null, { designs: ['TWO'] })
     for (const path of [at('P'), at('P', '/units'), at('P', '/missing'), '/designs/U18/stations']) {
       expect((await get(path, narrow)).status, path).toBe(404)
@@ -325,6 +328,9 @@ describe('sign-off', () => {
         ],
       },
     })
+    const { signOff: made } = (await get(at('S'), scene.station)).body
+    expect(made).toEqual({ ...signed.body.signOff, leftOut: [] })
+    expect((await get(at('S'), reader)).body.signOff).toEqual(signed.body.signOff)
     const leaf = await checkLeafOf(signed.body.signOff.leaf)
     expect(leaf).toMatchObject({
       format: 'ogee.sign-off/1',
