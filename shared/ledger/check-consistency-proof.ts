@@ -8,8 +8,8 @@ import { fromHex, type LedgerCrypto } from './hash.ts'
  *
  * @param crypto SHA-256.
  * @param older checkpoint whose signature was checked.
- * @param newer checkpoint whose signature was checked, over as many entries or more.
- * @param proof the answer; null where none is needed, as for an empty older ledger.
+ * @param newer checkpoint whose signature was checked; over fewer entries, it has lost some.
+ * @param proof the answer; null where none is needed, as for an empty older ledger or a shorter newer one.
  * @returns null when it does, else what is wrong, in a sentence.
  * Throws nothing.
  * Source: RFC 9162 section 2.1.4.2.
@@ -22,6 +22,8 @@ export function consistencyFault(
   proof: ConsistencyProof | null,
 ): string | null {
   if (older.origin !== newer.origin) return `They are of two ledgers, ${older.origin} and ${newer.origin}.`
+  if (older.size > newer.size)
+    return `The ledger has ${newer.size} entries; ${older.size} were signed before: its end was cut off.`
   // Nothing is the beginning of everything.
   if (older.size === 0) return null
   const path = proof?.path.map(fromHex) ?? []

@@ -1,11 +1,14 @@
 import { act, render, screen, waitFor, within } from '@testing-library/react'
 import { userEvent } from '@testing-library/user-event'
 import { MemoryRouter } from 'react-router-dom'
-import { expect, type Mock, test, vi } from 'vitest'
+import { describe, expect, type Mock, test, vi } from 'vitest'
+import { sha256 } from '../../server/ledger/crypto.ts'
 import type { LedgerReport } from '../../shared/ledger/check/check-ledger.ts'
+import { signCheckpoint, verifierKey as verifierKeyOf } from '../../shared/ledger/checkpoint.ts'
 import { CheckPanel } from '../../src/features/ledger/check-panel.tsx'
 import { proofRows } from '../../src/features/ledger/proof-parts.ts'
 import type { LedgerWorker } from '../../src/features/ledger/use-ledger-check.ts'
+import { testKey } from '../support/server-crypto.ts'
 import { checkpoints, checkpointText, recordId, verifierKey } from '../support/web-fixtures.ts'
 import { open } from '../support/web-render.tsx'
 import { fakeServer, json, refusal } from '../support/web-server.ts'
@@ -50,6 +53,44 @@ test('what is kept stays with this browser until it is forgotten', async () => {
   })
   await user.click(within(kept).getByRole('button', { name: 'forget' }))
   expect(localStorage.getItem('ogee.ledger-kept')).toBeNull()
+})
+
+describe('a server that was set back', () => {
+  const { key, sign } = testKey()
+  const noteOver = (size: number) =>
+    signCheckpoint(sha256, { origin: key.name, size, root: sha256(Uint8Array.of(size)) }, key, sign)
+
+  async function keptPanel(kept: number, newest: number) {
+    const server = fakeServer()
+    const keyText = verifierKeyOf(sha256, key)
+    server.on('GET /ledger/checkpoint', () => new Response(noteOver(newest)))
+    server.on('GET /ledger/key', () => new Response(`${keyText}\n`))
+    server.on('GET /ledger/consistency', () =>
+      refusal('invalid-request', 'The ledger has no 11 entries to go by; the most here is 5.'),
+    )
+    const since = '2026-01-02T03:04:05.000Z'
+    localStorage.setItem('ogee.ledger-kept', JSON.stringify({ key: keyText, note: noteOver(kept), since }))
+    open('/ledger', server)
+    const panel = await screen.findByRole('region', { name: /^Kept in this browser/ })
+    await within(panel).findByText('does not check')
+    localStorage.clear()
+    return { panel, server }
+  }
+
+  test('shows fewer entries than were kept: a failed check, and whom to tell', async () => {
+    const { panel, server } = await keptPanel(11, 5)
+    expect(panel).toHaveTextContent(
+      'The ledger has 5 entries; 11 were signed before: its end was cut off. Tell whoever keeps the ledger.',
+    )
+    expect(server.sent('GET /ledger/consistency')).toHaveLength(0)
+  })
+
+  test('cannot prove what it signed: a failed check, and whom to tell', async () => {
+    const { panel } = await keptPanel(5, 11)
+    expect(panel).toHaveTextContent(
+      'The ledger has no 11 entries to go by; the most here is 5. Tell whoever keeps the ledger.',
+    )
+  })
 })
 
 test('a list that fails is said where it would stand; the rest of the page is there', async () => {

@@ -2,6 +2,7 @@ import { keepPreviousData, queryOptions, useMutation, useQueryClient } from '@ta
 import { getConsistency } from '../../../shared/contract/ledger.ts'
 import { listCheckpoints, listKeys, postKey } from '../../../shared/contract/ledger-checkpoints.ts'
 import type { KeyStatement } from '../../../shared/contract/proof.ts'
+import { isOgeeError } from '../../../shared/errors.ts'
 import { consistencyFault } from '../../../shared/ledger/check-consistency-proof.ts'
 import { checkNote } from '../../../shared/ledger/check-proof.ts'
 import type { LedgerKey } from '../../../shared/ledger/checkpoint.ts'
@@ -66,9 +67,21 @@ async function compare(
     return { from: 0, to: 0, path: [], fault }
   }
   const sizes = { from: a.checkpoint.size, to: b.checkpoint.size }
-  const proof = sizes.from === 0 ? null : await api(getConsistency, { query: sizes }, signal)
+  const needsProof = sizes.from > 0 && sizes.from <= sizes.to
+  const proof = needsProof ? await proofBetween(sizes, signal) : null
+  if (typeof proof === 'string') return { ...sizes, path: [], fault: proof }
   const fault = await withCrypto((crypto) => consistencyFault(crypto, a.checkpoint, b.checkpoint, proof))
   return { ...sizes, path: proof?.path ?? [], fault }
+}
+
+/** A server that cannot prove what was signed has lost it: its words are then what is wrong. */
+async function proofBetween(query: { from: number; to: number }, signal: AbortSignal) {
+  try {
+    return await api(getConsistency, { query }, signal)
+  } catch (error) {
+    if (isOgeeError(error, 'invalid-request')) return error.message
+    throw error
+  }
 }
 
 /** All checkpoints as one text, newest last, as a server appends them to its file. */

@@ -81,6 +81,19 @@ describe('reports', () => {
     )
   })
 
+  test('of a measurement without a unit all rows are kept, not only the first that is named', async () => {
+    const text = `${head}${rowsOf('a')}\n${rowsOf('')}\n`
+    const { problems } = await planUpload(fileOf(text), said)
+    expect(problems.map(({ line, column }) => [line, column])).toEqual([[5, 'unit']])
+    const fixed = repairCsv(text, [report({ firstLine: 5, message: 'unit is missing.' })])
+    expect(fixed.trimEnd().split('\r\n')).toEqual([
+      'unit,code,measured,x_problem',
+      ',0,0,unit is missing.',
+      ',131072,5,',
+      ',262143,9.999961853027344,',
+    ])
+  })
+
   test('a semicolon file stays one, so that its decimal commas stay what they are', () => {
     const text = 'unit;code;measured\na;0;0,5\na;262143;9,9\n'
     const fixed = repairCsv(text, [report({ firstLine: 2, unit: 'a' })])

@@ -34,7 +34,9 @@ export function repairCsv(text: string, reports: readonly RowReport[]): string {
   const line = (cells: readonly string[]) => cells.map((cell) => quoted(cell, delimiter)).join(delimiter)
   const lines = [line(put(head.cells, 'x_problem'))]
   for (const { cells, line: at } of rest) {
-    const isOfBad = units.has(unguarded(cells[unitAt] ?? '')) || messages.has(at)
+    const unit = cells[unitAt] ?? ''
+    // A row without a unit is never recorded, while only the first of its measurement is named.
+    const isOfBad = unit.trim() === '' || units.has(unguarded(unit)) || messages.has(at)
     if (isOfBad) lines.push(line(put(cells, messages.get(at) ?? '')))
   }
   return lines.map((one) => `${one}\r\n`).join('')

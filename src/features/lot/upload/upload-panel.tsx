@@ -1,4 +1,4 @@
-import { type ChangeEvent, type DragEvent, useEffect, useState } from 'react'
+import { type ChangeEvent, type DragEvent, useEffect, useRef, useState } from 'react'
 import type { Design } from '../../../../shared/contract/design.ts'
 import type { LotDetail } from '../../../../shared/contract/lots.ts'
 import { Button } from '../../../ui/button.tsx'
@@ -18,12 +18,22 @@ export default function UploadPanel({ lot, design, onClose }: Props) {
   const { upload, take, start, stop, clear } = useUpload()
   const isSending = upload.state === 'sending'
   useWarnBeforeLeaving(isSending)
+  /** A file is planned for a while: what has been overtaken by another file, kind or sending is not taken. */
+  const turn = useRef(0)
+  const send = () => {
+    turn.current += 1
+    start()
+  }
   const read = async (file: File | undefined) => {
     if (!file || isSending) return
     setTrouble(null)
+    turn.current += 1
+    const mine = turn.current
     try {
-      take(await planUpload(file, { design, key: lot.design, lot: lot.key, kind }))
+      const plan = await planUpload(file, { design, key: lot.design, lot: lot.key, kind })
+      if (turn.current === mine) take(plan)
     } catch (error) {
+      if (turn.current !== mine) return
       clear()
       setTrouble(error)
     }
@@ -62,9 +72,12 @@ export default function UploadPanel({ lot, design, onClose }: Props) {
           ]}
           value={kind}
           onChange={(value) => {
+            // What is under way stays what it was planned for.
+            if (isSending) return
             setKind(value)
             // A plan says what it is for.
-            if (!isSending) clear()
+            turn.current += 1
+            clear()
           }}
         />
         <label className="inline-flex min-h-7 flex-wrap items-center gap-2">
@@ -85,7 +98,7 @@ export default function UploadPanel({ lot, design, onClose }: Props) {
       </div>
       <div className="mt-2 space-y-2">
         <Problem error={trouble} />
-        <Progress upload={upload} onStart={start} onStop={stop} />
+        <Progress upload={upload} onStart={send} onStop={stop} />
         <ReportTable upload={upload} />
       </div>
     </Section>

@@ -90,10 +90,8 @@ export function useUpload() {
 /** Again, later each time, where that can help. */
 async function sendPatiently(block: readonly Ready[], signal: AbortSignal): Promise<BatchOutcome[]> {
   for (let attempt = 1; ; attempt++) {
-    const outcomes: BatchOutcome[] = []
     try {
-      await sendBlock(block, signal, (outcome) => outcomes.push(outcome))
-      return outcomes
+      return await sendBlock(block, signal)
     } catch (error) {
       const mayHelp = isOgeeError(error) && errorTable[error.code].retry
       if (signal.aborted || !mayHelp || attempt >= tries) throw error
