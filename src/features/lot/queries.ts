@@ -52,14 +52,18 @@ export const lotOptions = (name: LotName) =>
   })
 
 export type LotUnits = { units: readonly LotUnit[]; newest: number; records: number }
-const unitsKey = (name: LotName) => ['lots', 'units', name]
 
-/** All units of a lot; asked again, only those that changed. What did not change stays the same object. */
-export const lotUnitsOptions = (client: QueryClient, name: LotName) =>
-  queryOptions({
-    queryKey: unitsKey(name),
+/**
+ * All units of a lot; asked again, only those that changed. What did not change stays the same object. Marking a reference unit
+ * brings no record and changes how a unit stands: with other marks the units are read whole.
+ */
+export const lotUnitsOptions = (client: QueryClient, lot: LotDetail) => {
+  const name = { key: lot.design, lot: lot.key }
+  const queryKey = ['lots', 'units', name, lot.references]
+  return queryOptions({
+    queryKey,
     queryFn: async ({ signal }) => {
-      const before = client.getQueryData<LotUnits>(unitsKey(name))
+      const before = client.getQueryData<LotUnits>(queryKey)
       if (before) {
         const grown = await readUnits(name, before, signal)
         if (isWhole(grown)) return grown
@@ -69,6 +73,7 @@ export const lotUnitsOptions = (client: QueryClient, name: LotName) =>
     structuralSharing: false,
     staleTime: Number.POSITIVE_INFINITY,
   })
+}
 
 /** False when a record has slipped in below the newest one that was seen. */
 function isWhole({ units, records }: LotUnits): boolean {
@@ -136,14 +141,7 @@ export function useMarkReference(key: string) {
   const client = useQueryClient()
   return useMutation({
     mutationFn: (body: { unit: string; reference: boolean }) => api(postReference, { params: { key }, body }),
-    onSuccess: async (_, { unit, reference }) => {
-      // No record came in, so that asking for what changed would not bring it.
-      client.setQueriesData<LotUnits>({ queryKey: ['lots', 'units'] }, (data) =>
-        data
-          ? { ...data, units: data.units.map((one) => (one.unit === unit ? { ...one, reference } : one)) }
-          : data,
-      )
-      await client.invalidateQueries({ queryKey: ['lots', 'one'] })
-    },
+    // The lot then names other reference units, with which its units are read again.
+    onSuccess: () => client.invalidateQueries({ queryKey: ['lots', 'one'] }),
   })
 }

@@ -2,6 +2,7 @@ import { type FormEvent, useState } from 'react'
 import type { LotDetail, LotUnit } from '../../../shared/contract/lots.ts'
 import { isOgeeError } from '../../../shared/errors.ts'
 import { limits } from '../../../shared/limits.ts'
+import { useDraft } from '../../lib/use-draft.ts'
 import { Button } from '../../ui/button.tsx'
 import { Dialog } from '../../ui/dialog.tsx'
 import { Field } from '../../ui/field.tsx'
@@ -15,16 +16,32 @@ import { percent, unitsText } from './words.ts'
 /** Units that get a field of their own; the rest share one reason. */
 const shownMost = 12
 
+/** What was typed: the reasons by unit, the one that the rest shares, and the note. */
+type Typed = { reasons: Record<string, string>; rest: string; note: string }
+const nothing: Typed = { reasons: {}, rest: '', note: '' }
+
+function typedIn(stored: unknown): Typed | null {
+  if (typeof stored !== 'object' || stored === null) return null
+  const { reasons, rest, note } = stored as { [field in keyof Typed]?: unknown }
+  if (typeof reasons !== 'object' || reasons === null) return null
+  if (typeof rest !== 'string' || typeof note !== 'string') return null
+  const texts = Object.entries(reasons).filter(([, reason]) => typeof reason === 'string')
+  return { reasons: Object.fromEntries(texts), rest, note }
+}
+
 type Props = { lot: LotDetail; units: readonly LotUnit[]; onClose: () => void }
 
-/** Every unit that is not right gets a decision: it is left out, for a reason that is kept for good. */
+/**
+ * Every unit that is not right gets a decision: it is left out, for a reason that is kept for good. What was typed is a draft on
+ * this computer, for a record that comes in makes the server refuse and the dialog has to be opened again.
+ */
 export default function SignOffDialog({ lot, units, onClose }: Props) {
   const open = units.filter((unit) => isUndecided(unit))
   const listed = open.slice(0, shownMost)
   const others = open.length - listed.length + lot.counts.missing
-  const [reasons, setReasons] = useState<Record<string, string>>({})
-  const [rest, setRest] = useState('')
-  const [note, setNote] = useState('')
+  const draft = `draft.sign-off.${lot.design}/${lot.key}`
+  const [typed, setTyped, discard] = useDraft(draft, typedIn, nothing)
+  const { reasons, rest, note } = typed
   const [tried, setTried] = useState(false)
   // As it was seen when the dialog was opened: what is recorded meanwhile makes the server refuse.
   const [etag] = useState(lot.etag)
@@ -45,6 +62,7 @@ export default function SignOffDialog({ lot, units, onClose }: Props) {
       },
       {
         onSuccess: () => {
+          discard()
           announce(`Lot ${lot.key} is signed off.`)
           onClose()
         },
@@ -77,7 +95,9 @@ export default function SignOffDialog({ lot, units, onClose }: Props) {
               placeholder="Why it is left out"
               maxLength={limits.reasonMax}
               value={reasons[unit] ?? ''}
-              onChange={(event) => setReasons({ ...reasons, [unit]: event.target.value })}
+              onChange={(event) =>
+                setTyped({ ...typed, reasons: { ...reasons, [unit]: event.target.value } })
+              }
             />
           </Field>
         ))}
@@ -90,7 +110,7 @@ export default function SignOffDialog({ lot, units, onClose }: Props) {
               placeholder="Why they are left out"
               maxLength={limits.reasonMax}
               value={rest}
-              onChange={(event) => setRest(event.target.value)}
+              onChange={(event) => setTyped({ ...typed, rest: event.target.value })}
             />
           </Field>
         ) : null}
@@ -98,7 +118,7 @@ export default function SignOffDialog({ lot, units, onClose }: Props) {
           <TextArea
             maxLength={limits.noteMax}
             value={note}
-            onChange={(event) => setNote(event.target.value)}
+            onChange={(event) => setTyped({ ...typed, note: event.target.value })}
           />
         </Field>
         <Problem error={signOff.error} />

@@ -1,4 +1,4 @@
-import { useQuery, useQueryClient } from '@tanstack/react-query'
+import { keepPreviousData, useQuery, useQueryClient } from '@tanstack/react-query'
 import { useEffect, useRef } from 'react'
 import type { LotDetail } from '../../../shared/contract/lots.ts'
 import { lotUnitsOptions } from '../../features/lot/queries.ts'
@@ -6,8 +6,11 @@ import { lotUnitsOptions } from '../../features/lot/queries.ts'
 /** The units of a lot, asked again for what changed as soon as the lot itself shows that something has. */
 export function useLotUnits(lot: LotDetail) {
   const client = useQueryClient()
-  const name = { key: lot.design, lot: lot.key }
-  const units = useQuery({ ...lotUnitsOptions(client, name), enabled: lot.records > 0 })
+  const units = useQuery({
+    ...lotUnitsOptions(client, lot),
+    enabled: lot.records > 0,
+    placeholderData: keepPreviousData,
+  })
   const { refetch } = units
   const seen = useRef(lot.records)
   useEffect(() => {

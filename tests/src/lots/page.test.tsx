@@ -1,5 +1,5 @@
 import { screen, waitFor, within } from '@testing-library/react'
-import { describe, expect, test } from 'vitest'
+import { beforeEach, describe, expect, test } from 'vitest'
 import type { LotDetail, LotUnit } from '../../../shared/contract/lots.ts'
 import { lotCounts, lotDetail, lotLine, lotPlace, lotUnit } from '../../support/lot-fixtures.ts'
 import { open } from '../../support/web-render.tsx'
@@ -38,6 +38,8 @@ function serverWith(
   server.on('GET /designs/:key/stations', () => json({ items: [] }))
   return server
 }
+
+beforeEach(() => localStorage.clear())
 
 const sent = (server: FakeServer, route: string) =>
   server.sent(route).map(({ body, headers }) => ({ body, headers }))
@@ -85,6 +87,26 @@ describe('one lot', () => {
     expect(request!.headers.get('if-match')).toBe('"1.open.96.96.0.0"')
   })
 
+  test('what was typed for sign-off outlives a record that came in, until the lot is signed off', async () => {
+    const server = serverWith({}, twentyTwo)
+    const { user } = open(address, server)
+    const opened = async () => {
+      await user.click(await screen.findByRole('button', { name: 'Sign off lot' }))
+      return within(await screen.findByRole('dialog', { name: 'Sign off lot 2417' }))
+    }
+    const first = await opened()
+    await user.type(first.getByLabelText(/Unit 058/), 'wrong resistor R12')
+    await user.type(first.getByLabelText('Note'), 'seen by two')
+    await user.click(first.getByRole('button', { name: 'Cancel' }))
+    const second = await opened()
+    expect(second.getByLabelText(/Unit 058/)).toHaveValue('wrong resistor R12')
+    expect(second.getByLabelText('Note')).toHaveValue('seen by two')
+    server.on('POST /designs/:key/lots/:lot/sign-off', () => json(lotDetail({ records: 22, counts })))
+    await user.click(second.getByRole('button', { name: 'Sign off' }))
+    await waitFor(() => expect(screen.queryByRole('dialog')).toBeNull())
+    expect(Object.keys(localStorage).filter((name) => name.includes('sign-off'))).toEqual([])
+  })
+
   test('an auditor has no acts, absent and not grey; a signed lot says who and when', async () => {
     const signedOff = { by: 'R. Lindqvist', at: '2026-11-24T17:02:00Z', note: null }
     const signOff = { counts, leftOut: [{ unit: '058', reason: 'wrong resistor' }], leaf: '0'.repeat(64) }
@@ -127,6 +149,20 @@ describe('one lot', () => {
     await waitFor(() => expect(server.sent('GET /designs/:key/lots/:lot/units')).toHaveLength(3))
     const asked = server.sent('GET /designs/:key/lots/:lot/units').map(({ query }) => query.get('since'))
     expect(asked).toEqual([null, '22', null])
+  })
+})
+
+describe('reference units', () => {
+  test('marked elsewhere, without a record, make all units be read again', async () => {
+    const server = serverWith({}, twentyTwo)
+    open(address, server)
+    await screen.findByRole('heading', { name: 'Individuals chart, gain error as found' })
+    server.on('GET /designs/:key/lots/:lot', () =>
+      json(lotDetail({ records: 22, counts, references: ['003'] })),
+    )
+    await waitFor(() => expect(server.sent('GET /designs/:key/lots/:lot/units')).toHaveLength(2))
+    const asked = server.sent('GET /designs/:key/lots/:lot/units').map(({ query }) => query.get('since'))
+    expect(asked).toEqual([null, null])
   })
 })
 

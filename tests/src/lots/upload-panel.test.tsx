@@ -1,5 +1,5 @@
 import { QueryClientProvider } from '@tanstack/react-query'
-import { fireEvent, render, screen, waitFor } from '@testing-library/react'
+import { act, fireEvent, render, screen, waitFor } from '@testing-library/react'
 import { userEvent } from '@testing-library/user-event'
 import { afterEach, expect, test, vi } from 'vitest'
 import { designDocument } from '../../../shared/contract/design.ts'
@@ -87,12 +87,18 @@ test('a measurement that is refused for itself is left out and not sent again', 
 /** A file whose bytes come when `give` is called. */
 function slowFile(text: string, name: string) {
   const file = fileOf(text, name)
-  let give = () => undefined as void
+  let give: (bytes: ArrayBuffer) => void
   const bytes = new Promise<ArrayBuffer>((resolve) => {
-    give = () => resolve(new TextEncoder().encode(text).buffer as ArrayBuffer)
+    give = resolve
   })
   file.arrayBuffer = () => bytes
-  return { file, give: () => give() }
+  return { file, give: () => give(new TextEncoder().encode(text).buffer as ArrayBuffer) }
+}
+
+/** Waits longer than planning takes: what is not shown by then was not taken. */
+async function comesLate({ give }: ReturnType<typeof slowFile>): Promise<void> {
+  give()
+  await act(() => new Promise((resolve) => setTimeout(resolve, 100)))
 }
 
 test('a plan made for "as found" is not taken once the choice is "as left"', async () => {
@@ -101,9 +107,10 @@ test('a plan made for "as found" is not taken once the choice is "as left"', asy
   const slow = slowFile(csv, 'found.csv')
   fireEvent.drop(zone, { dataTransfer: { files: [slow.file] } })
   await user.click(screen.getByRole('radio', { name: 'as left' }))
-  slow.give()
   fireEvent.drop(zone, { dataTransfer: { files: [fileOf(csv, 'left.csv')] } })
-  await user.click(await screen.findByRole('button', { name: 'Record 2 measurements' }))
+  await screen.findByRole('button', { name: 'Record 2 measurements' })
+  await comesLate(slow)
+  await user.click(screen.getByRole('button', { name: 'Record 2 measurements' }))
   await waitFor(() => expect(sent).toHaveLength(1))
   expect(sent[0]!.map(({ kind }) => kind)).toEqual(['verify', 'verify'])
 })
@@ -116,9 +123,6 @@ test('of two files the later one counts, whichever is read first', async () => {
   const one = fileOf('unit,code,measured\nc,0,0\nc,262143,10\n', 'second.csv')
   fireEvent.drop(zone, { dataTransfer: { files: [one] } })
   await screen.findByRole('button', { name: 'Record 1 measurement' })
-  slow.give()
-  // Longer than planning the late one takes: it would show by then.
-  await slow.file.arrayBuffer()
-  await new Promise((resolve) => setTimeout(resolve, 100))
+  await comesLate(slow)
   expect(screen.getByRole('button', { name: 'Record 1 measurement' })).toBeVisible()
 })
