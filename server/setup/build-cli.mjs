@@ -63,6 +63,8 @@ export async function buildCli(root, folder = join(root, 'dist/cli')) {
       outfile,
       define: { OGEE_VERSION: JSON.stringify(version) },
       banner: { js: '#!/usr/bin/env node' },
+      // Node reads the whole file at each start: a third fewer bytes is some hundredths of a second less.
+      minifyIdentifiers: true,
       plugins: [arithmeticApart, builtinsOnUse],
     }),
     bundle({
