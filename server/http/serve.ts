@@ -106,7 +106,7 @@ function bodyReaders(endpoint: Endpoint, gates: Gates): RequestHandler[] {
 /** Hashing waits its turn by design, so these bound their use of the database themselves. */
 const takesPassword = new Set(['signIn', 'setUp'])
 
-/** People may look around while the ledger contradicts itself; nothing is written. */
+/** People may look around while the ledger contradicts itself, or is signed by a key that is not here; nothing is written. */
 const aboutSessions = new Set(['signIn', 'signOut'])
 
 /** Open reads answer whoever asks, whatever they send along; open writes deal with the session. */
@@ -125,8 +125,9 @@ function guard(endpoint: Endpoint, deps: Deps): RequestHandler {
       return
     }
     if (isUnsafe(endpoint) && principal?.kind !== 'token') requireSameSite(request, deps.config.baseUrl)
-    if (isUnsafe(endpoint) && deps.historyFault && !aboutSessions.has(endpoint.id)) {
-      throw new OgeeError('not-ready', deps.historyFault)
+    const fault = deps.historyFault ?? deps.signer.fault
+    if (isUnsafe(endpoint) && fault && !aboutSessions.has(endpoint.id)) {
+      throw new OgeeError('not-ready', fault)
     }
     next()
   }

@@ -1,6 +1,7 @@
 import type { Logger } from 'pino'
 import { isOgeeError } from '../../shared/errors.ts'
 import type { Database } from '../db/connection.ts'
+import { requireInForce } from './keys.ts'
 import { type PassResult, sequencePass } from './sequence.ts'
 import type { Signer } from './signer.ts'
 
@@ -22,7 +23,7 @@ export type Sequencer = {
 export type Aside = {
   /** A checkpoint was signed and committed. */
   onCheckpoint?: (note: string) => Promise<void>
-  /** The key was replaced elsewhere: take up the new one. */
+  /** The key was replaced elsewhere: take up the new one, which ends the signer's fault. */
   reload?: () => Promise<void>
 }
 
@@ -51,12 +52,18 @@ export function startSequencer(
   }
   const onePass = async () => {
     try {
+      // At each pass and not only where one signs: receipts are signed all the time, and another server may sign the checkpoints.
+      await requireInForce(database.sql, signer)
+      signer.fault = null
       const { more, note } = await sequencePass(database, signer, now)
       schedule(more ? 0 : pollMs)
       if (note !== null) await onCheckpoint?.(note)
     } catch (error) {
       logger.warn({ err: error }, 'A pass of the ledger failed; the next follows.')
-      if (isOgeeError(error, 'ledger-key-differs')) await reload?.().catch(() => undefined)
+      if (isOgeeError(error, 'ledger-key-differs')) {
+        signer.fault = error.message
+        await reload?.().catch(() => undefined)
+      }
       schedule(afterFailureMs)
     }
   }

@@ -9,9 +9,16 @@ export type Signer = {
   /** `<name>+<hash>`, as receipts carry it. */
   keyName: string
   sign: Sign
+  /** Why nothing may be signed: the key was replaced elsewhere, and the new one is not here. */
+  fault: string | null
 }
 
 export function signerOf(name: string, privateKey: KeyObject): Signer {
   const key = { name, publicKey: rawPublicKey(privateKey) }
-  return { key, keyName: keyName(sha256, key), sign: (bytes) => signBytes(null, bytes, privateKey) }
+  return {
+    key,
+    keyName: keyName(sha256, key),
+    sign: (bytes) => signBytes(null, bytes, privateKey),
+    fault: null,
+  }
 }

@@ -163,6 +163,31 @@ describe('a certificate', () => {
     expect(text()).toContain('was withdrawn by record')
   })
 
+  it('finds the codes behind more than a hundred verifications, in as many queries as behind one', async () => {
+    const { trim, verify } = await trimAndVerify('CERT-12')
+    let last = verify
+    const body = trimBody({ unit: 'CERT-12', kind: 'verify', points: pointsOf({ gainPpm: 0.2 }) })
+    for (let i = 0; i < 101; i++) {
+      last = await post(scene.url, scene.station, { ...body, follows: last.id })
+    }
+    await settled()
+    const { database } = scene.harness
+    const rows = vi.spyOn(database.sql, 'rows')
+    const counted = async (id: string) => {
+      rows.mockClear()
+      const known = await facts(id)
+      expect([known.found?.id, known.trim?.id, known.left?.id]).toEqual([trim.id, trim.id, id])
+      return rows.mock.calls.length
+    }
+    const short = await counted(verify.id)
+    expect(await counted(last.id)).toBe(short)
+    rows.mockClear()
+    const stranger = { kind: 'token', scopes: [], station: null, designs: null } as never
+    await expect(readCertificate(database, last.id, stranger)).rejects.toMatchObject({ code: 'not-found' })
+    expect(rows).toHaveBeenCalledTimes(1)
+    rows.mockRestore()
+  })
+
   it('says so when the revision was released by its author', async () => {
     const { verify } = await trimAndVerify('CERT-7')
     await settled()

@@ -12,8 +12,8 @@ import { readStored } from '../recording/read-stored.ts'
 
 type Read = { body: RecordBody; notices: readonly Notice[] }
 
-/** Longer chains than this are no trimming any more. */
-const chainMost = 100
+/** A record of the chain, as far as it tells where the chain goes. */
+type Link = { id: string; kind: RecordBody['kind']; follows: string | null }
 
 /**
  * All that a certificate of a record's unit, channel and range says: the chain back to what was found, the trim whose codes
@@ -25,25 +25,26 @@ export async function readCertificate(
   principal: Principal,
 ): Promise<CertificateFacts> {
   const { sql } = database
-  const chain = await readChain(sql, id)
-  const asked = chain.at(-1)!
-  const measured = chain.filter(({ body }) => body.result !== null)
-  const subject = measured.at(-1)
-  if (!subject) {
+  const chain = await readChain(sql, id, principal)
+  const measured = chain.filter(({ kind }) => kind === 'trim' || kind === 'verify')
+  const last = measured.at(-1)
+  if (!last) {
     throw new OgeeError('not-found', 'That record leads to no measurement, so there is nothing to certify.')
   }
-  const trims = measured.filter(isTrim)
-  const trim = trims.at(-1) ?? null
-  const left = isVerification(subject) ? subject : await verificationOf(sql, subject.body)
-  const found = trims[0] ?? null
-  const shown = unique([asked, ...(left ? [left] : []), ...(trim ? [trim] : []), ...(found ? [found] : [])])
-  await requireSight(sql, shown, principal)
-  const { row, bytes } = await revisionOf(database, subject.body)
+  const trims = measured.filter(({ kind }) => kind === 'trim')
+  const leftId = last.kind === 'verify' ? last.id : await verificationOf(sql, last.id)
+  const ids = unique([id, leftId, trims.at(-1)?.id, trims[0]?.id])
+  await requireSight(sql, ids, principal)
+  const shown = await readAll(sql, ids)
+  const bodyOf = (id: string | null | undefined) => shown.find(({ body }) => body.id === id)?.body ?? null
+  const subject = bodyOf(last.id)!
+  const trim = trimIn(bodyOf(trims.at(-1)?.id))
+  const { row, bytes } = await revisionOf(database, subject)
   return {
-    subject: subject.body,
-    found: found?.body ?? null,
-    trim: trim?.body ?? null,
-    left: left?.body ?? null,
+    subject,
+    found: trimIn(bodyOf(trims[0]?.id)),
+    trim,
+    left: verificationIn(bodyOf(leftId)),
     design: designDocument.parse(JSON.parse(bytes.toString('utf8'))),
     revision: {
       releasedBy: row.releasedBy,
@@ -54,55 +55,67 @@ export async function readCertificate(
     notices: shown.flatMap(({ body, notices }) =>
       notices.map((notice) => ({ ...notice, message: `Record ${body.number}: ${notice.message}` })),
     ),
-    override: trim === null ? null : await overrideOf(sql, trim.body.id),
+    override: trim === null ? null : await overrideOf(sql, trim.id),
     proofs: await proofsOf(sql, shown),
   }
 }
 
-const isTrim = (read: Read): read is Read & { body: Trim } => read.body.result?.format === 'ogee.codes/1'
-const isVerification = (read: Read): read is Read & { body: Verification } =>
-  read.body.result?.format === 'ogee.verify/1'
-const unique = (reads: readonly Read[]) => [...new Map(reads.map((read) => [read.body.id, read])).values()]
+const isTrim = (body: RecordBody): body is Trim => body.result?.format === 'ogee.codes/1'
+const isVerification = (body: RecordBody): body is Verification => body.result?.format === 'ogee.verify/1'
+const trimIn = (body: RecordBody | null) => (body !== null && isTrim(body) ? body : null)
+const verificationIn = (body: RecordBody | null) => (body !== null && isVerification(body) ? body : null)
+const unique = (ids: readonly (string | null | undefined)[]) => [...new Set(ids.filter((id) => id != null))]
+
+const notOpen = () => new OgeeError('not-found', 'There is no such record, or it is not open to you.')
 
 /** A token of one station sees no other station's part of the story, so it gets none of it. */
-async function requireSight(sql: Sql, reads: readonly Read[], principal: Principal): Promise<void> {
+async function requireSight(sql: Sql, ids: readonly string[], principal: Principal): Promise<void> {
   const rows = await sql.rows<{ stationId: string | null; design: string }>(
     'SELECT station_id AS stationId, design FROM records WHERE id IN (?)',
-    [reads.map(({ body }) => body.id)],
+    [ids],
   )
-  if (rows.every((row) => maySeeRecord(principal, row))) return
-  throw new OgeeError('not-found', 'There is no such record, or it is not open to you.')
+  if (rows.length === 0 || !rows.every((row) => maySeeRecord(principal, row))) throw notOpen()
 }
 
-/** The record and all that it follows, oldest first. */
-async function readChain(sql: Sql, id: string): Promise<Read[]> {
-  const chain: Read[] = []
-  for (let next: string | null = id; next !== null && chain.length < chainMost; ) {
-    const read: Read | null = await readOne(sql, next)
-    if (!read) break
-    chain.unshift(read)
-    next = read.body.follows
+/** The record and all that it follows, oldest first, whatever its length; nothing is read for who may not see the record. */
+async function readChain(sql: Sql, id: string, principal: Principal): Promise<Link[]> {
+  await requireSight(sql, [id], principal)
+  // A record follows records of its own unit, channel and range only.
+  const links = await sql.rows<Link>(
+    `SELECT r.id, r.kind, r.follows FROM records r JOIN records a
+      ON r.unit_id = a.unit_id AND r.channel = a.channel AND r.range_id = a.range_id WHERE a.id = ?`,
+    [id],
+  )
+  const left = new Map(links.map((link) => [link.id, link]))
+  const chain: Link[] = []
+  for (let next: string | null = id; next !== null; ) {
+    const link: Link | undefined = left.get(next)
+    if (!link) break
+    left.delete(next)
+    chain.push(link)
+    next = link.follows
   }
-  if (chain.length === 0)
-    throw new OgeeError('not-found', 'There is no such record, or it is not open to you.')
-  return chain
+  return chain.reverse()
 }
 
-async function readOne(sql: Sql, id: string): Promise<Read | null> {
-  const stored = (await readStored(sql, [id])).get(id)
-  return stored ? { body: JSON.parse(stored.text) as RecordBody, notices: stored.notices } : null
+/** Records as they are stored, in the order of their ids as given. */
+async function readAll(sql: Sql, ids: readonly string[]): Promise<Read[]> {
+  const stored = await readStored(sql, ids)
+  return ids.flatMap((id) => {
+    const one = stored.get(id)
+    return one ? [{ body: JSON.parse(one.text) as RecordBody, notices: one.notices }] : []
+  })
 }
 
 /** The newest verification that follows a trim and was not withdrawn. */
-async function verificationOf(sql: Sql, { id }: RecordBody): Promise<(Read & { body: Verification }) | null> {
+async function verificationOf(sql: Sql, id: string): Promise<string | null> {
   const [found] = await sql.rows<{ id: string }>(
     `SELECT r.id FROM records r WHERE r.follows = ? AND r.kind = 'verify'
       AND NOT EXISTS (SELECT 1 FROM records w WHERE w.follows = r.id AND w.kind = 'withdraw')
       ORDER BY r.recorded_at DESC, r.id DESC LIMIT 1`,
     [id],
   )
-  const read = found ? await readOne(sql, found.id) : null
-  return read && isVerification(read) ? read : null
+  return found?.id ?? null
 }
 
 /** The newest override of a trim that was not withdrawn. */
@@ -113,7 +126,7 @@ async function overrideOf(sql: Sql, id: string): Promise<CertificateFacts['overr
       ORDER BY o.recorded_at DESC, o.id DESC LIMIT 1`,
     [id],
   )
-  const read = found ? await readOne(sql, found.id) : null
+  const [read] = found ? await readAll(sql, [found.id]) : []
   return read ? { number: read.body.number, by: read.body.by.name, reason: read.body.reason ?? '' } : null
 }
 
