@@ -3,7 +3,7 @@ import type { RecordLine } from '../../shared/contract/record.ts'
 import type { listTrims } from '../../shared/contract/trims.ts'
 import { OgeeError } from '../../shared/errors.ts'
 import type { Database } from '../db/connection.ts'
-import { type Sql, sqlTime } from '../db/sql.ts'
+import { bounded, type Sql, sqlTime } from '../db/sql.ts'
 import type { Principal } from '../http/principal.ts'
 import { lineColumns, type RecordLineRow, recordLineReply } from '../models/record.ts'
 import { sightOf } from '../policies/may-see.ts'
@@ -14,10 +14,11 @@ type Query = z.output<NonNullable<typeof listTrims.query>>
 
 /** Records that the principal may see, newest first, by keyset: a page costs the same wherever it stands. */
 export async function listRecords(
-  { sql }: Database,
+  database: Database,
   { after, limit, ...filters }: Query,
   principal: Principal,
 ): Promise<{ items: RecordLine[]; next: string | null }> {
+  const sql = bounded(database.sql)
   const search = await searchOf(sql, filters, sightOf(principal))
   const rows = search === null ? [] : await readPage(sql, search, after, limit + 1)
   const page = rows.slice(0, limit)

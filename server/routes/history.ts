@@ -11,6 +11,7 @@ import { csvLine } from '../../shared/points/csv-line.ts'
 import { countRecords as count } from '../commands/history/count-records.ts'
 import { exportRecords as allOf } from '../commands/history/export-records.ts'
 import { listRecorders as recorders } from '../commands/history/list-recorders.ts'
+import { bounded } from '../db/sql.ts'
 import { fileName } from '../http/file-name.ts'
 import { ReadyLines, type Serve } from '../http/serve.ts'
 import type { RouteDeps } from './route-deps.ts'
@@ -19,7 +20,7 @@ export function historyRoutes(serve: Serve, { database, now }: RouteDeps): void 
   serve(countRecords, async ({ query, principal }) => count(database.sql, query, principal))
 
   serve(listRecorders, async ({ principal }) => ({
-    items: await recorders(database.sql, principal),
+    items: await recorders(bounded(database.sql), principal),
     next: null,
   }))
 

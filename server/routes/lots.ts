@@ -23,6 +23,7 @@ import { readLotUnits } from '../commands/lots/read-lot-units.ts'
 import { readLot, readLots } from '../commands/lots/read-lots.ts'
 import { signOffLot } from '../commands/lots/sign-off-lot.ts'
 import { readStationMonths } from '../commands/lots/station-months.ts'
+import { bounded } from '../db/sql.ts'
 import type { Principal } from '../http/principal.ts'
 import type { Serve } from '../http/serve.ts'
 import { maySeeUnits, requireDesign } from '../policies/may-see.ts'
@@ -93,7 +94,7 @@ export function lotRoutes(serve: Serve, deps: RouteDeps): void {
   serve(listStationMonths, async ({ params, query, principal }) => {
     requireDesign(principal, params.key)
     const to = query.to === undefined ? deps.now() : new Date(query.to)
-    return { items: await readStationMonths(sql, params.key, to) }
+    return { items: await readStationMonths(bounded(sql), params.key, to) }
   })
 }
 

@@ -1,7 +1,13 @@
 import Papa from 'papaparse'
 import { afterAll, beforeAll, describe, expect, it, vi } from 'vitest'
+import { createToken } from '../../server/commands/create-token.ts'
 import { exportRecords } from '../../server/commands/history/export-records.ts'
+import { listRecorders } from '../../server/commands/history/list-recorders.ts'
+import { searchOf } from '../../server/commands/history/search.ts'
 import { listRecords } from '../../server/commands/list-records.ts'
+import { asOutage } from '../../server/db/failure.ts'
+import { bounded } from '../../server/db/sql.ts'
+import { transaction } from '../../server/db/transaction.ts'
 import type { PersonPrincipal } from '../../server/http/principal.ts'
 import type { RecordLine } from '../../shared/contract/record.ts'
 import { fillHarness } from '../support/filled.ts'
@@ -143,6 +149,80 @@ describe('what a caller may see', () => {
     const seen = all.filter((line) => line.design === 'DBC-16').map((line) => line.id)
     expect(await follow(new URLSearchParams(), 500, narrow)).toEqual(seen)
     expect((await get('/history/count?design=DBS-A', narrow)).body.count).toBe(0)
+  })
+})
+
+describe('what it costs', () => {
+  it('looks deeper where the first look tells nothing, and takes the way that leaves fewer', async () => {
+    const counts: Record<number, object> = {
+      1000: { n0: 1_000, n1: 1_000, n2: 1_000 },
+      50000: { n0: 50_000, n1: 50_000, n2: 1_200 },
+    }
+    const asked: number[] = []
+    const rows = async (statement: string) => {
+      asked.push(Number(/LIMIT (\d+)/.exec(statement)?.[1]))
+      return [counts[asked.at(-1)!]] as never
+    }
+    const sql = { ...harness.database.sql, rows }
+    const everything = { station: 'all', designs: null } as const
+    const filters = { kind: ['verify'], by: ['someone'], design: ['U18'] } as never
+    expect(await searchOf(sql, filters, everything)).toMatchObject({ index: 'records_design' })
+    expect(asked).toEqual([1_000, 50_000])
+    // One station has fewer records than one kind, until the counts say otherwise.
+    counts[50_000] = { n0: 50_000, n1: 50_000 }
+    const own = { station: '01890a5d-ac96-774b-bcce-b302099a8057', designs: null }
+    const verified = { kind: ['verify'], station: [own.station] } as never
+    expect(await searchOf(sql, verified, own)).toMatchObject({ index: 'records_station' })
+  })
+
+  it('has a bound in the database for every reading of a page, and what is cut off is an outage', async () => {
+    const rows = vi.spyOn(harness.database.sql, 'rows')
+    const fromRecords = () =>
+      rows.mock.calls.map(([text]) => text).filter((text) => /FROM records/.test(text))
+    for (const path of [
+      '/trims?kind=trim&design=DBS-A',
+      '/trims?serial=DB',
+      '/history/count?kind=trim',
+      '/history/recorders',
+      '/designs/DBS-A/stations',
+    ]) {
+      rows.mockClear()
+      expect((await get(path)).status, path).toBe(200)
+      expect(fromRecords().length, path).toBeGreaterThan(0)
+      for (const text of fromRecords()) expect(text).toMatch(/^SET STATEMENT max_statement_time = [\d.]+ FOR/)
+    }
+    rows.mockRestore()
+    const slow = 'SELECT COUNT(*) AS n FROM records a, records b, records c, records d'
+    const cut = bounded(harness.database.sql).rows(slow)
+    const error = await cut.then(
+      () => undefined,
+      (failed: unknown) => failed,
+    )
+    expect(asOutage(error)).toMatchObject({ code: 'database-unavailable' })
+  })
+
+  it('for the recorders of one station does not walk through what others recorded', async () => {
+    const stationOf = (name: string) => all.find((line) => line.station === name)!.stationId!
+    const script = {
+      name: 'Station A script',
+      station: stationOf('Station A'),
+      scopes: ['trims:read' as const],
+    }
+    const parts = { id: 'demoA000', secret: 'abcdefghijklmnopqrstuvwxyz0123456789ABCDEFG' }
+    await createToken(harness.deps, { ...script, designs: null, days: 1 }, 'tests', parts)
+    const station = { id: stationOf('Station B'), name: 'Station B' }
+    const principal = { kind: 'token', scopes: ['trims:read'], designs: null, station } as never
+    const read = await transaction(harness.database, async (sql) => {
+      const steps = async () => {
+        const counts = await sql.rows<{ Value: string }>("SHOW SESSION STATUS LIKE 'Handler_read_%'")
+        return counts.reduce((sum, { Value }) => sum + Number(Value), 0)
+      }
+      const before = await steps()
+      const found = await listRecorders(sql, principal)
+      return { names: found.map(({ id }) => id), steps: (await steps()) - before }
+    })
+    expect(read.names).toEqual(['demoB000'])
+    expect(read.steps).toBeLessThan(200)
   })
 })
 

@@ -43,11 +43,11 @@ export async function conditionsOf(sql: Sql, filters: Filters, sight: Sight): Pr
     ...(finding === undefined ? [] : [withFinding(finding)]),
     ...(lot ? [among('lot', lot, 'records_in_lot')] : []),
     ...(attempt === undefined ? [] : [atLeast(attempt)]),
+    ...(stations ? [among('station_id', stations, 'records_station')] : []),
     ...(kind ? [among('kind', kind, 'records_kind')] : []),
     ...(by ? [among('by_id', by, 'records_by')] : []),
     ...(verdict ? [among('verdict', verdict, 'records_verdict')] : []),
     ...(designs ? [ofDesigns(designs, revision)] : []),
-    ...(stations ? [among('station_id', stations, 'records_station')] : []),
   ]
 }
 

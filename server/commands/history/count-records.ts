@@ -1,6 +1,6 @@
 import { limits } from '../../../shared/limits.ts'
 import { failureOf } from '../../db/failure.ts'
-import type { Sql } from '../../db/sql.ts'
+import { bounded, type Sql } from '../../db/sql.ts'
 import type { Principal } from '../../http/principal.ts'
 import { sightOf } from '../../policies/may-see.ts'
 import type { Filters } from './conditions.ts'
@@ -13,7 +13,7 @@ const mostSeconds = 1.5
 
 /** How many records match, up to a bound, so that no count reads the whole history. */
 export async function countRecords(sql: Sql, filters: Filters, principal: Principal): Promise<Counted> {
-  const search = await searchOf(sql, filters, sightOf(principal))
+  const search = await searchOf(bounded(sql), filters, sightOf(principal))
   if (search === null) return { count: 0, more: false }
   const most = limits.countMax + 1
   const parts = search.stretches.map((stretch) => {

@@ -5,19 +5,19 @@ import { type Condition, conditionsOf, type Filters, type Finder, type Piece, ti
 /** One way through the records: an index, the stretches of it to follow, and what else must hold of each record. */
 export type Search = { index: string; stretches: readonly Piece[]; rest: readonly Piece[] }
 
-/** Records looked at, at most, to say which of two filters leaves fewer. */
-const probeMost = 1_000
+/** Records looked at, at most, to say which of two filters leaves fewer; the second only when the first tells nothing. */
+const probes = [1_000, 50_000]
 
 /**
  * Decides by which index the records are found: with one filter by its own; with more by the one that leaves fewest, found
- * out by counting each up to a thousand. Null when nothing can match.
+ * out by counting each up to a bound. Null when nothing can match.
  */
 export async function searchOf(sql: Sql, filters: Filters, sight: Sight): Promise<Search | null> {
   const conditions = await conditionsOf(sql, filters, sight)
   if (conditions === null) return null
   const time = timeOf(filters)
   const able = conditions.filter((condition) => condition.finder !== undefined)
-  const best = able.length < 2 ? able[0] : able[await fewest(sql, able, time)]
+  const best = await fewest(sql, able, time)
   const rest = conditions.filter((condition) => condition !== best || !condition.implied)
   const finder = best?.finder ?? throughTime
   return {
@@ -29,8 +29,25 @@ export async function searchOf(sql: Sql, filters: Filters, sight: Sight): Promis
 
 const throughTime: Finder = { index: 'records_time', alternatives: [{ sql: 'TRUE', values: [] }] }
 
-async function fewest(sql: Sql, conditions: readonly Condition[], time: readonly Piece[]): Promise<number> {
-  const probes = conditions.map(({ finder }) => {
+/** The condition that leaves fewest, the first of those that nothing tells apart. */
+async function fewest(sql: Sql, conditions: readonly Condition[], time: readonly Piece[]) {
+  let left = conditions
+  for (const most of probes) {
+    if (left.length < 2) break
+    const counts = await countEach(sql, { conditions: left, time, most })
+    const least = Math.min(...counts)
+    const ties = left.filter((_, i) => counts[i] === least)
+    if (least < most) return ties[0]
+    left = ties
+  }
+  return left[0]
+}
+
+async function countEach(
+  sql: Sql,
+  { conditions, time, most }: { conditions: readonly Condition[]; time: readonly Piece[]; most: number },
+): Promise<number[]> {
+  const counted = conditions.map(({ finder }) => {
     const { index, alternatives } = finder!
     const any = {
       sql: `(${alternatives.map(({ sql }) => sql).join(' OR ')})`,
@@ -38,16 +55,15 @@ async function fewest(sql: Sql, conditions: readonly Condition[], time: readonly
     }
     const where = all([any, ...time])
     return {
-      sql: `(SELECT COUNT(*) FROM (SELECT 1 FROM records FORCE INDEX (${index}) WHERE ${where.sql} LIMIT ${probeMost}) found)`,
+      sql: `(SELECT COUNT(*) FROM (SELECT 1 FROM records FORCE INDEX (${index}) WHERE ${where.sql} LIMIT ${most}) found)`,
       values: where.values,
     }
   })
   const [row] = await sql.rows<Record<string, number>>(
-    `SELECT ${probes.map((probe, i) => `${probe.sql} AS n${i}`).join(', ')}`,
-    probes.flatMap((probe) => probe.values),
+    `SELECT ${counted.map((one, i) => `${one.sql} AS n${i}`).join(', ')}`,
+    counted.flatMap((one) => one.values),
   )
-  const counts = conditions.map((_, i) => Number(row?.[`n${i}`]))
-  return counts.indexOf(Math.min(...counts))
+  return conditions.map((_, i) => Number(row?.[`n${i}`]))
 }
 
 /** Pieces joined by AND. */
