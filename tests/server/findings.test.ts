@@ -1,4 +1,5 @@
 import { afterAll, beforeAll, describe, expect, it } from 'vitest'
+import { answerFinding } from '../../server/commands/findings/answer-finding.ts'
 import { sha256 } from '../../server/ledger/crypto.ts'
 import type { Finding } from '../../shared/contract/findings.ts'
 import { canonicalText } from '../../shared/ledger/canonical.ts'
@@ -157,6 +158,67 @@ describe('a finding is kept once and for good', () => {
       [`%${finding.id}%`],
     )
     expect(leaves?.n).toBe(1)
+  })
+
+  it.each([
+    ['a record', () => onRecord()],
+    ['a lot', () => ({ subject: { kind: 'lot', design: 'U18', lot: 'L1' }, text })],
+  ])('takes no answer after its closing, whoever is first: on %s (15 rounds)', async (_, subject) => {
+    for (let round = 0; round < 15; round++) {
+      const finding = await write(subject())
+      const say = (path: string, as: object) =>
+        send(`/findings/${finding.id}/${path}`, { text: 'Said at the same moment.' }, as)
+      const replies = await Promise.all([
+        say('closing', auditor),
+        ...Array.from({ length: 4 }, () => say('answers', scene.engineer)),
+      ])
+      const acts = await scene.harness.database.sql.rows<{ body: Buffer }>(
+        "SELECT body FROM ledger_leaves WHERE kind = 'answer' AND body LIKE ? ORDER BY id",
+        [`%${finding.id}%`],
+      )
+      expect(JSON.parse(String(acts.at(-1)!.body)).act).toBe('close')
+      expect(replies.filter((reply) => reply.status === 201)).toHaveLength(acts.length)
+    }
+  })
+
+  it('is closed by a closing whose COMMIT took effect and whose answer was lost', async () => {
+    const finding = await write()
+    const { database, deps } = scene.harness
+    const { sequelize } = database
+    let begun = 0
+    const begin = async () => {
+      const open = await sequelize.transaction()
+      const commit = open.commit.bind(open)
+      if (++begun === 1) {
+        open.commit = async () => {
+          await commit()
+          throw Object.assign(new Error('The connection is gone.'), { code: 'ECONNRESET' })
+        }
+      }
+      return open
+    }
+    const flaky = Object.create(sequelize, { transaction: { value: begin } }) as typeof sequelize
+    const closed = await answerFinding(
+      { ...deps, database: { ...database, sequelize: flaky } },
+      {
+        finding: finding.id,
+        act: 'close',
+        text: 'Seen and understood.',
+        by: { id: 'a', name: 'A' },
+        key: newKey(),
+      },
+    )
+    expect(begun).toBe(2)
+    expect(closed).toMatchObject({ state: 'closed', answers: [{ act: 'close' }] })
+  })
+
+  it('a key that answered another finding is refused for what it is', async () => {
+    const [one, two] = [await write(), await write()]
+    const key = newKey()
+    const body = { text: 'Readings show it had settled.' }
+    expect((await send(`/findings/${one.id}/answers`, body, scene.engineer, key)).status).toBe(201)
+    const other = await send(`/findings/${two.id}/answers`, body, scene.engineer, key)
+    expect([other.status, other.body.code]).toEqual([422, 'idempotency-key-reused'])
   })
 
   it.each(['findings', 'finding_answers'])(

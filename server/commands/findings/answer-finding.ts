@@ -1,6 +1,6 @@
 import type { Finding } from '../../../shared/contract/findings.ts'
 import { OgeeError } from '../../../shared/errors.ts'
-import { sqlTime } from '../../db/sql.ts'
+import { type Sql, sqlTime } from '../../db/sql.ts'
 import type { Deps } from '../../http/deps.ts'
 import { insertLeaves, newLeaf } from '../../ledger/leaves.ts'
 import { readFinding } from './read-findings.ts'
@@ -21,8 +21,11 @@ export function answerFinding(
   return writeOnce(deps, asked, {
     find: () => finding,
     insert: async (sql, id, text) => {
+      await lockSubject(sql, finding)
       const found = await readFinding(sql, finding)
       if (!found) throw new OgeeError('not-found', 'There is no such finding.')
+      // Run again after a COMMIT whose answer was lost, and which had taken effect.
+      if (found.answers.some((answer) => answer.id === id)) return
       if (found.state === 'closed') throw closed(found)
       const at = deps.now()
       const body = { format: 'ogee.answer/1', id, finding, act, text, by }
@@ -33,11 +36,28 @@ export function answerFinding(
     },
     repeats: (stored, id) => {
       const answer = stored.answers.find((one) => one.id === id)
-      // Closed by somebody else at this moment.
-      if (!answer) throw closed(stored)
-      requireSame(answer.text === asked.text.trim() && answer.act === act)
+      requireSame(answer !== undefined && answer.text === asked.text.trim() && answer.act === act)
     },
   })
+}
+
+/** Findings are recorded rows, which nobody locks: what is said about one waits at the row of its unit or lot. */
+async function lockSubject(sql: Sql, finding: string): Promise<void> {
+  const [subject] = await sql.rows<{ unitId: number | null; design: string; lot: string | null }>(
+    `SELECT r.unit_id AS unitId, f.design, f.lot FROM findings f LEFT JOIN records r ON r.id = f.record_id
+      WHERE f.id = ?`,
+    [finding],
+  )
+  if (!subject) return
+  if (subject.unitId !== null) {
+    await sql.rows('SELECT id FROM units WHERE id = ? FOR UPDATE', [subject.unitId])
+  } else if (subject.lot !== null) {
+    await sql.rows(
+      `SELECT l.id FROM lots l WHERE l.design_id = (SELECT d.id FROM designs d WHERE d.design_key = ?)
+        AND l.lot_key = ? FOR UPDATE`,
+      [subject.design, subject.lot],
+    )
+  }
 }
 
 function closed({ answers }: Finding): OgeeError {

@@ -1,8 +1,10 @@
 import type * as z from 'zod'
 import type { LotCounts } from '../../../shared/contract/lot-standing.ts'
 import type { Lot, LotDetail, listLots } from '../../../shared/contract/lots.ts'
+import { canonicalBytes } from '../../../shared/ledger/canonical.ts'
 import type { Database } from '../../db/connection.ts'
 import type { Sql, SqlParameter } from '../../db/sql.ts'
+import { sha256 } from '../../ledger/crypto.ts'
 import type { Board, LotBoards } from './board.ts'
 import { countLot, type LotStandings } from './count-lot.ts'
 import { findLots, type LotHead, readReferences } from './find-lot.ts'
@@ -104,5 +106,8 @@ export async function readLot(
 
 /** Another one after every record, every serial added, every step of the lot and every change of its reference units. */
 function etagOf(head: LotHead, { references }: LotStandings): string {
-  return `"${[head.id, head.state, head.records, head.newest, head.expected, references.length].join('.')}"`
+  const which = Buffer.from(sha256(canonicalBytes([...references])))
+    .toString('hex')
+    .slice(0, 16)
+  return `"${[head.id, head.state, head.records, head.newest, head.expected, which].join('.')}"`
 }

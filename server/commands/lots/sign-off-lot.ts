@@ -30,7 +30,10 @@ export async function signOffLot(
     if (lot.state === 'signed-off') {
       throw wrongState(`Lot ${lot.key} was signed off by ${lot.signOff?.signedBy ?? 'somebody'}.`, lot.state)
     }
-    const { detail, standings } = await readLot(sql, lot, await readBoard(sql, lot))
+    const board = await readBoard(sql, lot)
+    const { detail, standings } = await readLot(sql, lot, board)
+    // An override or a withdrawal waits for no lot: it is in the board, and not in the etag.
+    if (board.records !== lot.records) throw changed(detail.etag)
     requireMatch(detail.etag, asked.ifMatch)
     const leftOut = decide(lot, standings, asked)
     const out = new Set(leftOut.map(({ unit }) => unit))
@@ -68,8 +71,11 @@ export async function signOffLot(
 }
 
 function requireMatch(etag: string, ifMatch: string): void {
-  if (ifMatch === etag || ifMatch === '*') return
-  throw new OgeeError(
+  if (ifMatch !== etag && ifMatch !== '*') throw changed(etag)
+}
+
+function changed(etag: string): OgeeError {
+  return new OgeeError(
     'precondition-failed',
     'The lot has changed since you opened it. Look at it again, then sign off.',
     { facts: { etag } },
