@@ -1,4 +1,6 @@
-import { afterAll, beforeAll, describe, expect, it } from 'vitest'
+import { afterAll, beforeAll, describe, expect, it, vi } from 'vitest'
+import { LotBoards } from '../../server/commands/lots/board.ts'
+import { findLots } from '../../server/commands/lots/find-lot.ts'
 import { lotRecordedNames } from '../../server/db/migrations/003-lots.ts'
 import { sha256 } from '../../server/ledger/crypto.ts'
 import type { LotDetail, LotUnit } from '../../shared/contract/lots.ts'
@@ -290,6 +292,36 @@ describe('what is kept of a lot in memory', () => {
   })
 })
 
+describe('what a list and a server keep', () => {
+  const lots = (...keys: string[]) => findLots(scene.harness.database.sql, 'l.lot_key IN (?)', [keys])
+
+  it('has for lists no more of a sign-off than its line', async () => {
+    await open('LINE')
+    await trim('LINE', 'line-1')
+    await signOff('LINE')
+    const rows = vi.spyOn(scene.harness.database.sql, 'rows')
+    const { items } = (await get('/lots?key=LINE')).body
+    expect(items[0].signedOff).toMatchObject({ by: 'Test engineer', note: null })
+    const read = (await Promise.all(rows.mock.results.map(({ value }) => value))).flat() as object[]
+    rows.mockRestore()
+    expect(read.length).toBeGreaterThan(0)
+    expect(read.flatMap((row) => Object.keys(row))).not.toContain('signOff')
+  })
+
+  it('drops the board used least recently by the places it holds, not by its units alone', async () => {
+    const { sql } = scene.harness.database
+    // One unit each with two places: four of size three, where units alone would count four.
+    for (const key of ['K-1', 'K-2', 'K-3', 'K-4']) {
+      await open(key, undefined, 'TWO')
+      for (const channel of ['a', 'b']) await trim(key, `u-${key}`, { design: 'TWO', channel, range: 'u10' })
+    }
+    const heads = await lots('K-1', 'K-2', 'K-3', 'K-4')
+    const boards = new LotBoards(7)
+    for (const head of heads) await boards.read(sql, head)
+    expect(heads.map((head) => boards.isFresh(head))).toEqual([false, false, true, true])
+  })
+})
+
 describe('sign-off', () => {
   it('needs an engineer, an up-to-date look, and a decision on every unit that is not right', async () => {
     await open('S', ['s-1', 's-missing'])
@@ -315,11 +347,12 @@ describe('sign-off', () => {
 
   it('is a leaf of the ledger that names what is in and what is out; the lot is closed by it', async () => {
     const leaveOut = [{ unit: 's-2', reason: decided }]
-    const signed = await signOff('S', { note: 'batch of May', leaveOut, rest: { reason: 'never delivered' } })
+    const note = 'batch of "May" \\ é 🙂 <b>'
+    const signed = await signOff('S', { note, leaveOut, rest: { reason: 'never delivered' } })
     expect(signed.status, JSON.stringify(signed.body)).toBe(200)
     expect(signed.body).toMatchObject({
       state: 'signed-off',
-      signedOff: { by: 'Test engineer', note: 'batch of May' },
+      signedOff: { by: 'Test engineer', note },
       signOff: {
         counts: { units: 3, good: 2 },
         leftOut: [
@@ -331,6 +364,8 @@ describe('sign-off', () => {
     const { signOff: made } = (await get(at('S'), scene.station)).body
     expect(made).toEqual({ ...signed.body.signOff, leftOut: [] })
     expect((await get(at('S'), reader)).body.signOff).toEqual(signed.body.signOff)
+    const [listed] = (await get('/lots?key=S')).body.items
+    expect(listed.signedOff).toEqual(signed.body.signedOff)
     const leaf = await checkLeafOf(signed.body.signOff.leaf)
     expect(leaf).toMatchObject({
       format: 'ogee.sign-off/1',

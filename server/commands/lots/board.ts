@@ -1,6 +1,6 @@
 import type { Standing } from '../../../shared/contract/lot-standing.ts'
 import type { Sql } from '../../db/sql.ts'
-import type { LotHead } from './find-lot.ts'
+import type { ListedLot } from './find-lot.ts'
 import { type Judged, standingOf, worse } from './standing.ts'
 
 /** How a unit stands, by channel and range. Empty places: everything of it was withdrawn. */
@@ -20,6 +20,8 @@ export type Board = {
   lastAt: number | null
   units: Units
   expected: readonly string[]
+  /** What it takes to keep it: units, their places, serials expected. */
+  size: number
 }
 
 type Row = Judged & {
@@ -34,8 +36,8 @@ const columns = `id, kind, follows, pass, verdict, unit_id AS unitId, unit, chan
   recorded_at AS recordedAt`
 /** Units whose records are read at once. */
 const block = 500
-/** Units kept in all boards together; the boards used least recently go first. */
-const keptUnits = 200_000
+/** Units and places of them kept in all boards together; the boards used least recently go first. */
+const keptMost = 400_000
 
 /**
  * Boards of lots, kept between requests. A lot that has grown is read again only where it grew; the number of its records
@@ -44,9 +46,14 @@ const keptUnits = 200_000
 export class LotBoards {
   readonly #boards = new Map<number, Board>()
   readonly #reading = new Map<number, Promise<Board>>()
+  readonly #most: number
+
+  constructor(most = keptMost) {
+    this.#most = most
+  }
 
   /** Whether nothing has to be read. */
-  isFresh(lot: LotHead): boolean {
+  isFresh(lot: ListedLot): boolean {
     const board = this.#boards.get(lot.id)
     return board !== undefined && isOf(board, lot)
   }
@@ -55,7 +62,7 @@ export class LotBoards {
    * A board with all that the head counts, or more that came since. Two who ask at once share one reading: a big lot is read
    * once, however often somebody asks meanwhile.
    */
-  async read(sql: Sql, lot: LotHead): Promise<Board> {
+  async read(sql: Sql, lot: ListedLot): Promise<Board> {
     const shared = await this.#reading.get(lot.id)?.catch(() => undefined)
     if (shared && shared.records >= lot.records && shared.expected.length >= lot.expected) return shared
     const kept = this.#boards.get(lot.id)
@@ -74,21 +81,21 @@ export class LotBoards {
   #keep(id: number, board: Board): void {
     this.#boards.delete(id)
     this.#boards.set(id, board)
-    let units = 0
-    for (const kept of this.#boards.values()) units += kept.units.size
+    let size = 0
+    for (const kept of this.#boards.values()) size += kept.size
     for (const [oldest, kept] of this.#boards) {
-      if (units <= keptUnits || oldest === id) break
+      if (size <= this.#most || oldest === id) break
       this.#boards.delete(oldest)
-      units -= kept.units.size
+      size -= kept.size
     }
   }
 }
 
-const isOf = (board: Board, lot: LotHead) =>
+const isOf = (board: Board, lot: ListedLot) =>
   board.records === lot.records && board.newest === lot.newest && board.expected.length === lot.expected
 
 /** Reads a lot afresh, or on from an older board of it. Never changes the older one: somebody may be counting it. */
-export async function readBoard(sql: Sql, lot: LotHead, before?: Board): Promise<Board> {
+export async function readBoard(sql: Sql, lot: ListedLot, before?: Board): Promise<Board> {
   const expected =
     before?.expected.length === lot.expected ? before.expected : await readExpected(sql, lot.id)
   if (before) {
@@ -102,19 +109,21 @@ export async function readBoard(sql: Sql, lot: LotHead, before?: Board): Promise
 
 type Units = Map<number, BoardUnit>
 
-function boardOf(units: Units, { newest }: LotHead, expected: readonly string[]): Board {
+function boardOf(units: Units, { newest }: ListedLot, expected: readonly string[]): Board {
   let records = 0
+  let size = units.size + expected.length
   let firstAt: number | null = null
   let lastAt: number | null = null
   for (const unit of units.values()) {
     records += unit.records
+    size += unit.places.size
     firstAt = Math.min(firstAt ?? unit.firstAt, unit.firstAt)
     lastAt = Math.max(lastAt ?? unit.lastAt, unit.lastAt)
   }
-  return { records, newest, firstAt, lastAt, units, expected }
+  return { records, newest, firstAt, lastAt, units, expected, size }
 }
 
-async function readUnits(sql: Sql, lot: LotHead, units: Units, since: number): Promise<Units> {
+async function readUnits(sql: Sql, lot: ListedLot, units: Units, since: number): Promise<Units> {
   const ids = await changedUnits(sql, lot, since)
   for (let at = 0; at < ids.length; at += block) {
     const rows = await sql.rows<Row>(
@@ -128,7 +137,7 @@ async function readUnits(sql: Sql, lot: LotHead, units: Units, since: number): P
 }
 
 /** Units with records after a leaf, in the order in which units came to be. */
-export async function changedUnits(sql: Sql, lot: LotHead, since: number): Promise<number[]> {
+export async function changedUnits(sql: Sql, lot: ListedLot, since: number): Promise<number[]> {
   const rows = await sql.rows<{ unitId: number }>(
     `SELECT DISTINCT unit_id AS unitId FROM records WHERE design = ? AND lot = ? AND leaf_id > ? ORDER BY unit_id`,
     [lot.design, lot.key, since],

@@ -7,7 +7,7 @@ import type { Sql, SqlParameter } from '../../db/sql.ts'
 import { sha256 } from '../../ledger/crypto.ts'
 import type { Board, LotBoards } from './board.ts'
 import { countLot, type LotStandings } from './count-lot.ts'
-import { findLots, type LotHead, readReferences } from './find-lot.ts'
+import { findLots, type ListedLot, type LotHead, readReferences } from './find-lot.ts'
 
 type Query = z.output<NonNullable<typeof listLots.query>> & { only: readonly string[] | null }
 
@@ -53,8 +53,8 @@ const isoOf = (time: Date | number | null | undefined): string | null =>
 
 type Counted = { board: Board; counts: LotCounts }
 
-function lotLine(head: LotHead, counted: Counted | null): Lot {
-  const { signOff } = head
+function lotLine(head: ListedLot, counted: Counted | null): Lot {
+  const { signedOffAt, signedOffBy: by, signOffNote: note } = head
   return {
     key: head.key,
     design: head.design,
@@ -64,10 +64,7 @@ function lotLine(head: LotHead, counted: Counted | null): Lot {
     openedBy: head.openedBy,
     closedAt: isoOf(head.closedAt),
     closedBy: head.closedBy,
-    signedOff:
-      signOff === null || head.signedOffAt === null
-        ? null
-        : { by: signOff.signedBy, at: head.signedOffAt.toISOString(), note: signOff.note },
+    signedOff: signedOffAt === null || by === null ? null : { by, at: signedOffAt.toISOString(), note },
     records: head.records,
     expected: head.expected === 0 ? null : head.expected,
     firstAt: isoOf(counted?.board.firstAt),
