@@ -64,17 +64,27 @@ function present<T extends object>(values: T): { [K in keyof T]?: Exclude<T[K], 
 export function completedBody(line: Json, flags: Partial<RequestBody>): RequestBody {
   if (typeof line !== 'object' || line === null || Array.isArray(line))
     throw new OgeeError('invalid-request', 'The line is not a JSON object.')
-  const said = line as { readonly [name: string]: Json | undefined }
+  const said = line as Members
+  const { conditions: flagged = {}, ...others } = flags
+  agree(others, said, '')
+  const own = said.conditions ?? {}
+  // What is no object here is for the schema to refuse.
+  if (typeof own !== 'object' || Array.isArray(own)) return checked({ ...flags, ...said })
+  agree(flagged, own as Members, '/conditions')
+  const conditions = { ...flagged, ...(own as Members) }
+  return checked({ ...flags, ...said, ...(Object.keys(conditions).length > 0 ? { conditions } : {}) })
+}
+
+type Members = { readonly [name: string]: Json | undefined }
+
+/** @throws invalid-request for the first member that flags and line say differently */
+function agree(flags: object, said: Members, at: string): void {
   for (const [name, flag] of Object.entries(flags)) {
     const own = said[name]
-    if (own === undefined || name === 'conditions') continue
-    if (canonicalText(own) !== canonicalText(flag as Json)) {
-      const message = `The flags say ${JSON.stringify(flag)} and the line ${JSON.stringify(own)}. Leave one of them out.`
-      throw new OgeeError('invalid-request', message, { errors: [{ path: `/${name}`, message }] })
-    }
+    if (own === undefined || canonicalText(own) === canonicalText(flag as Json)) continue
+    const message = `The flags say ${JSON.stringify(flag)} and the line ${JSON.stringify(own)}. Leave one of them out.`
+    throw new OgeeError('invalid-request', message, { errors: [{ path: `${at}/${name}`, message }] })
   }
-  const conditions = { ...flags.conditions, ...(said.conditions as object | undefined) }
-  return checked({ ...flags, ...said, ...(Object.keys(conditions).length > 0 ? { conditions } : {}) })
 }
 
 /** What flags say of every measurement, as parts of a request. */

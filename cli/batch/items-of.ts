@@ -36,18 +36,27 @@ export async function* itemsOf(
   }
 }
 
+/** Characters without any text, after which the input is taken for a CSV, whose reader says what is missing. */
+const startMax = 1024 * 1024
+
 /** No header row of a points CSV starts with a brace, and every line of NDJSON does. */
 async function recognised(
   pieces: AsyncGenerator<string>,
   asked: Input | undefined,
 ): Promise<{ kind: Input; pieces: AsyncIterable<string> }> {
   let start = ''
-  while (start.trim() === '') {
+  while (start.trim() === '' && start.length < startMax) {
     const { value, done } = await pieces.next()
     if (done) throw new OgeeError('csv-empty', 'The input is empty. It needs measurements.')
     start += value
   }
   const found = /^\ufeff?\s*\{/.test(start) ? 'ndjson' : 'csv'
+  if (asked !== 'csv' && /^\ufeff?\s*\[/.test(start)) {
+    throw new OgeeError(
+      'malformed-json',
+      'The input begins with [, as a JSON array does. Write one object a line instead (NDJSON).',
+    )
+  }
   return { kind: asked ?? found, pieces: continued(start, pieces) }
 }
 

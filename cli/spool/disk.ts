@@ -1,3 +1,4 @@
+import { randomBytes } from 'node:crypto'
 import fs from 'node:fs'
 import { dirname, join } from 'node:path'
 import { OgeeError } from '../../shared/errors.ts'
@@ -25,16 +26,17 @@ const words: Readonly<Record<string, string>> = {
   ENOTDIR: 'a part of the path is no folder',
 }
 
-let made = 0
-
 /**
  * Writes a file so that it survives a kill and a power cut: its bytes first, its name after them, the folder last. Of many
  * files the folder can be made durable once, after them all: then `isLast` is false for each, and `syncFolder` follows.
  */
 export function putDown(path: string, text: string, beside: string, isLast = true): void {
-  const temporary = join(beside, `${process.pid}-${++made}.part`)
+  // Processes of two containers that share the folder may have the same number.
+  const temporary = join(beside, `${process.pid}-${randomBytes(8).toString('hex')}.part`)
+  let made = false
   try {
     const file = fs.openSync(temporary, 'wx', 0o600)
+    made = true
     try {
       fs.writeFileSync(file, text)
       fs.fsyncSync(file)
@@ -44,7 +46,7 @@ export function putDown(path: string, text: string, beside: string, isLast = tru
     fs.renameSync(temporary, path)
     if (isLast) syncFolder(dirname(path))
   } catch (error) {
-    fs.rmSync(temporary, { force: true })
+    if (made) fs.rmSync(temporary, { force: true })
     throw diskTrouble(path, error)
   }
 }
@@ -82,7 +84,7 @@ export function makeFolder(path: string): void {
 /** Parts that a killed process left; those of living ones are theirs. */
 export function clearParts(folder: string): void {
   for (const name of fs.readdirSync(folder)) {
-    const pid = Number(/^(\d+)-\d+\.part$/.exec(name)?.[1])
+    const pid = Number(/^(\d+)-[0-9a-f]+\.part$/.exec(name)?.[1])
     if (Number.isInteger(pid) && !isAlive(pid)) fs.rmSync(join(folder, name), { force: true })
   }
 }

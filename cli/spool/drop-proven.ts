@@ -5,6 +5,7 @@ import { checkIncluded } from '../../shared/ledger/check-receipt.ts'
 import type { LedgerKey } from '../../shared/ledger/checkpoint.ts'
 import { crypto } from '../ledger/crypto.ts'
 import { keyOf } from '../ledger/read-files.ts'
+import type { Entry } from './entry.ts'
 import type { Spool } from './folder.ts'
 import { pinKey, pinnedKey } from './pinned-key.ts'
 import { isOutage, type SpoolClient } from './spool-client.ts'
@@ -12,7 +13,8 @@ import { isOutage, type SpoolClient } from './spool-client.ts'
 /** Proofs asked for at a time. */
 const lanes = 4
 
-export type Fault = { name: string; record: string; message: string }
+/** `record` is null where its file cannot be read. */
+export type Fault = { name: string; record: string | null; message: string }
 /** `waiting`: sent, promised, and not yet in a checkpoint; `stopped`: why the rest was not looked at. */
 export type Proving = { dropped: number; waiting: number; faults: Fault[]; stopped: OgeeError | null }
 
@@ -53,10 +55,11 @@ async function lookAt(
   name: string,
   key: LedgerKey,
 ): Promise<'proven' | 'waiting' | 'gone' | Fault> {
-  const entry = spool.read('sent', name)
+  const entry = readSent(spool, name)
   if (entry === null) return 'gone'
+  if ('message' in entry) return entry
   const { receipt } = entry
-  if (!receipt) return { name, record: entry.sent?.id ?? '', message: 'It was sent and has no receipt.' }
+  if (!receipt) return { name, record: entry.sent?.id ?? null, message: 'It was sent and has no receipt.' }
   try {
     const proof = await client.call(getProof, { params: { recordId: receipt.record } })
     const checked = checkIncluded(crypto, receipt, proof, key)
@@ -72,6 +75,16 @@ async function lookAt(
     // By the clock that made the promise; this computer's own may say anything.
     const { server } = await client.call(getMe, {})
     return Date.parse(server.serverTime) > Date.parse(receipt.includedBy) ? missing : 'waiting'
+  }
+}
+
+/** A spoiled file is told with what the others gave: they are looked at all the same. */
+function readSent(spool: Spool, name: string): Entry | Fault | null {
+  try {
+    return spool.read('sent', name)
+  } catch (error) {
+    if (!isOgeeError(error)) throw error
+    return { name, record: null, message: error.message }
   }
 }
 

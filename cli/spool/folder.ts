@@ -1,4 +1,4 @@
-import { createHash } from 'node:crypto'
+import { createHash, randomBytes } from 'node:crypto'
 import fs from 'node:fs'
 import { join } from 'node:path'
 import { OgeeError } from '../../shared/errors.ts'
@@ -32,7 +32,9 @@ type Found = { place: SpoolPlace; name: string }
 
 export class Spool {
   readonly dir: string
-  #next: number | null = null
+  #next = 0
+  /** In the middle of many that are put down together. */
+  #amongMany = false
   #written = 0
   #known = { atMs: Number.NEGATIVE_INFINITY, found: new Map<string, Found>() }
 
@@ -104,7 +106,9 @@ export class Spool {
    * many (`isLast` false) once `sync` has returned.
    */
   add(entry: Entry, what: string, isLast = true): string {
-    this.#next ??= this.#afterAll()
+    // Other processes write here too, for as long: what they put down meanwhile is older. Many are taken as one.
+    if (!this.#amongMany) this.#next = Math.max(this.#next, this.#afterAll())
+    this.#amongMany = !isLast
     const number = String(this.#next++).padStart(digits, '0')
     const own = `${process.pid.toString(36)}${(this.#written++).toString(36).padStart(4, '0')}`
     const hashes = [hashOf(entry.key), hashOf(what)]
@@ -129,6 +133,7 @@ export class Spool {
   }
 
   sync(place: SpoolPlace): void {
+    if (place === 'pending') this.#amongMany = false
     syncFolder(join(this.dir, place))
   }
 
@@ -173,21 +178,22 @@ export class Spool {
    */
   async alone<T>(work: () => Promise<T>): Promise<T | null> {
     const lock = join(this.dir, 'sending.lock')
-    if (!takeLock(lock)) return null
+    const mine = `${process.pid} ${randomBytes(8).toString('hex')}`
+    if (!takeLock(lock, mine)) return null
     try {
       return await work()
     } finally {
-      fs.rmSync(lock, { force: true })
+      giveBack(lock, mine)
     }
   }
 }
 
 const hashOf = (key: string) => createHash('sha256').update(key).digest('hex').slice(0, 16)
 
-function takeLock(lock: string): boolean {
+function takeLock(lock: string, mine: string): boolean {
   for (let look = 0; look < 3; look++) {
     try {
-      fs.writeFileSync(lock, String(process.pid), { flag: 'wx', mode: 0o600 })
+      fs.writeFileSync(lock, mine, { flag: 'wx', mode: 0o600 })
       return true
     } catch (error) {
       if ((error as Trouble).code !== 'EEXIST') throw diskTrouble(lock, error)
@@ -199,9 +205,18 @@ function takeLock(lock: string): boolean {
   return false
 }
 
+/** Only its own: in another container a process may have the same number, and has taken it meanwhile. */
+function giveBack(lock: string, mine: string): void {
+  try {
+    if (fs.readFileSync(lock, 'utf8') === mine) fs.rmSync(lock, { force: true })
+  } catch (error) {
+    if ((error as Trouble).code !== 'ENOENT') throw diskTrouble(lock, error)
+  }
+}
+
 function isHeld(lock: string): boolean {
   try {
-    const pid = Number(fs.readFileSync(lock, 'utf8'))
+    const pid = Number(fs.readFileSync(lock, 'utf8').split(' ')[0])
     // Written a moment ago by somebody who has not come to say who it is.
     if (!Number.isInteger(pid) || pid === 0) return Date.now() - fs.statSync(lock).mtimeMs < 1_000
     return pid !== process.pid && isAlive(pid)

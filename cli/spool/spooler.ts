@@ -107,6 +107,12 @@ export class Spooler {
 
   async #compute(body: RequestBody): Promise<Computed> {
     const { follows, ...rest } = body
+    // Which record is the last only the server knows: that is no fault of the unit.
+    if (body.effects === 'learned' && follows === 'last') {
+      const why =
+        'The server does not answer, and a pass whose effects are learned needs the record before it.'
+      throw new OgeeError('server-unreachable', why)
+    }
     // Codes do not depend on the record that is followed unless effects are learned from it.
     const dry = await dryRun(this.client.offline, body.effects === 'learned' ? body : rest)
     const { dryRun: _, ...record } = dry

@@ -1,4 +1,5 @@
 import Papa from 'papaparse'
+import { OgeeError } from '../errors.ts'
 import { type CsvRow, type Delimiter, delimiterOf, quotesSentence } from './split-csv.ts'
 
 /** A row, or a line that cannot be split into cells. */
@@ -47,7 +48,13 @@ export class CsvSplitter {
 
   /** The header is the first line with any text in it; it must be whole before it tells anything. */
   private delimiterOf(text: string, last: boolean): Delimiter | null {
-    return last || /\S[^\n]*\n/.test(text) ? delimiterOf(text) : null
+    const start = text.search(/\S/)
+    if (last || (start >= 0 && text.indexOf('\n', start) >= 0)) return delimiterOf(text)
+    if (text.length <= rowMax) return null
+    throw new OgeeError(
+      'csv-header',
+      'The first 256 KiB of the CSV hold no whole header row. It begins with one line that names the columns.',
+    )
   }
 
   /** Splits what is there; false when a broken line was taken out and the rest waits to be split. */

@@ -96,7 +96,8 @@ describe('what is sent', () => {
       { unit: 'D', points: examplePoints, extra: 1 },
       { unit: 'A', points: examplePoints, key: 'mine' },
     ]
-    const input = `${lines.map((line) => JSON.stringify(line)).join('\n')}\n\nnot json\n[]`
+    const other = { unit: 'E', points: examplePoints, conditions: { instrument: 'DMM-08' } }
+    const input = `${lines.map((line) => JSON.stringify(line)).join('\n')}\n\nnot json\n[]\n${JSON.stringify(other)}`
     const ran = await run(['--format', 'ndjson', '--instrument', 'DMM-07'], { input })
     expect(sent()).toEqual([
       { ...lines[0], design: 'DBS-A', conditions: { instrument: 'DMM-07' } },
@@ -118,7 +119,9 @@ describe('what is sent', () => {
       [5, 'A', 65, 'duplicate-unit'],
       [7, null, 65, 'malformed-json'],
       [8, null, 65, 'invalid-request'],
+      [9, 'E', 65, 'invalid-request'],
     ])
+    expect(linesIn(ran).at(-1)).toMatchObject({ problem: { errors: [{ path: '/conditions/instrument' }] } })
   })
 
   test('the lot alone says which design; a file may be named', async () => {
@@ -286,6 +289,11 @@ describe('bad input', () => {
     expect(problemOf(noUnit).detail).toContain('Column unit is missing')
     const nothing = await run([], { input: '' })
     expect(problemOf(nothing)).toMatchObject({ code: 'csv-empty', exit: 65 })
+    const array = await run([], { input: `  [{"unit":"A"},\n{"unit":"B"}]\n` })
+    expect(problemOf(array)).toMatchObject({ code: 'malformed-json', exit: 65 })
+    expect(problemOf(array).detail).toContain('one object a line')
+    const spaces = await run([], { input: ' '.repeat(3 * 1024 * 1024) })
+    expect(problemOf(spaces)).toMatchObject({ code: 'csv-header', exit: 65 })
     const latin = Buffer.concat([Buffer.from(csvOf('A')), Buffer.from([0xe4, 0x0a])])
     const ran = await run(['--format', 'ndjson'], { input: latin })
     expect(problemOf(ran)).toMatchObject({ code: 'invalid-document', exit: 65 })

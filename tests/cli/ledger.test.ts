@@ -202,6 +202,12 @@ describe('ledger export', () => {
       records: 5,
       revisions: 1,
     })
+    // Without a key that was kept, it says whose word it takes.
+    const unkept = await run(['check', 'out'])
+    expect({ code: unkept.code, stderr: unkept.stderr }).toEqual({
+      code: 0,
+      stderr: expect.stringContaining('out/ogee.pub is taken at its word'),
+    })
     // The commands of its own README work as they stand.
     const lines = readFileSync(join(out, 'README.txt'), 'utf8')
       .split('\n')
@@ -212,6 +218,14 @@ describe('ledger export', () => {
       const shell = spawn('bash', ['-c', command], { cwd: out, env: { PATH: process.env.PATH } })
       expect((await ended(shell)).code, command).toBe(0)
     }
+  })
+
+  test('compares no kept checkpoint and leaves out no receipts: 64 with the way to do it', async () => {
+    const against = await offline(join(folder, 'out'), '--against', '../all.txt')
+    expect({ code: against.code, stdout: against.stdout }).toEqual({ code: 64, stdout: '' })
+    expect(against.stderr).toContain('ogee ledger consistency ../all.txt checkpoints.txt')
+    expect((await run(['consistency', 'all.txt', 'out/checkpoints.txt'])).code).toBe(0)
+    expect((await offline(join(folder, 'out'), '--no-receipts')).code).toBe(64)
   })
 
   test('takes the filters of history', async () => {

@@ -30,7 +30,7 @@ function watched(): string[] {
   const short = (path: unknown) =>
     String(path)
       .replace(dir, '')
-      .replace(/\d+-\d+\.part/, 'part')
+      .replace(/\d+-[0-9a-f]+\.part/, 'part')
       .replace(/[0-9a-z-]+\.json/, 'entry')
   const real = { ...fs }
   vi.spyOn(fs, 'openSync').mockImplementation((path, ...more) => {
@@ -88,6 +88,65 @@ describe('durable first, said afterwards', () => {
       'sync /sent',
       'unlink /pending/entry',
     ])
+  })
+})
+
+describe('a folder that several processes write to for long', () => {
+  test('keeps the order of writing, one by one and many at a time', () => {
+    const [one, other] = [Spool.open(dir), Spool.open(dir)]
+    const put = (spool: Spool, unit: string, isLast = true) => spool.add(entryOf(unit), unit, isLast)
+    const units = ['1', '2', '3', '4', '5', '6', '7', '8']
+    put(one, '1')
+    put(other, '2')
+    put(other, '3')
+    put(one, '4')
+    for (const unit of ['5', '6']) put(other, unit, false)
+    other.sync('pending')
+    for (const unit of ['7', '8']) put(one, unit, false)
+    one.sync('pending')
+    const written = one
+      .names('pending')
+      .map((name) => JSON.parse(fs.readFileSync(one.path('pending', name), 'utf8')).body.unit)
+    expect(written).toEqual(units)
+  })
+
+  test('a part that somebody else has made is not taken away', () => {
+    const path = join(dir, 'kept.txt')
+    const real = fs.openSync
+    let theirs = ''
+    const failing = vi.spyOn(fs, 'openSync').mockImplementationOnce((part) => {
+      theirs = String(part)
+      fs.closeSync(real(part, 'wx'))
+      throw Object.assign(new Error('EEXIST'), { code: 'EEXIST' })
+    })
+    expect(() => putDown(path, 'new', dir)).toThrow('kept.txt cannot be created')
+    failing.mockRestore()
+    expect([fs.existsSync(theirs), fs.existsSync(path)]).toEqual([true, false])
+  })
+
+  test('no two parts have one name, whatever the number of the process', async () => {
+    const parts: string[] = []
+    const real = fs.openSync
+    const seen = vi.spyOn(fs, 'openSync').mockImplementation((path, ...more) => {
+      if (String(path).endsWith('.part')) parts.push(String(path))
+      return real(path, ...more)
+    })
+    for (let process = 0; process < 2; process++) {
+      vi.resetModules()
+      const { putDown: put } = await import('../../cli/spool/disk.ts')
+      put(join(dir, `${process}.txt`), 'text', dir)
+    }
+    seen.mockRestore()
+    expect(new Set(parts).size).toBe(2)
+  })
+
+  test('a sender gives back its own lock only', async () => {
+    const spool = Spool.open(dir)
+    const lock = join(dir, 'sending.lock')
+    await spool.alone(async () => expect(fs.existsSync(lock)).toBe(true))
+    expect(fs.existsSync(lock)).toBe(false)
+    await spool.alone(async () => fs.writeFileSync(lock, `${process.pid} another`))
+    expect(fs.existsSync(lock)).toBe(true)
   })
 })
 

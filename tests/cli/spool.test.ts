@@ -19,6 +19,7 @@ const cli = builtCli()
 let harness: Harness
 let proxy: TcpProxy
 let token = ''
+let stationId = ''
 let fate: Fate = 'pass'
 let spool = ''
 let count = 0
@@ -28,6 +29,7 @@ beforeAll(async () => {
   await addDesign(harness, 'U18')
   await addDesign(harness, 'TWO', unipolar({ channels: ['a', 'b'] }))
   const station = await addStation(harness, 'Line 1')
+  stationId = station.id
   token = (await addToken(harness, ['trims:write', 'trims:read', 'designs:read'], station.id)).token
   proxy = await startProxy(harness.port, seededRandom(1), () => fate)
 })
@@ -173,6 +175,27 @@ describe('a trim with --spool', () => {
     expect(names('pending')).toEqual([])
   })
 
+  test('what only the record before can tell is no fault of the unit: 69, in a batch not refused', async () => {
+    await trim('S-13')
+    fate = 'reset'
+    const learned = ['--effects', 'learned', '--follows', 'last']
+    const ran = await trim('S-13', -203, learned)
+    expect(problemOf(ran)).toMatchObject({ code: 'server-unreachable', exit: 69 })
+    const line = (unit: string, more: object) =>
+      JSON.stringify({ unit, applied: 'neutral', points: pointsOf({ gainPpm: -150 }), ...more })
+    const input = `${line('S-14', {})}\n${line('S-13', { effects: 'learned', follows: 'last' })}\n`
+    const batch = await run(['batch', '-', '--design', 'U18', '--spool', spool, '--format', 'json'], {
+      input,
+    })
+    expect(problemOf(batch)).toMatchObject({
+      code: 'answer-cut',
+      exit: 75,
+      facts: { done: 1, notDone: 1, firstNotDone: 2 },
+    })
+    expect(JSON.parse(batch.stdout).lines).toHaveLength(1)
+    expect(names('pending')).toHaveLength(1)
+  })
+
   test('a kept revision that was tampered with is not computed with', async () => {
     await trim('S-10')
     const folder = join(cli.folder, 'cache/ogee', `127.0.0.1_${proxy.port}`)
@@ -238,6 +261,31 @@ describe('spool send', () => {
     expect(ran.stderr).toContain('Signed with another key than the one kept here.')
     expect(await recordsOf('T-4')).toHaveLength(1)
     expect([names('pending'), names('sent')].map((all) => all.length)).toEqual([0, 1])
+  })
+
+  test('that nothing can be proven is said, with 77 where the token may not; a spoiled file is named', async () => {
+    fate = 'reset'
+    await trim('T-13')
+    fate = 'pass'
+    const mayOnlyWrite = (await addToken(harness, ['trims:write'], stationId)).token
+    const ran = await run(['spool', 'send', spool], { env: { OGEE_TOKEN: mayOnlyWrite } })
+    expect({ code: ran.code, told: JSON.parse(ran.stdout) }).toMatchObject({
+      code: 77,
+      told: { sent: [{ unit: 'T-13', exit: 0 }], stopped: { code: 'insufficient-scope' }, left: { sent: 1 } },
+    })
+    expect(ran.stderr).toContain('could not be proven')
+    const [name = ''] = names('sent')
+    const spoiled = name.replace(/^\d{4}/, '0001')
+    fs.writeFileSync(join(spool, 'sent', spoiled), '{"half')
+    const again = await send()
+    expect(again.code).toBe(16)
+    expect(JSON.parse(again.stdout)).toMatchObject({
+      dropped: 1,
+      stopped: null,
+      faults: [{ name: spoiled, record: null }],
+      left: { sent: 1 },
+    })
+    expect(again.stderr).toContain(`sent/${spoiled}`)
   })
 
   test('what the server refuses stands in refused/ with its problem, and holds nothing else up', async () => {

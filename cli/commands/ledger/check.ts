@@ -1,5 +1,6 @@
 import { join } from 'node:path'
 import { proofFailsExit } from '../../../shared/contract/exit.ts'
+import { OgeeError } from '../../../shared/errors.ts'
 import { checkLedger, type LedgerReport } from '../../../shared/ledger/check/check-ledger.ts'
 import type { LedgerFault } from '../../../shared/ledger/check/faults.ts'
 import { serverSource } from '../../../shared/ledger/check/server-source.ts'
@@ -29,7 +30,7 @@ export const ledgerCheckCommand: Command<Options> = {
     'Reads everything and computes it again: leaves, tree, checkpoints, records, receipts, revisions. Ends with 16 and\n' +
     'names the first entry that disagrees. Give the key and a checkpoint that were kept elsewhere: what was rewritten\n' +
     'together with its checkpoints contradicts only those. Needs the scope ledger:read.\n\n' +
-    'With a folder, checks what `ogee ledger export` wrote into it, without any server.\n\n' +
+    'With a folder, checks what `ogee ledger export` wrote into it, without any server; --against needs the server.\n\n' +
     serverAbout,
   arguments: [{ name: '[folder]', says: 'exported folder to check in place of the server' }],
   options: [
@@ -60,7 +61,7 @@ export const ledgerCheckCommand: Command<Options> = {
 }
 
 async function check(options: Options, context: Context): Promise<number> {
-  if (options.folder !== undefined) return await checkExported(options.folder, options.key, context)
+  if (options.folder !== undefined) return await checkExported(options.folder, options, context)
   const client = await connect(options, context)
   const key = await keyFor(options.key, client)
   const kept = (await Promise.all(options.against.map((path) => readKept(context.io, path)))).flat()
@@ -76,8 +77,19 @@ async function check(options: Options, context: Context): Promise<number> {
   return report.ok ? 0 : proofFailsExit
 }
 
-async function checkExported(folder: string, key: string | undefined, context: Context): Promise<number> {
-  const report = await checkFolder(context.io, folder, await readKey(key ?? join(folder, names.key)))
+async function checkExported(
+  folder: string,
+  { key, ...options }: Options,
+  context: Context,
+): Promise<number> {
+  refuseForFolder(folder, options)
+  const own = join(folder, names.key)
+  if (key === undefined) {
+    context.io.say(
+      `ogee: ${own} is taken at its word, and came with what it vouches for. Give the key that you kept with --key.`,
+    )
+  }
+  const report = await checkFolder(context.io, folder, await readKey(key ?? own))
   const { ok, records, revisions, checkpoints, found, faults } = report
   const facts: [string, string][] = [
     ['Records', `${records}, under ${revisions} revisions`],
@@ -96,6 +108,20 @@ async function checkExported(folder: string, key: string | undefined, context: C
     context,
   )
   return ok ? 0 : proofFailsExit
+}
+
+/** A folder holds inclusion proofs and no whole tree: two checkpoints of different sizes cannot be compared with it. */
+function refuseForFolder(folder: string, { against, receipts }: Pick<Options, 'against' | 'receipts'>): void {
+  const [kept] = against
+  if (kept !== undefined) {
+    throw new OgeeError(
+      'usage',
+      `--against does not go with a folder, which holds no whole ledger. Compare with the server, the older one first: ogee ledger consistency ${kept} ${join(folder, names.checkpoints)}`,
+    )
+  }
+  if (!receipts) {
+    throw new OgeeError('usage', '--no-receipts does not go with a folder, which holds none. Leave it out.')
+  }
 }
 
 /** A line a second, on a terminal only. */

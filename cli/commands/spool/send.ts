@@ -45,7 +45,13 @@ async function send(options: Options, context: Context): Promise<number> {
   )
   const proving = await prove(spool, client)
   await print(rendering(spool, lines, proving), context)
-  for (const { record, message } of proving.faults) io.say(`ogee: record ${record}: ${message}`)
+  for (const { name, record, message } of proving.faults) {
+    io.say(`ogee: ${record === null ? `sent/${name}` : `record ${record}`}: ${message}`)
+  }
+  if (proving.stopped) {
+    const kept = spool.names('sent').length
+    io.say(`ogee: ${kept} in ${spool.dir}/sent could not be proven: ${proving.stopped.message}`)
+  }
   return exitOf(spool, sending, proving)
 }
 
@@ -88,6 +94,7 @@ function exitOf(spool: Spool, sending: Sending, proving: Proving): number {
     })
   }
   if (proving.faults.length > 0) return proofFailsExit
+  if (proving.stopped?.exit === 77) return 77
   return sending.notGood > 0 ? someUnitsExit : 0
 }
 
@@ -107,14 +114,15 @@ function rendering(spool: Spool, lines: readonly SentLine[], proving: Proving): 
     problem?.detail,
   ])
   const { dropped, waiting, faults } = proving
-  const stopped = proving.stopped ? ` Not all could be proven: ${proving.stopped.message}` : ''
+  const stopped = proving.stopped ? { code: proving.stopped.code, detail: proving.stopped.message } : null
+  const unproven = stopped ? ` Not all could be proven: ${stopped.detail}` : ''
   return {
-    json: { format: 'ogee.spool-send/1', sent: flat, dropped, waiting, faults, left },
+    json: { format: 'ogee.spool-send/1', sent: flat, dropped, waiting, faults, stopped, left },
     lines: flat,
     table: () => {
       const heads = ['file', 'unit', 'exit', 'record', 'verdict', 'why not'].map((head) => ({ head }))
       const counts = `${lines.length} sent, ${dropped} proven to be in the ledger, ${left.sent} kept until they are.`
-      return `${lines.length === 0 ? '' : textTable(heads, cells)}${counts}${stopped}\n`
+      return `${lines.length === 0 ? '' : textTable(heads, cells)}${counts}${unproven}\n`
     },
     csv: { heads: ['file', 'unit', 'exit', 'record', 'verdict', 'message'], rows: cells },
   }

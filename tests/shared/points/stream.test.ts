@@ -72,6 +72,26 @@ describe('a CSV in pieces', () => {
   })
 })
 
+describe('a CSV without a header row', () => {
+  test.each([
+    ['no line end', 'x'],
+    ['nothing but spaces', ' '],
+    ['nothing but empty lines', '\n'],
+  ])('%s: told after 256 KiB, not read to its end', (_, one) => {
+    let pushed = 0
+    const splitter = new CsvSplitter()
+    const pushAll = () => {
+      for (; pushed < 1_000; pushed += 1) splitter.push(one.repeat(65_536))
+    }
+    expect(pushAll).toThrow(/first 256 KiB .* no whole header row/)
+    expect(pushed).toBeLessThan(10)
+  })
+
+  test('a header without a line end is the last row', () => {
+    expect(inPieces('code,measured', () => 4).rows).toEqual([{ line: 1, cells: ['code', 'measured'] }])
+  })
+})
+
 describe('a row that cannot be split', () => {
   const rows = (text: string) => {
     const { rows } = inPieces(text, () => 1_000)
