@@ -66,6 +66,8 @@ describe(`R1 with seed ${seed}`, () => {
     const root = await rig.asRoot()
     expect(await disagreements(root, acknowledged)).toEqual([])
     await root.end()
+    if (process.env.OGEE_TIMES === '1')
+      process.stdout.write(`R1: ${kills} kills, ${acknowledged.length} acknowledgements\n`)
     expect(acknowledged.length).toBeGreaterThan(kills)
   })
 
