@@ -5,7 +5,7 @@ import { listTrims } from '../shared/contract/trims.ts'
 import { limits } from '../shared/limits.ts'
 import type { Client } from './client.ts'
 import type { Given, OptionSpec } from './command.ts'
-import { oneOf, text, wholeNumber } from './server-options.ts'
+import { oneOf, text, wholeNumber } from './option-values.ts'
 
 /** The filters of History, for every command that takes them. */
 

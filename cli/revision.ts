@@ -1,7 +1,7 @@
 import { getRevision, type Revision } from '../shared/contract/designs.ts'
 import { OgeeError } from '../shared/errors.ts'
 import type { Client } from './client.ts'
-import { wholeNumber } from './server-options.ts'
+import { wholeNumber } from './option-values.ts'
 
 export const readRevision = (word: string, flag = '--revision'): number | 'released' =>
   word === 'released' ? word : wholeNumber(flag, word, 1, 1_000_000)

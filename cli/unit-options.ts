@@ -3,8 +3,8 @@ import { limits } from '../shared/limits.ts'
 import { type Applied, readApplied } from './applied.ts'
 import type { Given, OptionSpec } from './command.ts'
 import { appliedOption, effectsOption, rangeOption } from './measurement-options.ts'
+import { text } from './option-values.ts'
 import { readRevision } from './revision.ts'
-import { text } from './server-options.ts'
 
 /** The unit flags: which unit, channel and range, under which design, and how it was measured. */
 export type UnitOptions = {

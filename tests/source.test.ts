@@ -81,6 +81,21 @@ describe('dependency direction', () => {
     expect(wrong).toEqual([])
   })
 
+  test('commands that work offline load no client, whose schemas would slow their start (P3)', () => {
+    const loads = (file: string) =>
+      [...text(file).matchAll(/^import (?!type )[^'()]*'(\.[^']+)'/gm)].map(([, to = '']) =>
+        normalize(join(dirname(file), to)),
+      )
+    const reached = new Set(
+      ['codes', 'fit', 'verify', 'size', 'network', 'yield', 'simulate'].map(
+        (name) => `cli/commands/${name}.ts`,
+      ),
+    )
+    for (const file of reached) for (const target of loads(file)) reached.add(target)
+    expect(reached).toContain('shared/solver/codes.ts')
+    expect(reached).not.toContain('cli/client.ts')
+  })
+
   test('there is no cycle', () => {
     const state = new Map<string, 'open' | 'done'>()
     const cycles: string[] = []

@@ -10,19 +10,12 @@ import { summaryText, Tally } from '../batch/summary.ts'
 import { type Command, type Context, everyFormat, type Given } from '../command.ts'
 import type { ConnectionOptions } from '../config.ts'
 import { designOfLot } from '../design-of-lot.ts'
+import { oneOf, text, wholeNumber } from '../option-values.ts'
 import { sayCaution } from '../output.ts'
 import { celsius } from '../quantities.ts'
 import { spoolerOf } from '../record-one.ts'
 import { rememberingClient } from '../remembering-client.ts'
-import {
-  connect,
-  oneOf,
-  readConnection,
-  serverAbout,
-  serverOptions,
-  text,
-  wholeNumber,
-} from '../server-options.ts'
+import { connect, readConnection, serverAbout, serverOptions } from '../server-options.ts'
 import { readUnitOptions, type UnitOptions, unitOptions } from '../unit-options.ts'
 
 type Options = UnitOptions &

@@ -14,8 +14,8 @@ import {
   pointsOption,
   rangeOption,
 } from '../measurement-options.ts'
+import { text } from '../option-values.ts'
 import { print, sayCaution } from '../output.ts'
-import { text } from '../server-options.ts'
 
 type Options = {
   design: string

@@ -1,6 +1,6 @@
 import type { Command, Context, Given } from '../command.ts'
 import { completionScript, type Shell, shells } from '../completion.ts'
-import { oneOf } from '../server-options.ts'
+import { oneOf } from '../option-values.ts'
 
 type Options = { shell: Shell }
 

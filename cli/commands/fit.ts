@@ -6,8 +6,8 @@ import { readDesign } from '../design-file.ts'
 import { fitRows } from '../fit-rows.ts'
 import { readMeasurement } from '../measurement.ts'
 import { designFileOption, pointsAbout, pointsOption, rangeOption } from '../measurement-options.ts'
+import { oneOf, text } from '../option-values.ts'
 import { print } from '../output.ts'
-import { oneOf, text } from '../server-options.ts'
 import { pairs } from '../table.ts'
 
 type Options = { design: string; points: string; range: string | undefined; method: Method | undefined }

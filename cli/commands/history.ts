@@ -5,8 +5,9 @@ import type { Client } from '../client.ts'
 import { type Command, type Context, everyFormat, type Given } from '../command.ts'
 import type { ConnectionOptions } from '../config.ts'
 import { filterOptions, type HistoryQuery, historyPages, readFilters } from '../history-filters.ts'
+import { text, wholeNumber } from '../option-values.ts'
 import { print, type Rendering, render } from '../output.ts'
-import { connect, readConnection, serverAbout, serverOptions, text, wholeNumber } from '../server-options.ts'
+import { connect, readConnection, serverAbout, serverOptions } from '../server-options.ts'
 import { textTable } from '../table.ts'
 
 type Options = ConnectionOptions & { query: HistoryQuery; limit: number }

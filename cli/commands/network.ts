@@ -10,9 +10,9 @@ import { loadArithmetic } from '../arithmetic.ts'
 import { type Command, type Context, everyFormat, type Given } from '../command.ts'
 import { readDesign } from '../design-file.ts'
 import { designFileOption, rangeOption } from '../measurement-options.ts'
+import { oneOf, text } from '../option-values.ts'
 import { print } from '../output.ts'
 import { decimals, prefixed, volts } from '../quantities.ts'
-import { oneOf, text } from '../server-options.ts'
 import { pairs, textTable } from '../table.ts'
 
 type Options = {

@@ -5,7 +5,7 @@ import { type SimulatedMeasurement, simulateUnit, unitsMost } from '../../shared
 import { type Applied, readApplied } from '../applied.ts'
 import type { Command, Context, Given } from '../command.ts'
 import { readDesign } from '../design-file.ts'
-import { text, wholeNumber } from '../server-options.ts'
+import { text, wholeNumber } from '../option-values.ts'
 import { readCodes } from '../simulated-codes.ts'
 
 type Options = {

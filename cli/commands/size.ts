@@ -7,9 +7,9 @@ import { type Command, type Context, everyFormat, type Given } from '../command.
 import { readDesign } from '../design-file.ts'
 import { readMeasuredUnits } from '../measured-units.ts'
 import { designFileOption, rangeOption } from '../measurement-options.ts'
+import { text } from '../option-values.ts'
 import { print } from '../output.ts'
 import { ascii, decimals, lsb, ppm, volts } from '../quantities.ts'
-import { text } from '../server-options.ts'
 import { pairs, textTable } from '../table.ts'
 
 type Options = { design: string; range: string | undefined; points: readonly string[] }

@@ -2,8 +2,9 @@ import type { Unit } from '../../shared/contract/units.ts'
 import { type AskedUnit, askUnit, type CurrentCodes, noCodesExit, unitDocument } from '../ask-unit.ts'
 import { type Command, type Context, everyFormat, type Given } from '../command.ts'
 import type { ConnectionOptions } from '../config.ts'
+import { text } from '../option-values.ts'
 import { print, type Rendering, sayCaution } from '../output.ts'
-import { connect, readConnection, serverAbout, serverOptions, text } from '../server-options.ts'
+import { connect, readConnection, serverAbout, serverOptions } from '../server-options.ts'
 import { textTable } from '../table.ts'
 
 type Options = ConnectionOptions & AskedUnit

@@ -4,8 +4,8 @@ import { type Command, type Context, everyFormat, type Given } from '../command.
 import { readDesign } from '../design-file.ts'
 import { readMeasurement } from '../measurement.ts'
 import { designFileOption, pointsAbout, pointsOption, rangeOption } from '../measurement-options.ts'
+import { text } from '../option-values.ts'
 import { print } from '../output.ts'
-import { text } from '../server-options.ts'
 import { verifyRendering } from '../verify-rendering.ts'
 
 type Options = { design: string; points: string; range: string | undefined }

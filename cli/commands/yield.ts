@@ -4,9 +4,9 @@ import type { PassYield, YieldResult } from '../../shared/solver/yield/types.ts'
 import { type Command, type Context, everyFormat, type Given } from '../command.ts'
 import { readDesign } from '../design-file.ts'
 import { designFileOption, rangeOption } from '../measurement-options.ts'
+import { oneOf, text, wholeNumber } from '../option-values.ts'
 import { print } from '../output.ts'
 import { decimals, lsb } from '../quantities.ts'
-import { oneOf, text, wholeNumber } from '../server-options.ts'
 import { pairs, textTable } from '../table.ts'
 
 type Options = {

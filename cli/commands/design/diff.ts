@@ -7,9 +7,10 @@ import { type Command, type Context, everyFormat, type Given } from '../../comma
 import type { ConnectionOptions } from '../../config.ts'
 import { designFrom, readDesign } from '../../design-file.ts'
 import { parseJson } from '../../files.ts'
+import { text } from '../../option-values.ts'
 import { print, type Rendering } from '../../output.ts'
 import { fetchRevision, readRevision } from '../../revision.ts'
-import { connect, readConnection, serverAbout, serverOptions, text } from '../../server-options.ts'
+import { connect, readConnection, serverAbout, serverOptions } from '../../server-options.ts'
 
 type Which = number | 'released'
 type Options = ConnectionOptions & { key: string; before: Which; after: Which | { document: string } }

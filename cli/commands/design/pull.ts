@@ -1,8 +1,9 @@
 import type { Command, Context, Given } from '../../command.ts'
 import type { ConnectionOptions } from '../../config.ts'
 import { createFile } from '../../files.ts'
+import { text } from '../../option-values.ts'
 import { fetchRevision, readRevision } from '../../revision.ts'
-import { connect, readConnection, serverAbout, serverOptions, text } from '../../server-options.ts'
+import { connect, readConnection, serverAbout, serverOptions } from '../../server-options.ts'
 
 type Options = ConnectionOptions & { key: string; revision: number | 'released'; output: string | undefined }
 

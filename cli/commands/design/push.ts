@@ -11,9 +11,10 @@ import type { Client } from '../../client.ts'
 import { type Command, type Context, everyFormat, type Given } from '../../command.ts'
 import type { ConnectionOptions } from '../../config.ts'
 import { readDesignAsSent } from '../../design-file.ts'
+import { text } from '../../option-values.ts'
 import { print } from '../../output.ts'
 import { type Done, revisionRendering } from '../../revision-rendering.ts'
-import { connect, readConnection, serverAbout, serverOptions, text } from '../../server-options.ts'
+import { connect, readConnection, serverAbout, serverOptions } from '../../server-options.ts'
 
 type Options = ConnectionOptions & {
   key: string

@@ -4,16 +4,10 @@ import { isOgeeError, OgeeError } from '../../../shared/errors.ts'
 import type { Client } from '../../client.ts'
 import { type Command, type Context, everyFormat, type Given } from '../../command.ts'
 import type { ConnectionOptions } from '../../config.ts'
+import { text, wholeNumber } from '../../option-values.ts'
 import { print } from '../../output.ts'
 import { revisionRendering } from '../../revision-rendering.ts'
-import {
-  connect,
-  readConnection,
-  serverAbout,
-  serverOptions,
-  text,
-  wholeNumber,
-} from '../../server-options.ts'
+import { connect, readConnection, serverAbout, serverOptions } from '../../server-options.ts'
 
 type Options = ConnectionOptions & { key: string; revision: number | undefined }
 

@@ -14,8 +14,9 @@ import { readKept } from '../../ledger/kept-notes.ts'
 import { keyFor, keyOption } from '../../ledger/key-options.ts'
 import { readKey } from '../../ledger/read-files.ts'
 import { verifyAll } from '../../ledger/verify-all.ts'
+import { text } from '../../option-values.ts'
 import { print, type Rendering } from '../../output.ts'
-import { connect, readConnection, serverAbout, serverOptions, text } from '../../server-options.ts'
+import { connect, readConnection, serverAbout, serverOptions } from '../../server-options.ts'
 import { pairs } from '../../table.ts'
 
 type Options = ConnectionOptions & {

@@ -7,7 +7,8 @@ import type { ConnectionOptions } from '../../config.ts'
 import { createFile } from '../../files.ts'
 import { crypto } from '../../ledger/crypto.ts'
 import { keyFor, keyOption } from '../../ledger/key-options.ts'
-import { connectOpen, readConnection, serverAbout, serverOptions, text } from '../../server-options.ts'
+import { text } from '../../option-values.ts'
+import { connectOpen, readConnection, serverAbout, serverOptions } from '../../server-options.ts'
 
 type Options = ConnectionOptions & { key: string | undefined; output: string | undefined }
 

@@ -11,8 +11,9 @@ import type { ConnectionOptions } from '../../config.ts'
 import { crypto } from '../../ledger/crypto.ts'
 import { readKept } from '../../ledger/kept-notes.ts'
 import { keyFor, keyOption } from '../../ledger/key-options.ts'
+import { text } from '../../option-values.ts'
 import { print, type Rendering } from '../../output.ts'
-import { connectOpen, readConnection, serverAbout, serverOptions, text } from '../../server-options.ts'
+import { connectOpen, readConnection, serverAbout, serverOptions } from '../../server-options.ts'
 import { pairs } from '../../table.ts'
 
 type Options = ConnectionOptions & { older: string; newer: string | undefined; key: string | undefined }

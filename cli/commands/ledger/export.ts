@@ -14,9 +14,10 @@ import { filterOptions, type HistoryQuery, historyPages, readFilters } from '../
 import { crypto } from '../../ledger/crypto.ts'
 import { designName, lineFile, makeExportFolder, names, readme } from '../../ledger/export-folder.ts'
 import { keyFor, keyOption } from '../../ledger/key-options.ts'
+import { text } from '../../option-values.ts'
 import { print } from '../../output.ts'
 import { fetchRevision } from '../../revision.ts'
-import { connect, readConnection, serverAbout, serverOptions, text } from '../../server-options.ts'
+import { connect, readConnection, serverAbout, serverOptions } from '../../server-options.ts'
 import { pairs } from '../../table.ts'
 
 type Options = ConnectionOptions & { folder: string; query: HistoryQuery; key: string | undefined }

@@ -4,7 +4,8 @@ import type { Client } from '../../client.ts'
 import type { ArgumentSpec, Given, OptionSpec } from '../../command.ts'
 import type { ConnectionOptions } from '../../config.ts'
 import { designOfLot } from '../../design-of-lot.ts'
-import { readConnection, text } from '../../server-options.ts'
+import { text } from '../../option-values.ts'
+import { readConnection } from '../../server-options.ts'
 
 /** Which lot: its key, and the design where two have a lot of that name. */
 export type LotOptions = ConnectionOptions & { lot: string; design: string | undefined }

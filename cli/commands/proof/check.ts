@@ -3,8 +3,8 @@ import { type CheckedProof, checkProof } from '../../../shared/ledger/check-proo
 import type { Command, Context } from '../../command.ts'
 import { crypto } from '../../ledger/crypto.ts'
 import { readJson, readKey } from '../../ledger/read-files.ts'
+import { text } from '../../option-values.ts'
 import { print, type Rendering } from '../../output.ts'
-import { text } from '../../server-options.ts'
 import { pairs } from '../../table.ts'
 
 type Options = { file: string; key: string }

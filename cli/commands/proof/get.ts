@@ -4,7 +4,8 @@ import { OgeeError } from '../../../shared/errors.ts'
 import type { Command, Context, Given } from '../../command.ts'
 import type { ConnectionOptions } from '../../config.ts'
 import { createFile } from '../../files.ts'
-import { connect, readConnection, serverAbout, serverOptions, text } from '../../server-options.ts'
+import { text } from '../../option-values.ts'
+import { connect, readConnection, serverAbout, serverOptions } from '../../server-options.ts'
 
 type Options = ConnectionOptions & { record: string; output: string | undefined }
 

@@ -10,8 +10,9 @@ import type { ConnectionOptions } from '../../config.ts'
 import { crypto } from '../../ledger/crypto.ts'
 import { keyFor, keyOption } from '../../ledger/key-options.ts'
 import { type FoundReceipt, findReceipts } from '../../ledger/receipt-files.ts'
+import { text } from '../../option-values.ts'
 import { print, type Rendering } from '../../output.ts'
-import { connect, readConnection, serverAbout, serverOptions, text } from '../../server-options.ts'
+import { connect, readConnection, serverAbout, serverOptions } from '../../server-options.ts'
 import { textTable } from '../../table.ts'
 
 type Options = ConnectionOptions & { folder: string; key: string | undefined }
