@@ -54,14 +54,11 @@ export function takePoints(
   }
   const refused: Refusal[] = []
   const taken: Taken[] = []
-  let at = 0
-  const refuse: Refuse = (code, field, message) => {
-    refused.push({ code, path: `/points/${at}/${field}`, message })
-    return null
-  }
+  const place = { at: 0 }
+  const refuse = refusingInto(refused, place)
   let sorted = true
-  for (; at < points.length; at++) {
-    const point = takePoint(points[at]!, at, range, rules, refuse)
+  for (; place.at < points.length; place.at++) {
+    const point = takePoint(points[place.at]!, place.at, range, rules, refuse)
     if (point === null) continue
     const before = taken[taken.length - 1]
     if (before !== undefined && byCodeThenValue(before, point) > 0) sorted = false
@@ -76,6 +73,14 @@ export function takePoints(
   }
   if (!sorted) taken.sort(byCodeThenValue)
   return assemble(taken, range, rules)
+}
+
+/** Notes what is wrong with the point at `place`. */
+function refusingInto(refused: Refusal[], place: { readonly at: number }): Refuse {
+  return (code, field, message) => {
+    refused.push({ code, path: `/points/${place.at}/${field}`, message })
+    return null
+  }
 }
 
 function byCodeThenValue(a: Taken, b: Taken): number {
