@@ -1,5 +1,6 @@
 import { readFileSync } from 'node:fs'
 import { createRequire } from 'node:module'
+import { openTypeOf } from './woff.ts'
 
 /** The shipped typefaces, in parts by script: each text is set from the first part that has its characters. */
 const scripts = ['latin', 'latin-ext', 'greek', 'cyrillic'] as const
@@ -23,7 +24,7 @@ export function partsOf(face: Face): FontPart[] {
     const name = `fira-${family}-${script}-${weight}`
     const file =
       loaded.get(name) ??
-      readFileSync(require.resolve(`@fontsource/fira-${family}/files/${name}-normal.woff`))
+      openTypeOf(readFileSync(require.resolve(`@fontsource/fira-${family}/files/${name}-normal.woff`)))
     loaded.set(name, file)
     return { name, file }
   })
