@@ -8,7 +8,7 @@ import { createApp } from './app.ts'
 import { isSetupOpen } from './commands/create-first-administrator.ts'
 import { type Config, servedOverTls } from './config.ts'
 import { type Database, openDatabase } from './db/connection.ts'
-import { migrate, missingSteps } from './db/migrate.ts'
+import { isUpToDate, migrate, missingSteps } from './db/migrate.ts'
 import { loadDemo } from './demo/load-demo.ts'
 import { type Deps, defaultQuotas } from './http/deps.ts'
 import { createServer } from './http/http-server.ts'
@@ -23,9 +23,8 @@ export type RunningServer = { address: string; stop: () => Promise<void> }
 /** Starts everything in order and gives back how to stop it: accept no more, finish what is under way, close the pool. */
 export async function runServer(config: Config, say: (line: string) => void): Promise<RunningServer> {
   const logger = createLogger(config.log)
-  if (config.adminUrl !== null) await migrate(config.adminUrl, config.databaseUrl)
   const database = openDatabase(config.databaseUrl)
-  await requireSchema(database)
+  await bringUpToDate(database, config)
   const now = () => new Date()
   const opened = await openLedger(database, { ...config, now })
   const historyFault = await compareWithKept(database.sql, opened.signer, keptFileOf(config.dataDir))
@@ -98,7 +97,11 @@ function readTls({ cert, key }: { cert: string; key: string }): { cert: Buffer; 
   }
 }
 
-async function requireSchema(database: Database): Promise<void> {
+async function bringUpToDate(database: Database, { adminUrl, databaseUrl }: Config): Promise<void> {
+  if (adminUrl !== null) {
+    if (!(await isUpToDate(database, databaseUrl))) await migrate(adminUrl, databaseUrl)
+    return
+  }
   const missing = await missingSteps(database)
   if (missing.length === 0) return
   throw new OgeeError(

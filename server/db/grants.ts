@@ -2,7 +2,7 @@ import type { Sequelize } from 'sequelize'
 import { recordedNames as firstRecordedNames } from './migrations/001-recorded.ts'
 import { lotRecordedNames } from './migrations/003-lots.ts'
 import { findingRecordedNames } from './migrations/005-findings.ts'
-import { sqlOver } from './sql.ts'
+import { type Sql, sqlOver } from './sql.ts'
 
 /** Every table whose rows are written once, whichever step made it. */
 export const recordedNames: readonly string[] = [
@@ -29,12 +29,26 @@ const changeable: Readonly<Record<string, string>> = {
   migrations: 'SELECT',
 }
 
+const wanted: Readonly<Record<string, string>> = {
+  ...changeable,
+  ...Object.fromEntries(recordedNames.map((table) => [table, 'SELECT, INSERT'])),
+}
+
 /** Gives the application's account what it needs, table by table, and nothing on the schema as a whole. */
 export async function grantTo(admin: Sequelize, schema: string, account: string): Promise<void> {
-  const recorded = Object.fromEntries(recordedNames.map((table) => [table, 'SELECT, INSERT']))
-  for (const [table, privileges] of Object.entries({ ...changeable, ...recorded })) {
+  for (const [table, privileges] of Object.entries(wanted)) {
     await admin.query(`GRANT ${privileges} ON ${quoted(schema)}.${quoted(table)} TO ${account}`)
   }
+}
+
+/** Whether the account that asks was given all that `grantTo` gives. */
+export async function isGranted(sql: Sql, schema: string): Promise<boolean> {
+  const rows = await sql.rows<Record<string, string>>('SHOW GRANTS FOR CURRENT_USER()')
+  const grants = rows.map((row) => Object.values(row)[0] ?? '')
+  return Object.entries(wanted).every(([table, privileges]) => {
+    const start = `GRANT ${privileges} ON ${quoted(schema)}.${quoted(table)} TO `
+    return grants.some((grant) => grant.startsWith(start))
+  })
 }
 
 const harmful = ['UPDATE', 'DELETE', 'DROP', 'ALTER', 'TRIGGER', 'ALL PRIVILEGES']

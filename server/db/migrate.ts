@@ -1,7 +1,7 @@
 import { SequelizeStorage, Umzug } from 'umzug'
 import { OgeeError } from '../../shared/errors.ts'
 import { type Database, openDatabase } from './connection.ts'
-import { grantTo } from './grants.ts'
+import { grantTo, isGranted } from './grants.ts'
 import { migrations } from './migrations.ts'
 import { sqlOver } from './sql.ts'
 
@@ -27,6 +27,19 @@ export async function migrate(adminUrl: string, appUrl: string): Promise<void> {
     if (account !== null) await grantTo(admin.sequelize, schemaOf(adminUrl), account)
   } finally {
     await admin.close()
+  }
+}
+
+/**
+ * Whether `migrate` would find nothing to do, as the application's account sees it. Asked first at each start: the
+ * administrative connection and some thirty grants would take most of the second in which a killed server is to be back.
+ */
+export async function isUpToDate(database: Database, appUrl: string): Promise<boolean> {
+  try {
+    return (await missingSteps(database)).length === 0 && (await isGranted(database.sql, schemaOf(appUrl)))
+  } catch {
+    // An account or a schema that is not there yet is for `migrate` to make, or to say what is wrong.
+    return false
   }
 }
 

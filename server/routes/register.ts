@@ -53,8 +53,10 @@ export function registerRoutes(serve: Serve, router: Router, deps: RouteDeps): v
 }
 
 function serveOpenApi(router: Router): void {
-  const document = JSON.stringify(openApiDocument(allEndpoints, productVersion))
+  // Made when it is first asked for: a server that comes back after a kill has better to do.
+  let document: string | undefined
   router.get('/openapi.json', (_, response) => {
+    document ??= JSON.stringify(openApiDocument(allEndpoints, productVersion))
     response.set('Cache-Control', 'no-cache').type('application/json; charset=utf-8').send(document)
   })
 }

@@ -1,6 +1,5 @@
 import { getCertificate, getTrim, listTrims, postTrim } from '../../shared/contract/trims.ts'
 import { OgeeError } from '../../shared/errors.ts'
-import { renderCertificate } from '../certificate/render.ts'
 import { readCertificate } from '../commands/certificate/read-certificate.ts'
 import { listRecords } from '../commands/list-records.ts'
 import { readStored, recordJson } from '../commands/recording/read-stored.ts'
@@ -34,6 +33,8 @@ export function trimRoutes(serve: Serve, deps: RouteDeps): void {
     const facts = await readCertificate(database, params.id, principal)
     const { unit, channel, number } = facts.subject
     const name = `certificate ${unit} channel ${channel} record ${number}.pdf`
+    // The library for PDF takes a tenth of a second to load, which a server that starts again can do without.
+    const { renderCertificate } = await import('../certificate/render.ts')
     return new ReadyFile(await renderCertificate(facts, deps.now()), name)
   })
 }

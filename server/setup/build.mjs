@@ -55,7 +55,8 @@ async function buildServer() {
     banner: {
       js: "import { createRequire as requireFrom } from 'node:module'; const require = requireFrom(import.meta.url);",
     },
-    sourcemap: true,
+    // What is loaded on first use stands in a file of its own.
+    splitting: true,
     loader: { '.txt': 'text' },
     logLevel: 'warning',
   })

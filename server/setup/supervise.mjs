@@ -68,7 +68,7 @@ const firstStart = new Promise((resolve) => {
 function serverCommand() {
   return development
     ? ['--watch', '--watch-preserve-output', '--import', 'tsx', inRoot('server/main.ts')]
-    : ['--enable-source-maps', inRoot('dist/server/main.mjs')]
+    : [inRoot('dist/server/main.mjs')]
 }
 
 /** @param {NodeJS.ProcessEnv} env */

@@ -2,7 +2,7 @@ import request from 'supertest'
 import { afterAll, beforeAll, describe, expect, it, vi } from 'vitest'
 import { createDesign } from '../../server/commands/create-design.ts'
 import { openDatabase } from '../../server/db/connection.ts'
-import { migrate, missingSteps } from '../../server/db/migrate.ts'
+import { isUpToDate, migrate, missingSteps } from '../../server/db/migrate.ts'
 import { recordedNames } from '../../server/db/migrations/001-recorded.ts'
 import { sqlTime } from '../../server/db/sql.ts'
 import { transaction } from '../../server/db/transaction.ts'
@@ -84,6 +84,31 @@ describe('migration', () => {
   it('can run again, and leaves nothing missing', async () => {
     await migrate(harness.test.adminUrl, harness.test.url)
     expect(await missingSteps(harness.database)).toEqual([])
+  })
+
+  it('is asked for only where a step or a right of the account is missing', async () => {
+    const { url, adminUrl } = harness.test
+    const isDone = () => isUpToDate(harness.database, url)
+    expect(await isDone()).toBe(true)
+    const root = await harness.test.asRoot()
+    const [own] = await harness.database.sql.rows<{ account: string; name: string }>(
+      'SELECT CURRENT_USER() AS account, DATABASE() AS name',
+    )
+    const account = own!.account.replace(/^(.*)@(.*)$/, "'$1'@'$2'")
+    for (const change of [
+      `REVOKE INSERT ON ${own!.name}.lot_sign_offs FROM ${account}`,
+      `REVOKE SELECT ON ${own!.name}.migrations FROM ${account}`,
+      'DELETE FROM migrations ORDER BY name DESC LIMIT 1',
+    ]) {
+      await root.query(change)
+      expect(await isDone(), change).toBe(false)
+      await migrate(adminUrl, url)
+      expect(await isDone(), `${change}, mended`).toBe(true)
+    }
+    await root.end()
+    const nowhere = openDatabase(`${url}x`)
+    expect(await isUpToDate(nowhere, `${url}x`)).toBe(false)
+    await nowhere.close()
   })
 
   it('takes up where a killed one stopped', async () => {

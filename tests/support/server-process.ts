@@ -78,6 +78,14 @@ export async function startServer(options: {
     child.stderr?.on('data', add)
     await untilReady(url, child, () => log)
   }
+  /** As the supervisor does: a server that met no database (75) is started again. */
+  const restart = async (tries = 20): Promise<void> => {
+    await start().catch(async (error: unknown) => {
+      if (child?.exitCode !== 75 || tries === 1) throw error
+      await sleep(50)
+      await restart(tries - 1)
+    })
+  }
   await start()
   const running = () => {
     if (!child) throw new Error('the server was never started')
@@ -95,7 +103,7 @@ export async function startServer(options: {
     accounts: () => JSON.parse(readFileSync(join(dataDir, 'demo-accounts.json'), 'utf8')) as DemoAccounts,
     kill: async () => void (await end('SIGKILL')),
     stop: () => end('SIGTERM'),
-    restart: start,
+    restart: () => restart(),
     remove: async () => {
       await end('SIGTERM')
       rmSync(dataDir, { recursive: true, force: true })
