@@ -1,6 +1,6 @@
 import type { Options } from './cells.tsx'
 import type { FormDoc, Which } from './form-doc.ts'
-import { codings, networkKinds, signs } from './words.ts'
+import { codings, effectKinds, networkKinds, rangeEffectKinds, signs } from './words.ts'
 
 /** One question to an adjuster: a text, or one of a list. */
 export type Asking = {
@@ -16,6 +16,8 @@ export type AskingRow = Readonly<Record<Which, Asking | null>>
 
 const ask = (name: string, label: string, more: Partial<Asking> = {}): Asking => ({ name, label, ...more })
 
+const kindOf = ask('effect', 'Effect', { options: effectKinds })
+const kindHere = ask('effect', 'Effect here', { options: rangeEffectKinds })
 const effectRows: Readonly<Record<string, readonly Asking[]>> = {
   none: [],
   measured: [
@@ -64,19 +66,26 @@ export function adjusterRows({ values }: FormDoc): AskingRow[] {
   const kind = (which: Which) => values[`${which}.effect`] ?? 'none'
   const has = (which: Which) => kind(which) !== 'none'
   const network = (which: Which) => (has(which) ? (values[`${which}.network`] ?? 'direct') : 'direct')
-  const pair = (of: (which: Which) => readonly Asking[]): AskingRow[] => {
-    const [gain, offset] = [of('gain'), of('offset')]
-    return Array.from({ length: Math.max(gain.length, offset.length) }, (_, i) => ({
-      gain: gain[i] ?? null,
-      offset: offset[i] ?? null,
-    }))
-  }
   return [
+    { gain: kindOf, offset: kindOf },
     ...pair((which) => effectRows[kind(which)] ?? []),
     ...pair((which) => (has(which) ? node : [])),
     ...pair((which) => networkRows[network(which)] ?? []),
     ...pair((which) => (has(which) ? source : [])),
   ]
+}
+
+/** The rows of what the adjusters do in one range alone. */
+export function rangeEffectRows(kinds: Readonly<Record<Which, string>>): AskingRow[] {
+  return [{ gain: kindHere, offset: kindHere }, ...pair((which) => effectRows[kinds[which]] ?? [])]
+}
+
+function pair(of: (which: Which) => readonly Asking[]): AskingRow[] {
+  const [gain, offset] = [of('gain'), of('offset')]
+  return Array.from({ length: Math.max(gain.length, offset.length) }, (_, i) => ({
+    gain: gain[i] ?? null,
+    offset: offset[i] ?? null,
+  }))
 }
 
 export function rowLabel({ gain, offset }: AskingRow): string {

@@ -1,9 +1,11 @@
 import { memo } from 'react'
 import { Button } from '../../ui/button.tsx'
 import { engineering, exact } from '../../ui/number-format.ts'
+import { rangeEffectRows } from './adjuster-rows.ts'
+import { AskingRows } from './asking-rows.tsx'
 import { Row, SelectCell, TextCell } from './cells.tsx'
-import { type Said, useFormLinks } from './form-context.ts'
-import { both, type RangeField, type RangeTexts, rangeField } from './form-doc.ts'
+import { type Said, useFieldText, useFormLinks } from './form-context.ts'
+import { type RangeField, type RangeTexts, rangeEffect, rangeField, type Which } from './form-doc.ts'
 import { Part } from './part.tsx'
 import { codings, offsetPlaces } from './words.ts'
 
@@ -12,7 +14,7 @@ export type RangeHint = { fsrV: number; lsbV: number; inlV: number | null }
 
 export const ChannelPart = memo(function ChannelPart({
   ranges,
-  said: { problems, remarks },
+  said,
   hints,
 }: {
   ranges: readonly RangeTexts[]
@@ -20,6 +22,7 @@ export const ChannelPart = memo(function ChannelPart({
   hints: readonly (RangeHint | null)[]
 }) {
   const { store, isReadOnly } = useFormLinks()
+  const { problems, remarks } = said
   const cell = (field: string, label: string) => ({
     field,
     label,
@@ -29,13 +32,7 @@ export const ChannelPart = memo(function ChannelPart({
   const [first] = hints
   const several = ranges.length > 1
   const range = (one: RangeTexts, i: number) => (
-    <RangeRows
-      key={one.id}
-      range={one}
-      hint={hints[i] ?? null}
-      problems={problems}
-      name={several ? i + 1 : null}
-    />
+    <RangeRows key={one.id} range={one} hint={hints[i] ?? null} said={said} name={several ? i + 1 : null} />
   )
   return (
     <Part number={1} title="Channel" problem={problems.get('ranges')}>
@@ -91,18 +88,17 @@ function OffsetRow({ range, problems }: { range: RangeTexts | undefined; problem
 function RangeRows({
   range,
   hint,
-  problems,
+  said,
   name,
 }: {
   range: RangeTexts
   hint: RangeHint | null
-  problems: Said['problems']
+  said: Said
   /** Its number where there are several; they then have names of their own. */
   name: number | null
 }) {
   const { store, isReadOnly } = useFormLinks()
-  // Where there are several ranges an adjuster may do something else in each.
-  const isOwn = name !== null || range.gainEffect !== '' || range.offsetEffect !== ''
+  const { problems } = said
   const cell = (which: Exclude<RangeField, 'label' | 'offsetAt'>, label: string) => ({
     field: rangeField(range.id, which),
     label: name === null ? label : `${label} ${name}`,
@@ -140,21 +136,23 @@ function RangeRows({
           <TextCell {...cell('sharedWith', 'Codes shared with, range')} placeholder="none" />
         </Row>
       )}
-      {isOwn
-        ? both.map((which) => (
-            <Row key={which} label={`Effect of ${which}`} hint="in this range">
-              <TextCell
-                {...cell(`${which}Effect`, `Effect of ${which} in this range, slope and offset per V`)}
-                placeholder="as the adjuster's"
-              />
-            </Row>
-          ))
-        : null}
-      {range.effects === '' ? null : (
-        <p className="text-small text-ink-2">
-          This range has an effect of its own from circuit values, as imported; it is kept.
-        </p>
-      )}
+      <RangeEffects id={range.id} said={said} name={name} />
     </>
+  )
+}
+
+/** Where there are several ranges an adjuster may do something else in each. */
+function RangeEffects({ id, said, name }: { id: number; said: Said; name: number | null }) {
+  const under = (which: Which) => rangeEffect(id, which)
+  const gain = useFieldText(`${under('gain')}.effect`)
+  const offset = useFieldText(`${under('offset')}.effect`)
+  if (name === null && gain === '' && offset === '') return null
+  return (
+    <AskingRows
+      rows={rangeEffectRows({ gain, offset })}
+      under={under}
+      said={said}
+      where={name === null ? ' in this range' : ` in range ${name}`}
+    />
   )
 }

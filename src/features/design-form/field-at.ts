@@ -1,15 +1,24 @@
-import { both, type FormDoc, type LineField, lineField, rangeField, type Which } from './form-doc.ts'
+import {
+  both,
+  type FormDoc,
+  type LineField,
+  lineField,
+  rangeEffect,
+  rangeField,
+  type Which,
+} from './form-doc.ts'
 import { shapes } from './words.ts'
 
 /** The field of the form that a JSON pointer into the document speaks of. What has no field of its own stands at its part. */
 export function fieldAt(doc: FormDoc, pointer: string): string {
-  const [, head = '', second = '', third = '', fourth = ''] = pointer.split('/')
+  const [, head = '', second = '', third = '', fourth = '', fifth = ''] = pointer.split('/')
   if (head === 'budget') return budgetField(doc, second, third, fourth)
   if (head === 'ranges') {
     const range = doc.ranges[Number(second)]
     if (!range) return 'ranges'
     const effect = both.find((one) => third === 'effects' && one === fourth)
-    return rangeField(range.id, effect ? `${effect}Effect` : (rangeNames[third] ?? 'ends'))
+    if (effect) return `${rangeEffect(range.id, effect)}.${effectNames[fifth] ?? 'effect'}`
+    return rangeField(range.id, rangeNames[third] ?? 'ends')
   }
   if (head === 'adjusters') {
     const which = both.find((one) => one === second)

@@ -7,9 +7,9 @@ export type LineField = 'name' | 'limit' | 'shape' | 'when' | 'nominal' | 'pivot
 /** `shape` is the distribution, with its k where it is normal: "normal 2"; `k` is a field of its own that writes there. */
 export type Line = { readonly id: number } & Readonly<Record<LineField, string>>
 
-export type RangeField = 'name' | 'label' | 'ends' | 'offsetAt' | 'sharedWith' | 'gainEffect' | 'offsetEffect'
-/** `effects` is what the form does not edit, effects from circuit values, as JSON, and hands on unchanged. */
-export type RangeTexts = { readonly id: number } & Readonly<Record<RangeField | 'effects', string>>
+export type RangeField = 'name' | 'label' | 'ends' | 'offsetAt' | 'sharedWith'
+/** What an adjuster does in this range alone stands in `values`, under `rangeEffect`, as the adjuster's own does. */
+export type RangeTexts = { readonly id: number } & Readonly<Record<RangeField, string>>
 
 export type FormDoc = {
   readonly values: Readonly<Record<string, string>>
@@ -19,9 +19,10 @@ export type FormDoc = {
   readonly nextId: number
 }
 
-/** Names of fields: `bits`, `gain.slope`, `line.gain.4.limit`, `range.1.ends`. */
+/** Names of fields: `bits`, `gain.slope`, `line.gain.4.limit`, `range.1.ends`, `range.1.gain.slope`. */
 export const lineField = (which: Which, id: number, name: LineField | 'k') => `line.${which}.${id}.${name}`
-export const rangeField = (id: number, name: RangeField | 'effects') => `range.${id}.${name}`
+export const rangeField = (id: number, name: RangeField) => `range.${id}.${name}`
+export const rangeEffect = (id: number, which: Which) => `range.${id}.${which}`
 
 const linePlace = /^line\.(gain|offset)\.(\d+)\.(\w+)$/
 const rangePlace = /^range\.(\d+)\.(\w+)$/

@@ -57,7 +57,7 @@ export function formReducer(state: FormState, action: FormAction): FormState {
     case 'add-range':
       return stepped(state, withRange(doc))
     case 'remove-range':
-      return stepped(state, { ...doc, ranges: without(doc.ranges, action.id) })
+      return stepped(state, withoutRange(doc, action.id))
     case 'replace':
       return stepped(state, action.doc)
     case 'undo':
@@ -137,6 +137,12 @@ function withRange(doc: FormDoc): FormDoc {
   return { ...doc, ranges: [...doc.ranges, newRange(doc.nextId, `r${n}`)], nextId: doc.nextId + 1 }
 }
 
+/** Its own effects go with it. */
+function withoutRange(doc: FormDoc, id: number): FormDoc {
+  const kept = Object.entries(doc.values).filter(([name]) => !name.startsWith(`range.${id}.`))
+  return { ...doc, values: Object.fromEntries(kept), ranges: without(doc.ranges, id) }
+}
+
 export const newRange = (id: number, name: string): RangeTexts => ({
   id,
   name,
@@ -144,9 +150,6 @@ export const newRange = (id: number, name: string): RangeTexts => ({
   ends: '',
   offsetAt: 'zero-volts',
   sharedWith: '',
-  gainEffect: '',
-  offsetEffect: '',
-  effects: '',
 })
 
 const without = <T extends { id: number }>(list: readonly T[], id: number): readonly T[] =>

@@ -15,12 +15,12 @@ import {
 
 /** One adjuster of the form as the document has it; undefined when the design has none. */
 export function readAdjuster(reader: Reader, { values }: FormDoc, which: Which): object | undefined {
-  const kind = values[`${which}.effect`] ?? 'none'
-  if (kind === 'none') return undefined
+  const effect = readEffect(reader, values, which)
+  if (effect === undefined) return undefined
   const text = (name: string) => values[`${which}.${name}`] ?? ''
   const number = (name: string, asked: Asked) => readNumber(reader, `${which}.${name}`, text(name), asked)
   return stated({
-    effect: readEffect(kind, text, number),
+    effect,
     effectTolerance: knownTo(reader, which, text('known')),
     node: readNode(reader, which, text, number),
     source: readSource(reader, which, text),
@@ -33,7 +33,15 @@ type Number_ = (name: string, asked: Asked) => number | undefined
 const ohm = (label: string): Asked => ({ label, unit: 'ohm', rule: 'positive' })
 const volt = (label: string): Asked => ({ label, unit: 'V' })
 
-function readEffect(kind: string, text: Text, number: Number_): object {
+/**
+ * What an adjuster does at the output; undefined where none is chosen.
+ * @param under the adjuster, or the adjuster in one range: `gain`, `range.1.gain`
+ */
+export function readEffect(reader: Reader, values: FormDoc['values'], under: string): object | undefined {
+  const kind = values[`${under}.effect`] || 'none'
+  if (kind === 'none') return undefined
+  const text = (name: string) => values[`${under}.${name}`] ?? ''
+  const number = (name: string, asked: Asked) => readNumber(reader, `${under}.${name}`, text(name), asked)
   if (kind === 'measured') {
     const slopePerV = number('slope', { label: 'Slope', unit: '/V', optional: true })
     const offsetPerV = number('offsetPerV', { label: 'Offset per V', unit: 'V/V', optional: true })

@@ -4,8 +4,8 @@ import { limits } from '../../../shared/limits.ts'
 import { parseCode } from '../../../shared/quantity/code.ts'
 import { evenCodes } from './even-codes.ts'
 import { fieldAt } from './field-at.ts'
-import { both, type FormDoc, type RangeTexts, rangeField, type Which } from './form-doc.ts'
-import { readAdjuster } from './read-adjuster.ts'
+import { both, type FormDoc, type RangeTexts, rangeEffect, rangeField, type Which } from './form-doc.ts'
+import { readAdjuster, readEffect } from './read-adjuster.ts'
 import { readLines } from './read-lines.ts'
 import {
   type Arithmetic,
@@ -87,7 +87,12 @@ function readDocument(reader: Reader, doc: FormDoc): object {
     }),
     channels: names(text('channels') || '1'),
     ranges: doc.ranges.map((range) =>
-      remembered(reader, `range.${range.id}`, Object.values(range), (own) => readRange(own, range)),
+      remembered(
+        reader,
+        `range.${range.id}`,
+        [...Object.values(range), ...textsUnder(values, `range.${range.id}.`)],
+        (own) => readRange(own, doc, range),
+      ),
     ),
     adjusters: stated({ gain: adjuster('gain'), offset: adjuster('offset') }),
     budget: hasBudget ? { gain, offset } : undefined,
@@ -107,7 +112,7 @@ const names = (text: string) =>
     .map((name) => name.trim())
     .filter((name) => name !== '')
 
-function readRange(reader: Reader, range: RangeTexts): object {
+function readRange(reader: Reader, doc: FormDoc, range: RangeTexts): object {
   const place = rangeField(range.id, 'ends')
   const ends = readEnds(reader, place, range.ends, { label: 'Range', unit: 'V' })
   if (ends?.low !== undefined && ends.high !== undefined && !(ends.low < ends.high)) {
@@ -120,22 +125,16 @@ function readRange(reader: Reader, range: RangeTexts): object {
     lowV: ends?.low,
     highV: ends?.high,
     offsetAt: range.offsetAt || 'zero-volts',
-    effects: readEffects(reader, range),
+    effects: readEffects(reader, doc, range.id),
     sharedWith: shared.length === 0 ? undefined : shared,
   })
 }
 
-/** "1e-3 /V, 0.01 V/V": slope and offset per volt of an adjuster in this range alone, in the place of its own. */
-function readEffects(reader: Reader, range: RangeTexts): object | undefined {
-  const effects: Record<string, unknown> = range.effects === '' ? {} : JSON.parse(range.effects)
-  for (const which of both) {
-    const text = range[`${which}Effect`]
-    const place = rangeField(range.id, `${which}Effect`)
-    const read = readMixed(reader, place, text, 'Effect', ['/V', 'V/V'], 'any')
-    if (read.size > 0) {
-      effects[which] = stated({ kind: 'measured', slopePerV: read.get('/V'), offsetPerV: read.get('V/V') })
-    }
-  }
+/** What the adjusters do in this range alone, in the place of their own. */
+function readEffects(reader: Reader, { values }: FormDoc, id: number): object | undefined {
+  const effects = stated(
+    Object.fromEntries(both.map((which) => [which, readEffect(reader, values, rangeEffect(id, which))])),
+  )
   return Object.keys(effects).length === 0 ? undefined : effects
 }
 

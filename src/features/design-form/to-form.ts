@@ -1,7 +1,7 @@
 import type { Design } from '../../../shared/contract/design.ts'
 import { evenCodes } from './even-codes.ts'
 import { endsText, limitText, ohmShort, ohmText, percentText, perVoltText, voltText } from './exact-text.ts'
-import { both, type FormDoc, type Line, type RangeTexts, type Which } from './form-doc.ts'
+import { both, type FormDoc, type Line, type RangeTexts, rangeEffect, type Which } from './form-doc.ts'
 import { newLine } from './form-state.ts'
 
 type Adjuster = NonNullable<Design['adjusters']['gain']>
@@ -22,7 +22,6 @@ export function toForm(design: Design): FormDoc {
       ends: endsText(range.lowV, range.highV),
       offsetAt: range.offsetAt,
       sharedWith: (range.sharedWith ?? []).join(', '),
-      ...effectsTexts(range.effects),
     }),
   )
   const gain = (design.budget?.gain ?? []).map(
@@ -49,26 +48,15 @@ export function toForm(design: Design): FormDoc {
     hasBudget: design.budget === undefined ? '' : 'yes',
     ...planTexts(design),
   }
-  for (const which of both) Object.assign(values, adjusterTexts(which, design.adjusters[which]))
-  return { values, lines: { gain, offset }, ranges, nextId: id }
-}
-
-/** Measured effects of a range of its own as they are typed; those from circuit values are handed on as they are. */
-function effectsTexts(effects: Design['ranges'][number]['effects']) {
-  const kept: Record<string, unknown> = {}
-  const typed = { gainEffect: '', offsetEffect: '' }
   for (const which of both) {
-    const effect = effects?.[which]
-    if (effect?.kind === 'measured') {
-      typed[`${which}Effect`] = [
-        stated(effect.slopePerV, (v) => (v === 0 ? '0 /V' : perVoltText(v, '/V'))),
-        stated(effect.offsetPerV, (v) => (v === 0 ? '0 V/V' : perVoltText(v, 'V/V'))),
-      ]
-        .filter(Boolean)
-        .join(', ')
-    } else if (effect !== undefined) kept[which] = effect
+    Object.assign(values, adjusterTexts(which, design.adjusters[which]))
+    design.ranges.forEach(({ effects }, i) => {
+      const effect = effects?.[which]
+      const under = rangeEffect(ranges[i]!.id, which)
+      if (effect) Object.assign(values, textsAt(under, { effect: effect.kind, ...effectTexts(effect) }))
+    })
   }
-  return { ...typed, effects: Object.keys(kept).length === 0 ? '' : JSON.stringify(kept) }
+  return { values, lines: { gain, offset }, ranges, nextId: id }
 }
 
 function lineTexts(
@@ -119,8 +107,11 @@ function adjusterTexts(which: Which, adjuster: Adjuster | undefined): Texts {
       .filter(Boolean)
       .join(', '),
   }
-  return Object.fromEntries(Object.entries(named).map(([name, text]) => [`${which}.${name}`, text]))
+  return textsAt(which, named)
 }
+
+const textsAt = (under: string, texts: Texts): Texts =>
+  Object.fromEntries(Object.entries(texts).map(([name, text]) => [`${under}.${name}`, text]))
 
 function effectTexts(effect: Adjuster['effect']): Texts {
   if (effect.kind === 'measured') {

@@ -79,28 +79,9 @@ function checked(value: unknown): WhatIf | null {
 }
 
 const lineNames = ['name', 'limit', 'shape', 'when', 'nominal', 'pivot']
-const rangeNames = [
-  'name',
-  'label',
-  'ends',
-  'offsetAt',
-  'sharedWith',
-  'gainEffect',
-  'offsetEffect',
-  'effects',
-]
+const rangeNames = ['name', 'label', 'ends', 'offsetAt', 'sharedWith']
 
 function isRow(row: unknown, names: readonly string[]): boolean {
   if (!isObject(row) || !Number.isSafeInteger(row.id)) return false
-  if (!names.every((name) => typeof row[name] === 'string')) return false
-  return row.effects === undefined || row.effects === '' || isJson(row.effects as string)
-}
-
-function isJson(text: string): boolean {
-  try {
-    JSON.parse(text)
-    return true
-  } catch {
-    return false
-  }
+  return names.every((name) => typeof row[name] === 'string')
 }

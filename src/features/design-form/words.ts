@@ -17,6 +17,10 @@ export const effectKinds: Options = [
   ['reference-summing', 'reference summing'],
   ['output-summing', 'output summing'],
 ]
+/** In a range that has none of its own the adjuster does what it does everywhere. */
+export const rangeEffectKinds: Options = effectKinds.map(([kind, word]) =>
+  kind === 'none' ? ['', "as the adjuster's"] : [kind, word],
+)
 export const networkKinds: Options = [
   ['direct', 'direct'],
   ['divider', 'divider'],

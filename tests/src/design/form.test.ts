@@ -68,7 +68,7 @@ describe('a document as texts and back', () => {
     expect(read(toForm(document)).document).toEqual(JSON.parse(JSON.stringify(document)))
   })
 
-  test('a measured effect of a range is typed; one from circuit values is handed on', () => {
+  test('an effect of a range of its own is typed, measured or from circuit values, and goes with its range', () => {
     const summing = { kind: 'output-summing', feedbackOhm: 1e4, adjustOhm: 2e6, inverting: true } as const
     const document = designDocument.parse({
       ...design,
@@ -84,16 +84,38 @@ describe('a document as texts and back', () => {
     })
     const texts = toForm(document)
     const { id } = texts.ranges[1]!
-    expect(texts.ranges[1]).toMatchObject({ gainEffect: '-1e-3 /V, 0 V/V', offsetEffect: '' })
-    expect(read(texts).document).toEqual(document)
-    const typed = read(withText(texts, `range.${id}.gainEffect`, '4e-3 /V, 0.02 V/V'))
-    expect(typed.document?.ranges[1]?.effects).toEqual({
-      gain: { kind: 'measured', slopePerV: 0.004, offsetPerV: 0.02 },
-      offset: summing,
+    expect(texts.values).toMatchObject({
+      [`range.${id}.gain.slope`]: '-1e-3 /V',
+      [`range.${id}.offset.effect`]: 'output-summing',
+      [`range.${id}.offset.adjust`]: '2 Mohm',
     })
-    const wrong = read(withText(texts, `range.${id}.gainEffect`, '4 mV'))
-    expect([...wrong.problems.keys()]).toEqual([`range.${id}.gainEffect`])
-    expect(fieldAt(texts, '/ranges/1/effects/gain/slopePerV')).toBe(`range.${id}.gainEffect`)
+    expect(read(texts).document).toEqual(document)
+    const typed = read(
+      withTexts(texts, {
+        [`range.${id}.gain.effect`]: 'reference-summing',
+        [`range.${id}.gain.inputR`]: '10k',
+        [`range.${id}.gain.adjust`]: '1M',
+        [`range.${id}.gain.reference`]: '5 V',
+        [`range.${id}.offset.adjust`]: '820k',
+        [`range.${id}.offset.sign`]: 'not-inverting',
+      }),
+    )
+    expect(typed.document?.ranges[1]?.effects).toEqual({
+      gain: {
+        kind: 'reference-summing',
+        inputOhm: 1e4,
+        adjustOhm: 1e6,
+        referenceV: 5,
+        inverting: true,
+        pivotV: 0,
+      },
+      offset: { ...summing, adjustOhm: 820e3, inverting: false },
+    })
+    const wrong = read(withText(texts, `range.${id}.offset.feedback`, '4 mV'))
+    expect([...wrong.problems.keys()]).toEqual([`range.${id}.offset.feedback`])
+    expect(fieldAt(texts, '/ranges/1/effects/gain/slopePerV')).toBe(`range.${id}.gain.slope`)
+    const without = formReducer(startForm(texts), { do: 'remove-range', id }).doc
+    expect(Object.keys(without.values).filter((name) => name.startsWith('range.'))).toEqual([])
   })
 
   test('any k of a normal line is typed; without one it is said to be missing', () => {
