@@ -1,29 +1,118 @@
-import { screen, waitFor, within } from '@testing-library/react'
+import { act, screen, waitFor, within } from '@testing-library/react'
 import { expect, test, vi } from 'vitest'
 import { recordId, recordLine } from '../support/web-fixtures.ts'
-import { open } from '../support/web-render.tsx'
+import { open, scrollPage } from '../support/web-render.tsx'
 import { fakeServer, json, refusal } from '../support/web-server.ts'
 
 const link = (n: number) => screen.findByRole('link', { name: String(1_004_000 + n) })
 const focusPage = () => screen.getByRole('main').focus()
 
-test('older and newer walk the pages, and the address restores each', async () => {
+/** Rows of the table at 16 px letters, as the page reckons them; the view holds 31 of them. */
+const rowPx = 25
+const address = () => window.location.pathname + window.location.search
+
+test('scrolling reads on, page by page, and draws only the rows near the view', async () => {
+  const { server } = open('/history')
+  await link(120)
+  await waitFor(() => expect(server.sent('GET /trims')).toHaveLength(2))
+  act(() => scrollPage(60 * rowPx))
+  await link(60)
+  expect(screen.queryByRole('link', { name: '1004090' })).toBeNull()
+  await waitFor(() => expect(server.sent('GET /trims')).toHaveLength(3))
+  act(() => scrollPage(119 * rowPx))
+  await link(1)
+  expect(screen.getAllByRole('link', { name: /^1004\d\d\d$/ }).length).toBeLessThan(60)
+  expect(server.sent('GET /trims').map(({ query }) => query.get('after'))).toEqual([
+    null,
+    '1004071',
+    '1004021',
+  ])
+  expect(screen.queryByRole('button', { name: /Older/ })).toBeNull()
+})
+
+test('older and newer walk the pages; the address follows and restores the row, without a step back for each', async () => {
   const { user, server, unmount } = open('/history')
   await link(120)
+  const steps = window.history.length
   focusPage()
   await user.keyboard(']')
   await link(70)
-  expect(window.location.search).toBe('?after=1004071')
+  await waitFor(() => expect(window.location.search).toBe('?after=1004071'))
   await user.keyboard(']')
   await link(20)
-  expect(screen.queryByRole('button', { name: /Older/ })).toBeNull()
+  await waitFor(() => expect(window.location.search).toBe('?after=1004021'))
   await user.keyboard('[[')
-  await link(70)
-  const address = window.location.pathname + window.location.search
+  await waitFor(() => expect(window.location.search).toBe('?after=1004071'))
+  act(() => scrollPage(60 * rowPx))
+  await waitFor(() => expect(window.history.state.usr.top).toBe(60))
+  expect(window.history.length).toBe(steps)
+  // A reload keeps the history entry.
+  const { usr } = window.history.state
   unmount()
-  open(address, server)
+  scrollPage(0)
+  open(address(), server, usr)
+  await link(60)
+  await waitFor(() => expect(window.scrollY).toBe(60 * rowPx))
+  act(() => scrollPage(0))
+  await link(120)
+})
+
+test('an opened link starts at its page, and newer leads to the newest records', async () => {
+  const { user } = open('/history?after=1004071')
   await link(70)
-  expect(screen.queryByRole('link', { name: '1004120' })).toBeNull()
+  expect(screen.queryByRole('link', { name: '1004071' })).toBeNull()
+  expect(screen.getByRole('table')).toHaveAttribute('aria-rowcount', '-1')
+  focusPage()
+  await user.keyboard('[[')
+  await link(120)
+  expect(window.location.search).toBe('')
+})
+
+test('rows are numbered for screen readers, and counted once the end is known', async () => {
+  open('/history')
+  const row = (await link(117)).closest('tr')
+  expect(row).toHaveAttribute('aria-rowindex', '5')
+  expect(screen.getByRole('table')).toHaveAttribute('aria-rowcount', '-1')
+  act(() => scrollPage(60 * rowPx))
+  await waitFor(() => expect(screen.getByRole('table')).toHaveAttribute('aria-rowcount', '121'))
+})
+
+test('the focused row keeps its focus however far one scrolls, and j goes on from it', async () => {
+  const { user } = open('/history')
+  const third = await link(118)
+  act(() => third.focus())
+  act(() => scrollPage(45 * rowPx))
+  await link(75)
+  expect(document.activeElement).toBe(third)
+  await user.keyboard('j')
+  expect(document.activeElement).toBe(await link(117))
+})
+
+test('what fails at the end keeps the rows and is tried again', async () => {
+  const server = fakeServer()
+  const { user } = open('/history', server)
+  await link(120)
+  await waitFor(() => expect(server.sent('GET /trims')).toHaveLength(2))
+  server.on('GET /trims', () => refusal('too-many-requests', 'Too many requests. Wait a minute.'))
+  act(() => scrollPage(60 * rowPx))
+  await screen.findByText('Too many requests. Wait a minute.')
+  expect(await link(60)).toBeVisible()
+  server.on('GET /trims', () => json({ items: [recordLine(20)], next: null }))
+  await user.click(screen.getByRole('button', { name: 'Try again' }))
+  act(() => scrollPage(100 * rowPx))
+  await link(20)
+  expect(screen.queryByText('Too many requests. Wait a minute.')).toBeNull()
+})
+
+test('print holds the rows at hand, not only those in view', async () => {
+  open('/history')
+  await link(120)
+  await waitFor(() => expect(document.querySelectorAll('tbody tr[aria-rowindex]').length).toBeLessThan(50))
+  act(() => scrollPage(20 * rowPx))
+  await link(70)
+  act(() => scrollPage(0))
+  await act(async () => window.dispatchEvent(new Event('beforeprint')))
+  await waitFor(() => expect(document.querySelectorAll('tbody tr[aria-rowindex]')).toHaveLength(100))
 })
 
 test('filters stand in the address and are asked of the server; the page starts again', async () => {

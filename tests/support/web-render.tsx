@@ -19,15 +19,23 @@ HTMLDialogElement.prototype.close = function () {
 
 export type Opened = RenderResult & { user: UserEvent; server: FakeServer }
 
-/** Opens an address of the app against the fake server, as a browser would. */
-export function open(address: string, server: FakeServer = fakeServer()): Opened {
+/** Scrolls the page as a wheel would: the place, then the event. Every part stands at its beginning. */
+export function scrollPage(top: number): void {
+  Element.prototype.getBoundingClientRect = () => new DOMRect(0, -top, 0, 0)
+  Object.defineProperty(window, 'scrollY', { value: top, configurable: true })
+  window.dispatchEvent(new Event('scroll'))
+}
+
+/** Opens an address of the app against the fake server, as a browser would; `kept` is what a reload finds in the history entry. */
+export function open(address: string, server: FakeServer = fakeServer(), kept: unknown = null): Opened {
   setConnection({ sessionEnded: false, outage: null })
   vi.stubGlobal('fetch', server.fetch)
-  // Not known to jsdom.
-  vi.stubGlobal('scrollTo', () => undefined)
+  scrollPage(0)
+  // jsdom only says that it cannot; nothing is laid out, so a place is only a number.
+  vi.stubGlobal('scrollTo', (_left: number, top: number) => scrollPage(top))
   // As in index.html.
   document.documentElement.lang = 'en'
-  window.history.replaceState(null, '', address)
+  window.history.replaceState(kept === null ? null : { usr: kept, key: 'kept', idx: 0 }, '', address)
   const user = userEvent.setup()
   const shown = render(<App queryClient={makeQueryClient()} />)
   return { ...shown, user, server }

@@ -1,4 +1,3 @@
-import { useVirtualizer } from '@tanstack/react-virtual'
 import { memo, useMemo, useRef } from 'react'
 import type { LotUnit } from '../../../shared/contract/lots.ts'
 import { paths } from '../../lib/paths.ts'
@@ -7,14 +6,13 @@ import { Field } from '../../ui/field.tsx'
 import { TextInput } from '../../ui/input.tsx'
 import { fixed } from '../../ui/number-format.ts'
 import { NumberText } from '../../ui/number-text.tsx'
+import { rowHeight, rowPx, Spacer, stickyHead, useRowWindow } from '../../ui/row-window.tsx'
 import { Section } from '../../ui/section.tsx'
 import { None, Td, Th } from '../../ui/table.tsx'
 import { utcText } from '../../ui/time-text.tsx'
 import { usePrinting } from '../../ui/use-printing.ts'
 import { StandingWord } from './standing-word.tsx'
 
-/** Every row is as high as the smallest target; a list of them is measured once. */
-const rowPx = 25
 /** Rows that are drawn when the page is printed; a longer table is for the file. */
 const printedMost = 2_000
 
@@ -68,17 +66,11 @@ type WindowProps = { rows: readonly Row[]; hasRanges: boolean; onReference: Prop
 
 function Window({ rows, hasRanges, onReference }: WindowProps) {
   const box = useRef<HTMLDivElement>(null)
+  const body = useRef<HTMLTableSectionElement>(null)
   const isPrinting = usePrinting()
-  const virtual = useVirtualizer({
-    count: rows.length,
-    getScrollElement: () => box.current,
-    estimateSize: () => rowPx,
-    overscan: 8,
-    initialRect: { width: 800, height: 420 },
-  })
-  const shown = virtual.getVirtualItems()
-  const first = isPrinting ? 0 : (shown[0]?.index ?? 0)
-  const end = isPrinting ? Math.min(rows.length, printedMost) : (shown.at(-1)?.index ?? -1) + 1
+  const height = rowPx()
+  const shown = useRowWindow(body, rows.length, height, box)
+  const { first, end } = isPrinting ? { first: 0, end: Math.min(rows.length, printedMost) } : shown
   return (
     <section
       ref={box}
@@ -94,8 +86,8 @@ function Window({ rows, hasRanges, onReference }: WindowProps) {
       >
         <caption className="sr-only">Every channel of every unit: standing, errors, codes</caption>
         <Head hasRanges={hasRanges} hasActs={onReference !== undefined} />
-        <tbody>
-          <Spacer px={first * rowPx} />
+        <tbody ref={body}>
+          <Spacer px={first * height} />
           {rows.slice(first, end).map((row, i) => (
             <UnitRow
               key={row.key}
@@ -105,20 +97,11 @@ function Window({ rows, hasRanges, onReference }: WindowProps) {
               onReference={onReference}
             />
           ))}
-          <Spacer px={(rows.length - end) * rowPx} />
+          <Spacer px={(rows.length - end) * height} />
         </tbody>
       </table>
     </section>
   )
-}
-
-/** Stands for the rows that are not drawn. */
-function Spacer({ px }: { px: number }) {
-  return px > 0 ? (
-    <tr>
-      <td style={{ height: px }} />
-    </tr>
-  ) : null
 }
 
 const heads = [
@@ -138,7 +121,7 @@ const heads = [
 
 function Head({ hasRanges, hasActs }: { hasRanges: boolean; hasActs: boolean }) {
   return (
-    <thead className="sticky top-0 bg-paper print:static">
+    <thead className={stickyHead}>
       <tr>
         {heads
           .filter(({ name }) => hasRanges || name !== 'range')
@@ -169,7 +152,7 @@ const UnitRow = memo(function UnitRow({ row: { unit, place }, index, hasRanges, 
   const { found, codes, left } = place
   const record = codes?.record ?? found?.record ?? left?.record
   return (
-    <tr aria-rowindex={index + 2} className="h-[25px] hover:bg-shade">
+    <tr aria-rowindex={index + 2} className={`${rowHeight} hover:bg-shade`}>
       <Td className="truncate">
         {record ? (
           <LinkButton className="min-h-6" to={paths.record(record)}>

@@ -1,10 +1,4 @@
-import {
-  keepPreviousData,
-  type QueryClient,
-  queryOptions,
-  useMutation,
-  useQueryClient,
-} from '@tanstack/react-query'
+import { type QueryClient, queryOptions, useMutation, useQueryClient } from '@tanstack/react-query'
 import { useRef } from 'react'
 import { countRecords, listRecorders } from '../../../shared/contract/history.ts'
 import type { Record as TrimRecord } from '../../../shared/contract/record.ts'
@@ -14,12 +8,16 @@ import { limits } from '../../../shared/limits.ts'
 import { api } from '../../lib/api.ts'
 import type { Filters } from './filters.ts'
 
-export const recordsOptions = (filters: Filters, after: string | undefined) =>
+/**
+ * One keyset page of records; `after` is where it starts, '' for the newest. An older page changes by a finding at most; the
+ * newest moves with every record, and is read again only where that disturbs nobody.
+ */
+export const recordsOptions = (filters: Filters, after: string) =>
   queryOptions({
-    queryKey: ['records', 'list', filters, after ?? null],
-    queryFn: ({ signal }) => api(listTrims, { query: { ...filters, after } }, signal),
-    placeholderData: keepPreviousData,
-    staleTime: 5_000,
+    queryKey: ['records', 'list', filters, after],
+    queryFn: ({ signal }) =>
+      api(listTrims, { query: { ...filters, after: after === '' ? undefined : after } }, signal),
+    staleTime: after === '' ? Number.POSITIVE_INFINITY : 60_000,
   })
 
 /** How many match: told beside the list when it has been counted, which the list does not wait for. */

@@ -1,101 +1,139 @@
+import { Fragment, type RefObject } from 'react'
 import type { RecordLine } from '../../../shared/contract/record.ts'
 import { paths } from '../../lib/paths.ts'
 import { LinkButton } from '../../ui/button.tsx'
-import { fixed } from '../../ui/number-format.ts'
-import { NumberText, Whole } from '../../ui/number-text.tsx'
-import { None, Table, Td, Th } from '../../ui/table.tsx'
+import { Whole } from '../../ui/number-text.tsx'
+import { rowHeight, Spacer, stickyHead } from '../../ui/row-window.tsx'
+import { None, Td, Th } from '../../ui/table.tsx'
 import { TimeText } from '../../ui/time-text.tsx'
 import { Verdict } from '../../ui/verdict.tsx'
+import { gapsOf, numberOr, type RecordRows } from './record-rows.tsx'
 import { byText, kindWord } from './words.ts'
 
-const onlyWide = 'hidden wide:table-cell'
+/** What a narrower page leaves out first. */
+const fromRail = 'hidden rail:table-cell'
+const fromWide = 'hidden wide:table-cell'
+const fromFull = 'hidden min-[84rem]:table-cell'
 
-/** One page of records. `row` is the current row; links of rows carry `data-row` for the keys. */
-export function RecordTable({ records, row }: { records: readonly RecordLine[]; row: number }) {
+/** Fixed columns: widths that follow the rows in view would jump while scrolling. */
+export function RecordTable({ rows, count, total, body, height, row, onRow }: RecordRows) {
+  const { before, after } = gapsOf(rows, count)
   return (
-    <Table caption="Records, newest first">
-      <thead>
-        <tr>
-          <Th align="right">record</Th>
-          <Th>time, UTC</Th>
-          <Th>unit</Th>
-          <Th align="right">ch.</Th>
-          <Th className={onlyWide}>design, rev.</Th>
-          <Th>kind</Th>
-          <Th align="right" className={onlyWide}>
-            pass
-          </Th>
-          <Th align="right" className={onlyWide}>
-            att.
-          </Th>
-          <Th align="right" unit="ppm" className="text-copper">
-            gain error
-          </Th>
-          <Th align="right" unit="µV" className="text-tide">
-            offset error
-          </Th>
-          <Th align="right" unit="code" className={onlyWide}>
-            gain
-          </Th>
-          <Th align="right" unit="code" className={onlyWide}>
-            offset
-          </Th>
-          <Th align="right" unit="LSB">
-            worst
-          </Th>
-          <Th>verdict</Th>
-          <Th className={onlyWide}>by</Th>
-        </tr>
-      </thead>
-      <tbody>
-        {records.map((record, i) => (
-          <RecordRow key={record.id} record={record} index={i} current={i === row} />
+    <table
+      className="w-full table-fixed border-collapse text-body"
+      aria-rowcount={total == null ? -1 : total + 1}
+    >
+      <caption className="sr-only">Records, newest first</caption>
+      <RecordHead />
+      <tbody ref={body as RefObject<HTMLTableSectionElement | null>}>
+        {rows.map(({ index, record }, i) => (
+          <Fragment key={record?.id ?? index}>
+            <Spacer px={(before[i] ?? 0) * height} />
+            <tr
+              className={`${rowHeight} focus-within:bg-shade ${index === row ? 'bg-shade' : ''}`}
+              aria-rowindex={total === undefined ? undefined : index + 2}
+              onFocus={() => onRow(index)}
+            >
+              {record === undefined ? <td colSpan={15} /> : <RecordCells record={record} index={index} />}
+            </tr>
+          </Fragment>
         ))}
+        <Spacer px={after * height} />
       </tbody>
-    </Table>
+    </table>
   )
 }
 
-function RecordRow({ record, index, current }: { record: RecordLine; index: number; current: boolean }) {
+function RecordHead() {
   return (
-    <tr className={`focus-within:bg-shade ${current ? 'bg-shade' : ''}`}>
+    <thead className={`${stickyHead} z-10`}>
+      <tr>
+        <Th align="right" className="w-[5.25rem]">
+          record
+        </Th>
+        <Th className="w-[9rem]">time, UTC</Th>
+        <Th className="w-[8.5rem] min-[84rem]:w-[11rem]">unit</Th>
+        <Th align="right" className="w-[2.25rem]">
+          ch.
+        </Th>
+        <Th className={`w-[6.5rem] ${fromWide}`}>design, rev.</Th>
+        <Th className={`w-[4.25rem] ${fromRail}`}>kind</Th>
+        <Th align="right" className={`w-[2.75rem] ${fromFull}`}>
+          pass
+        </Th>
+        <Th align="right" className={`w-[2.5rem] ${fromFull}`}>
+          att.
+        </Th>
+        <Th align="right" unit="ppm" className="w-[5rem] text-copper">
+          gain error
+        </Th>
+        <Th align="right" unit="µV" className="w-[5.25rem] text-tide">
+          offset error
+        </Th>
+        <Th align="right" unit="code" className={`w-[3.5rem] ${fromFull}`}>
+          gain
+        </Th>
+        <Th align="right" unit="code" className={`w-[3.5rem] ${fromFull}`}>
+          offset
+        </Th>
+        <Th align="right" unit="LSB" className="w-[3.5rem]">
+          worst
+        </Th>
+        <Th>verdict</Th>
+        <Th className={`w-[7rem] ${fromWide}`}>by</Th>
+      </tr>
+    </thead>
+  )
+}
+
+function RecordCells({ record, index }: { record: RecordLine; index: number }) {
+  const by = byText(record.by, record.station)
+  return (
+    <>
       <Td align="right">
-        <LinkButton className="min-h-6" to={paths.record(record.id)} data-row={index}>
+        {/* What sticks to the top and the bottom of the view must not lie over the row that has the focus. */}
+        <LinkButton className="min-h-6 scroll-my-14" to={paths.record(record.id)} data-row={index}>
           <Whole value={record.number} />
         </LinkButton>
       </Td>
       <Td className="text-ink-2">
         <TimeText at={record.recordedAt} />
       </Td>
-      <Td className="max-w-56 [overflow-wrap:anywhere]">{record.unit}</Td>
+      <Td className="truncate print:whitespace-normal" title={record.unit}>
+        {record.unit}
+      </Td>
       <Td align="right">{record.channel}</Td>
-      <Td className={`text-ink-2 ${onlyWide}`}>
+      <Td className={`truncate text-ink-2 ${fromWide}`}>
         {record.design}, {record.revision}
       </Td>
-      <Td className="text-ink-2">{kindWord(record)}</Td>
-      <Td align="right" className={onlyWide}>
+      <Td className={`text-ink-2 ${fromRail}`}>{kindWord(record)}</Td>
+      <Td align="right" className={fromFull}>
         {record.pass}
       </Td>
-      <Td align="right" className={onlyWide}>
+      <Td align="right" className={fromFull}>
         <Attempt attempt={record.attempt} />
       </Td>
       <Td align="right">{numberOr(record.gainErrorPpm, 2, 1, true)}</Td>
       <Td align="right">{numberOr(record.offsetErrorV, 1, 1e6, true)}</Td>
-      <Td align="right" className={onlyWide}>
+      <Td align="right" className={fromFull}>
         {record.gainCode ?? <None />}
       </Td>
-      <Td align="right" className={onlyWide}>
+      <Td align="right" className={fromFull}>
         {record.offsetCode ?? <None />}
       </Td>
       <Td align="right">
         {numberOr(record.worstLsb === null ? null : Math.abs(record.worstLsb), 2, 1, false)}
       </Td>
-      <Td>
-        {record.verdict ? <Verdict verdict={record.verdict} /> : <None />}
-        <FindingMark finding={record.finding} />
+      <Td className="whitespace-nowrap">
+        <span className="flex min-w-0">
+          <span className="truncate">{record.verdict ? <Verdict verdict={record.verdict} /> : <None />}</span>
+          <FindingMark finding={record.finding} />
+        </span>
       </Td>
-      <Td className={onlyWide}>{byText(record.by, record.station)}</Td>
-    </tr>
+      <Td className={`truncate ${fromWide}`} title={by}>
+        {by}
+      </Td>
+    </>
   )
 }
 
@@ -119,43 +157,5 @@ function Attempt({ attempt }: { attempt: number | null }) {
     <span className="font-semibold" title={`measured ${attempt} times that day`}>
       {attempt}
     </span>
-  )
-}
-
-function numberOr(value: number | null, decimals: number, factor: number, signed: boolean) {
-  if (value === null) return <None />
-  return <NumberText>{fixed(value * factor, decimals, signed ? 'always' : 'auto')}</NumberText>
-}
-
-/** The narrow form: two lines a record, unit and verdict, time and gain. The whole row is one link. */
-export function RecordList({ records, row }: { records: readonly RecordLine[]; row: number }) {
-  return (
-    <ul>
-      {records.map((record, i) => (
-        <li key={record.id} className={`border-b border-hair ${i === row ? 'bg-shade' : ''}`}>
-          <LinkButton
-            look="quiet"
-            className="block! w-full px-1! py-1.5 no-underline! whitespace-normal"
-            to={paths.record(record.id)}
-            data-row={i}
-          >
-            <span className="flex justify-between gap-3">
-              <span className="font-semibold">{record.unit}</span>
-              {record.verdict ? <Verdict verdict={record.verdict} /> : <span>{kindWord(record)}</span>}
-            </span>
-            <span className="flex justify-between gap-3">
-              <span className="text-ink-2">
-                <TimeText at={record.recordedAt} />
-              </span>
-              {record.gainErrorPpm === null ? null : (
-                <span>
-                  {numberOr(record.gainErrorPpm, 2, 1, true)} <span className="text-ink-2">ppm</span>
-                </span>
-              )}
-            </span>
-          </LinkButton>
-        </li>
-      ))}
-    </ul>
   )
 }
