@@ -15,8 +15,8 @@ export type Client = {
   url: string
   /** Calls an endpoint, again where that can help. Safe: what writes carries the same idempotency key each time. */
   call: <E extends Endpoint>(endpoint: E, input: InputOf<E>) => Promise<ReplyOf<E>>
-  /** Calls an endpoint that answers lines, and gives them once all have come. */
-  page: <E extends Endpoint>(endpoint: E, input: InputOf<E>) => Promise<Uint8Array[]>
+  /** Calls an endpoint that answers lines, and gives their bytes once all have come. */
+  page: <E extends Endpoint>(endpoint: E, input: InputOf<E>) => Promise<Uint8Array>
   /** Posts a block of a batch, the whole again when its answer was cut: what was recorded is told once more. */
   sendBlock: (block: string) => Promise<BatchOutcome[]>
 }

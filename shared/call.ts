@@ -54,25 +54,17 @@ export async function openStream(caller: Caller, path: string): Promise<Response
 }
 
 /**
- * Executes an endpoint that answers lines, and gives them as bytes without their line ends, once all have come.
+ * Executes an endpoint that answers lines, and gives their bytes, line ends included, once all have come.
  * Throws as `call`; an answer that was cut fails as the connection does.
  */
 export async function callPage<E extends Endpoint>(
   caller: Caller,
   endpoint: E,
   input: InputOf<E>,
-): Promise<Uint8Array[]> {
+): Promise<Uint8Array> {
   const response = await send(caller, endpoint, input as AnyInput)
   if (!response.ok) throw await problemOf(response)
-  const bytes = new Uint8Array(await response.arrayBuffer())
-  const lines: Uint8Array[] = []
-  for (let from = 0; from < bytes.length; ) {
-    const end = bytes.indexOf(10, from)
-    const to = end < 0 ? bytes.length : end
-    lines.push(bytes.subarray(from, to))
-    from = to + 1
-  }
-  return lines
+  return new Uint8Array(await response.arrayBuffer())
 }
 
 async function send(caller: Caller, endpoint: Endpoint, request: AnyInput): Promise<Response> {

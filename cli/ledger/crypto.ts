@@ -1,4 +1,5 @@
-import { createHash, createPublicKey, type KeyObject, verify as verifySignature } from 'node:crypto'
+import { createPublicKey, hash, type KeyObject, verify as verifySignature } from 'node:crypto'
+import type { BytesAsText } from '../../shared/ledger/check/at-sight.ts'
 import type { LedgerCrypto } from '../../shared/ledger/hash.ts'
 
 /** DER of an Ed25519 public key is this and the 32 bytes (RFC 8410). */
@@ -18,6 +19,11 @@ export function publicKeyOf(raw: Uint8Array): KeyObject {
 
 /** SHA-256 and Ed25519 of Node, as the shared checks want them. */
 export const crypto: LedgerCrypto = {
-  sha256: (bytes) => createHash('sha256').update(bytes).digest(),
+  // In one call, which for the small ones takes half as long.
+  sha256: (bytes) => hash('sha256', bytes, 'buffer'),
   verify: (publicKey, bytes, signature) => verifySignature(null, bytes, publicKeyOf(publicKey), signature),
 }
+
+/** Bytes as text, one character for each, as the check of a whole ledger wants them. */
+export const asText: BytesAsText = ({ buffer, byteOffset, length }) =>
+  Buffer.from(buffer, byteOffset, length).toString('latin1')

@@ -1,5 +1,5 @@
 import { verify } from 'node:crypto'
-import type { SignatureTask } from '../../shared/ledger/check/entry-checker.ts'
+import type { SignatureTask } from '../../shared/ledger/check/signed-in-receipt.ts'
 import { publicKeyOf } from './crypto.ts'
 
 /** Signatures take longest of all that is checked: Node's threads share them, so that other work goes on. */

@@ -38,7 +38,8 @@ const hexOf = Array.from({ length: 256 }, (_, byte) => byte.toString(16).padStar
 /** Lower-case hexadecimal digits of bytes. */
 export function toHex(bytes: Uint8Array): string {
   let text = ''
-  for (const byte of bytes) text += hexOf[byte]
+  // By index: an iterator takes half as long again, and every hash comes through here.
+  for (let i = 0; i < bytes.length; i++) text += hexOf[bytes[i]!]
   return text
 }
 

@@ -61,6 +61,20 @@ export function restoreReceipt(promised: Promised, key: string, signature: Uint8
 }
 
 /**
+ * The bytes that a receipt's signature is over.
+ *
+ * @param promised as it was signed.
+ * @param key short name of the signing key.
+ * @returns RFC 8785 of the receipt without its signature.
+ * Throws nothing for what a server promised.
+ * Source: contract.md, Ledger; RFC 8785.
+ * @example verify(publicKey, signedBytes(promised, name), signature)
+ */
+export function signedBytes(promised: Promised, key: string): Uint8Array {
+  return canonicalBytes(unsigned(promised, key))
+}
+
+/**
  * Whether a receipt was signed by a key.
  *
  * @param sha256 the hash function.

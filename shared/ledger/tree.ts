@@ -1,6 +1,7 @@
 import { joinBytes, type Sha256 } from './hash.ts'
 
-const nodePrefix = Uint8Array.of(1)
+/** A one byte and room for two hashes. */
+const prefixed = Uint8Array.of(1, ...new Uint8Array(64))
 
 /** A complete subtree of 2^level leaves that starts at leaf index·2^level. Once complete, its hash never changes. */
 export type TreeNode = { level: number; index: number; hash: Uint8Array }
@@ -9,7 +10,7 @@ export type NodePlace = Pick<TreeNode, 'level' | 'index'>
 /**
  * The hash of an inner node.
  *
- * @param sha256 the hash function.
+ * @param sha256 the hash function; of what it is handed it keeps nothing.
  * @param left 32 bytes.
  * @param right 32 bytes.
  * @returns SHA-256 of a one byte, left and right.
@@ -18,7 +19,11 @@ export type NodePlace = Pick<TreeNode, 'level' | 'index'>
  * @example toHex(nodeHash(sha256, left, right)).length // 64
  */
 export function nodeHash(sha256: Sha256, left: Uint8Array, right: Uint8Array): Uint8Array {
-  return sha256(joinBytes(nodePrefix, left, right))
+  if (left.length !== 32 || right.length !== 32)
+    return sha256(joinBytes(prefixed.subarray(0, 1), left, right))
+  prefixed.set(left, 1)
+  prefixed.set(right, 33)
+  return sha256(prefixed)
 }
 
 /**

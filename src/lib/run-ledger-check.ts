@@ -1,8 +1,8 @@
 import { type Caller, call, callPage } from '../../shared/call.ts'
 import { isOgeeError } from '../../shared/errors.ts'
 import { checkLedger } from '../../shared/ledger/check/check-ledger.ts'
-import type { SignatureTask } from '../../shared/ledger/check/entry-checker.ts'
 import { serverSource } from '../../shared/ledger/check/server-source.ts'
+import type { SignatureTask } from '../../shared/ledger/check/signed-in-receipt.ts'
 import { parseVerifierKey } from '../../shared/ledger/checkpoint.ts'
 import { NoSignatures, withCrypto } from './ledger-crypto.ts'
 import type { FromLedgerWorker, ToLedgerWorker } from './ledger-messages.ts'
@@ -32,6 +32,7 @@ export function ledgerServer(
     try {
       const report = await checkLedger(source, {
         sha256,
+        asText: (bytes) => oneEach.decode(bytes),
         run: withCrypto,
         key,
         kept,
@@ -45,6 +46,9 @@ export function ledgerServer(
     }
   }
 }
+
+/** Its name for a set that has a character for every byte. */
+const oneEach = new TextDecoder('latin1')
 
 const verifyAll = (tasks: readonly SignatureTask[]) =>
   withCrypto(({ verify }) =>

@@ -1,7 +1,7 @@
 import type { Connection } from 'mariadb'
 import { afterAll, beforeAll, expect, test } from 'vitest'
 import { makeClient } from '../../cli/client.ts'
-import { crypto } from '../../cli/ledger/crypto.ts'
+import { asText, crypto } from '../../cli/ledger/crypto.ts'
 import { verifyAll } from '../../cli/ledger/verify-all.ts'
 import { sequencePass } from '../../server/ledger/sequence.ts'
 import { checkLedger } from '../../shared/ledger/check/check-ledger.ts'
@@ -155,6 +155,7 @@ async function check(kept: readonly { size: number; note: string }[]) {
   const client = makeClient({ url: served.url, token }, memoryIo())
   return checkLedger(serverSource(client), {
     sha256: crypto.sha256,
+    asText,
     run: async (check) => check(crypto),
     key: scene.harness.deps.signer.key,
     kept: kept.map(({ size, note }) => ({ name: `the checkpoint over ${size}`, note })),

@@ -1,6 +1,8 @@
 import { afterAll, beforeAll, describe, expect, it } from 'vitest'
-import { readEntry } from '../../shared/ledger/check/entry-line.ts'
-import { agreesAtSight, rowDifference } from '../../shared/ledger/check/record-row.ts'
+import { asText } from '../../cli/ledger/crypto.ts'
+import { readAtSight } from '../../shared/ledger/check/at-sight.ts'
+import { entryLine, readEntry } from '../../shared/ledger/check/entry-line.ts'
+import { rowDifference } from '../../shared/ledger/check/record-row.ts'
 import { api, post } from '../support/server-client.ts'
 import { pointsOf, suspectPoints, trimBody } from '../support/server-factories.ts'
 import { addToken } from '../support/server-harness.ts'
@@ -14,6 +16,7 @@ beforeAll(async () => {
   const left = { unit: 'E-1', points: pointsOf({ gainPpm: 0.2 }), kind: 'verify', follows: trim.id }
   await post(scene.url, scene.station, trimBody(left))
   await post(scene.url, scene.engineer, trimBody({ unit: 'E-2 "½"' }))
+  await post(scene.url, scene.engineer, trimBody({ unit: 'E-4 ½' }))
   const suspect = await post(scene.url, scene.station, trimBody({ unit: 'E-3', points: suspectPoints() }))
   const reason = 'Looked at by eye.'
   const override = { kind: 'override', design: 'U18', unit: 'E-3', follows: suspect.id, reason }
@@ -56,28 +59,36 @@ describe('GET /ledger/entries', () => {
     const { entries } = await page()
     expect(entries.filter(({ document }) => typeof document === 'string')).toHaveLength(2)
     const records = entries.filter(({ row }) => row !== null)
-    expect(records).toHaveLength(5)
+    expect(records).toHaveLength(6)
     for (const { row, leaf } of records) {
       expect(rowDifference(row!, JSON.parse(Buffer.from(leaf!).toString()).body)).toBeNull()
     }
   })
 
   it('agrees at sight for measurements of tokens and people, and never where a field differs', async () => {
-    const { entries } = await page()
-    const rows = entries.flatMap(({ row, leaf }) =>
-      row && leaf ? [{ row, text: Buffer.from(leaf).toString() }] : [],
-    )
-    const seen = rows.filter(({ row, text }) => agreesAtSight(row, text))
-    expect(seen.map(({ row }) => row.unit)).toEqual(['E-1', 'E-1', 'E-2 "½"', 'E-3'])
-    for (const { row, text } of seen) {
+    const { lines, entries } = await page()
+    const seen = lines.flatMap((line, i) => {
+      const { leaf, ...entry } = entries[i]!
+      const sighted = readAtSight(Buffer.from(line), asText)
+      if (!sighted) return []
+      const { index, nodes, hash, row } = entry
+      expect(sighted).toEqual({ index, nodes, hash, record: row!.id, leaf })
+      return [{ entry, row: entry.row!, text: Buffer.from(leaf!).toString() }]
+    })
+    // What holds quotation marks is parsed.
+    expect(seen.map(({ row }) => row.unit)).toEqual(['E-1', 'E-1', 'E-4 ½', 'E-3'])
+    for (const { entry, row, text } of seen) {
       for (const [name, value] of Object.entries(row)) {
         if (name === 'attempt' || name === 'receipt' || name === 'notices') continue
         for (const other of [
           typeof value === 'number' ? value + 1 : `${String(value)}x`,
           value === null ? 0 : null,
+          `${String(value)}","x":"`,
         ]) {
           const changed = { ...row, [name]: other }
-          expect(agreesAtSight(changed, text), `${row.kind} ${name} ${String(other)}`).toBe(false)
+          const line = Buffer.from(entryLine({ ...entry, row: changed }, text))
+          expect(readEntry(line)?.row).toEqual(changed)
+          expect(readAtSight(line, asText), `${row.kind} ${name} ${String(other)}`).toBeNull()
           expect(rowDifference(changed, JSON.parse(text).body), name).toContain(name)
         }
       }

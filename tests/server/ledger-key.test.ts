@@ -2,6 +2,7 @@ import { copyFile, readdir, readFile, stat, writeFile } from 'node:fs/promises'
 import { join } from 'node:path'
 import { afterAll, beforeAll, describe, expect, it } from 'vitest'
 import { makeClient } from '../../cli/client.ts'
+import { asText } from '../../cli/ledger/crypto.ts'
 import { verifyAll } from '../../cli/ledger/verify-all.ts'
 import { sha256, verifyEd25519 } from '../../server/ledger/crypto.ts'
 import { readKeyFile } from '../../server/ledger/key-file.ts'
@@ -49,6 +50,7 @@ async function checkAll(kept: LedgerKey) {
   const source = serverSource(makeClient({ url: scene.url, token }, memoryIo()))
   return checkLedger(source, {
     sha256,
+    asText,
     run: async (check) => check(crypto),
     key: kept,
     kept: [],

@@ -8,7 +8,7 @@ import { type Command, type Context, everyFormat } from '../../command.ts'
 import type { ConnectionOptions } from '../../config.ts'
 import type { Io } from '../../io.ts'
 import { checkFolder } from '../../ledger/check-folder.ts'
-import { crypto } from '../../ledger/crypto.ts'
+import { asText, crypto } from '../../ledger/crypto.ts'
 import { names } from '../../ledger/export-folder.ts'
 import { readKept } from '../../ledger/kept-notes.ts'
 import { keyFor, keyOption } from '../../ledger/key-options.ts'
@@ -68,6 +68,7 @@ async function check(options: Options, context: Context): Promise<number> {
   const kept = (await Promise.all(options.against.map((path) => readKept(context.io, path)))).flat()
   const report = await checkLedger(serverSource(client), {
     sha256: crypto.sha256,
+    asText,
     run: async (check) => check(crypto),
     key,
     kept,

@@ -4,9 +4,10 @@ import { checkNote } from '../check-proof.ts'
 import { keyName, type LedgerKey, parseVerifierKey, verifierKey } from '../checkpoint.ts'
 import { type LedgerCrypto, type Sha256, toHex } from '../hash.ts'
 import { keysFrom } from '../key-chain.ts'
-import { EntryChecker, type SignatureTask, type SignedRoot } from './entry-checker.ts'
-import { type Entry, readEntry } from './entry-line.ts'
+import type { BytesAsText } from './at-sight.ts'
+import { EntryChecker, type SignedRoot } from './entry-checker.ts'
 import { collectFaults, type Faults, type LedgerFault } from './faults.ts'
+import type { SignatureTask } from './signed-in-receipt.ts'
 
 export type { LedgerFault } from './faults.ts'
 
@@ -16,7 +17,7 @@ export type LedgerSource = {
   /** All of them, oldest first. */
   checkpoints: () => Promise<readonly StoredCheckpoint[]>
   /** Some entries from an index on, as lines, and where to go on; null at the end. */
-  entries: (from: number) => Promise<{ lines: readonly Uint8Array[]; next: number | null; size: number }>
+  entries: (from: number) => Promise<{ lines: Iterable<Uint8Array>; next: number | null; size: number }>
   strays: () => Promise<readonly Stray[]>
 }
 
@@ -36,6 +37,7 @@ export type LedgerReport = {
 
 type Options = {
   sha256: Sha256
+  asText: BytesAsText
   /** Runs a check that needs signatures: at once where they can be checked at once, else when the answers are there. */
   run: <Checked>(check: (crypto: LedgerCrypto) => Checked) => Promise<Checked>
   /** The key that is kept. */
@@ -63,7 +65,8 @@ export async function checkLedger(source: LedgerSource, options: Options): Promi
   const { faults, keys, roots } = await options.run((crypto) =>
     checkNotes(crypto, { key, keyRows, stored, kept }),
   )
-  const checker = new EntryChecker(sha256, keys, roots, faults, options.verifyAll !== null)
+  const how = { sha256, asText: options.asText, withReceipts: options.verifyAll !== null }
+  const checker = new EntryChecker(how, keys, roots, faults)
   // Read while the page before is checked: the two take about the same time.
   let reading = source.entries(0)
   for (;;) {
@@ -73,7 +76,7 @@ export async function checkLedger(source: LedgerSource, options: Options): Promi
       // It is awaited in the next round; should it fail before, that is no failure that nobody hears of.
       reading.catch(() => undefined)
     }
-    await takePage(checker, lines.map(readEntry), options)
+    await takePage(checker, lines, options)
     onProgress(next ?? size, size)
     if (next === null) break
   }
@@ -121,10 +124,14 @@ function checkNotes(
 
 async function takePage(
   checker: EntryChecker,
-  entries: readonly (Entry | null)[],
+  lines: Iterable<Uint8Array>,
   { verifyAll }: Pick<Options, 'verifyAll'>,
 ): Promise<void> {
-  const tasks = entries.flatMap((entry) => checker.take(entry) ?? [])
+  const tasks: SignatureTask[] = []
+  for (const line of lines) {
+    const task = checker.take(line)
+    if (task) tasks.push(task)
+  }
   if (!verifyAll) return
   const good = await verifyAll(tasks)
   tasks.forEach((task, i) => {

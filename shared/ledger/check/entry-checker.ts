@@ -1,14 +1,14 @@
 import type { StoredRow } from '../../contract/ledger-entries.ts'
 import type { RecordBody } from '../../contract/record.ts'
-import { canonicalBytes, type Json } from '../canonical.ts'
 import { keyName, type LedgerKey } from '../checkpoint.ts'
 import { fromBase64, type Sha256, sameBytes, toHex } from '../hash.ts'
 import { leafHash } from '../leaf.ts'
-import { noticesHash, restoreReceipt } from '../receipt.ts'
-import type { Entry } from './entry-line.ts'
+import { type BytesAsText, readAtSight, type Sighted } from './at-sight.ts'
+import { type Entry, readEntry } from './entry-line.ts'
 import type { FaultKind, Faults } from './faults.ts'
 import { type GrowingTree, growingTree } from './growing-tree.ts'
-import { agreesAtSight, rowDifference } from './record-row.ts'
+import { rowDifference } from './record-row.ts'
+import { type SignatureTask, signedInReceipt } from './signed-in-receipt.ts'
 
 /** A root that was signed over so many entries. `name` says which one, in a sentence. */
 export type SignedRoot = {
@@ -19,15 +19,6 @@ export type SignedRoot = {
   kept: boolean
 }
 
-/** A signature that somebody has to check: that takes longest, and can be done aside. */
-export type SignatureTask = {
-  entry: number
-  record: string
-  publicKey: Uint8Array
-  bytes: Uint8Array
-  signature: Uint8Array
-}
-
 type Leaf = { at: string; body: unknown; kind: string }
 const decoder = new TextDecoder()
 
@@ -36,10 +27,11 @@ const decoder = new TextDecoder()
  * against bytes. Signatures of receipts are handed out, not checked here.
  *
  * Source: contract.md, Ledger; RFC 9162. Throws nothing for bad entries.
- * @example new EntryChecker(sha256, keys, roots, collectFaults()).finish() // { size: 0, records: 0 }
+ * @example new EntryChecker({ sha256, asText, withReceipts: true }, keys, roots, collectFaults()).finish().size // 0
  */
 export class EntryChecker {
   readonly #sha256: Sha256
+  readonly #asText: BytesAsText
   readonly #keys: ReadonlyMap<string, LedgerKey>
   readonly #roots: readonly SignedRoot[]
   readonly #faults: Faults
@@ -57,20 +49,19 @@ export class EntryChecker {
   readonly keysSeen: { key: string; at: string }[] = []
 
   /**
-   * @param sha256 the hash function.
+   * @param how the hash function; what gives bytes as text; whether signatures of receipts are to be handed out.
    * @param keys that the ledger was signed with, all of them vouched for.
    * @param roots signed, in the order of their sizes.
    * @param faults where to report.
-   * @param withReceipts whether signatures of receipts are to be handed out.
    */
   constructor(
-    sha256: Sha256,
+    { sha256, asText, withReceipts }: { sha256: Sha256; asText: BytesAsText; withReceipts: boolean },
     keys: readonly LedgerKey[],
     roots: readonly SignedRoot[],
     faults: Faults,
-    withReceipts = true,
   ) {
     this.#sha256 = sha256
+    this.#asText = asText
     this.#keys = new Map(keys.map((key) => [keyName(sha256, key), key]))
     this.#roots = roots
     this.#faults = faults
@@ -79,8 +70,26 @@ export class EntryChecker {
     this.#compareRoots()
   }
 
-  /** Takes the next entry; null for a line that could not be read. Gives the signature that has to be verified for it. */
-  take(entry: Entry | null): SignatureTask | null {
+  /** Takes the next entry's line. Gives the signature that has to be verified for it. */
+  take(line: Uint8Array): SignatureTask | null {
+    const sighted = readAtSight(line, this.#asText)
+    if (sighted?.index === this.#next) {
+      const hash = leafHash(this.#sha256, sighted.leaf)
+      if (toHex(hash) === sighted.hash) return this.#takeGood(line, sighted, hash)
+    }
+    return this.#takeAny(readEntry(line))
+  }
+
+  #takeGood(line: Uint8Array, { nodes, hash, record }: Sighted, bytes: Uint8Array): SignatureTask | null {
+    this.#grow(bytes, nodes, record)
+    this.#records++
+    const row = this.#withReceipts ? readEntry(line)?.row : null
+    const task = row ? this.#receiptOf(row, hash) : null
+    this.#next++
+    return task
+  }
+
+  #takeAny(entry: Entry | null): SignatureTask | null {
     if (entry === null) {
       this.#treeHolds = false
       this.#fault('entry-unreadable', `Entry ${this.#next} cannot be read.`)
@@ -140,23 +149,18 @@ export class EntryChecker {
         ? this.#fault('hash', `${at}: its bytes do not have the hash that is stored.`, record)
         : this.#fault('leaf-missing', `${at} has no leaf any more.`, record)
     }
-    this.#grow(hash, entry)
-    const text = decoder.decode(entry.leaf)
-    if (entry.row && agreesAtSight(entry.row, text)) {
-      this.#records++
-      return this.#receiptOf(entry, entry.row)
-    }
+    this.#grow(hash, entry.nodes, record)
     try {
-      const leaf = JSON.parse(text) as Leaf
+      const leaf = JSON.parse(decoder.decode(entry.leaf)) as Leaf
       return leaf.kind === 'record' ? this.#checkRecord(entry, leaf) : this.#checkOther(entry, leaf)
     } catch {
       return this.#fault('hash', `${at}: its bytes are no leaf of this format.`, record)
     }
   }
 
-  #grow(hash: Uint8Array, entry: Entry): void {
+  #grow(hash: Uint8Array, nodes: string, record: string | null): void {
     if (!this.#treeHolds) return
-    const level = this.#tree.add(hash, entry.nodes)
+    const level = this.#tree.add(hash, nodes)
     if (level === null) {
       this.#compareRoots()
       return
@@ -165,7 +169,7 @@ export class EntryChecker {
     const to = this.#next
     const from = to + 1 - 2 ** level
     const which = level === 0 ? `Entry ${to} has` : `Entries ${from} to ${to} have`
-    this.#fault('tree', `${which} another hash in the stored tree.`, entry.row?.id ?? null, from, to)
+    this.#fault('tree', `${which} another hash in the stored tree.`, record, from, to)
   }
 
   #compareRoots(): void {
@@ -193,34 +197,13 @@ export class EntryChecker {
     if (!row) return this.#fault('row-missing', `${at} ${body.id}: the table of records lacks it.`, body.id)
     const differs = rowDifference(row, body)
     if (differs !== null) return this.#fault('row', `${at} ${row.number}: ${differs}.`, body.id)
-    return this.#receiptOf(entry, row)
+    return this.#receiptOf(row, entry.hash ?? '')
   }
 
-  #receiptOf(entry: Entry, row: StoredRow): SignatureTask | null {
+  #receiptOf(row: StoredRow, hash: string): SignatureTask | null {
     if (!this.#withReceipts) return null
-    const key = this.#keys.get(row.receipt.key)
-    const signature = fromBase64(row.receipt.signature)
-    if (!key || signature?.length !== 64) {
-      const message = `Entry ${this.#next}, record ${row.number}: ${row.receipt.key}, named by its receipt, is no key of the ledger.`
-      return this.#fault('receipt', message, row.id)
-    }
-    const notices = noticesIn(row)
-    if (notices === null) {
-      return this.#fault(
-        'receipt',
-        `Entry ${this.#next}, record ${row.number}: its notices are no list.`,
-        row.id,
-      )
-    }
-    const promised = {
-      record: row.id,
-      leaf: entry.hash ?? '',
-      recordedAt: row.recordedAt,
-      notices: noticesHash(this.#sha256, notices),
-    }
-    const { signature: _, ...rest } = restoreReceipt(promised, row.receipt.key, signature)
-    const bytes = canonicalBytes(rest)
-    return { entry: this.#next, record: row.id, publicKey: key.publicKey, bytes, signature }
+    const signed = signedInReceipt(this.#sha256, this.#keys, row, { index: this.#next, hash })
+    return 'wrong' in signed ? this.#fault('receipt', signed.wrong, row.id) : signed
   }
 
   #checkOther(entry: Entry, { kind, body, at: time }: Leaf): null {
@@ -235,15 +218,5 @@ export class EntryChecker {
     if (bytes && toHex(this.#sha256(bytes)) === hash) return null
     const how = bytes ? 'are not those that were released' : 'are gone'
     return this.#fault('document', `${at}: the bytes of ${design}, revision ${revision}, ${how}.`)
-  }
-}
-
-function noticesIn({ notices }: StoredRow): Json[] | null {
-  if (notices === '[]') return []
-  try {
-    const parsed: unknown = JSON.parse(notices)
-    return Array.isArray(parsed) ? (parsed as Json[]) : null
-  } catch {
-    return null
   }
 }

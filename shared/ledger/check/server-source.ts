@@ -7,11 +7,13 @@ import type { LedgerSource } from './check-ledger.ts'
 
 /** Entries of a request: some megabytes. */
 const entriesAtOnce = 2_000
+const lineEnd = 10
 
 /** How a server is asked: by the command line or by the browser. */
 export type Asking = {
   call: <E extends Endpoint>(endpoint: E, input: InputOf<E>) => Promise<ReplyOf<E>>
-  page: <E extends Endpoint>(endpoint: E, input: InputOf<E>) => Promise<Uint8Array[]>
+  /** Bytes of all lines of an answer. */
+  page: <E extends Endpoint>(endpoint: E, input: InputOf<E>) => Promise<Uint8Array>
 }
 
 /**
@@ -30,9 +32,9 @@ export function serverSource(client: Asking): LedgerSource {
         client.call(listCheckpoints, { query: { order: 'oldest', limit: limits.pageMax, ...after } }),
       ),
     entries: async (from) => {
-      const lines = await client.page(listEntries, { query: { from, limit: entriesAtOnce } })
-      const last = lines.pop()
-      return { lines, ...endOf(last) }
+      const bytes = await client.page(listEntries, { query: { from, limit: entriesAtOnce } })
+      const last = bytes.lastIndexOf(lineEnd, bytes.length - 2) + 1
+      return { lines: linesIn(bytes.subarray(0, last)), ...endOf(bytes.subarray(last)) }
     },
     strays: async () => {
       const found: Awaited<ReturnType<LedgerSource['strays']>>[number][] = []
@@ -48,9 +50,18 @@ export function serverSource(client: Asking): LedgerSource {
   }
 }
 
+/** One at a time, so that what is made of a line lives no longer than its turn. */
+function* linesIn(bytes: Uint8Array): Generator<Uint8Array> {
+  for (let from = 0; from < bytes.length; ) {
+    const end = bytes.indexOf(lineEnd, from)
+    yield bytes.subarray(from, end)
+    from = end + 1
+  }
+}
+
 /** The last line says that nothing was cut. */
-function endOf(line: Uint8Array | undefined): { next: number | null; size: number } {
-  const text = line ? new TextDecoder().decode(line) : ''
+function endOf(line: Uint8Array): { next: number | null; size: number } {
+  const text = new TextDecoder().decode(line)
   const { end, next, size } = (text.startsWith('{"end":') ? JSON.parse(text) : {}) as Record<string, unknown>
   if (end === true && (next === null || typeof next === 'number') && typeof size === 'number') {
     return { next, size }
