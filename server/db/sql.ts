@@ -1,4 +1,4 @@
-import type { Connection } from 'mariadb'
+import type { Connection, QueryOptions } from 'mariadb'
 import { QueryTypes, type Sequelize, type Transaction } from 'sequelize'
 
 export type SqlValue = string | number | bigint | boolean | null | Date | Uint8Array
@@ -57,6 +57,26 @@ export const bounded = (sql: Sql): Sql => ({
   rows: (statement, values) =>
     sql.rows(`SET STATEMENT max_statement_time = ${readSeconds} FOR ${statement}`, values),
 })
+
+/** What a column comes as, without a model: numbers as numbers, times as the database writes them. */
+export type Cell = string | number | Buffer | null
+
+/**
+ * Rows as arrays, prepared once a connection, for those who read very many: reading them otherwise takes twice as long.
+ * Within a transaction only.
+ */
+export async function rowsOfCells<Row extends readonly Cell[]>(
+  { within: { transaction } }: Sql,
+  statement: string,
+  values: readonly SqlParameter[],
+): Promise<Row[]> {
+  if (!transaction) throw new Error('Rows of cells are read within a transaction.')
+  const { connection } = transaction as unknown as { connection: Connection }
+  const { text, bind } = spread(statement, values, () => '?')
+  // Sequelize's reading of columns, which stands in the connection's options, is left out: its types do not allow for that.
+  const options = { sql: text, rowsAsArray: true, dateStrings: true, typeCast: undefined }
+  return connection.execute<Row[]>(options as unknown as QueryOptions, bind)
+}
 
 function spread(
   statement: string,

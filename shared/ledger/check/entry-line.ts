@@ -37,21 +37,27 @@ const joint = ',"leaf":'
  */
 export function entryLine(head: EntryHead, leaf: string | null): string {
   const text = leaf ?? 'null'
-  return `${beforeLeaf(head, encoder.encode(text).length)}${text}${afterLeaf}`
+  const before = beforeLeaf({ ...head, row: JSON.stringify(head.row) }, encoder.encode(text).length)
+  return `${before}${text}${afterLeaf}`
 }
 
 /**
  * What stands before the leaf in a line, for a server that copies its bytes behind it and never makes a text of them.
  *
- * @param head all but the leaf.
+ * @param head all but the leaf; `row` as JSON.
  * @param leafBytes how many bytes the leaf has.
  * @returns the beginning of a line.
  * Throws nothing of its own.
  * Source: contract.md, Ledger.
- * @example beforeLeaf({ index: 0, nodes: '', hash: null, row: null }, 4)
+ * @example beforeLeaf({ index: 0, nodes: '', hash: null, row: 'null' }, 4)
  */
-export function beforeLeaf(head: EntryHead, leafBytes: number): string {
-  return `${start}${leafBytes},${JSON.stringify(head).slice(1, -1)}${joint}`
+export function beforeLeaf(
+  { index, nodes, hash, row, document }: Omit<EntryHead, 'row'> & { row: string },
+  leafBytes: number,
+): string {
+  const more = document === undefined ? '' : `,"document":${JSON.stringify(document)}`
+  const stored = hash === null ? 'null' : `"${hash}"`
+  return `${start}${leafBytes},"index":${index},"nodes":"${nodes}","hash":${stored},"row":${row}${more}${joint}`
 }
 
 /**
