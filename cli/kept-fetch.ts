@@ -2,11 +2,12 @@ import http from 'node:http'
 import https from 'node:https'
 
 /**
- * As fetch, over one kept connection and in one piece: for a process that asks one question after another, where fetch would
- * spend as long on its streams as the server on the answer. It follows no redirect and takes texts only.
+ * As fetch, over kept connections (one, unless more are said) and in one piece: for a process that asks one question after
+ * another, where fetch would spend as long on its streams as the server on the answer. It follows no redirect and takes
+ * texts only.
  */
-export function keptFetch(): typeof globalThis.fetch {
-  const options = { keepAlive: true, maxSockets: 1 }
+export function keptFetch(connections = 1): typeof globalThis.fetch {
+  const options = { keepAlive: true, maxSockets: connections }
   const agents = { 'http:': new http.Agent(options), 'https:': new https.Agent(options) }
   return (target, init = {}) =>
     new Promise((resolve, reject) => {
@@ -41,11 +42,16 @@ function answerOf(
   body: () => Promise<Buffer>,
 ): Response {
   const text = async () => (await body()).toString('utf8')
+  /** A large body has its memory for itself; a small one lies among others. */
+  const arrayBuffer = async () => {
+    const { buffer, byteOffset, length } = await body()
+    return length === buffer.byteLength ? buffer : buffer.slice(byteOffset, byteOffset + length)
+  }
   const answer = {
     ok: status >= 200 && status < 300,
     status,
     headers: { get: (name: string) => headers[name.toLowerCase()]?.toString() ?? null },
-    arrayBuffer: body,
+    arrayBuffer,
     text,
     json: async () => JSON.parse(await text()) as unknown,
   }

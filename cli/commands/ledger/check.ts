@@ -7,6 +7,7 @@ import { serverSource } from '../../../shared/ledger/check/server-source.ts'
 import { type Command, type Context, everyFormat } from '../../command.ts'
 import type { ConnectionOptions } from '../../config.ts'
 import type { Io } from '../../io.ts'
+import { keptFetch } from '../../kept-fetch.ts'
 import { checkFolder } from '../../ledger/check-folder.ts'
 import { asText, crypto } from '../../ledger/crypto.ts'
 import { names } from '../../ledger/export-folder.ts'
@@ -63,7 +64,8 @@ export const ledgerCheckCommand: Command<Options> = {
 
 async function check(options: Options, context: Context): Promise<number> {
   if (options.folder !== undefined) return await checkExported(options.folder, options, context)
-  const client = await connect(options, context)
+  // One for the entries, one for what belongs to none of them.
+  const client = await connect(options, context, keptFetch(2))
   const key = await keyFor(options.key, client)
   const kept = (await Promise.all(options.against.map((path) => readKept(context.io, path)))).flat()
   const report = await checkLedger(serverSource(client), {

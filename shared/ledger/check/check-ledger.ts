@@ -67,22 +67,19 @@ export async function checkLedger(source: LedgerSource, options: Options): Promi
   )
   const how = { sha256, asText: options.asText, withReceipts: options.verifyAll !== null }
   const checker = new EntryChecker(how, keys, roots, faults)
-  // Read while the page before is checked: the two take about the same time.
+  // Both keep the server busy while entries are checked here: it takes about as long.
+  const straying = ahead(source.strays())
   let reading = source.entries(0)
   for (;;) {
     const { lines, next, size } = await reading
-    if (next !== null) {
-      reading = source.entries(next)
-      // It is awaited in the next round; should it fail before, that is no failure that nobody hears of.
-      reading.catch(() => undefined)
-    }
+    if (next !== null) reading = ahead(source.entries(next))
     await takePage(checker, lines, options)
     onProgress(next ?? size, size)
     if (next === null) break
   }
   const { size, records } = checker.finish()
   checkKeys(sha256, keyRows, keys, checker.keysSeen, faults)
-  for (const { message, record } of await source.strays()) {
+  for (const { message, record } of await straying) {
     faults.add({ what: 'stray', entry: null, to: null, record, message })
   }
   const found = faults.count()
@@ -95,6 +92,12 @@ export async function checkLedger(source: LedgerSource, options: Options): Promi
     found,
     faults: faults.list(),
   }
+}
+
+/** What is awaited later; should it fail before, that is no failure that nobody hears of. */
+function ahead<T>(asked: Promise<T>): Promise<T> {
+  asked.catch(() => undefined)
+  return asked
 }
 
 type Notes = {
