@@ -7,47 +7,52 @@ import type { Sql } from '../db/sql.ts'
  */
 
 const of = (path: string) => `JSON_VALUE(CONVERT(l.body USING utf8mb4), '$.${path}')`
-const sameWriter = `t.at <=> l.at AND t.by_id <=> ${of('by.id')} AND t.id <=> ${of('id')}`
+const sameWriter = (table: string) =>
+  `${table}.at <=> l.at AND ${table}.by_id <=> ${of('by.id')} AND ${table}.id <=> ${of('id')}`
 
-/** By kind of leaf: the table, what else it is joined with, and when a row agrees with its leaf. */
+/** By kind of leaf: the table, under which name it is joined, what else with it, and when a row agrees with its leaf. */
 const kinds = [
   {
     kind: 'finding',
     table: 'findings',
-    joins: 'LEFT JOIN records r ON r.id = t.record_id',
-    agrees: `${sameWriter} AND t.record_id <=> ${of('subject.record')}
-      AND t.design <=> COALESCE(${of('subject.design')}, r.design) AND t.lot <=> COALESCE(${of('subject.lot')}, r.lot)`,
+    as: 'f',
+    joins: 'LEFT JOIN records r ON r.id = f.record_id',
+    agrees: `${sameWriter('f')} AND f.record_id <=> ${of('subject.record')}
+      AND f.design <=> COALESCE(${of('subject.design')}, r.design) AND f.lot <=> COALESCE(${of('subject.lot')}, r.lot)`,
   },
   {
     kind: 'answer',
     table: 'finding_answers',
+    as: 'a',
     joins: '',
-    agrees: `${sameWriter} AND t.finding_id <=> ${of('finding')}
-      AND t.closes <=> IF(${of('act')} = 'close', ${of('finding')}, NULL)`,
+    agrees: `${sameWriter('a')} AND a.finding_id <=> ${of('finding')}
+      AND a.closes <=> IF(${of('act')} = 'close', ${of('finding')}, NULL)`,
   },
   {
     kind: 'sign-off',
     table: 'lot_sign_offs',
-    joins: 'LEFT JOIN lots o ON o.id = t.lot_id LEFT JOIN designs d ON d.id = o.design_id',
-    agrees: `t.at <=> l.at AND t.by_name <=> ${of('signedBy')} AND o.lot_key <=> ${of('lot')}
+    as: 's',
+    joins: 'LEFT JOIN lots o ON o.id = s.lot_id LEFT JOIN designs d ON d.id = o.design_id',
+    agrees: `s.at <=> l.at AND s.by_name <=> ${of('signedBy')} AND o.lot_key <=> ${of('lot')}
       AND d.design_key <=> ${of('design')}`,
   },
 ] as const
 
-/** Of the leaves within bounds: those whose row is not there, or says something else. */
+/** Of the leaves within bounds: those whose row is not there, or says something else. One pass over them for all kinds. */
 export async function statementsOtherwise(sql: Sql, after: number, to: number): Promise<Stray[]> {
-  const found: Stray[] = []
-  for (const { kind, table, joins, agrees } of kinds) {
-    const rows = await sql.rows<{ id: number }>(
-      `SELECT l.id FROM ledger_leaves l LEFT JOIN ${table} t ON t.leaf_id = l.id ${joins}
-        WHERE l.id > ? AND l.id <= ? AND l.kind = ? AND NOT (${agrees}) ORDER BY l.id LIMIT 100`,
-      [after, to, kind],
-    )
-    found.push(
-      ...rows.map(({ id }) => told(table, id, `says other than leaf ${id}, a ${kind}, or is not there`)),
-    )
-  }
-  return found
+  const joins = kinds.map(
+    ({ table, as, joins }) => `LEFT JOIN ${table} ${as} ON ${as}.leaf_id = l.id ${joins}`,
+  )
+  const agree = kinds.map(({ kind, agrees }) => `WHEN '${kind}' THEN ${agrees}`)
+  const rows = await sql.rows<{ id: number; kind: string }>(
+    `SELECT l.id, l.kind FROM ledger_leaves l ${joins.join(' ')}
+      WHERE l.id > ? AND l.id <= ? AND l.kind IN (?) AND NOT CASE l.kind ${agree.join(' ')} END ORDER BY l.id LIMIT 100`,
+    [after, to, kinds.map(({ kind }) => kind)],
+  )
+  return rows.map(({ id, kind }) => {
+    const { table } = kinds.find((one) => one.kind === kind)!
+    return told(table, id, `says other than leaf ${id}, a ${kind}, or is not there`)
+  })
 }
 
 /** Rows whose leaf is not there, or is about something else. */

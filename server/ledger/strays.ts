@@ -15,8 +15,7 @@ export async function readStrays(sql: Sql, after: number): Promise<{ items: Stra
   const to = after + atOnce
   const items = [
     ...(await leavesWithoutPlace(sql, after, to)),
-    ...(await recordsWithoutLeaf(sql, after, to)),
-    ...(await recordsElsewhere(sql, after, to)),
+    ...(await recordsAstray(sql, after, to)),
     ...(await statementsOtherwise(sql, after, to)),
   ]
   const [last] = await sql.rows<{ id: number }>(
@@ -51,35 +50,27 @@ async function leavesWithoutPlace(sql: Sql, after: number, to: number): Promise<
   }))
 }
 
-async function recordsWithoutLeaf(sql: Sql, after: number, to: number): Promise<Stray[]> {
-  const rows = await sql.rows<{ id: string; number: number }>(
-    `SELECT r.id, r.number FROM records r LEFT JOIN ledger_leaves l ON l.id = r.leaf_id
-      WHERE r.leaf_id > ? AND r.leaf_id <= ? AND l.id IS NULL ORDER BY r.leaf_id LIMIT 100`,
-    [after, to],
-  )
-  return rows.map(({ id, number }) => ({
-    what: 'record',
-    name: String(number),
-    record: id,
-    message: `Record ${number} has no leaf: the ledger does not know it.`,
-  }))
-}
-
-/** Rows that stand under another unit or station than their own words say: what decides where they are found, and by whom. */
-async function recordsElsewhere(sql: Sql, after: number, to: number): Promise<Stray[]> {
-  const rows = await sql.rows<{ id: string; number: number }>(
-    `SELECT r.id, r.number FROM records r LEFT JOIN units u ON u.id = r.unit_id LEFT JOIN designs d ON d.id = u.design_id
-      LEFT JOIN tokens t ON t.id = r.by_id
-      WHERE r.leaf_id > ? AND r.leaf_id <= ? AND (NOT (u.serial <=> r.unit) OR NOT (d.design_key <=> r.design)
-        OR (t.id IS NOT NULL AND NOT (t.station_id <=> r.station_id))
+/**
+ * Rows without a leaf; and rows that stand under another unit or station than their own words say: what decides where they
+ * are found, and by whom.
+ */
+async function recordsAstray(sql: Sql, after: number, to: number): Promise<Stray[]> {
+  const rows = await sql.rows<{ id: string; number: number; leaf: number | null }>(
+    `SELECT r.id, r.number, l.id AS leaf FROM records r LEFT JOIN ledger_leaves l ON l.id = r.leaf_id
+      LEFT JOIN units u ON u.id = r.unit_id LEFT JOIN designs d ON d.id = u.design_id LEFT JOIN tokens t ON t.id = r.by_id
+      WHERE r.leaf_id > ? AND r.leaf_id <= ? AND (l.id IS NULL OR NOT (u.serial <=> r.unit)
+        OR NOT (d.design_key <=> r.design) OR (t.id IS NOT NULL AND NOT (t.station_id <=> r.station_id))
         OR (r.station IS NULL) <> (r.station_id IS NULL)) ORDER BY r.leaf_id LIMIT 100`,
     [after, to],
   )
-  return rows.map(({ id, number }) => ({
+  return rows.map(({ id, number, leaf }) => ({
     what: 'record',
     name: String(number),
     record: id,
-    message: `Record ${number} stands under another unit or station than it says.`,
+    message:
+      leaf === null
+        ? `Record ${number} has no leaf: the ledger does not know it.`
+        : `Record ${number} stands under another unit or station than it says.`,
   }))
 }
 
