@@ -1,38 +1,54 @@
-/** How many requests share a transaction, and how many transactions are under way at once in this process. */
-const shareMax = 64
-const underWayMax = 2
 /**
- * One at a time makes the fullest transactions. A second one starts when it is full already, so that one computes while the
- * other waits for the disk; and when one takes longer than this, waiting for a lock, so that it holds up nobody.
+ * What shares a transaction: so many requests, of so many points and readings in all. A long sweep weighs as much as hundreds
+ * of short measurements, and a statement may have 16 MiB. One request always goes, whatever it weighs.
+ */
+export const share = { requests: 128, weight: 8_192 } as const
+/** Transactions that are under way at once in this process. */
+const underWayMax = 3
+/**
+ * One at a time makes the fullest transactions. Another starts when it is full already, so that one computes while others
+ * wait for the database; and when one takes longer than this, waiting for a lock, so that it holds up nobody.
  */
 const slowMs = 40
 
 type Waiting<In, Out> = { input: In; resolve: (out: Out) => void; reject: (error: unknown) => void }
 
 /**
- * Lets requests that arrive while others are worked on share the next transaction. Nobody waits artificially: the first
- * goes at once and alone, and what queued behind it goes together.
+ * Lets requests that arrive at the same moment, or while others are worked on, share a transaction. Nobody waits
+ * artificially: the first goes with those that were read from their sockets in the same turn of the event loop.
  */
 export function coalesce<In, Out>(
   work: (inputs: readonly In[]) => Promise<Out[]>,
+  weightOf: (input: In) => number,
 ): (input: In) => Promise<Out> {
   const queue: Waiting<In, Out>[] = []
   let underWay = 0
+  let pumping = false
   let waitingForSlow = false
 
-  const start = () => {
-    if (queue.length === 0 || underWay >= underWayMax) return
+  const start = (count: number) => {
+    if (count === 0 || underWay >= underWayMax) return
     underWay++
-    void run(queue.splice(0, shareMax))
+    void run(queue.splice(0, count))
   }
   const pump = () => {
-    if (underWay === 0 || queue.length >= shareMax) start()
+    if (underWay === 0) start(nextShare(queue, weightOf).count)
+    const { count, isFull } = nextShare(queue, weightOf)
+    if (isFull) start(count)
     if (queue.length === 0 || waitingForSlow) return
     waitingForSlow = true
     setTimeout(() => {
       waitingForSlow = false
-      start()
+      start(nextShare(queue, weightOf).count)
     }, slowMs)
+  }
+  const pumpSoon = () => {
+    if (pumping) return
+    pumping = true
+    setImmediate(() => {
+      pumping = false
+      pump()
+    })
   }
   const run = async (batch: Waiting<In, Out>[]) => {
     try {
@@ -44,12 +60,25 @@ export function coalesce<In, Out>(
       for (const one of batch) one.reject(error)
     } finally {
       underWay--
-      pump()
+      pumpSoon()
     }
   }
   return (input) =>
     new Promise((resolve, reject) => {
       queue.push({ input, resolve, reject })
-      pump()
+      pumpSoon()
     })
+}
+
+/** How many of those in front go together, and whether no more would fit. */
+function nextShare<In>(
+  queue: readonly { input: In }[],
+  weightOf: (input: In) => number,
+): { count: number; isFull: boolean } {
+  let weight = 0
+  for (const [count, { input }] of queue.entries()) {
+    weight += weightOf(input)
+    if (count === share.requests || (count > 0 && weight > share.weight)) return { count, isFull: true }
+  }
+  return { count: queue.length, isFull: queue.length === share.requests }
 }

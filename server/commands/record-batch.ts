@@ -1,7 +1,9 @@
 import { isOgeeError } from '../../shared/errors.ts'
 import { asOutage } from '../db/failure.ts'
 import type { Principal } from '../http/principal.ts'
+import { share } from './coalesce.ts'
 import type { Asked, Recorded, RecordOne } from './recorder.ts'
+import { weightOf } from './recording/job.ts'
 
 /** A line with what it asks for, or with the reason why it cannot be read. */
 export type BatchLine = { line: number; key: string | null } & (
@@ -18,9 +20,6 @@ type Deps = {
   /** Who is asking, asked again before each step; throws once they may no longer. */
   principalNow: () => Promise<Principal>
 }
-
-/** Lines that go to the recorder together: enough to share a transaction, few enough that others get their turn. */
-const stepMax = 64
 
 /**
  * Records the lines of a block in their order and tells what became of each, some at a time.
@@ -53,12 +52,16 @@ async function recordStep(
     (found) => ({ found }),
     (error: unknown) => ({ found: null, error }),
   )
-  const started: { one: BatchLine; outcome: Promise<LineOutcome> }[] = []
-  for (const one of step) {
-    const before = started.filter((earlier) => maySharePlace(earlier.one, one)).map(({ outcome }) => outcome)
-    started.push({ one, outcome: recordLine(record, principal, one, before) })
-  }
-  return await Promise.all(started.map(({ outcome }) => outcome))
+  const startedByUnit = new Map<string, { one: BatchLine; outcome: Promise<LineOutcome> }[]>()
+  const outcomes = step.map((one) => {
+    const unit = one.asked === null ? '' : `${one.asked.request.design} ${one.asked.request.unit}`
+    const earlier = startedByUnit.get(unit) ?? []
+    const before = earlier.filter((other) => maySharePlace(other.one, one)).map(({ outcome }) => outcome)
+    const outcome = recordLine(record, principal, one, before)
+    startedByUnit.set(unit, [...earlier, { one, outcome }])
+    return outcome
+  })
+  return await Promise.all(outcomes)
 }
 
 /** Records a line once those before it at its place are done with: two transactions may end in either order. */
@@ -103,19 +106,25 @@ function obstacleOf(outcome: LineOutcome): { error: unknown } | null {
 }
 
 /**
- * Cuts lines into steps. Within a step places are under way at once, so a key that comes again waits for the next one, and
- * what is said about a record (which may be of a line just before) stands alone.
+ * Cuts lines into steps that can share a transaction, so that others get their turn between two. Within a step places are
+ * under way at once, so a key that comes again waits for the next one, and what is said about a record (which may be of a
+ * line just before) stands alone.
  */
 function* stepsOf(lines: Iterable<BatchLine>): Generator<BatchLine[]> {
   let step: BatchLine[] = []
+  let weight = 0
   let keys = new Set<string>()
   for (const line of lines) {
     const alone = isStatement(line)
-    if (step.length >= stepMax || alone || (line.key !== null && keys.has(line.key))) {
+    const more = line.asked === null ? 0 : weightOf(line.asked.request)
+    const isFull = step.length >= share.requests || weight + more > share.weight
+    if (isFull || alone || (line.key !== null && keys.has(line.key))) {
       if (step.length > 0) yield step
       step = []
+      weight = 0
       keys = new Set()
     }
+    weight += more
     step.push(line)
     if (line.key !== null) keys.add(line.key)
     if (alone) {

@@ -4,6 +4,7 @@ import type { Database } from '../db/connection.ts'
 import type { Sql } from '../db/sql.ts'
 import { transaction } from '../db/transaction.ts'
 import type { Signer } from '../ledger/signer.ts'
+import { share } from './coalesce.ts'
 import { decideAll } from './recording/decide-all.ts'
 import type { Job, Outcome } from './recording/job.ts'
 import { findKeys, KeyHeld, KeyJustUsed, keyOf, takeKeys } from './recording/keys.ts'
@@ -132,7 +133,7 @@ let counter = 0
 /** Ids of one millisecond sort in the order in which they were made; the counter starts over long before it overflows. */
 function sequence(i: number): number {
   if (i === 0) counter = (counter + 1) % 0x7f_ff_ff
-  return counter * 128 + Math.min(i, 127)
+  return counter * share.requests + Math.min(i, share.requests - 1)
 }
 
 function keyReused(): OgeeError {

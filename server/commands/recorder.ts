@@ -6,7 +6,7 @@ import { maySeeDesign } from '../policies/may-see.ts'
 import { coalesce } from './coalesce.ts'
 import { inFlight, recordTrims } from './record-trims.ts'
 import { checkRequest } from './recording/check-request.ts'
-import { bodyHashOf, type Job, recorderOf, type StoredRecord } from './recording/job.ts'
+import { bodyHashOf, type Job, recorderOf, type StoredRecord, weightOf } from './recording/job.ts'
 import { keyOf } from './recording/keys.ts'
 import { recordNumbers } from './recording/record-numbers.ts'
 
@@ -17,7 +17,10 @@ export type RecordOne = (asked: Asked) => Promise<Recorded>
 /** The one door to recording for requests that come one by one. */
 export function createRecorder(deps: Pick<Deps, 'database' | 'signer' | 'now' | 'notifyLedger'>): RecordOne {
   const recording = { ...deps, numbers: recordNumbers(deps.database) }
-  const record = coalesce((jobs: readonly Job[]) => recordTrims(recording, jobs))
+  const record = coalesce(
+    (jobs: readonly Job[]) => recordTrims(recording, jobs),
+    (job) => weightOf(job.request),
+  )
   const inWork = new Set<string>()
 
   return async (asked) => {

@@ -1,7 +1,7 @@
-import { createHash, createPublicKey, type KeyObject, verify as verifySignature } from 'node:crypto'
+import { createPublicKey, hash, type KeyObject, verify as verifySignature } from 'node:crypto'
 import type { Sha256, Verify } from '../../shared/ledger/hash.ts'
 
-export const sha256: Sha256 = (bytes) => createHash('sha256').update(bytes).digest()
+export const sha256: Sha256 = (bytes) => hash('sha256', bytes, 'buffer')
 
 /** DER of an Ed25519 public key is this and the 32 bytes (RFC 8410). */
 const spkiStart = Buffer.from('302a300506032b6570032100', 'hex')

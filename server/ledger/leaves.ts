@@ -1,20 +1,17 @@
-import { canonicalBytes, type Json } from '../../shared/ledger/canonical.ts'
-import { type LeafKind, leafBytes, leafHash } from '../../shared/ledger/leaf.ts'
+import type { Json } from '../../shared/ledger/canonical.ts'
+import { type LeafKind, writeLeaf } from '../../shared/ledger/leaf.ts'
 import { type Sql, sqlTime } from '../db/sql.ts'
 import { sha256 } from './crypto.ts'
 
-/** A leaf that is ready to be stored: the canonical bytes of its body, made once, and the hash of the whole. */
-export type NewLeaf = { kind: LeafKind; at: string; body: Buffer; hash: Buffer }
+/** A leaf that is ready to be stored: the canonical form of its body, made once, and the hash of the whole. */
+export type NewLeaf = { kind: LeafKind; at: string; text: string; body: Buffer; hash: Buffer }
 
 export function newLeaf(kind: LeafKind, at: string, body: Json): NewLeaf {
-  const bytes = canonicalBytes(body)
-  return {
-    kind,
-    at,
-    body: Buffer.from(bytes),
-    hash: Buffer.from(leafHash(sha256, leafBytes(kind, at, bytes))),
-  }
+  const { text, bytes, hash } = writeLeaf(sha256, kind, at, body)
+  return { kind, at, text, body: asBuffer(bytes), hash: asBuffer(hash) }
 }
+
+const asBuffer = ({ buffer, byteOffset, length }: Uint8Array) => Buffer.from(buffer, byteOffset, length)
 
 /**
  * Stores leaves and their place in the queue, within the transaction of what they tell about.

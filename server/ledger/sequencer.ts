@@ -7,8 +7,9 @@ import type { Signer } from './signer.ts'
 
 /** Leaves of other servers, and of those that died, are found by looking. Milliseconds. */
 const pollMs = 250
-/** Records that arrive together share a pass. Milliseconds. */
+/** Records that arrive together share a pass; while more and more arrive, passes start no closer than this. Milliseconds. */
 const gatherMs = 20
+const apartMs = 100
 const afterFailureMs = 1_000
 
 export type Sequencer = {
@@ -37,6 +38,7 @@ export function startSequencer(
 ): Sequencer {
   let timer: NodeJS.Timeout | undefined
   let dueAt = Number.POSITIVE_INFINITY
+  let startedAt = Number.NEGATIVE_INFINITY
   let running: Promise<unknown> = Promise.resolve()
   let stopped = false
 
@@ -47,6 +49,7 @@ export function startSequencer(
     dueAt = at
     timer = setTimeout(() => {
       dueAt = Number.POSITIVE_INFINITY
+      startedAt = Date.now()
       running = onePass()
     }, ms)
   }
@@ -69,7 +72,7 @@ export function startSequencer(
   }
   schedule(0)
   return {
-    notify: () => schedule(gatherMs),
+    notify: () => schedule(Math.max(gatherMs, startedAt + apartMs - Date.now())),
     drain: async () => {
       await running
       let pass: PassResult

@@ -1,4 +1,4 @@
-import { canonicalText } from './canonical.ts'
+import { canonicalText, type Json } from './canonical.ts'
 import { joinBytes, type Sha256 } from './hash.ts'
 
 /** What a leaf can be about (contract.md, Ledger). */
@@ -33,11 +33,38 @@ const prefixed = new Uint8Array(16 * 1024)
  * // '{"at":"2026-01-02T03:04:05.678Z","body":{},"kind":"key"}'
  */
 export function leafBytes(kind: LeafKind, at: string, body: Uint8Array): Uint8Array {
-  return joinBytes(
-    encoder.encode(`{"at":${canonicalText(at)},"body":`),
-    body,
-    encoder.encode(`,"kind":${canonicalText(kind)}}`),
-  )
+  const [before, after] = around(kind, at)
+  return joinBytes(encoder.encode(before), body, encoder.encode(after))
+}
+
+const around = (kind: LeafKind, at: string) =>
+  [`{"at":${canonicalText(at)},"body":`, `,"kind":${canonicalText(kind)}}`] as const
+
+/**
+ * A leaf to be, written once: what `leafBytes` and `leafHash` give for the canonical form of a body, without copies.
+ *
+ * @param sha256 the hash function.
+ * @param kind what the leaf is about.
+ * @param at when, ISO 8601 with milliseconds and Z: ASCII, as lengths of text and of bytes are taken for the same.
+ * @param body what it says.
+ * @returns the body's canonical text, the same as bytes (a part of a larger buffer), and the leaf's 32-byte hash.
+ * @throws as `canonicalText`, for what JSON cannot say.
+ * Source: RFC 8785 section 3.2.3; RFC 9162 section 2.1.1.
+ * @example writeLeaf(sha256, 'key', '2026-01-02T03:04:05.678Z', {}).text // '{}'
+ */
+export function writeLeaf(
+  sha256: Sha256,
+  kind: LeafKind,
+  at: string,
+  body: Json,
+): { text: string; bytes: Uint8Array; hash: Uint8Array } {
+  const [before, after] = around(kind, at)
+  const whole = `\0${before}${canonicalText(body)}${after}`
+  const hashed = encoder.encode(whole)
+  // A part of the one text that was put together for encoding: the pieces it was made from can go.
+  const text = whole.slice(1 + before.length, whole.length - after.length)
+  const bytes = hashed.subarray(1 + before.length, hashed.length - after.length)
+  return { text, bytes, hash: sha256(hashed) }
 }
 
 /**

@@ -31,17 +31,16 @@ export function noticesHash(sha256: Sha256, notices: readonly Json[]): string | 
 /**
  * A signed receipt: the server's promise, which somebody else keeps, that a record will be in the ledger.
  *
- * @param sha256 the hash function.
  * @param promised record id, leaf hash in hex, time of recording (ISO 8601 with Z), hash of the notices if any.
- * @param key whose signature it is.
+ * @param key short name of the key whose signature it is, as `keyName` makes it.
  * @param sign Ed25519 under that key.
  * @returns the receipt; `includedBy` is 60 s after `recordedAt`.
  * Throws nothing of its own.
  * Source: contract.md, Ledger; RFC 8785 for the signed bytes; RFC 8032 for the signature.
- * @example signReceipt(sha256, promised, key, sign).format // 'ogee.receipt/1'
+ * @example signReceipt(promised, name, sign).format // 'ogee.receipt/1'
  */
-export function signReceipt(sha256: Sha256, promised: Promised, key: LedgerKey, sign: Sign): Receipt {
-  const rest = unsigned(promised, keyName(sha256, key))
+export function signReceipt(promised: Promised, key: string, sign: Sign): Receipt {
+  const rest = unsigned(promised, key)
   return { ...rest, signature: toBase64(sign(canonicalBytes(rest))) }
 }
 

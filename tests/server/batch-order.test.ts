@@ -4,6 +4,7 @@ import type { Asked, Recorded } from '../../server/commands/recorder.ts'
 import type { Principal } from '../../server/http/principal.ts'
 import { recordRequest } from '../../shared/contract/record.ts'
 import { OgeeError } from '../../shared/errors.ts'
+import { limits } from '../../shared/limits.ts'
 import { trimBody } from '../support/server-factories.ts'
 
 const principalNow = async () => ({ kind: 'person', name: 'x' }) as Principal
@@ -60,6 +61,12 @@ describe('lines of one place in a block', () => {
       new Set(['k-8']),
     ])
     expect(outcomes.map((one) => one.line)).toEqual([1, 2, 3, 4, 5, 6, 7, 8])
+  })
+
+  it('of long sweeps go fewer at a time, so that what they write fits a statement', async () => {
+    const points = Array.from({ length: limits.pointsMax }, (_, code) => ({ code, measured: code * 1e-5 }))
+    const { begun } = await run([1, 2, 3].map((n) => line(n, { unit: `U-${n}`, points })))
+    expect(begun).toEqual([['k-1', 'k-2'], ['k-3']])
   })
 
   it('go on after a refusal, and are not tried after an outage', async () => {

@@ -209,6 +209,18 @@ describe('ASVS V2.4.1, V5.2.1 bounds of a block', () => {
     ])
   })
 
+  it('8 MiB of the longest sweeps: recorded, although their records together are longer than a statement may be', async () => {
+    const points = Array.from({ length: limits.pointsMax }, (_, i) => ({
+      code: i * 64,
+      measured: (i * 64 * 10) / 2 ** 18 + Math.sin(i) * 1e-6,
+    }))
+    const sweeps = Array.from({ length: 24 }, (_, i) => line({ unit: `SWEEP-${i}`, points }))
+    expect(ndjson(sweeps).length).toBeLessThan(limits.batchMaxBytes)
+    const { outcomes, end } = await send(sweeps)
+    expect(end).toMatchObject({ lines: 24, recorded: 24, refused: 0 })
+    expect(JSON.stringify(outcomes).length).toBeGreaterThan(16 * 1024 * 1024)
+  }, 120_000)
+
   it("each line counts against the token's allowance; a block that goes over is refused whole", async () => {
     const { deps } = scene.harness
     const small = await listen({ ...deps, quotas: { ...deps.quotas, requestsPerTokenMinute: 50 } })

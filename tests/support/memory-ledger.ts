@@ -2,7 +2,7 @@ import { sha256 } from '../../server/ledger/crypto.ts'
 import type { Proof } from '../../shared/contract/proof.ts'
 import { canonicalBytes, type Json } from '../../shared/ledger/canonical.ts'
 import { entryLine } from '../../shared/ledger/check/entry-line.ts'
-import { signCheckpoint, verifierKey } from '../../shared/ledger/checkpoint.ts'
+import { keyName, signCheckpoint, verifierKey } from '../../shared/ledger/checkpoint.ts'
 import { toBase64, toHex } from '../../shared/ledger/hash.ts'
 import { type LeafKind, leafBytes, leafHash } from '../../shared/ledger/leaf.ts'
 import { inclusionParts, proofHashes } from '../../shared/ledger/proof.ts'
@@ -80,7 +80,7 @@ export function memoryLedger(records: readonly RecordBody[], signer = testKey())
     receiptOf: (record: number) => {
       const { id, recordedAt } = records[record]!
       const promised = { record: id, leaf: toHex(leaves[record + 1]!.hash), recordedAt }
-      return signReceipt(sha256, promised, signer.key, signer.sign)
+      return signReceipt(promised, keyName(sha256, signer.key), signer.sign)
     },
   }
 }

@@ -35,8 +35,14 @@ type NoticeCode =
   | 'withdrawn'
   | 'replayed'
 
-/** The fields that every record has, whatever its kind. */
-export function commonBody(context: Context) {
+/** What a kind of record says for itself; the rest is the same for all. */
+export type Own = Pick<
+  RecordBody,
+  'lot' | 'pass' | 'follows' | 'applied' | 'effects' | 'points' | 'result' | 'verdict' | 'accepted'
+>
+
+/** Every field by its name: objects spread into one another made a third of the work of a decision. */
+export function bodyOf(context: Context, own: Own): RecordBody {
   const { job, id, number, recordedAt, revision, place, instrument } = context
   const { request, recorder } = job
   return {
@@ -47,19 +53,27 @@ export function commonBody(context: Context) {
     unit: request.unit,
     channel: place.channel,
     range: place.range,
-    lot: request.lot ?? null,
+    lot: own.lot,
     design: revision.design,
     revision: revision.number,
     designHash: revision.hash,
+    pass: own.pass,
+    follows: own.follows,
+    applied: own.applied,
+    effects: own.effects,
+    points: own.points,
     conditions: request.conditions ?? {},
-    ...(instrument === null ? {} : { instrument: instrument.facts }),
+    instrument: instrument?.facts,
     reason: request.reason ?? null,
     claimed: request.claimed ?? null,
+    result: own.result,
+    verdict: own.verdict,
+    accepted: own.accepted,
     by: recorder.by,
     station: recorder.station?.name ?? null,
     measuredAt: measuredAtOf(request),
     recordedAt,
-  } as const
+  }
 }
 
 export function lastOf({ id, recordedAt, job }: Context): PlaceState['last'] {

@@ -8,7 +8,7 @@ import { codesOn } from '../../../shared/solver/codes.ts'
 import type { PreviousPass } from '../../../shared/solver/learn.ts'
 import { verifyPoints } from '../../../shared/solver/verify.ts'
 import { channelOf, designOf } from './catalogue.ts'
-import { type Context, commonBody, currentFrom, type Decision, lastOf, sameJson } from './context.ts'
+import { bodyOf, type Context, currentFrom, type Decision, lastOf, sameJson } from './context.ts'
 import { type Followed, type Known, measurementBefore } from './followed.ts'
 import { measurementNotices } from './notices.ts'
 import type { PlaceState } from './place.ts'
@@ -27,15 +27,17 @@ export function decideMeasurement(context: Context): Decision {
   const points = request.points ?? []
   const judged = isTrim ? trim(context, points, applied, before) : verify(context, points, applied)
   const pass = (before?.body.pass ?? 0) + (isTrim ? 1 : 0)
-  const body: RecordBody = {
-    ...commonBody(context),
-    ...judged,
+  const body = bodyOf(context, {
+    lot: request.lot ?? null,
     pass,
     follows: before?.body.id ?? null,
     applied,
     effects: isTrim ? request.effects : null,
     points,
-  }
+    result: judged.result,
+    verdict: judged.verdict,
+    accepted: judged.accepted,
+  })
   const current = isTrim && body.accepted ? (currentFrom(body) ?? state.current) : state.current
   return {
     body,

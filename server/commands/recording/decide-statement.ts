@@ -1,7 +1,7 @@
 import type { RecordBody } from '../../../shared/contract/record.ts'
 import { OgeeError } from '../../../shared/errors.ts'
 import type { Sql } from '../../db/sql.ts'
-import { type Context, commonBody, currentFrom, type Decision, lastOf } from './context.ts'
+import { bodyOf, type Context, currentFrom, type Decision, lastOf } from './context.ts'
 import { type Followed, followedBy, readFollowed } from './followed.ts'
 import type { CurrentCodes, PlaceState } from './place.ts'
 
@@ -14,7 +14,7 @@ export function decideOverride(context: Context): Decision {
     const message = `Only a suspect trim can be overridden; record ${meant.number} ${why}.`
     throw new OgeeError('override-not-suspect', message, { errors: [{ path: '/follows', message }] })
   }
-  const body: RecordBody = { ...statement(context, meant), verdict: 'suspect', accepted: true }
+  const body = statement(context, meant, { verdict: 'suspect', accepted: true })
   const current = currentFrom(meant) ?? context.state.current
   return {
     body,
@@ -32,7 +32,7 @@ export async function decideWithdrawal(sql: Sql, context: Context): Promise<Deci
     const message = `Record ${meant.number} is a withdrawal, which cannot be withdrawn: measure again.`
     throw new OgeeError('follows-unknown', message, { errors: [{ path: '/follows', message }] })
   }
-  const body: RecordBody = { ...statement(context, meant), verdict: null, accepted: false }
+  const body = statement(context, meant, { verdict: null, accepted: false })
   const rest = await stateWithout(sql, context, meant.id)
   return { body, notices: [], state: { ...rest, day: context.state.day, last: lastOf(context) }, context }
 }
@@ -41,9 +41,13 @@ function meantBy({ job, known, state, place }: Context): Followed {
   return followedBy(job.request.follows ?? 'last', known, state, place)
 }
 
-function statement(context: Context, meant: RecordBody) {
-  return {
-    ...commonBody(context),
+function statement(
+  context: Context,
+  meant: RecordBody,
+  said: Pick<RecordBody, 'verdict' | 'accepted'>,
+): RecordBody {
+  return bodyOf(context, {
+    ...said,
     lot: meant.lot,
     pass: meant.pass,
     follows: meant.id,
@@ -51,7 +55,7 @@ function statement(context: Context, meant: RecordBody) {
     effects: null,
     points: null,
     result: null,
-  }
+  })
 }
 
 function withdrawnBefore(meant: RecordBody): OgeeError {

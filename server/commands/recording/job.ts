@@ -47,6 +47,11 @@ export function recorderOf(principal: Principal): Recorder {
   return { by: { kind: 'person', id, name, role }, station: null, scope: id, role }
 }
 
+/** How much work a request is, and how long its record: its points and their readings. */
+export function weightOf({ points }: RecordRequest): number {
+  return (points ?? []).reduce((sum, { readings }) => sum + 1 + (readings?.length ?? 0), 0)
+}
+
 /**
  * Hash of what the request asks for: its RFC 8785 form without `claimed`, which the station's own clock gets into.
  * The command line makes its default idempotency key from the same bytes.

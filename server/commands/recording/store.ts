@@ -1,5 +1,4 @@
 import type { RecordBody } from '../../../shared/contract/record.ts'
-import { fromBase64 } from '../../../shared/ledger/hash.ts'
 import { noticesHash, signReceipt } from '../../../shared/ledger/receipt.ts'
 import { type Sql, type SqlValue, sqlTime } from '../../db/sql.ts'
 import { sha256 } from '../../ledger/crypto.ts'
@@ -21,8 +20,8 @@ export function makeReady(decision: Decision, signer: Signer): Ready {
     recordedAt: body.recordedAt,
     notices: noticesHash(sha256, notices),
   }
-  const receipt = signReceipt(sha256, promised, signer.key, signer.sign)
-  return { decision, leaf, stored: { text: leaf.body.toString('utf8'), notices, receipt, index: null } }
+  const receipt = signReceipt(promised, signer.keyName, signer.sign)
+  return { decision, leaf, stored: { text: leaf.text, notices, receipt, index: null } }
 }
 
 /** Stores records with their leaves, their places in the queue, and how the units stand now. */
@@ -78,7 +77,7 @@ function rowOf({ decision, stored }: Ready, leafId: number): SqlValue[] {
     sqlTime(body.recordedAt),
     leafId,
     receipt.key,
-    Buffer.from(fromBase64(receipt.signature)!),
+    Buffer.from(receipt.signature, 'base64'),
     JSON.stringify(notices),
   ]
 }

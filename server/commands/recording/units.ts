@@ -13,15 +13,16 @@ export class UnitJustMade extends Error {}
  */
 export async function lockUnits(sql: Sql, names: readonly UnitName[]): Promise<Map<string, LockedUnit>> {
   const wanted = [...new Map(names.map((name) => [unitKey(name), name])).values()].sort(inOrder)
-  const found = await lock(sql, wanted)
-  const missing = wanted.filter((name) => !found.some((unit) => unitKey(unit) === unitKey(name)))
-  if (missing.length === 0) return byKey(found)
+  const locked = byKey(await lock(sql, wanted))
+  const missing = wanted.filter((name) => !locked.has(unitKey(name)))
+  if (missing.length === 0) return locked
   try {
     const made = await sql.rows<Omit<LockedUnit, 'fresh'>>(
       'INSERT INTO units (design_id, serial) VALUES ? RETURNING id, design_id AS designId, serial',
       [missing.map((name) => [name.designId, name.serial])],
     )
-    return byKey([...found, ...made.map((unit) => ({ ...unit, fresh: true }))])
+    for (const unit of made) locked.set(unitKey(unit), { ...unit, fresh: true })
+    return locked
   } catch (error) {
     // Somebody else made one of them at this moment, and has committed: the next look finds it.
     if (failureOf(error) === 'duplicate') throw new UnitJustMade()

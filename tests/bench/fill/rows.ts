@@ -34,7 +34,7 @@ export function addRecord(
   const hash = leafHash(sha256, leafBytes('record', slots.recordedAt, Buffer.from(text)))
   const hex = Buffer.from(hash).toString('hex')
   const promised = { record: slots.id, leaf: hex, recordedAt: slots.recordedAt }
-  const receipt = signReceipt(sha256, promised, signer.key, signer.sign)
+  const receipt = signReceipt(promised, signer.keyName, signer.sign)
   const { body } = template
   const { result } = body
   const codes = (result?.format === 'ogee.codes/1' ? result.trim.codes : null) ?? {}

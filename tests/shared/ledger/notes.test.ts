@@ -83,7 +83,7 @@ describe('receipt', () => {
     leaf: toHex(sha256(utf8('leaf'))),
     recordedAt: '2026-03-04T05:06:07.890Z',
   }
-  const receipt = signReceipt(sha256, promised, key, sign)
+  const receipt = signReceipt(promised, keyName(sha256, key), sign)
 
   it('promises the ledger within a minute, and checks', () => {
     expect(receipt.includedBy).toBe('2026-03-04T05:07:07.890Z')
