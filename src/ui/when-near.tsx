@@ -1,4 +1,5 @@
 import { type ReactNode, useEffect, useRef, useState } from 'react'
+import { flushSync } from 'react-dom'
 
 /** Draws its content once it is about to be seen, or printed, and from then on; until then it keeps a place for it. */
 export function WhenNear({
@@ -21,10 +22,12 @@ export function WhenNear({
       if (seen.some((one) => one.isIntersecting)) show()
     })
     observer.observe(element)
-    window.addEventListener('beforeprint', show)
+    // The browser takes its picture as soon as the listener returns.
+    const showNow = () => flushSync(show)
+    window.addEventListener('beforeprint', showNow)
     return () => {
       observer.disconnect()
-      window.removeEventListener('beforeprint', show)
+      window.removeEventListener('beforeprint', showNow)
     }
   }, [isNear])
   return (
@@ -36,5 +39,14 @@ export function WhenNear({
     >
       {isNear ? children : null}
     </div>
+  )
+}
+
+/** Stands on paper for what printing was too quick for; it is being brought, so the next print has it. */
+export function NotOnPaper({ what }: { what: string }) {
+  return (
+    <p className="hidden py-1 text-ink-2 print:block">
+      {what}: not ready when this was printed. Print again.
+    </p>
   )
 }

@@ -12,7 +12,16 @@ export function YieldStatus(props: { state: YieldState; problem: string | null; 
 }
 
 function sentence(state: YieldState, isOfThis: boolean) {
-  if (state.is === 'idle') return 'Units drawn from the budget, measured by the plan, trimmed and judged.'
+  if (state.is === 'idle') {
+    return (
+      <>
+        <span className="print:hidden">
+          Units drawn from the budget, measured by the plan, trimmed and judged.
+        </span>
+        <span className="hidden print:inline">Not simulated.</span>
+      </>
+    )
+  }
   if (state.is === 'failed') return <span className="text-ink">{state.message}</span>
   if (state.is === 'running') {
     return (

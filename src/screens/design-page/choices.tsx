@@ -4,6 +4,7 @@ import { YieldPanel } from '../../features/sizing/on-demand.ts'
 import { usualSettings } from '../../features/sizing/resistor-request.ts'
 import { ResistorTable } from '../../features/sizing/resistor-table.tsx'
 import { useResistors } from '../../features/sizing/use-resistors.ts'
+import { NotOnPaper } from '../../ui/when-near.tsx'
 import type { Answer } from './answer.ts'
 import { networkTexts } from './network-texts.ts'
 
@@ -36,7 +37,7 @@ function Resistors({
 }) {
   const [settings, setSettings] = useState(usualSettings)
   const found = useResistors(design, size, which, settings)
-  if (found === null) return null
+  if (found === null) return <NotOnPaper what={`Resistors for the ${which} network`} />
   return (
     <ResistorTable
       answer={found}

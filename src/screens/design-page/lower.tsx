@@ -1,7 +1,7 @@
 import { lazy, memo, Suspense, useState } from 'react'
 import { PassForecast } from '../../features/sizing/pass-forecast.tsx'
 import { ResidualBars } from '../../features/sizing/residual-bars.tsx'
-import { WhenNear } from '../../ui/when-near.tsx'
+import { NotOnPaper, WhenNear } from '../../ui/when-near.tsx'
 import type { Answer } from './answer.ts'
 
 const Choices = lazy(() => import('./choices.tsx'))
@@ -26,7 +26,7 @@ export const Lower = memo(function Lower({
     <div className="space-y-3.5">
       <ResidualBars design={design} result={size} unit={unit} onUnit={setUnit} onField={onField} />
       <WhenNear name="choices" minHeight={400}>
-        <Suspense fallback={null}>
+        <Suspense fallback={<NotOnPaper what="Resistors and simulated yield" />}>
           <Choices answer={answer} isReady={isReady} onUse={onUse} />
         </Suspense>
       </WhenNear>

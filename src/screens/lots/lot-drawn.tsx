@@ -14,7 +14,7 @@ import { shownRange } from '../../features/lot/shown-range.ts'
 import { StationPlot } from '../../features/lot/station-plot.tsx'
 import { usePerson } from '../../features/session/use-person.ts'
 import { Problem } from '../../ui/problem.tsx'
-import { WhenNear } from '../../ui/when-near.tsx'
+import { NotOnPaper, WhenNear } from '../../ui/when-near.tsx'
 import { PlaceChoice } from './place-choice.tsx'
 import { useComparison } from './use-comparison.ts'
 
@@ -82,7 +82,7 @@ export default function LotDrawn({ lot, design, units: newest, search, onSearch 
       <Problem error={reference.error} />
       <div className="mt-3">
         <WhenNear name="units" minHeight={480}>
-          <Suspense fallback={null}>
+          <Suspense fallback={<NotOnPaper what="Units" />}>
             <UnitTable
               units={units}
               find={search.get('find') ?? ''}
