@@ -13,7 +13,7 @@ export function KeysDialog({ onClose }: { onClose: () => void }) {
           </tr>
         </thead>
         <tbody>
-          {listBindings().map((binding) => (
+          {pageFirst().map((binding) => (
             <tr key={`${binding.keys} ${binding.does}`}>
               <td className="h-6 w-28 border-b border-hair font-mono text-small">{binding.keys}</td>
               <td className="border-b border-hair">{binding.does}</td>
@@ -29,4 +29,11 @@ export function KeysDialog({ onClose }: { onClose: () => void }) {
       </Button>
     </Dialog>
   )
+}
+
+/** The page's own keys, in whatever order its parts came; then those that every page has. */
+function pageFirst() {
+  const isEverywhere = ({ keys }: { keys: string }) => keys.startsWith('g ') || keys === '?'
+  const all = listBindings()
+  return [...all.filter((one) => !isEverywhere(one)), ...all.filter(isEverywhere)]
 }

@@ -211,6 +211,16 @@ test('every filter goes through the address to the server as the contract has it
   await waitFor(() => expect(window.location.search).not.toContain('revision'))
 })
 
+test('on a phone seldom filters wait behind a button, but for those in force', async () => {
+  const { user } = open('/history?station=11111111-1111-4111-8111-111111111111')
+  await screen.findByText(/match · newest first/)
+  const waits = (label: string) => screen.getByLabelText(label).closest('.hidden') !== null
+  expect(['unit', 'lot', 'verdict', 'from', 'station'].filter(waits)).toEqual([])
+  expect(['design', 'kind', 'by', 'attempt', 'finding', 'to'].filter((label) => !waits(label))).toEqual([])
+  await user.click(screen.getByRole('button', { name: 'more filters' }))
+  expect(['design', 'kind', 'by', 'attempt', 'finding', 'to'].filter(waits)).toEqual([])
+})
+
 test('a day that is none is said at its field and asked of nobody', async () => {
   const { user, server } = open('/history')
   await link(120)

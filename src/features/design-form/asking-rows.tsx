@@ -3,7 +3,21 @@ import { SelectCell, TextCell } from './cells.tsx'
 import type { Said } from './form-context.ts'
 import { both, type Which } from './form-doc.ts'
 
-export const askingColumns = 'grid grid-cols-[6.75rem_minmax(0,1fr)_minmax(0,1fr)] items-start gap-x-2'
+const askingColumns = 'grid grid-cols-[6.75rem_minmax(0,1fr)_minmax(0,1fr)] items-start gap-x-2'
+
+const tones = { gain: 'text-copper', offset: 'text-tide' } as const
+
+/** Names the columns to the eye; each field names itself. */
+export const AskingHead = () => (
+  <div className={`${askingColumns} text-small font-medium`} aria-hidden="true">
+    <span />
+    {both.map((which) => (
+      <span key={which} className={`px-1 ${tones[which]}`}>
+        {which}
+      </span>
+    ))}
+  </div>
+)
 
 /** Gain and offset side by side on the same labels, because they are the same questions. */
 export function AskingRows({

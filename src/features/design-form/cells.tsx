@@ -67,7 +67,9 @@ export const SelectCell = memo(function SelectCell({
   other?: (text: string) => string
 }) {
   const { store, isReadOnly } = useFormLinks()
-  const text = useFieldText(field)
+  const typed = useFieldText(field)
+  // Where nothing is chosen the first holds: so it is read.
+  const text = typed === '' ? (options[0]?.[0] ?? '') : typed
   const id = useId()
   const word = options.find(([value]) => value === text)?.[1] ?? other?.(text) ?? text
   if (isReadOnly) return <Printed text={word} remark={remark} />

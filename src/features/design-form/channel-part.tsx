@@ -2,7 +2,7 @@ import { memo } from 'react'
 import { Button } from '../../ui/button.tsx'
 import { engineering, exact } from '../../ui/number-format.ts'
 import { rangeEffectRows } from './adjuster-rows.ts'
-import { AskingRows } from './asking-rows.tsx'
+import { AskingHead, AskingRows } from './asking-rows.tsx'
 import { Row, SelectCell, TextCell } from './cells.tsx'
 import { type Said, useFieldText, useFormLinks } from './form-context.ts'
 import { type RangeField, type RangeTexts, rangeEffect, rangeField, type Which } from './form-doc.ts'
@@ -148,11 +148,14 @@ function RangeEffects({ id, said, name }: { id: number; said: Said; name: number
   const offset = useFieldText(`${under('offset')}.effect`)
   if (name === null && gain === '' && offset === '') return null
   return (
-    <AskingRows
-      rows={rangeEffectRows({ gain, offset })}
-      under={under}
-      said={said}
-      where={name === null ? ' in this range' : ` in range ${name}`}
-    />
+    <div className="mt-1">
+      <AskingHead />
+      <AskingRows
+        rows={rangeEffectRows({ gain, offset })}
+        under={under}
+        said={said}
+        where={name === null ? ' in this range' : ` in range ${name}`}
+      />
+    </div>
   )
 }

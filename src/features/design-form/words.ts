@@ -14,7 +14,7 @@ export const offsetPlaces: Options = [
 export const effectKinds: Options = [
   ['none', 'none'],
   ['measured', 'measured'],
-  ['reference-summing', 'reference summing'],
+  ['reference-summing', 'ref. summing'],
   ['output-summing', 'output summing'],
 ]
 /** In a range that has none of its own the adjuster does what it does everywhere. */

@@ -5,6 +5,9 @@ import { TimeText } from '../../ui/time-text.tsx'
 
 export type Sizes = { from: number | null; to: number | null }
 
+/** A phone has no room for it, and what is to be chosen must be in view. */
+const fromNarrow = 'hidden narrow:table-cell'
+
 /** Checkpoints, newest first, each of which can be taken as the older or as the newer of two to compare. */
 export function CheckpointTable({
   checkpoints,
@@ -22,7 +25,7 @@ export function CheckpointTable({
           <Th align="right">number</Th>
           <Th align="right">entries</Th>
           <Th>signed, UTC</Th>
-          <Th>root</Th>
+          <Th className={fromNarrow}>root</Th>
           <Th className="w-12">older</Th>
           <Th className="w-12">newer</Th>
         </tr>
@@ -39,7 +42,7 @@ export function CheckpointTable({
             <Td>
               <TimeText at={at} />
             </Td>
-            <Td className="font-mono text-small">{root.slice(0, 16)}</Td>
+            <Td className={`font-mono text-small ${fromNarrow}`}>{root.slice(0, 16)}</Td>
             {(['from', 'to'] as const).map((side) => (
               <Td key={side}>
                 <Choice

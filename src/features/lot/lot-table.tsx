@@ -8,6 +8,7 @@ import { Verdict } from '../../ui/verdict.tsx'
 import { percent, stateWords } from './words.ts'
 
 const onlyMedium = 'hidden medium:table-cell'
+const fromNarrow = 'hidden narrow:table-cell'
 
 /** Lots, newest first; links of rows carry `data-row` for the keys. */
 export function LotTable({ lots, row }: { lots: readonly Lot[]; row: number }) {
@@ -18,8 +19,12 @@ export function LotTable({ lots, row }: { lots: readonly Lot[]; row: number }) {
           <Th>lot</Th>
           <Th>design, rev.</Th>
           <Th>state</Th>
-          <Th align="right">units</Th>
-          <Th align="right">good</Th>
+          <Th align="right" className={fromNarrow}>
+            units
+          </Th>
+          <Th align="right" className={fromNarrow}>
+            good
+          </Th>
           <Th align="right">yield</Th>
           <Th>to decide</Th>
           <Th align="right" className={onlyMedium}>
@@ -49,13 +54,19 @@ function LotRow({ lot, index, current }: { lot: Lot; index: number; current: boo
           {lot.key}
         </LinkButton>
       </RowHead>
-      <Td className="text-ink-2">
+      <Td className="whitespace-nowrap text-ink-2">
         {lot.design}, {lot.revision}
       </Td>
-      <Td>{stateWords[lot.state]}</Td>
-      <Td align="right">{counts ? <Whole value={counts.units} /> : <Counting />}</Td>
-      <Td align="right">{counts ? <Whole value={counts.good} /> : null}</Td>
-      <Td align="right">{counts ? counts.share === null ? <None /> : percent(counts.share) : null}</Td>
+      <Td className="whitespace-nowrap">{stateWords[lot.state]}</Td>
+      <Td align="right" className={fromNarrow}>
+        {counts ? <Whole value={counts.units} /> : <Counting />}
+      </Td>
+      <Td align="right" className={fromNarrow}>
+        {counts ? <Whole value={counts.good} /> : null}
+      </Td>
+      <Td align="right" className="whitespace-nowrap">
+        {counts ? counts.share === null ? <None /> : percent(counts.share) : null}
+      </Td>
       <Td>{counts ? <ToDecide lot={lot} /> : null}</Td>
       <Td align="right" className={onlyMedium}>
         {lot.expected === null ? <None /> : counts ? <Whole value={counts.missing} /> : null}

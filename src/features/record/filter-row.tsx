@@ -1,4 +1,4 @@
-import type { Ref } from 'react'
+import { type ReactNode, type Ref, useState } from 'react'
 import { Button } from '../../ui/button.tsx'
 import { KeyHint } from '../../ui/key-hint.tsx'
 import { verdictWord } from '../../ui/verdict.tsx'
@@ -20,23 +20,21 @@ export type FilterChoices = {
   recorders: readonly ChoiceOption[]
 }
 
-/** A row of filters that reads as a sentence; the ones in force are underlined in ink. */
-export function FilterRow({
-  filters,
-  choices,
-  onChange,
-  onClear,
-  unitRef,
-}: {
+type Props = {
   filters: Filters
   choices: FilterChoices
   onChange: (change: Filters) => void
-  onClear: () => void
-  unitRef: Ref<HTMLInputElement>
-}) {
+}
+type Given = (name: FilterName) => string
+type Set = (name: FilterName) => (value: string) => void
+
+/** A row of filters that reads as a sentence; the ones in force are underlined in ink. */
+export function FilterRow(props: Props & { onClear: () => void; unitRef: Ref<HTMLInputElement> }) {
+  const { filters, choices, onChange, onClear, unitRef } = props
+  const [isWhole, setWhole] = useState(false)
   const count = Object.keys(filters).length
-  const given = (name: FilterName) => filters[name] ?? ''
-  const set = (name: FilterName) => (value: string) => onChange({ [name]: value })
+  const given: Given = (name) => filters[name] ?? ''
+  const set: Set = (name) => (value) => onChange({ [name]: value })
   return (
     <form
       aria-label="Filters"
@@ -52,13 +50,43 @@ export function FilterRow({
         wrong="Lots with commas between, such as 2409, 2417."
         onChange={(text) => onChange({ lot: tight(text) })}
       />
-      <ChoiceFilter
-        label="design"
-        value={given('design')}
-        choices={choices.designs.map((key) => [key, key])}
-        onChange={set('design')}
-      />
-      {filters.design && !filters.design.includes(',') ? (
+      <OfRecording given={given} set={set} choices={choices} isWhole={isWhole} />
+      <OfResult given={given} set={set} isWhole={isWhole} />
+      {isWhole ? null : (
+        <Button look="quiet" className="text-small medium:hidden" onClick={() => setWhole(true)}>
+          more filters
+        </Button>
+      )}
+      {count > 0 ? (
+        <Button look="quiet" className="text-small" onClick={onClear}>
+          {count === 1 ? 'clear the filter' : `clear ${count} filters`}
+        </Button>
+      ) : null}
+      <FilterKeys />
+    </form>
+  )
+}
+
+/** On a phone the filters that are seldom used wait behind a button, but for one in force. */
+function Seldom({ isShown, children }: { isShown: boolean; children: ReactNode }) {
+  return <span className={isShown ? 'contents' : 'hidden medium:contents'}>{children}</span>
+}
+
+type PartProps = { given: Given; set: Set; isWhole: boolean }
+
+function OfRecording({ given, set, isWhole, choices }: PartProps & { choices: FilterChoices }) {
+  const design = given('design')
+  return (
+    <>
+      <Seldom isShown={isWhole || design !== ''}>
+        <ChoiceFilter
+          label="design"
+          value={design}
+          choices={choices.designs.map((key) => [key, key])}
+          onChange={set('design')}
+        />
+      </Seldom>
+      {design !== '' && !design.includes(',') ? (
         <TextFilter
           label="revision"
           value={given('revision')}
@@ -68,52 +96,67 @@ export function FilterRow({
           onChange={set('revision')}
         />
       ) : null}
-      <ChoiceFilter
-        label="kind"
-        value={given('kind')}
-        choices={kindChoices.map((kind) => [kind, kindWord({ kind, pass: 1 })])}
-        onChange={set('kind')}
-      />
-      <ChoiceFilter
-        label="station"
-        value={given('station')}
-        choices={choices.stations}
-        onChange={set('station')}
-      />
-      <ChoiceFilter
-        label="by"
-        none="anyone"
-        value={given('by')}
-        choices={choices.recorders}
-        onChange={set('by')}
-      />
+      <Seldom isShown={isWhole || given('kind') !== ''}>
+        <ChoiceFilter
+          label="kind"
+          value={given('kind')}
+          choices={kindChoices.map((kind) => [kind, kindWord({ kind, pass: 1 })])}
+          onChange={set('kind')}
+        />
+      </Seldom>
+      <Seldom isShown={isWhole || given('station') !== ''}>
+        <ChoiceFilter
+          label="station"
+          value={given('station')}
+          choices={choices.stations}
+          onChange={set('station')}
+        />
+      </Seldom>
+      <Seldom isShown={isWhole || given('by') !== ''}>
+        <ChoiceFilter
+          label="by"
+          none="anyone"
+          value={given('by')}
+          choices={choices.recorders}
+          onChange={set('by')}
+        />
+      </Seldom>
+    </>
+  )
+}
+
+function OfResult({ given, set, isWhole }: PartProps) {
+  return (
+    <>
       <ChoiceFilter
         label="verdict"
         value={given('verdict')}
         choices={verdictChoices.map((verdict) => [verdict, verdictWord(verdict)])}
         onChange={set('verdict')}
       />
-      <ChoiceFilter
-        label="attempt"
-        value={given('attempt')}
-        choices={attemptChoices.map((least) => [least, `${least} or more`])}
-        onChange={set('attempt')}
-      />
-      <ChoiceFilter
-        label="finding"
-        value={given('finding')}
-        choices={findingChoices}
-        onChange={set('finding')}
-      />
-      <DayFilter label="from" none="the first" value={given('from')} onChange={set('from')} />
-      <DayFilter label="to" none="now" value={given('to')} onChange={set('to')} />
-      {count > 0 ? (
-        <Button look="quiet" className="text-small" onClick={onClear}>
-          {count === 1 ? 'clear the filter' : `clear ${count} filters`}
-        </Button>
-      ) : null}
-      <FilterKeys />
-    </form>
+      <Seldom isShown={isWhole || given('attempt') !== ''}>
+        <ChoiceFilter
+          label="attempt"
+          value={given('attempt')}
+          choices={attemptChoices.map((least) => [least, `${least} or more`])}
+          onChange={set('attempt')}
+        />
+      </Seldom>
+      <Seldom isShown={isWhole || given('finding') !== ''}>
+        <ChoiceFilter
+          label="finding"
+          value={given('finding')}
+          choices={findingChoices}
+          onChange={set('finding')}
+        />
+      </Seldom>
+      <span className="flex flex-wrap gap-x-4 gap-y-1.5">
+        <DayFilter label="from" none="the first" value={given('from')} onChange={set('from')} />
+        <Seldom isShown={isWhole || given('to') !== ''}>
+          <DayFilter label="to" none="now" value={given('to')} onChange={set('to')} />
+        </Seldom>
+      </span>
+    </>
   )
 }
 

@@ -54,7 +54,7 @@ export function BenchFields(props: FieldsProps) {
       />
       <LineField
         label="note"
-        chars={10}
+        chars={28}
         value={page.fields.note}
         error={page.fields.note.length > limits.noteMax ? `At most ${limits.noteMax} characters.` : null}
         onCommit={(text) => page.setField('note', text)}

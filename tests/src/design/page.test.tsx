@@ -172,6 +172,38 @@ test('a cell of the table is tried without saving, kept or dropped', async () =>
   expect(window.location.hash).toBe('')
 })
 
+test('an adjuster does something else in a second range: its fields are those of the adjuster', async () => {
+  const server = draftServer()
+  const { user } = open(draft, server)
+  await ready()
+  await user.click(screen.getByRole('button', { name: 'add a range' }))
+  const here = (label: string) => screen.getByLabelText(`${label} in range 2`)
+  expect(here('Effect here, gain')).toHaveDisplayValue("as the adjuster's")
+  await user.selectOptions(here('Effect here, gain'), 'output-summing')
+  // What is read where nothing is chosen stands there.
+  expect(here('Sign, gain')).toHaveDisplayValue('inverting')
+  const range = screen.getAllByLabelText(/^Range 2/).find((one) => one.dataset.field?.endsWith('.ends'))!
+  fireEvent.change(range, { target: { value: '-5 V to 5 V' } })
+  fireEvent.change(here('R feedback, gain'), { target: { value: '10k' } })
+  fireEvent.change(here('R adjust, gain'), { target: { value: '2M' } })
+  await waitFor(
+    () =>
+      expect(server.sent('PUT /designs/DBS-A/revisions/2').at(-1)?.body).toMatchObject({
+        document: {
+          ranges: [
+            {},
+            {
+              effects: {
+                gain: { kind: 'output-summing', feedbackOhm: 1e4, adjustOhm: 2e6, inverting: true },
+              },
+            },
+          ],
+        },
+      }),
+    { timeout: 8000 },
+  )
+})
+
 test('no gain adjuster: the page says what the offset adjuster alone does', async () => {
   const { user } = open(draft, draftServer())
   await ready()
