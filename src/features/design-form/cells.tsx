@@ -1,10 +1,11 @@
-import { memo, type ReactNode, useId } from 'react'
+import { memo, type ReactNode, useEffect, useId, useRef } from 'react'
 import { minus } from '../../ui/number-format.ts'
 import { useFieldText, useFormLinks } from './form-context.ts'
+import { textOf } from './form-doc.ts'
 
 /** Field ground, one rule below, no box; 25 px as the form's rows; in error a 2 px rule in bad. */
 const look =
-  'h-[25px] w-full min-w-0 rounded-none border-0 border-b border-rule bg-field px-1 text-body text-ink aria-invalid:border-b-2 aria-invalid:border-bad placeholder:text-ink-3 forced-colors:border print:hidden'
+  'block h-[25px] w-full min-w-0 rounded-none border-0 border-b border-rule bg-field px-1 text-body text-ink aria-invalid:border-b-2 aria-invalid:border-bad placeholder:text-ink-3 forced-colors:border print:hidden'
 
 type CellProps = {
   /** Name in the form's state. */
@@ -17,20 +18,35 @@ type CellProps = {
 }
 
 /** One text of the form, which it reads itself: a key in one field draws no other. */
-export const TextCell = memo(function TextCell({
-  field,
-  label,
-  problem,
-  remark,
-  placeholder = 'not stated',
-}: CellProps) {
-  const { store, isReadOnly } = useFormLinks()
-  const text = useFieldText(field)
+export const TextCell = memo(function TextCell(props: CellProps) {
+  const { isReadOnly } = useFormLinks()
+  return isReadOnly ? <ReadCell {...props} /> : <TypedCell key={props.field} {...props} />
+})
+
+function ReadCell({ field, remark }: CellProps) {
+  return <Printed text={useFieldText(field)} remark={remark} />
+}
+
+/** The browser keeps the text that is typed; only another text in the form is put in, so that a key draws nothing here. */
+function TypedCell({ field, label, problem, remark, placeholder = 'not stated' }: CellProps) {
+  const { store } = useFormLinks()
+  const input = useRef<HTMLInputElement>(null)
+  const printed = useRef<HTMLSpanElement>(null)
   const id = useId()
-  if (isReadOnly) return <Printed text={text} remark={remark} />
+  const begun = useRef(textOf(store.get().doc, field)).current
+  useEffect(() => {
+    const show = () => {
+      const text = textOf(store.get().doc, field)
+      if (input.current && input.current.value !== text) input.current.value = text
+      if (printed.current) printed.current.textContent = onPaper(text)
+    }
+    show()
+    return store.subscribeField(field, show)
+  }, [store, field])
   return (
     <span className="block min-w-0">
       <input
+        ref={input}
         type="text"
         data-field={field}
         aria-label={label}
@@ -39,17 +55,19 @@ export const TextCell = memo(function TextCell({
         autoComplete="off"
         spellCheck={false}
         placeholder={placeholder}
-        value={text}
+        defaultValue={begun}
         onChange={(event) => store.dispatch({ do: 'set', field, text: event.target.value })}
         onFocus={(event) => event.target.select()}
         onBlur={() => store.dispatch({ do: 'leave' })}
         className={look}
       />
-      <PrintedText text={text} />
+      <span ref={printed} aria-hidden="true" className={paper}>
+        {onPaper(begun)}
+      </span>
       <Said id={id} problem={problem} remark={remark} />
     </span>
   )
-})
+}
 
 /** Options that are the same array on every drawing. */
 export type Options = readonly (readonly [value: string, word: string])[]
@@ -92,7 +110,9 @@ export const SelectCell = memo(function SelectCell({
           </option>
         ))}
       </select>
-      <PrintedText text={word} />
+      <span aria-hidden="true" className={paper}>
+        {onPaper(word)}
+      </span>
       <Said id={id} problem={problem} remark={remark} />
     </span>
   )
@@ -108,13 +128,8 @@ function Printed({ text, remark }: { text: string; remark: string | undefined })
   )
 }
 
-function PrintedText({ text }: { text: string }) {
-  return (
-    <span aria-hidden="true" className="hidden min-h-5 px-1 print:block">
-      {text === '' ? 'not stated' : text.replaceAll('-', minus)}
-    </span>
-  )
-}
+const paper = 'hidden min-h-5 px-1 print:block'
+const onPaper = (text: string) => (text === '' ? 'not stated' : text.replaceAll('-', minus))
 
 function Said({
   id,

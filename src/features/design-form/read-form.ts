@@ -67,24 +67,18 @@ function readDocument(reader: Reader, doc: FormDoc): object {
   const text = (name: string) => values[name] ?? ''
   const title = text('title').trim()
   if (title === '') wrong(reader, 'title', 'Title is missing.')
-  const bits = readWhole(reader, 'bits', text('bits'), { label: 'Resolution', unit: 'bits' }, [
-    limits.converterBitsMin,
-    limits.converterBitsMax,
-  ])
+  const read = <T>(name: string, by: (own: Reader, text: string) => T) =>
+    remembered(reader, name, [text(name)], (own) => by(own, text(name)))
+  const bits = read('bits', readBits)
   const gain = readLines(reader, doc, 'gain')
   const offset = readLines(reader, doc, 'offset')
   const hasBudget = text('hasBudget') === 'yes' || gain.length + offset.length > 0
   const adjuster = (which: Which) =>
     remembered(reader, which, textsUnder(values, `${which}.`), (own) => readAdjuster(own, doc, which))
-  const inl = { label: 'INL limit', unit: 'LSB', optional: true, rule: 'not-negative' } as const
   return stated({
     format: 'ogee.design/1',
     title,
-    converter: stated({
-      bits,
-      coding: text('coding') || 'straight-binary',
-      inlLsb: readNumber(reader, 'inl', text('inl'), inl),
-    }),
+    converter: stated({ bits, coding: text('coding') || 'straight-binary', inlLsb: read('inl', readInl) }),
     channels: names(text('channels') || '1'),
     ranges: doc.ranges.map((range) =>
       remembered(
@@ -97,13 +91,29 @@ function readDocument(reader: Reader, doc: FormDoc): object {
     adjusters: stated({ gain: adjuster('gain'), offset: adjuster('offset') }),
     budget: hasBudget ? { gain, offset } : undefined,
     sizing: readSizing(reader, text),
-    target: { residual: readLimit(reader, 'target', text('target'), 'Residual target') },
+    target: { residual: read('target', readTarget) },
     measurement: remembered(reader, 'measurement', [bits, ...planned.map(text)], (own) =>
       readMeasurement(own, text, bits),
     ),
-    decision: readDecision(reader, text),
+    decision: remembered(reader, 'decision', [text('rule'), text('tolerance')], (own) =>
+      readDecision(own, text),
+    ),
   })
 }
+
+const readBits = (reader: Reader, text: string) =>
+  readWhole(reader, 'bits', text, { label: 'Resolution', unit: 'bits' }, [
+    limits.converterBitsMin,
+    limits.converterBitsMax,
+  ])
+const readInl = (reader: Reader, text: string) =>
+  readNumber(reader, 'inl', text, {
+    label: 'INL limit',
+    unit: 'LSB',
+    optional: true,
+    rule: 'not-negative',
+  })
+const readTarget = (reader: Reader, text: string) => readLimit(reader, 'target', text, 'Residual target')
 
 type Text = (name: string) => string
 const names = (text: string) =>

@@ -160,6 +160,9 @@ export function readMixed(
 
 /** An object without the keys that are not stated. */
 export function stated<T extends object>(object: T): T {
-  for (const key of Object.keys(object) as (keyof T)[]) if (object[key] === undefined) delete object[key]
-  return object
+  const entries = Object.entries(object)
+  // Copied and not cut: an object that had a key taken away is slow to read from then on.
+  return entries.some(([, value]) => value === undefined)
+    ? (Object.fromEntries(entries.filter(([, value]) => value !== undefined)) as T)
+    : object
 }

@@ -2,6 +2,7 @@ import { Suspense, useCallback } from 'react'
 import { fieldAt } from '../../features/design-form/field-at.ts'
 import { withTexts } from '../../features/design-form/form-doc.ts'
 import { Segmented } from '../../ui/segmented.tsx'
+import { Steady } from '../../ui/steady.tsx'
 import { utcText } from '../../ui/time-text.tsx'
 import { WhenNear } from '../../ui/when-near.tsx'
 import { LadderAndTables, Verdicts } from './answer-parts.tsx'
@@ -49,14 +50,14 @@ export function AnswerColumn({
         <Ranges page={page} />
         <Now page={page} onField={onField} />
       </div>
-      <div className={`order-2 min-w-0 wide:mt-3 ${grey}`}>
+      <div className={`follows order-2 min-w-0 wide:mt-3 ${grey}`}>
         <LadderAndTables
           answer={answer}
           problem={refusal?.code === 'adjusters-not-independent' ? refusal.message : undefined}
           onTry={onTry}
         />
       </div>
-      <div className={`order-4 min-w-0 wide:mt-3.5 ${grey}`}>
+      <div className={`follows order-4 min-w-0 wide:mt-3.5 ${grey}`}>
         {answer ? (
           <Lower
             answer={answer}
@@ -66,7 +67,7 @@ export function AnswerColumn({
           />
         ) : null}
       </div>
-      <div className="order-5 min-w-0 space-y-3.5 pb-6 wide:mt-3.5 print:hidden">
+      <div className="follows order-5 min-w-0 space-y-3.5 pb-6 wide:mt-3.5 print:hidden">
         {page.number === null ? null : (
           <WhenNear name="revisions" minHeight={160}>
             <Suspense fallback={null}>
@@ -83,12 +84,12 @@ export function AnswerColumn({
 function Now({ page, onField }: { page: DesignPageState; onField: (path: string) => void }) {
   const answered = useAnswerNow(page.live, page.range, page.answered)
   return (
-    <>
+    <Steady>
       <AnswerState answered={answered} />
       <div className={answered.isStale ? greyed : ''}>
         {answered.answer ? <Verdicts answer={answered.answer} onField={onField} /> : null}
       </div>
-    </>
+    </Steady>
   )
 }
 
