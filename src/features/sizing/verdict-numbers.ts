@@ -1,7 +1,9 @@
 import { bitsWord, volts } from '../../../shared/design-words/words.ts'
 import type { AdjusterSize } from '../../../shared/solver/sizing/types.ts'
 import type { Which } from '../../../shared/solver/types.ts'
-import type { NumberInText } from './explained-sentence.tsx'
+
+/** A number as it stands in a sentence, and where it comes from. */
+export type NumberInText = { text: string; label: string; path: string }
 
 /** The numbers of the verdict sentences in the order in which the sentences say them. */
 export function verdictNumbers(which: Which, size: AdjusterSize): NumberInText[] {

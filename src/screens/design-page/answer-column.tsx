@@ -82,11 +82,11 @@ export function AnswerColumn({
 
 /** The answer in words, with each key. */
 function Now({ page, onField }: { page: DesignPageState; onField: (path: string) => void }) {
-  const answered = useAnswerNow(page.live, page.range, page.answered)
+  const { box, answered } = useAnswerNow(page.live, page.range, page.answered)
   return (
     <Steady>
       <AnswerState answered={answered} />
-      <div className={answered.isStale ? greyed : ''}>
+      <div ref={box} className={answered.isStale ? greyed : ''}>
         {answered.answer ? <Verdicts answer={answered.answer} onField={onField} /> : null}
       </div>
     </Steady>

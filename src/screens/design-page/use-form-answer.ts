@@ -2,14 +2,17 @@ import {
   startTransition,
   useCallback,
   useEffect,
+  useLayoutEffect,
   useMemo,
+  useReducer,
   useRef,
   useState,
-  useSyncExternalStore,
 } from 'react'
 import { flushSync } from 'react-dom'
 import type { Design } from '../../../shared/contract/design.ts'
 import { checkDraft } from '../../features/design-form/read-form.ts'
+import { type VerdictTexts, verdictTexts } from '../../features/sizing/verdict-lines.ts'
+import { rewriteTexts } from '../../ui/rewrite-texts.ts'
 import type { Answered, LiveAnswer } from './live-answer.ts'
 
 export type PageAnswer = Answered & {
@@ -52,14 +55,36 @@ export function useFormAnswer(live: LiveAnswer, range: string | null) {
   return { view, answered: page, catchUp }
 }
 
-/** The same with the key: for the sentences of the verdict, which follow each. */
-export function useAnswerNow(live: LiveAnswer, range: string | null, drawn: PageAnswer): Answered {
-  const view = useSyncExternalStore(
-    useCallback((hear: () => void) => live.subscribe(hear), [live]),
-    live.view,
-  )
-  return view === drawn.of ? drawn : live.answered(view, range)
+/**
+ * The same with the key: for the sentences of the verdict, which follow each. Where only their texts change, these are put
+ * into the page as it stands; drawing them takes half of what a key may.
+ * @returns `box`, for the element that holds the verdict rows and nothing else
+ */
+export function useAnswerNow(live: LiveAnswer, range: string | null, drawn: PageAnswer) {
+  const box = useRef<HTMLDivElement>(null)
+  const [, draw] = useReducer((times: number) => times + 1, 0)
+  const view = live.view()
+  const answered = view === drawn.of ? drawn : live.answered(view, range)
+  const shown = useRef<VerdictTexts | null>(null)
+  useLayoutEffect(() => {
+    shown.current = textsOf(answered)
+    const follow = () => {
+      const next = textsOf(live.answered(live.view(), range))
+      const isSameForm = next !== null && next.form === shown.current?.form
+      if (isSameForm && box.current && rewriteTexts(box.current, shown.current!.texts, next.texts)) {
+        shown.current = next
+      } else draw()
+    }
+    // A key may have come between drawing and now.
+    if (live.view() !== view) follow()
+    return live.subscribe(follow)
+  }, [live, range, view, answered])
+  return { box, answered }
 }
+
+/** Null where more, or less, than the verdict stands there. */
+const textsOf = ({ answer, isStale }: Answered): VerdictTexts | null =>
+  answer === null || isStale ? null : verdictTexts({ design: answer.design, result: answer.size })
 
 /** The check against the contract takes some milliseconds, more than a key may. */
 function withCheck(answered: Answered): PageAnswer {
