@@ -4,14 +4,11 @@
  */
 export function textNodes(box: Element): Text[] {
   const nodes: Text[] = []
-  const walker = document.createTreeWalker(box, NodeFilter.SHOW_ELEMENT | NodeFilter.SHOW_TEXT, (node) =>
-    node instanceof Text
-      ? NodeFilter.FILTER_ACCEPT
-      : (node as Element).getAttribute('role') === 'dialog'
-        ? NodeFilter.FILTER_REJECT
-        : NodeFilter.FILTER_SKIP,
-  )
-  while (walker.nextNode()) nodes.push(walker.currentNode as Text)
+  const walker = document.createTreeWalker(box, NodeFilter.SHOW_TEXT)
+  while (walker.nextNode()) {
+    const node = walker.currentNode as Text
+    if (!node.parentElement?.closest('[role=dialog]')) nodes.push(node)
+  }
   return nodes
 }
 
