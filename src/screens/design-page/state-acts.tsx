@@ -1,8 +1,9 @@
-import { Suspense, useState } from 'react'
+import { lazy, Suspense, useState } from 'react'
 import { Button } from '../../ui/button.tsx'
-import { ReasonDialog } from './on-demand.ts'
 import type { DesignPageState } from './use-design-page.ts'
 import type { RevisionActs } from './use-revision-acts.ts'
+
+const ReasonDialog = lazy(() => import('../../features/design/reason-dialog.tsx'))
 
 type ActsProps = { page: DesignPageState; acts: RevisionActs }
 
