@@ -21,22 +21,35 @@ export async function* entryLines(
   database: Database,
   { from, limit }: { from: number; limit: number },
 ): AsyncGenerator<Uint8Array | string[]> {
-  let at = from
   const stop = from + limit
-  for (let more = true; more && at < stop; ) {
+  const read = (at: number) => {
     const most = Math.min(atOnce, stop - at)
-    const { rows, block } = await transaction(database, (sql) => readSome(sql, at, most))
-    at = (rows.at(-1)?.[0] ?? at - 1) + 1
-    more = rows.length === most
-    if (rows.length > 0) yield block
-    if (!more) at = -1
+    return transaction(database, (sql) => readSome(sql, at, most))
+  }
+  let reading = read(from)
+  let goOn: number | null
+  for (;;) {
+    const { next, block } = await reading
+    goOn = next
+    const isLast = next === null || next >= stop
+    if (!isLast) {
+      // While this block is sent. Should it fail before it is awaited, that is no failure that nobody hears of.
+      reading = read(next)
+      reading.catch(() => undefined)
+    }
+    yield block
+    if (isLast) break
   }
   const [head] = await database.sql.rows<{ size: number }>('SELECT size FROM ledger_head WHERE id = 1')
-  yield [JSON.stringify({ end: true, size: head?.size ?? 0, next: at < 0 ? null : at })]
+  yield [JSON.stringify({ end: true, size: head?.size ?? 0, next: goOn })]
 }
 
-/** By place and not by number of rows, so that a gap costs nothing. */
-async function readSome(sql: Sql, from: number, limit: number): Promise<{ rows: EntryRow[]; block: Buffer }> {
+/** By place and not by number of rows, so that a gap costs nothing. `next` is where to go on; null at the end. */
+async function readSome(
+  sql: Sql,
+  from: number,
+  limit: number,
+): Promise<{ block: Buffer; next: number | null }> {
   const rows = await rowsOfCells<EntryRow>(
     sql,
     `SELECT e.idx, l.kind, l.at, l.hash, l.body, ${storedColumns}
@@ -45,7 +58,7 @@ async function readSome(sql: Sql, from: number, limit: number): Promise<{ rows: 
     [from, limit],
   )
   const last = rows.at(-1)
-  if (!last) return { rows, block: Buffer.alloc(0) }
+  if (!last) return { block: Buffer.alloc(0), next: null }
   const nodes = await readCompleted(sql, rows[0]![0], last[0] + 1)
   const documents = await readDocuments(sql, rows)
   const lines = rows.map((row) => {
@@ -60,7 +73,7 @@ async function readSome(sql: Sql, from: number, limit: number): Promise<{ rows: 
     }
     return lineOf(head, leafKind, at, body)
   })
-  return { rows, block: joined(lines) }
+  return { block: joined(lines), next: rows.length === limit ? last[0] + 1 : null }
 }
 
 /** A line in three pieces: the leaf's bytes go out as they were stored, and are never made a text. */
@@ -83,12 +96,10 @@ function lineOf(
 
 /** Written into one block, since making thousands of small ones takes longer than to fill it. */
 function joined(lines: readonly Line[]): Buffer {
-  // A character takes three bytes at most.
-  const room = lines.reduce(
-    (sum, { before, body, after }) => sum + 3 * (before.length + after.length) + (body?.length ?? 0),
-    0,
+  const lengths = lines.map(
+    ({ before, body, after }) => Buffer.byteLength(before) + (body?.length ?? 0) + Buffer.byteLength(after),
   )
-  const block = Buffer.allocUnsafe(room)
+  const block = Buffer.allocUnsafe(lengths.reduce((sum, length) => sum + length, 0))
   let at = 0
   for (const { before, body, after } of lines) {
     at += block.write(before, at)
@@ -100,7 +111,7 @@ function joined(lines: readonly Line[]): Buffer {
     }
     at += block.write(after, at)
   }
-  return block.subarray(0, at)
+  return block
 }
 
 /** Stored hashes of the subtrees that leaves of a stretch complete, by the leaf, lowest first, put together. */
