@@ -1,5 +1,5 @@
 import { afterAll, beforeAll, describe, expect, it } from 'vitest'
-import { asText } from '../../cli/ledger/crypto.ts'
+import { asText as asTextOfNode } from '../../cli/ledger/crypto.ts'
 import { readAtSight } from '../../shared/ledger/check/at-sight.ts'
 import { entryLine, readEntry } from '../../shared/ledger/check/entry-line.ts'
 import { rowDifference } from '../../shared/ledger/check/record-row.ts'
@@ -65,35 +65,41 @@ describe('GET /ledger/entries', () => {
     }
   })
 
-  it('agrees at sight for measurements of tokens and people, and never where a field differs', async () => {
-    const { lines, entries } = await page()
-    const seen = lines.flatMap((line, i) => {
-      const { leaf, ...entry } = entries[i]!
-      const sighted = readAtSight(Buffer.from(line), asText)
-      if (!sighted) return []
-      const { index, nodes, hash, row } = entry
-      expect(sighted).toEqual({ index, nodes, hash, record: row!.id, leaf })
-      return [{ entry, row: entry.row!, text: Buffer.from(leaf!).toString() }]
-    })
-    // What holds quotation marks is parsed.
-    expect(seen.map(({ row }) => row.unit)).toEqual(['E-1', 'E-1', 'E-4 ½', 'E-3'])
-    for (const { entry, row, text } of seen) {
-      for (const [name, value] of Object.entries(row)) {
-        if (name === 'attempt' || name === 'receipt' || name === 'notices') continue
-        for (const other of [
-          typeof value === 'number' ? value + 1 : `${String(value)}x`,
-          value === null ? 0 : null,
-          `${String(value)}","x":"`,
-        ]) {
-          const changed = { ...row, [name]: other }
-          const line = Buffer.from(entryLine({ ...entry, row: changed }, text))
-          expect(readEntry(line)?.row).toEqual(changed)
-          expect(readAtSight(line, asText), `${row.kind} ${name} ${String(other)}`).toBeNull()
-          expect(rowDifference(changed, JSON.parse(text).body), name).toContain(name)
+  it.each([
+    ['of Node', asTextOfNode],
+    ['of browsers', (bytes: Uint8Array) => new TextDecoder('latin1').decode(bytes)],
+  ])(
+    'agrees at sight, with texts %s, for measurements of tokens and people, and never where a field differs',
+    async (_, asText) => {
+      const { lines, entries } = await page()
+      const seen = lines.flatMap((line, i) => {
+        const { leaf, ...entry } = entries[i]!
+        const sighted = readAtSight(Buffer.from(line), asText)
+        if (!sighted) return []
+        const { index, nodes, hash, row } = entry
+        expect(sighted).toEqual({ index, nodes, hash, record: row!.id, leaf })
+        return [{ entry, row: entry.row!, text: Buffer.from(leaf!).toString() }]
+      })
+      // What holds quotation marks is parsed.
+      expect(seen.map(({ row }) => row.unit)).toEqual(['E-1', 'E-1', 'E-4 ½', 'E-3'])
+      for (const { entry, row, text } of seen) {
+        for (const [name, value] of Object.entries(row)) {
+          if (name === 'attempt' || name === 'receipt' || name === 'notices') continue
+          for (const other of [
+            typeof value === 'number' ? value + 1 : `${String(value)}x`,
+            value === null ? 0 : null,
+            `${String(value)}","x":"`,
+          ]) {
+            const changed = { ...row, [name]: other }
+            const line = Buffer.from(entryLine({ ...entry, row: changed }, text))
+            expect(readEntry(line)?.row).toEqual(changed)
+            expect(readAtSight(line, asText), `${row.kind} ${name} ${String(other)}`).toBeNull()
+            expect(rowDifference(changed, JSON.parse(text).body), name).toContain(name)
+          }
         }
       }
-    }
-  })
+    },
+  )
 
   it('refuses pages that are too large, and tokens for some designs', async () => {
     expect((await api(scene.url, 'get', '/ledger/entries?limit=5001', { token })).status).toBe(422)

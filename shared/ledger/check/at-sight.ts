@@ -56,7 +56,7 @@ export function readAtSight(line: Uint8Array, asText: BytesAsText): Sighted | nu
   if (values === null) return null
   const [leafBytes, index, nodes, hash, ...row] = values
   const from = line.length - 1 - Number(leafBytes)
-  // Where a leaf's bytes begin its text does too: a value holds no quotation mark, so this is found nowhere before.
+  // A character is a byte, so the leaf's text begins where its bytes do; and there the row must have ended.
   if (!text.endsWith('"}},"leaf":', from) || !agrees(row, text, from)) return null
   return {
     index: Number(index),
