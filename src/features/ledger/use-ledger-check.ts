@@ -1,15 +1,10 @@
-import { useEffect, useRef, useState } from 'react'
+import { useState } from 'react'
 import type { LedgerReport } from '../../../shared/ledger/check/check-ledger.ts'
 import type { FromLedgerWorker, ToLedgerWorker } from '../../lib/ledger-messages.ts'
+import { type OwnWorker, type StartWorker, useOneWorker } from '../../lib/use-one-worker.ts'
 
-/** What of a Worker the panel uses; tests hand in one of their own. */
-export type LedgerWorker = {
-  postMessage: (message: ToLedgerWorker) => void
-  terminate: () => void
-  onmessage: ((event: MessageEvent<FromLedgerWorker>) => void) | null
-  onerror: ((event: ErrorEvent) => void) | null
-}
-export type StartLedgerWorker = () => LedgerWorker | Promise<LedgerWorker>
+export type LedgerWorker = OwnWorker<ToLedgerWorker, FromLedgerWorker>
+export type StartLedgerWorker = StartWorker<ToLedgerWorker, FromLedgerWorker>
 
 /** The worker and its address load with the first check. */
 export const startBuiltWorker: StartLedgerWorker = async () => {
@@ -23,51 +18,28 @@ export type CheckState =
   | { is: 'done'; report: LedgerReport }
   | { is: 'failed'; message: string }
 
-/** One check at a time, in a worker of its own that ends with it or when the page is left. */
+/** One check at a time. */
 export function useLedgerCheck(startWorker: StartLedgerWorker) {
   const [state, setState] = useState<CheckState>({ is: 'idle' })
-  const running = useRef<LedgerWorker | null>(null)
-  // Counts the starts: what an earlier one still says is no longer heard.
-  const turn = useRef(0)
-  const end = () => {
-    turn.current += 1
-    running.current?.terminate()
-    running.current = null
-  }
-  // biome-ignore lint/correctness/useExhaustiveDependencies: it only touches refs
-  useEffect(() => end, [])
-  const start = async (asked: ToLedgerWorker) => {
-    end()
-    const own = turn.current
+  const worker = useOneWorker(startWorker)
+  const start = (asked: ToLedgerWorker) => {
     setState({ is: 'running', done: 0, size: null })
-    try {
-      const worker = await startWorker()
-      if (own !== turn.current) {
-        worker.terminate()
-        return
-      }
-      running.current = worker
-      worker.onmessage = ({ data }) => {
-        if (own !== turn.current) return
-        if (data.kind !== 'progress') end()
-        setState(nextState(data))
-      }
-      worker.onerror = () => {
-        if (own !== turn.current) return
-        end()
-        setState({ is: 'failed', message: 'The check broke off. Start it again.' })
-      }
-      worker.postMessage(asked)
-    } catch {
-      if (own === turn.current) setState({ is: 'failed', message: 'This browser did not start the check.' })
-    }
+    return worker.start(asked, {
+      hear: (message) => setState(nextState(message)),
+      fail: (why) => setState({ is: 'failed', message: sentences[why] }),
+    })
   }
   const stop = () => {
-    end()
+    worker.end()
     setState({ is: 'idle' })
   }
   return { state, start, stop }
 }
+
+const sentences = {
+  'broke-off': 'The check broke off. Start it again.',
+  'did-not-start': 'This browser did not start the check.',
+} as const
 
 function nextState(message: FromLedgerWorker): CheckState {
   if (message.kind === 'failed') return { is: 'failed', message: message.message }

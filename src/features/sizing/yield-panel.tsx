@@ -3,7 +3,7 @@ import { Button } from '../../ui/button.tsx'
 import { Field } from '../../ui/field.tsx'
 import { TextInput } from '../../ui/input.tsx'
 import { Section } from '../../ui/section.tsx'
-import { type StartWorker, startBuiltWorker, useYield } from './use-yield.ts'
+import { type StartYieldWorker, startBuiltWorker, useYield } from './use-yield.ts'
 import { YieldAnswer } from './yield-answer.tsx'
 import { YieldStatus } from './yield-status.tsx'
 import { useWish, type Wish } from './yield-wish.ts'
@@ -14,7 +14,7 @@ export type YieldPanelProps = {
   /** Null while the design has an error: nothing is to be simulated. */
   isReady?: boolean | undefined
   /** Tests hand in a worker of their own. */
-  startWorker?: StartWorker | undefined
+  startWorker?: StartYieldWorker | undefined
 }
 
 /** Yield by simulation, in a worker: seeded, repeatable, stopped at will. */
