@@ -66,6 +66,9 @@ export function toBase64(bytes: Uint8Array): string {
 /** Reads standard base64; null when the text is not the one canonical encoding of its bytes. */
 export function fromBase64(text: string): Uint8Array | null {
   if (!/^[A-Za-z0-9+/]*={0,2}$/.test(text) || text.length % 4 !== 0) return null
-  const bytes = Uint8Array.from(atob(text), (c) => c.charCodeAt(0))
-  return toBase64(bytes) === text ? bytes : null
+  const binary = atob(text)
+  if (btoa(binary) !== text) return null
+  const bytes = new Uint8Array(binary.length)
+  for (let i = 0; i < bytes.length; i++) bytes[i] = binary.charCodeAt(i)
+  return bytes
 }
