@@ -14,6 +14,7 @@ export default defineConfig({
     env: {
       OGEE_TIMES: '1',
       OGEE_KILLS: process.env.OGEE_KILLS ?? '1000',
+      OGEE_ACKNOWLEDGED_A_KILL: process.env.OGEE_ACKNOWLEDGED_A_KILL ?? '100',
       OGEE_RACES: process.env.OGEE_RACES ?? '10000',
       OGEE_TWO_SERVERS_SECONDS: process.env.OGEE_TWO_SERVERS_SECONDS ?? '1800',
       OGEE_READY_ROUNDS: process.env.OGEE_READY_ROUNDS ?? '20',
