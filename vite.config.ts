@@ -10,7 +10,7 @@ const startModules =
 
 // What the Design page draws by itself: two dozen pieces that only it uses pack smaller as one.
 const designModules =
-  /src\/(?:screens\/design-page\/(?!conflict|document-acts|choices|measured-units|network-texts|read-measured|revisions-panel|state-acts)|features\/design-form\/(?!template|document-file)|features\/sizing\/(?:explain|explained-sentence|ladder|pass|residual|span|spoken|trim-ladder|verdict)[^/]*$|ui\/(?:steady|text-nodes)\.)|shared\/(?:design-words\/(?:reach-remedy|verdict-sentences|words)\.)/
+  /src\/(?:screens\/design-page\/(?!conflict|document-acts|choices|measured-units|network-texts|read-measured|revisions-panel|state-acts|tried-notice)|features\/design-form\/(?!template|document-file)|features\/sizing\/(?:explain|explained-sentence|ladder|pass|residual|span|spoken|trim-ladder|verdict)[^/]*$|ui\/(?:steady|text-nodes)\.)|shared\/(?:design-words\/(?:reach-remedy|verdict-sentences|words)\.)/
 
 // Sizing is Design's and, for what a budget demands, a lot's: in a file of its own neither drags the other along.
 const sizingModules = /shared\/solver\/sizing\/(?!measured-units|tolerance-factor|unit-error)/

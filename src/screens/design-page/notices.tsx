@@ -1,11 +1,8 @@
 import { Suspense } from 'react'
 import { toForm } from '../../features/design-form/to-form.ts'
-import { Button } from '../../ui/button.tsx'
-import { Caution } from '../../ui/caution.tsx'
-import { copyText } from '../../ui/clipboard.ts'
 import { Problem } from '../../ui/problem.tsx'
 import { utcDay } from '../../ui/time-text.tsx'
-import { ConflictBar } from './on-demand.ts'
+import { ConflictBar, TriedNotice } from './on-demand.ts'
 import type { DesignPageState } from './use-design-page.ts'
 import type { RevisionActs } from './use-revision-acts.ts'
 
@@ -31,7 +28,11 @@ export function Notices({ page, acts }: { page: DesignPageState; acts: RevisionA
           />
         </Suspense>
       ) : null}
-      {page.isTried ? <Tried page={page} /> : null}
+      {page.isTried ? (
+        <Suspense fallback={null}>
+          <TriedNotice page={page} />
+        </Suspense>
+      ) : null}
       {revision?.state === 'released' && revision.releasedBy && revision.releasedAt ? (
         <p className="text-text">
           {`Released by ${revision.releasedBy} on ${utcDay(revision.releasedAt)}${revision.releasedByAuthor ? ', by its author' : ''}. Released revisions do not change.`}
@@ -47,25 +48,5 @@ export function Notices({ page, acts }: { page: DesignPageState; acts: RevisionA
       ) : null}
       {acts.error ? <Problem error={acts.error} /> : null}
     </div>
-  )
-}
-
-function Tried({ page: { dispatch, isEditable } }: { page: DesignPageState }) {
-  return (
-    <Caution tone="plain">
-      <div role="status" className="flex flex-wrap items-center gap-x-3 gap-y-1">
-        <p>This is tried and not saved.</p>
-        {isEditable ? <Button onClick={() => dispatch({ do: 'keep-tried' })}>Keep it</Button> : null}
-        <Button look="quiet" onClick={() => dispatch({ do: 'drop-tried' })}>
-          Drop it
-        </Button>
-        <Button
-          look="quiet"
-          onClick={() => void copyText(window.location.href, 'Copied a link that carries what is tried.')}
-        >
-          Copy a link to it
-        </Button>
-      </div>
-    </Caution>
   )
 }
