@@ -24,7 +24,7 @@ export function PageHead({
     <header className="border-b-2 border-ink pb-1.5">
       <p className="text-small text-ink-2">{place}</p>
       <div className="flex flex-wrap items-end justify-between gap-x-6 gap-y-2">
-        <div className="flex min-w-0 flex-1 basis-48 flex-wrap items-baseline gap-x-6">
+        <div className="flex min-w-0 flex-1 basis-48 flex-wrap medium:basis-[28rem] items-baseline gap-x-6">
           <h1
             tabIndex={-1}
             className="text-title-narrow font-medium narrow:text-title [overflow-wrap:anywhere]"

@@ -21,7 +21,7 @@ export type RowWindow = {
   /** The first and the last row that are seen. */
   top: number
   bottom: number
-  /** Brings a row to the top of the view. */
+  /** Scrolls the page until a row is at the top of the view. */
   show: (row: number) => void
 }
 

@@ -68,6 +68,18 @@ test('an opened link starts at its page, and newer leads to the newest records',
   expect(window.location.search).toBe('')
 })
 
+test('History chosen again in the rail begins at the newest record', async () => {
+  const { user } = open('/history')
+  await link(120)
+  act(() => scrollPage(60 * rowPx))
+  await link(60)
+  await waitFor(() => expect(window.location.search).toBe('?after=1004071'))
+  await user.click(screen.getByRole('link', { name: /^History/ }))
+  await link(120)
+  await waitFor(() => expect(window.scrollY).toBe(0))
+  expect(window.location.search).toBe('')
+})
+
 test('rows are numbered for screen readers, and counted once the end is known', async () => {
   open('/history')
   const row = (await link(117)).closest('tr')

@@ -22,7 +22,10 @@ export function ProofPath({
       {rows.map(({ step, at }) => {
         if (between > 0 && at > drawn && at < last - drawn) {
           return at === last - drawn - 1 ? (
-            <li key={at} className="grid grid-cols-[6.5rem_1fr] gap-x-3">
+            <li
+              key={at}
+              className="grid grid-cols-[5rem_1fr] gap-x-2 narrow:grid-cols-[6.5rem_1fr] narrow:gap-x-3"
+            >
               <span />
               <span className="border-l border-dotted border-rule py-1 pl-3 text-ink-2">{between} more</span>
             </li>
@@ -31,7 +34,7 @@ export function ProofPath({
         return (
           <li
             key={at}
-            className="grid grid-cols-[6.5rem_minmax(0,9rem)_minmax(0,9rem)] items-center gap-x-3 py-0.5"
+            className="grid grid-cols-[5rem_minmax(0,9rem)_minmax(0,9rem)] items-center gap-x-2 py-0.5 narrow:grid-cols-[6.5rem_minmax(0,9rem)_minmax(0,9rem)] narrow:gap-x-3"
           >
             <span className={`text-right ${at === 0 || at === last ? 'font-semibold' : 'text-ink-2'}`}>
               {nameOf(at, last, index, size)}

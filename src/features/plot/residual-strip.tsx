@@ -28,6 +28,10 @@ export function StripMarks({
         const lsb = point.residualV / range.lsbV
         const atEnd = x(point.idealV) > box.right - 40
         const beside = point.flagged ? 14 : 8
+        // The last label stands on the side of the one before it: a line further out where the two would meet.
+        const before = points[index - 1]
+        const isTight = atEnd && before !== undefined && x(point.idealV) - x(before.idealV) < 84
+        const out = isTight ? 11 : 0
         return (
           <g
             // biome-ignore lint/suspicious/noArrayIndexKey: replicates share their code
@@ -57,7 +61,7 @@ export function StripMarks({
             )}
             <PlotText
               x={x(point.idealV) + (atEnd ? -beside : beside)}
-              y={y(lsb) + (lsb < 0 ? 10 : -1)}
+              y={y(lsb) + (lsb < 0 ? 10 + out : -1 - out)}
               anchor={atEnd ? 'end' : 'start'}
               colour="var(--ink-2)"
             >

@@ -11,9 +11,12 @@ import { gapsOf, numberOr, type RecordRows } from './record-rows.tsx'
 import { byText, kindWord } from './words.ts'
 
 /** What a narrower page leaves out first. */
-const fromRail = 'hidden rail:table-cell'
+const fromRail = 'hidden rail:table-cell print:table-cell'
 const fromWide = 'hidden wide:table-cell'
 const fromFull = 'hidden min-[84rem]:table-cell'
+/** Paper on its side has room for the codes, and not for all. */
+const design = `${fromWide} print:table-cell`
+const code = `${fromFull} print:table-cell`
 
 /** Fixed columns: widths that follow the rows in view would jump while scrolling. */
 export function RecordTable({ rows, count, total, body, height, row, onRow }: RecordRows) {
@@ -56,7 +59,7 @@ function RecordHead() {
         <Th align="right" className="w-[2.25rem]">
           ch.
         </Th>
-        <Th className={`w-[6.5rem] ${fromWide}`}>design, rev.</Th>
+        <Th className={`w-[6.5rem] ${design}`}>design, rev.</Th>
         <Th className={`w-[4.25rem] ${fromRail}`}>kind</Th>
         <Th align="right" className={`w-[2.75rem] ${fromFull}`}>
           pass
@@ -70,10 +73,10 @@ function RecordHead() {
         <Th align="right" unit="µV" className="w-[5.25rem] text-tide">
           offset error
         </Th>
-        <Th align="right" unit="code" className={`w-[3.5rem] ${fromFull}`}>
+        <Th align="right" unit="code" className={`w-[3.5rem] ${code}`}>
           gain
         </Th>
-        <Th align="right" unit="code" className={`w-[3.5rem] ${fromFull}`}>
+        <Th align="right" unit="code" className={`w-[3.5rem] ${code}`}>
           offset
         </Th>
         <Th align="right" unit="LSB" className="w-[3.5rem]">
@@ -103,7 +106,7 @@ function RecordCells({ record, index }: { record: RecordLine; index: number }) {
         {record.unit}
       </Td>
       <Td align="right">{record.channel}</Td>
-      <Td className={`truncate text-ink-2 ${fromWide}`}>
+      <Td className={`truncate text-ink-2 ${design}`}>
         {record.design}, {record.revision}
       </Td>
       <Td className={`text-ink-2 ${fromRail}`}>{kindWord(record)}</Td>
@@ -115,10 +118,10 @@ function RecordCells({ record, index }: { record: RecordLine; index: number }) {
       </Td>
       <Td align="right">{numberOr(record.gainErrorPpm, 2, 1, true)}</Td>
       <Td align="right">{numberOr(record.offsetErrorV, 1, 1e6, true)}</Td>
-      <Td align="right" className={fromFull}>
+      <Td align="right" className={code}>
         {record.gainCode ?? <None />}
       </Td>
-      <Td align="right" className={fromFull}>
+      <Td align="right" className={code}>
         {record.offsetCode ?? <None />}
       </Td>
       <Td align="right">

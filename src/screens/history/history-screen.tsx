@@ -39,7 +39,7 @@ export default function HistoryScreen() {
     )
   }
   return (
-    <>
+    <div className="print-wide">
       <PageHead
         place="History"
         title="Records"
@@ -62,6 +62,6 @@ export default function HistoryScreen() {
       {exporting ? (
         <HistoryExport filters={filters} counted={counted.data} onClose={() => setExporting(false)} />
       ) : null}
-    </>
+    </div>
   )
 }

@@ -22,7 +22,7 @@ type Props = { view: View; onKeep: (place: Place) => void; onNewest: () => void 
 /** The records of one view as one list: scrolling reads on, and what is far from the view is not kept. */
 export function Records({ view, onKeep, onNewest }: Props) {
   const [chain, setChain] = useState(() => chainFrom(view.starts))
-  const [goal, setGoal] = useState<number | null>(view.top > 0 ? view.top : null)
+  const [goal, setGoal] = useState<number | null>(view.top)
   const count = rowsOf(chain)
   const keys = useRowKeys(count, view.top)
   const wide = useMedia('(min-width: 48rem)', true)

@@ -7,6 +7,7 @@ import { noteSentences } from '../../features/record/note-words.ts'
 import { CodesTable, LineTable, Shortfall } from '../../features/record/result-section.tsx'
 import { lsbOf } from '../../features/record/volt-decimals.ts'
 import { engineering, fixed } from '../../ui/number-format.ts'
+import { Whole } from '../../ui/number-text.tsx'
 import { Section } from '../../ui/section.tsx'
 import { Verdict } from '../../ui/verdict.tsx'
 
@@ -57,9 +58,10 @@ function VerifyResult({ result }: { result: VerifyDocument }) {
         <LeftTable verify={result} lsbV={lsbV} />
       </Section>
       <Section title="Result" side={`solver ${result.solver}`}>
-        <p className="text-text">
+        <p className="mb-1.5 text-text">
           <Verdict verdict={result.outcome} /> Worst {fixed(result.worst.errorLsb, 2, 'always')} LSB at code{' '}
-          {result.worst.code}. Rule {result.rule}, tolerance {engineering(result.toleranceV, 'V')}
+          <Whole value={result.worst.code} />. Rule {result.rule}, tolerance{' '}
+          {engineering(result.toleranceV, 'V')}
           {result.tur === null ? '' : `, test uncertainty ratio ${fixed(result.tur, 1)}`}.
         </p>
         {result.fit ? <LineTable fit={result.fit} /> : null}
