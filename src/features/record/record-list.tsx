@@ -10,12 +10,17 @@ import { kindWord } from './words.ts'
 export function RecordList({ rows, count, total, body, height, row, onRow }: RecordRows) {
   const { before, after } = gapsOf(rows, count)
   return (
-    <ul ref={body as RefObject<HTMLUListElement | null>}>
-      {rows.map(({ index, record }, i) => [
-        <Gap key={`before ${index}`} px={(before[i] ?? 0) * height} />,
+    // Space stands for the rows that are not drawn: a list may hold nothing but its items.
+    <ul
+      ref={body as RefObject<HTMLUListElement | null>}
+      className="flow-root print:pb-0!"
+      style={{ paddingBottom: after * height }}
+    >
+      {rows.map(({ index, record }, i) => (
         <li
           key={record?.id ?? index}
-          className={`h-[calc(3rem+1px)] border-b border-hair ${index === row ? 'bg-shade' : ''}`}
+          className={`h-[calc(3rem+1px)] border-b border-hair print:mt-0! ${index === row ? 'bg-shade' : ''}`}
+          style={{ marginTop: (before[i] ?? 0) * height }}
           aria-setsize={total === undefined ? undefined : (total ?? -1)}
           aria-posinset={total === undefined ? undefined : index + 1}
         >
@@ -45,13 +50,8 @@ export function RecordList({ rows, count, total, body, height, row, onRow }: Rec
               </span>
             </LinkButton>
           )}
-        </li>,
-      ])}
-      <Gap px={after * height} />
+        </li>
+      ))}
     </ul>
   )
-}
-
-function Gap({ px }: { px: number }) {
-  return px > 0 ? <li role="presentation" className="print:hidden" style={{ height: px }} /> : null
 }
