@@ -52,7 +52,7 @@ test('the chain leads back through the records that it follows', async () => {
   const { user } = await openRecord(3, serverWith(chain))
   await screen.findByText('3 records; none can be changed or removed')
   await user.click(screen.getByRole('link', { name: 'record 1004002' }))
-  await screen.findByText(/Worst \+0\.76 LSB at code 262143/)
+  expect(await screen.findByText(/Worst \+0\.76 LSB at code/)).toHaveTextContent('at code 262143.')
   expect(window.location.pathname).toBe(`/records/${id(2)}`)
 })
 
