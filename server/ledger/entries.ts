@@ -4,8 +4,8 @@ import { type Cell, rowsOfCells, type Sql } from '../db/sql.ts'
 import { transaction } from '../db/transaction.ts'
 import { storedColumns, storedRowText, timeText } from './stored-row.ts'
 
-/** Rows of a look-up: some megabytes, so that memory and the wait for the first stay small. */
-const atOnce = 500
+/** Rows of a look-up: a megabyte, gone before the collector has to move it; more of them are slower, and so are fewer. */
+const atOnce = 250
 
 type EntryRow = readonly [
   idx: number,
