@@ -1,7 +1,9 @@
 import { afterAll, beforeAll, describe, expect, it } from 'vitest'
-import { asText as asTextOfNode } from '../../cli/ledger/crypto.ts'
+import { asText as asTextOfNode, crypto } from '../../cli/ledger/crypto.ts'
 import { readAtSight } from '../../shared/ledger/check/at-sight.ts'
+import { EntryChecker } from '../../shared/ledger/check/entry-checker.ts'
 import { entryLine, readEntry } from '../../shared/ledger/check/entry-line.ts'
+import { collectFaults } from '../../shared/ledger/check/faults.ts'
 import { rowDifference } from '../../shared/ledger/check/record-row.ts'
 import { api, post } from '../support/server-client.ts'
 import { pointsOf, suspectPoints, trimBody } from '../support/server-factories.ts'
@@ -100,6 +102,21 @@ describe('GET /ledger/entries', () => {
       }
     },
   )
+
+  it('takes no line for good whose receipt cannot be read', async () => {
+    const { lines, entries } = await page()
+    const record = entries.findIndex(({ row }) => row?.unit === 'E-1')
+    const faultsOf = (change: (line: string) => string) => {
+      const faults = collectFaults()
+      const how = { sha256: crypto.sha256, asText: asTextOfNode, withReceipts: true }
+      const checker = new EntryChecker(how, [scene.harness.deps.signer.key], [], faults)
+      for (const [i, line] of lines.entries()) checker.take(Buffer.from(i === record ? change(line) : line))
+      return faults.list().map(({ what, entry }) => ({ what, entry }))
+    }
+    expect(faultsOf((line) => line)).toEqual([])
+    const broken = faultsOf((line) => line.replace('"receipt":{"key":"', '"receipt":{"key":"\u0001'))
+    expect(broken).toEqual([{ what: 'entry-unreadable', entry: record }])
+  })
 
   it('refuses pages that are too large, and tokens for some designs', async () => {
     expect((await api(scene.url, 'get', '/ledger/entries?limit=5001', { token })).status).toBe(422)

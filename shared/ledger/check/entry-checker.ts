@@ -81,10 +81,12 @@ export class EntryChecker {
   }
 
   #takeGood(line: Uint8Array, { nodes, hash, record }: Sighted, bytes: Uint8Array): SignatureTask | null {
+    const entry = this.#withReceipts ? readEntry(line) : null
+    // Behind what was seen stands the receipt: a line that cannot be parsed for it is not good.
+    if (this.#withReceipts && !entry?.row) return this.#takeAny(entry)
     this.#grow(bytes, nodes, record)
     this.#records++
-    const row = this.#withReceipts ? readEntry(line)?.row : null
-    const task = row ? this.#receiptOf(row, hash) : null
+    const task = entry?.row ? this.#receiptOf(entry.row, hash) : null
     this.#next++
     return task
   }
