@@ -32,6 +32,15 @@ const look = (page: Page) =>
     }
   })
 
+/** How far the row at the top is from the one that the history entry holds. */
+const rowsFromKept = () => {
+  const head = document.querySelector('thead')?.getBoundingClientRect().bottom ?? 0
+  const seen = [...document.querySelectorAll<HTMLElement>('main [data-row]')].find(
+    (row) => (row.closest('tr')?.getBoundingClientRect().bottom ?? 0) > head + 1,
+  )
+  return Number(seen?.dataset.row) - (history.state?.usr?.top ?? Number.NaN)
+}
+
 /** The focused row, and whether anything lies over it. */
 const focusedRow = (page: Page) =>
   page.evaluate(() => {
@@ -79,8 +88,8 @@ test('reload and the way back find the very row', async () => {
     await page.mouse.wheel(0, 900)
     await page.waitForTimeout(200)
   }
-  await expect.poll(() => new URL(page.url()).searchParams.has('after')).toBe(true)
-  await page.waitForTimeout(500)
+  // However slowly the wheel's last turn arrives: until the row kept is the row seen.
+  await expect.poll(() => page.evaluate(rowsFromKept), { timeout: 10_000 }).toBe(0)
   const before = await look(page)
   expect(before.place).toBeGreaterThan(2000)
   await page.reload()

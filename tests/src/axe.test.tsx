@@ -24,7 +24,7 @@ const record = fixtures.record(3, {
 function server() {
   const one = fakeServer({ role: 'administrator' })
   one.state.records.set(record.id, record)
-  one.on('GET /trims', () => json({ items: [1, 4, 5].map(fixtures.recordLine), next: 'x' }))
+  one.on('GET /trims', () => json({ items: [1, 4, 5].map(fixtures.recordLine), next: null }))
   return one
 }
 
