@@ -6,8 +6,8 @@ export const share = { requests: 128, weight: 8_192 } as const
 /** Transactions that are under way at once in this process. */
 const underWayMax = 3
 /**
- * One at a time makes the fullest transactions. Another starts when it is full already, so that one computes while others
- * wait for the database; and when one takes longer than this, waiting for a lock, so that it holds up nobody.
+ * One at a time makes the fullest transactions. Another starts when it is at least half full, so that one computes while
+ * others wait for the database; and when one takes longer than this, waiting for a lock, so that it holds up nobody.
  */
 const slowMs = 40
 
@@ -26,20 +26,21 @@ export function coalesce<In, Out>(
   let pumping = false
   let waitingForSlow = false
 
-  const start = (count: number) => {
-    if (count === 0 || underWay >= underWayMax) return
-    underWay++
-    void run(queue.splice(0, count))
+  const start = (isWorthwhile: (next: Share) => boolean) => {
+    while (queue.length > 0 && underWay < underWayMax) {
+      const next = nextShare(queue, weightOf)
+      if (underWay > 0 && !isWorthwhile(next)) return
+      underWay++
+      void run(queue.splice(0, next.count))
+    }
   }
   const pump = () => {
-    if (underWay === 0) start(nextShare(queue, weightOf).count)
-    const { count, isFull } = nextShare(queue, weightOf)
-    if (isFull) start(count)
+    start(({ count, isCut }) => isCut || count >= share.requests / 2)
     if (queue.length === 0 || waitingForSlow) return
     waitingForSlow = true
     setTimeout(() => {
       waitingForSlow = false
-      start(nextShare(queue, weightOf).count)
+      start(() => true)
     }, slowMs)
   }
   const pumpSoon = () => {
@@ -70,15 +71,14 @@ export function coalesce<In, Out>(
     })
 }
 
-/** How many of those in front go together, and whether no more would fit. */
-function nextShare<In>(
-  queue: readonly { input: In }[],
-  weightOf: (input: In) => number,
-): { count: number; isFull: boolean } {
+/** How many of those in front go together, and whether one was left that would have been too many. */
+type Share = { count: number; isCut: boolean }
+
+function nextShare<In>(queue: readonly { input: In }[], weightOf: (input: In) => number): Share {
   let weight = 0
   for (const [count, { input }] of queue.entries()) {
     weight += weightOf(input)
-    if (count === share.requests || (count > 0 && weight > share.weight)) return { count, isFull: true }
+    if (count === share.requests || (count > 0 && weight > share.weight)) return { count, isCut: true }
   }
-  return { count: queue.length, isFull: queue.length === share.requests }
+  return { count: queue.length, isCut: false }
 }

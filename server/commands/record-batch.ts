@@ -21,6 +21,9 @@ type Deps = {
   principalNow: () => Promise<Principal>
 }
 
+/** Lines that go to the recorder together: two blocks fill a transaction, and others get their turn between two steps. */
+const stepMax = share.requests / 2
+
 /**
  * Records the lines of a block in their order and tells what became of each, some at a time.
  * Guarantee: each line is recorded whole or not at all, once for its key, as if it had been sent alone; a refused one takes
@@ -106,9 +109,8 @@ function obstacleOf(outcome: LineOutcome): { error: unknown } | null {
 }
 
 /**
- * Cuts lines into steps that can share a transaction, so that others get their turn between two. Within a step places are
- * under way at once, so a key that comes again waits for the next one, and what is said about a record (which may be of a
- * line just before) stands alone.
+ * Cuts lines into steps. Within a step places are under way at once, so a key that comes again waits for the next one, and
+ * what is said about a record (which may be of a line just before) stands alone.
  */
 function* stepsOf(lines: Iterable<BatchLine>): Generator<BatchLine[]> {
   let step: BatchLine[] = []
@@ -117,7 +119,7 @@ function* stepsOf(lines: Iterable<BatchLine>): Generator<BatchLine[]> {
   for (const line of lines) {
     const alone = isStatement(line)
     const more = line.asked === null ? 0 : weightOf(line.asked.request)
-    const isFull = step.length >= share.requests || weight + more > share.weight
+    const isFull = step.length >= stepMax || weight + more > share.weight
     if (isFull || alone || (line.key !== null && keys.has(line.key))) {
       if (step.length > 0) yield step
       step = []
