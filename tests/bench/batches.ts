@@ -50,18 +50,20 @@ async function race(dir: string, url: string, token: string): Promise<Rates> {
       env: { PATH: process.env.PATH ?? '', HOME: dir, OGEE_URL: url, OGEE_TOKEN: token },
       stdio: [stdio, stdio, 'inherit'],
     })
+  const alone = Math.ceil(units / 10)
+  const pipe = openPipe(cli(['pipe'], 'pipe'))
   for (let round = -1; round < rounds; round += 1) {
-    const alone = Math.ceil(units / 10)
     const measured: Record<Ways, number> = {
       single: await rateOf(`${url}/api/v1/trims`, token, some(Math.ceil(units / 2))),
       blocks: await rateOfBlocks(url, token, some(units)),
       batch: await rateOfBatch(dir, cli, some(units)),
       alone: await rateOf(`${url}/api/v1/trims`, token, some(alone), 1),
-      pipe: await rateOfPipe(cli(['pipe'], 'pipe'), some(alone)),
+      pipe: await pipe.rateOf(some(alone)),
     }
-    // The first round warms up.
+    // The first round warms up all of them: server, our own client, and the pipe that a test program would keep.
     if (round >= 0) for (const way of Object.keys(rates) as Ways[]) rates[way].push(measured[way])
   }
+  await pipe.close()
   return rates
 }
 
@@ -110,22 +112,25 @@ function rowsOf({ unit, body }: Delivery): string {
 }
 
 /** One line at a time: the next is written when the answer to the one before has come, as a test program would. */
-async function rateOfPipe(child: ChildProcess, items: readonly Delivery[]): Promise<number> {
+function openPipe(child: ChildProcess) {
   if (!child.stdin || !child.stdout) throw new Error('no pipe')
+  const { stdin } = child
   const answers = createInterface({ input: child.stdout })[Symbol.asyncIterator]()
   const ask = async ({ key, body }: Delivery) => {
-    child.stdin?.write(`{"id":1,"do":"trim","key":"${key}",${body.slice(1)}\n`)
+    stdin.write(`{"id":1,"do":"trim","key":"${key}",${body.slice(1)}\n`)
     const { value } = await answers.next()
     if (!String(value).startsWith('{"id":1,"exit":0')) throw new Error(`ogee pipe: ${value}`)
   }
-  const [first, ...others] = items
-  if (first) await ask(first)
-  const rate = await timed(others.length, async () => {
-    for (const item of others) await ask(item)
-  })
-  child.stdin.end()
-  await once(child, 'exit')
-  return rate
+  return {
+    rateOf: (items: readonly Delivery[]) =>
+      timed(items.length, async () => {
+        for (const item of items) await ask(item)
+      }),
+    close: async () => {
+      stdin.end()
+      await once(child, 'exit')
+    },
+  }
 }
 
 const lineOf = ({ key, body }: Delivery) => `{"key":"${key}",${body.slice(1)}\n`
