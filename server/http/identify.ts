@@ -3,6 +3,7 @@ import { Passport } from 'passport'
 import { Strategy as BearerStrategy } from 'passport-http-bearer'
 import { OgeeError } from '../../shared/errors.ts'
 import type { Database } from '../db/connection.ts'
+import { within } from './deadline.ts'
 import type { TokenFinder } from './find-token.ts'
 import { localsOf } from './locals.ts'
 import type { PersonPrincipal, Principal, TokenPrincipal } from './principal.ts'
@@ -55,7 +56,7 @@ function bearer(tokens: TokenFinder): RequestHandler {
   const passport = new Passport()
   passport.use(
     new BearerStrategy((text, done) => {
-      tokens.find(text).then((found) => done(null, found ?? false), done)
+      within(tokens.find(text)).then((found) => done(null, found ?? false), done)
     }),
   )
   return (request, response, next) => {

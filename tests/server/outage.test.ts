@@ -124,7 +124,11 @@ describe('while the database is down', () => {
 
   it('a database that swallows everything is an outage too, in bounded time', async () => {
     await trim('X-4')
+    // Several connections lie ready, and none of them will answer.
+    await Promise.all(Array.from({ length: 6 }, () => api(served.url, 'get', '/trims', station)))
     mode = 'swallow'
+    await expectOutage(() => trim('X-5'))
+    // By now the token is asked for again, and that is swallowed as well.
     await expectOutage(() => trim('X-5'))
     mode = 'through'
     cutAll()
