@@ -104,10 +104,10 @@ function joined(lines: readonly Line[]): Buffer {
   for (const { before, body, after } of lines) {
     at += block.write(before, at)
     if (body) {
-      const end = at + body.copy(block, at)
+      body.copy(block, at)
       // A line end can only come from bytes that somebody changed: a blank in its place changes the hash as well.
-      for (let i = block.indexOf(10, at); i >= 0 && i < end; i = block.indexOf(10, i)) block[i] = 32
-      at = end
+      for (let i = body.indexOf(10); i >= 0; i = body.indexOf(10, i + 1)) block[at + i] = 32
+      at += body.length
     }
     at += block.write(after, at)
   }
