@@ -22,7 +22,8 @@ type Props = { view: View; onKeep: (place: Place) => void; onNewest: () => void 
 /** The records of one view as one list: scrolling reads on, and what is far from the view is not kept. */
 export function Records({ view, onKeep, onNewest }: Props) {
   const [chain, setChain] = useState(() => chainFrom(view.starts))
-  const [goal, setGoal] = useState<number | null>(view.top)
+  // Nowhere to go for who is there already: a frame later it would undo the reader's own first scrolling.
+  const [goal, setGoal] = useState(() => (view.top === 0 && window.scrollY === 0 ? null : view.top))
   const count = rowsOf(chain)
   const keys = useRowKeys(count, view.top)
   const wide = useMedia('(min-width: 48rem)', true)
