@@ -38,6 +38,7 @@ export function ledgerServer(
         kept,
         verifyAll,
         onProgress: (done, size) => send({ kind: 'progress', done, size }),
+        turn: () => new Promise((resolve) => setTimeout(resolve)),
       })
       send({ kind: 'done', report })
     } catch (error) {

@@ -1,3 +1,4 @@
+import { setImmediate } from 'node:timers/promises'
 import type { Connection } from 'mariadb'
 import { afterAll, beforeAll, expect, test } from 'vitest'
 import { makeClient } from '../../cli/client.ts'
@@ -161,6 +162,7 @@ async function check(kept: readonly { size: number; note: string }[]) {
     kept: kept.map(({ size, note }) => ({ name: `the checkpoint over ${size}`, note })),
     verifyAll,
     onProgress: () => undefined,
+    turn: setImmediate,
   })
 }
 

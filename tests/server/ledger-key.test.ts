@@ -1,5 +1,6 @@
 import { copyFile, readdir, readFile, stat, writeFile } from 'node:fs/promises'
 import { join } from 'node:path'
+import { setImmediate } from 'node:timers/promises'
 import { afterAll, beforeAll, describe, expect, it } from 'vitest'
 import { makeClient } from '../../cli/client.ts'
 import { asText } from '../../cli/ledger/crypto.ts'
@@ -56,6 +57,7 @@ async function checkAll(kept: LedgerKey) {
     kept: [],
     verifyAll,
     onProgress: () => undefined,
+    turn: setImmediate,
   })
 }
 

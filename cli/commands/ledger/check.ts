@@ -1,4 +1,5 @@
 import { join } from 'node:path'
+import { setImmediate } from 'node:timers/promises'
 import { proofFailsExit } from '../../../shared/contract/exit.ts'
 import { OgeeError } from '../../../shared/errors.ts'
 import { checkLedger, type LedgerReport } from '../../../shared/ledger/check/check-ledger.ts'
@@ -76,6 +77,7 @@ async function check(options: Options, context: Context): Promise<number> {
     kept,
     verifyAll: options.receipts ? verifyAll : null,
     onProgress: progress(context.io),
+    turn: setImmediate,
   })
   await print(rendering(report, key.name), context)
   return report.ok ? 0 : proofFailsExit

@@ -46,7 +46,12 @@ type Options = {
   /** Checks signatures of receipts, all at once; left out, they are not checked. */
   verifyAll: ((tasks: readonly SignatureTask[]) => Promise<readonly boolean[]>) | null
   onProgress: (done: number, size: number) => void
+  /** Gives the event loop a turn: the next entries are asked for, and come in, while some are checked. */
+  turn: () => Promise<unknown>
 }
+
+/** Lines between two turns: some milliseconds. */
+const linesATurn = 200
 
 /**
  * Reads all of a ledger and finds what disagrees: keys, checkpoints, entries, records, receipts, revisions, and rows that
@@ -56,7 +61,7 @@ type Options = {
  * @returns the report; the first fault is that of the lowest entry.
  * @throws what the source throws.
  * Source: contract.md, Ledger; RFC 9162.
- * @example (await checkLedger(source, { sha256, run, key, kept: [], verifyAll: null, onProgress })).ok
+ * @example (await checkLedger(source, { sha256, run, key, kept: [], verifyAll: null, onProgress, turn })).ok
  */
 export async function checkLedger(source: LedgerSource, options: Options): Promise<LedgerReport> {
   const { sha256, key, kept, onProgress } = options
@@ -128,10 +133,12 @@ function checkNotes(
 async function takePage(
   checker: EntryChecker,
   lines: Iterable<Uint8Array>,
-  { verifyAll }: Pick<Options, 'verifyAll'>,
+  { verifyAll, turn }: Pick<Options, 'verifyAll' | 'turn'>,
 ): Promise<void> {
   const tasks: SignatureTask[] = []
+  let taken = 0
   for (const line of lines) {
+    if (taken++ % linesATurn === 0) await turn()
     const task = checker.take(line)
     if (task) tasks.push(task)
   }
